@@ -1,0 +1,16 @@
+"""Settings of the test suite: quick hashes, a data folder of its own, the database that DATABASE_URL names."""
+
+import os
+import tempfile
+from pathlib import Path
+
+_folder = tempfile.mkdtemp(prefix="gramledger-test-")
+os.environ["GRAMLEDGER_DATA"] = _folder
+
+from compliance.settings import *  # noqa: E402, F403  (settings are read after the folder is set)
+from compliance.settings import DATABASES, STORAGES  # noqa: E402
+
+DATABASES["default"]["TEST"] = {"NAME": str(Path(_folder) / "test.sqlite3")} if "sqlite" in str(DATABASES["default"]["ENGINE"]) else {}
+PASSWORD_HASHERS = ["django.contrib.auth.hashers.MD5PasswordHasher"]
+STORAGES["staticfiles"] = {"BACKEND": "django.contrib.staticfiles.storage.StaticFilesStorage"}
+AXES_ENABLED = False
