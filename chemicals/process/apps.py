@@ -1,0 +1,5 @@
+from django.apps import AppConfig
+
+
+class ProcessConfig(AppConfig):
+    name = "chemicals.process"

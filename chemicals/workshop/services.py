@@ -1,0 +1,119 @@
+"""Writes about people and premises. Plain rows, not facts of matter: they are not journalled."""
+
+import hashlib
+import secrets
+from datetime import datetime
+from uuid import UUID
+
+from django.contrib.auth.password_validation import validate_password
+from django.core.exceptions import ValidationError
+from django.db import transaction
+
+from chemicals.workshop.errors import FieldError, InvalidInputError, NotFoundError
+from chemicals.workshop.models import ApiToken, Membership, Place, Role, User, Workshop
+from chemicals.workshop.permissions import require_owner, require_writer
+
+
+def create_workshop(
+    *, now: datetime, name: str, time_zone: str, owner: User, address: str = "", telephone: str = "", invented: bool = False
+) -> Membership:
+    """Create a workshop and return its first owner's membership."""
+    workshop = Workshop(
+        name=name.strip(), time_zone=time_zone, address=address, telephone=telephone, invented=invented, created_at=now
+    )
+    _clean(workshop)
+    with transaction.atomic():
+        workshop.save()
+        return Membership.objects.create(workshop=workshop, user=owner, role=Role.OWNER)
+
+
+def create_user(*, email: str, password: str | None, name: str) -> User:
+    """Create a user; the password must pass the validators, the address must be new."""
+    user = User(email=User.objects.normalize_email(email).lower(), name=name.strip())
+    errors = []
+    if password is not None:
+        try:
+            validate_password(password, user)
+        except ValidationError as error:
+            errors = [FieldError("password", message) for message in error.messages]
+    user.set_password(password)
+    try:
+        user.full_clean()
+    except ValidationError as error:
+        errors += [FieldError(field, m) for field, messages in error.message_dict.items() for m in messages]
+    if errors:
+        raise InvalidInputError(errors)
+    user.save()
+    return user
+
+
+@transaction.atomic
+def invite_member(*, actor: Membership, email: str, name: str, role: str) -> Membership:
+    """Give a person a role in the actor's workshop; a new person gets no password yet, only a link to set one."""
+    require_owner(actor)
+    if role not in Role.values:
+        raise InvalidInputError.of("role", "Choose owner, worker or observer.")
+    user = User.objects.filter(email=email.strip().lower()).first()
+    if user is None:
+        user = create_user(email=email.strip(), password=None, name=name)
+    if Membership.objects.filter(workshop=actor.workshop, user=user).exists():
+        raise InvalidInputError.of("email", "This person is a member already. Change the role in the list instead.")
+    return Membership.objects.create(workshop=actor.workshop, user=user, role=role)
+
+
+@transaction.atomic
+def change_member(*, actor: Membership, member_uuid: UUID, role: str, active: bool) -> Membership:
+    """Change a role, or end a membership. The last owner stays."""
+    require_owner(actor)
+    member = Membership.objects.filter(workshop=actor.workshop, uuid=member_uuid).first()
+    if member is None:
+        raise NotFoundError("There is no such person in this workshop.")
+    if role not in Role.values:
+        raise InvalidInputError.of("role", "Choose owner, worker or observer.")
+    member.role, member.active = role, active
+    member.save(update_fields=["role", "active"])
+    if not Membership.objects.filter(workshop=actor.workshop, role=Role.OWNER, active=True).exists():
+        raise InvalidInputError.of("role", "A workshop keeps at least one owner. Make another person owner first.")
+    return member
+
+
+def create_place(*, actor: Membership, name: str, bund: str = "", exhaust_duct: str = "") -> Place:
+    """Create a place in the actor's workshop."""
+    require_writer(actor)
+    place = Place(workshop=actor.workshop, name=name.strip(), bund=bund.strip(), exhaust_duct=exhaust_duct.strip())
+    _clean(place)
+    with transaction.atomic():
+        place.save()
+    return place
+
+
+def create_token(*, actor: Membership, now: datetime, name: str) -> tuple[ApiToken, str]:
+    """Create a key for the API with the actor's rights; return the row and the key, which is shown once."""
+    if not name.strip():
+        raise InvalidInputError.of("name", "Name the token after the program that will use it.")
+    key = "glt_" + secrets.token_urlsafe(32)
+    token = ApiToken.objects.create(
+        membership=actor, name=name.strip(), sha256=hashlib.sha256(key.encode()).hexdigest(), created_at=now
+    )
+    return token, key
+
+
+def revoke_token(*, actor: Membership, now: datetime, token_uuid: UUID) -> None:
+    """End one of the actor's own tokens."""
+    changed = ApiToken.objects.filter(membership=actor, uuid=token_uuid, revoked_at=None).update(revoked_at=now)
+    if not changed:
+        raise NotFoundError("There is no such token, or it is revoked already.")
+
+
+def _clean(row: Workshop | Place) -> None:
+    """Turn Django's validation errors into ours, all at once."""
+    from django_scopes import scope
+
+    workshop = row if isinstance(row, Workshop) else row.workshop
+    try:
+        with scope(workshop=workshop):
+            row.full_clean()
+    except ValidationError as error:
+        raise InvalidInputError(
+            [FieldError(field, m) for field, messages in error.message_dict.items() for m in messages]
+        ) from error

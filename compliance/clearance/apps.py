@@ -1,0 +1,5 @@
+from django.apps import AppConfig
+
+
+class ClearanceConfig(AppConfig):
+    name = "compliance.clearance"
