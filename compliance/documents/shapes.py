@@ -1,7 +1,8 @@
 """The frozen data of each kind of paper: what a paper says, as plain str, int, list and dict.
 
-Every amount is a string as it shall be read ("12.5 L", "3.4 g"); None means unknown and prints as "unknown", never as 0.
-Dates and times are ISO 8601. A paper is drawn from this data and nothing else, so that label, manifest and screen agree.
+Every amount is a string as it shall be read ("12.5 L", "3.4 g"); None means unknown and prints as "unknown", never
+as 0. Dates and times are ISO 8601. A paper is drawn from this data and nothing else, so that label, manifest and screen
+agree.
 """
 
 from typing import Literal, NotRequired, TypedDict
