@@ -206,11 +206,12 @@ def show(base: int, dimension: str, *, digits: int = 4) -> str:
         return f"{_plain(Decimal(base - 273_150) / 1000, digits)} °C"
     rounded = abs(Context(prec=digits).plus(Decimal(base)))
     known = units.DIMENSIONS[dimension]
-    unit, factor, _ = next(
-        choice for choice in known.shown if (rounded >= choice[2] if base else known.example.endswith(choice[0]))
+    name = next(
+        name for name, least in known.shown if (rounded >= least if base else known.example.endswith(f" {name}"))
     )
-    number = _plain(Decimal(base) / factor, digits)
-    return f"pH {number}" if dimension == "ph" else f"{number} {pretty(unit)}"
+    unit = next(unit for unit in known.units if unit.name == name)
+    number = _plain(Decimal(base) / units.to_base(Decimal(1), unit, dimension), digits)
+    return f"pH {number}" if dimension == "ph" else f"{number} {pretty(name)}"
 
 
 def _round(value: Decimal, digits: int) -> Decimal:
