@@ -15,7 +15,14 @@ from chemicals.workshop.permissions import require_owner, require_writer
 
 
 def create_workshop(
-    *, now: datetime, name: str, time_zone: str, owner: User, address: str = "", telephone: str = "", invented: bool = False
+    *,
+    now: datetime,
+    name: str,
+    time_zone: str,
+    owner: User,
+    address: str = "",
+    telephone: str = "",
+    invented: bool = False,
 ) -> Membership:
     """Create a workshop and return its first owner's membership."""
     workshop = Workshop(
@@ -89,6 +96,7 @@ def create_place(*, actor: Membership, name: str, bund: str = "", exhaust_duct: 
 
 def create_token(*, actor: Membership, now: datetime, name: str) -> tuple[ApiToken, str]:
     """Create a key for the API with the actor's rights; return the row and the key, which is shown once."""
+    require_writer(actor)
     if not name.strip():
         raise InvalidInputError.of("name", "Name the token after the program that will use it.")
     key = "glt_" + secrets.token_urlsafe(32)

@@ -10,7 +10,8 @@ os.environ["GRAMLEDGER_DATA"] = _folder
 from compliance.settings import *  # noqa: E402, F403  (settings are read after the folder is set)
 from compliance.settings import DATABASES, STORAGES  # noqa: E402
 
-DATABASES["default"]["TEST"] = {"NAME": str(Path(_folder) / "test.sqlite3")} if "sqlite" in str(DATABASES["default"]["ENGINE"]) else {}
+if "sqlite" in str(DATABASES["default"]["ENGINE"]):
+    DATABASES["default"]["TEST"] = {"NAME": str(Path(_folder) / "test.sqlite3")}  # a file: tests use threads
 PASSWORD_HASHERS = ["django.contrib.auth.hashers.MD5PasswordHasher"]
 STORAGES["staticfiles"] = {"BACKEND": "django.contrib.staticfiles.storage.StaticFilesStorage"}
 AXES_ENABLED = False

@@ -1,0 +1,177 @@
+"""The bytes of an entry: one spelling for one meaning, so that a hash proves it.
+
+UTF-8, NFC, sorted keys, no spaces, no floats (decimals travel as strings), no control characters.
+"""
+
+import dataclasses
+import hashlib
+import json
+import types
+import typing
+import unicodedata
+from dataclasses import dataclass
+from datetime import UTC, datetime
+from functools import cache
+from typing import Any, TypeVar
+from uuid import UUID
+
+from chemicals.books.clearance import Clearance
+
+FORMAT = 1
+GENESIS = bytes(32)
+"""What the first entry of a workshop takes as the hash before it."""
+
+T = TypeVar("T")
+
+
+class CanonicalError(ValueError):
+    """A value cannot be written canonically, or bytes do not have the expected shape."""
+
+
+@dataclass(frozen=True)
+class Body:
+    """Everything that the chain protects. ``attachments`` are SHA-256 in hex, sorted."""
+
+    format: int
+    workshop: UUID
+    sequence: int
+    entry: UUID
+    kind: str
+    kind_version: int
+    occurred_at: datetime
+    precision: str
+    recorded_at: datetime
+    member: UUID
+    clearance: Clearance
+    payload: dict[str, Any]
+    attachments: tuple[str, ...] = ()
+
+
+def dump(value: Any) -> bytes:
+    """Return the canonical bytes of a plain value (dict, list, str, int, bool, None)."""
+    return json.dumps(
+        _plain(value), ensure_ascii=False, allow_nan=False, sort_keys=True, separators=(",", ":")
+    ).encode()
+
+
+def load(data: bytes) -> Any:
+    """Return the plain value behind canonical bytes; floats and odd spellings are refused."""
+    value = json.loads(data, parse_float=_refuse_float, parse_constant=_refuse_float)
+    if dump(value) != data:
+        raise CanonicalError("These bytes are not in canonical form.")
+    return value
+
+
+def encode_body(body: Body) -> bytes:
+    """Return the canonical bytes of an entry."""
+    return dump(to_plain(body))
+
+
+def decode_body(data: bytes) -> Body:
+    """Return the entry behind its canonical bytes."""
+    return from_plain(Body, load(data))
+
+
+def chain_hash(previous: bytes, body: bytes) -> bytes:
+    """Return SHA-256(0x01 | previous hash | body): 32 bytes."""
+    return hashlib.sha256(b"\x01" + previous + body).digest()
+
+
+def to_plain(value: Any) -> Any:
+    """Turn dataclasses, tuples, UUIDs and times into plain values."""
+    if dataclasses.is_dataclass(value) and not isinstance(value, type):
+        return {f.name: to_plain(getattr(value, f.name)) for f in dataclasses.fields(value)}
+    if isinstance(value, UUID):
+        return str(value)
+    if isinstance(value, datetime):
+        return _format_time(value)
+    if isinstance(value, dict):
+        return {key: to_plain(item) for key, item in value.items()}
+    if isinstance(value, list | tuple):
+        return [to_plain(item) for item in value]
+    return value
+
+
+def from_plain(kind: type[T], value: Any) -> T:
+    """Build a value of the type from plain values; a missing, surplus or wrong field is refused by name."""
+    return typing.cast("T", _build(kind, value, kind.__name__))
+
+
+def _build(hint: Any, value: Any, where: str) -> Any:
+    origin, args = typing.get_origin(hint), typing.get_args(hint)
+    if origin is typing.Annotated:
+        return _build(args[0], value, where)
+    if origin in (types.UnionType, typing.Union):
+        return None if value is None else _build(next(a for a in args if a is not type(None)), value, where)
+    if origin is tuple:
+        _expect(value, list, where)
+        return tuple(_build(args[0], item, f"{where}[{i}]") for i, item in enumerate(value))
+    if origin is dict:
+        _expect(value, dict, where)
+        return {key: _build(args[1], item, f"{where}.{key}") for key, item in value.items()}
+    if dataclasses.is_dataclass(hint):
+        return _build_dataclass(hint, value, where)
+    return _build_scalar(hint, value, where)
+
+
+def _build_dataclass(hint: Any, value: Any, where: str) -> Any:
+    _expect(value, dict, where)
+    hints = type_hints(hint)
+    names = {f.name for f in dataclasses.fields(hint)}
+    if names != set(value):
+        raise CanonicalError(f"{where}: missing {sorted(names - set(value))}, surplus {sorted(set(value) - names)}")
+    return hint(**{name: _build(hints[name], value[name], f"{where}.{name}") for name in names})
+
+
+def _build_scalar(hint: Any, value: Any, where: str) -> Any:
+    if hint is Any:
+        return value
+    if hint is UUID:
+        _expect(value, str, where)
+        return UUID(value)
+    if hint is datetime:
+        _expect(value, str, where)
+        return datetime.strptime(value, "%Y-%m-%dT%H:%M:%S.%fZ").replace(tzinfo=UTC)
+    _expect(value, hint, where)
+    return value
+
+
+def _expect(value: Any, kind: Any, where: str) -> None:
+    if type(value) is not kind:  # bool is an int to isinstance, and must not pass as one
+        raise CanonicalError(f"{where}: {kind.__name__} expected, {type(value).__name__} found")
+
+
+@cache
+def type_hints(kind: type) -> dict[str, Any]:
+    """Return the resolved type hints of a dataclass, with their annotations."""
+    return typing.get_type_hints(kind, include_extras=True)
+
+
+def _plain(value: Any) -> Any:
+    if isinstance(value, str):
+        return check_text(value)
+    if isinstance(value, dict):
+        return {check_text(key): _plain(item) for key, item in value.items()}
+    if isinstance(value, list):
+        return [_plain(item) for item in value]
+    if value is None or isinstance(value, bool | int):
+        return value
+    raise CanonicalError(f"{type(value).__name__} has no canonical form; write decimals as strings.")
+
+
+def check_text(text: str) -> str:
+    """Return the text in NFC; refuse control characters other than line breaks."""
+    for character in text:
+        if unicodedata.category(character) in ("Cc", "Cs") and character != "\n":
+            raise CanonicalError(f"The control character U+{ord(character):04X} cannot be recorded. Remove it.")
+    return unicodedata.normalize("NFC", text)
+
+
+def _format_time(value: datetime) -> str:
+    if value.tzinfo is None:
+        raise CanonicalError("A time without a zone cannot be recorded.")
+    return value.astimezone(UTC).strftime("%Y-%m-%dT%H:%M:%S.%fZ")
+
+
+def _refuse_float(text: str) -> Any:
+    raise CanonicalError(f"{text} is a float; decimals travel as strings.")

@@ -1,0 +1,77 @@
+"""The projection: what a sequence of entries says about every vessel. Pure, deterministic, integers and Decimal only.
+
+Fold order is (``occurred_at``, ``sequence``). Cancelled entries fold as if they had not been.
+"""
+
+from collections.abc import Callable, Iterable, Mapping
+from dataclasses import dataclass
+from datetime import datetime
+from typing import Any
+from uuid import UUID
+
+from chemicals.books import events
+from chemicals.books.fold import analysis, making, opening, run, waste
+from chemicals.books.fold.state import Finding, Folding, State, Transfer
+
+VERSION = 1
+"""Version of the projection; a change of meaning raises it."""
+
+FOLDS: Mapping[type[events.Event], Callable[[Folding, Any], None]] = {
+    events.Opening: opening.fold_opening,
+    events.LevelReading: opening.fold_level_reading,
+    events.Receipt: making.fold_receipt,
+    events.MakeUp: making.fold_make_up,
+    events.TopUp: making.fold_top_up,
+    events.Move: making.fold_move,
+    events.Run: run.fold_run,
+    events.Acceptance: analysis.fold_acceptance,
+    events.DrumOff: waste.fold_drum_off,
+    events.HandOver: waste.fold_hand_over,
+}
+"""Kinds that are not listed (analysis, cancellation, paper) post nothing."""
+
+
+@dataclass(frozen=True)
+class Entry:
+    """An entry as the fold needs it."""
+
+    uuid: UUID
+    occurred_at: datetime
+    sequence: int
+    event: events.Event
+
+    @property
+    def order(self) -> tuple[datetime, int]:
+        """Return the place in the fold: when it happened, then when it was recorded."""
+        return self.occurred_at, self.sequence
+
+
+@dataclass(frozen=True)
+class Folded:
+    """What followed from one entry."""
+
+    transfers: tuple[Transfer, ...]
+    findings: tuple[Finding, ...]
+
+
+def fold_event(state: State, event: events.Event) -> Folded:
+    """Apply one event to the state (in place) and return what followed from it."""
+    fold = FOLDS.get(type(event))
+    if fold is None:
+        return Folded((), ())
+    folding = Folding(state)
+    fold(folding, event)
+    return Folded(tuple(folding.transfers), tuple(folding.findings))
+
+
+def rebuild(entries: Iterable[Entry]) -> tuple[State, dict[UUID, Folded]]:
+    """Fold all entries from the beginning; return the final state and what followed from each."""
+    everything = list(entries)
+    cancelled = {entry.event.entry for entry in everything if isinstance(entry.event, events.Cancellation)}
+    state = State()
+    followed = {
+        entry.uuid: fold_event(state, entry.event)
+        for entry in sorted(everything, key=lambda entry: entry.order)
+        if entry.uuid not in cancelled
+    }
+    return state, followed

@@ -1,0 +1,15 @@
+"""Waste: into the container, and with the container to a receiver."""
+
+from chemicals.books.events import OBSERVED, RECEIVER, DrumOff, HandOver
+from chemicals.books.fold.making import fold_move
+from chemicals.books.fold.state import Folding
+
+
+def fold_drum_off(folding: Folding, event: DrumOff) -> None:
+    """Vessel -> waste container: a part in proportion, or all of it."""
+    fold_move(folding, event)
+
+
+def fold_hand_over(folding: Folding, event: HandOver) -> None:
+    """Waste container -> receiver: everything, and the container remembers nothing."""
+    folding.pour_all(event.container, RECEIVER, OBSERVED)
