@@ -8,7 +8,6 @@ version with a pure upcaster.
 Ends of a movement are vessel identifiers (text) or one of BOUNDARIES.
 """
 
-import dataclasses
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 from datetime import datetime
@@ -91,6 +90,10 @@ class Event:
     def vessels(self) -> tuple[str, ...]:
         """Return every vessel whose content this event may change."""
         return ()
+
+    def about(self) -> UUID | None:
+        """Return the entry that this event speaks of, if any."""
+        return None
 
 
 @dataclass(frozen=True)
@@ -281,6 +284,9 @@ class Acceptance(Event):
     def vessels(self) -> tuple[str, ...]:
         return (self.vessel,)
 
+    def about(self) -> UUID | None:
+        return self.analysis
+
 
 @dataclass(frozen=True)
 class HandOver(Event):
@@ -302,6 +308,9 @@ class Cancellation(Event):
     KIND = "cancellation"
     entry: UUID
     reason: str
+
+    def about(self) -> UUID | None:
+        return self.entry
 
 
 @dataclass(frozen=True)
@@ -351,8 +360,3 @@ def decode(
 
 def _is_used(hint: Any) -> bool:
     return USED in getattr(hint, "__metadata__", ())
-
-
-def field_names(event: type[Event]) -> tuple[str, ...]:
-    """Return the names of an event's fields, in order."""
-    return tuple(f.name for f in dataclasses.fields(event))  # type: ignore[arg-type]

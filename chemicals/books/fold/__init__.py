@@ -3,7 +3,7 @@
 Fold order is (``occurred_at``, ``sequence``). Cancelled entries fold as if they had not been.
 """
 
-from collections.abc import Callable, Iterable, Mapping
+from collections.abc import Callable, Iterable, Iterator, Mapping
 from dataclasses import dataclass
 from datetime import datetime
 from typing import Any
@@ -11,7 +11,7 @@ from uuid import UUID
 
 from chemicals.books import events
 from chemicals.books.fold import analysis, making, opening, run, waste
-from chemicals.books.fold.state import Finding, Folding, State, Transfer
+from chemicals.books.fold.state import EVERY, Finding, Folding, Holding, State, Transfer
 
 VERSION = 1
 """Version of the projection; a change of meaning raises it."""
@@ -52,16 +52,27 @@ class Folded:
 
     transfers: tuple[Transfer, ...]
     findings: tuple[Finding, ...]
+    contents: tuple[tuple[str, str, Holding], ...]
+    """(vessel, component, holding after the entry) for all that changed; component EVERY: is the list complete?"""
 
 
 def fold_event(state: State, event: events.Event) -> Folded:
     """Apply one event to the state (in place) and return what followed from it."""
     fold = FOLDS.get(type(event))
     if fold is None:
-        return Folded((), ())
+        return Folded((), (), ())
     folding = Folding(state)
+    state.touched.clear()
     fold(folding, event)
-    return Folded(tuple(folding.transfers), tuple(folding.findings))
+    return Folded(tuple(folding.transfers), tuple(folding.findings), tuple(_contents(state)))
+
+
+def _contents(state: State) -> Iterator[tuple[str, str, Holding]]:
+    for vessel, component in sorted(state.touched):
+        if component == EVERY:
+            yield vessel, EVERY, Holding(None if state.vessel(vessel).incomplete else 0)
+        else:
+            yield vessel, component, state.holding(vessel, component)
 
 
 def rebuild(entries: Iterable[Entry]) -> tuple[State, dict[UUID, Folded]]:

@@ -20,7 +20,7 @@ from chemicals.books.fold.state import WAS_UNKNOWN, Folding, Holding, Vessel, ra
 
 def fold_opening(folding: Folding, event: Opening) -> None:
     """``opening`` -> vessel. What is not listed is absent if the list is complete, else unknown."""
-    folding.state.vessels[event.vessel] = Vessel()
+    folding.state.put_vessel(event.vessel, Vessel())
     listed = {held.component: held.amount for held in event.held}
     if event.volume is not None:
         listed[VOLUME] = event.volume
@@ -34,13 +34,13 @@ def fold_opening(folding: Folding, event: Opening) -> None:
         if event.complete:
             folding.set_content(event.vessel, component, 0, 0, OPENING, OBSERVED)
         else:
-            folding.state.holdings[event.vessel, component] = Holding(None)
-    folding.state.vessels[event.vessel] = Vessel(not event.complete, frozenset(event.poured))
+            folding.state.put(event.vessel, component, Holding(None))
+    folding.state.put_vessel(event.vessel, Vessel(not event.complete, frozenset(event.poured)))
 
 
 def _weigh_by_density(folding: Folding, vessel: str, volume: Measured, density: Figure | None) -> None:
     if density is None:
-        folding.state.holdings[vessel, GROSS_MASS] = Holding(None)
+        folding.state.put(vessel, GROSS_MASS, Holding(None))
         return
     mass, sd = volume.base * density.base // 10**6, volume.base * density.sd // 10**6
     folding.set_content(vessel, GROSS_MASS, mass, sd, OPENING, ASSUMED)

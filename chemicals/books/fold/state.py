@@ -36,6 +36,18 @@ class State:
 
     holdings: dict[tuple[str, str], Holding] = field(default_factory=dict)
     vessels: dict[str, Vessel] = field(default_factory=dict)
+    touched: set[tuple[str, str]] = field(default_factory=set)
+    """(vessel, component) of every holding written, EVERY for the vessel itself; the caller clears it."""
+
+    def put(self, vessel: str, component: str, holding: Holding) -> None:
+        """Write a holding."""
+        self.holdings[vessel, component] = holding
+        self.touched.add((vessel, component))
+
+    def put_vessel(self, name: str, vessel: Vessel) -> None:
+        """Write what is known of a vessel as a whole."""
+        self.vessels[name] = vessel
+        self.touched.add((name, EVERY))
 
     def vessel(self, name: str) -> Vessel:
         """Return what is known of a vessel; an unseen one is empty."""
@@ -55,7 +67,7 @@ class State:
 
 @dataclass(frozen=True)
 class Transfer:
-    """A movement of a component between two ends: two postings that sum to zero."""
+    """A movement of a component between two ends: two postings that sum to zero. The amount is above zero."""
 
     component: str
     source: str
@@ -163,8 +175,8 @@ class Folding:
             else:
                 self._post(component, source, target, held.amount, held.variance, basis)
                 self._receive(target, component, held.amount, held.variance)
-            self.state.holdings[source, component] = Holding(0)
-        self.state.vessels[source] = Vessel()
+            self.state.put(source, component, Holding(0))
+        self.state.put_vessel(source, Vessel())
 
     def water(self, source: str, target: str, volume: int, sd: int, density: int, basis: str) -> None:
         """Move plain water (from the supply, or to air) with its mass. density in ug/mL."""
@@ -174,7 +186,7 @@ class Folding:
     def pour_into(self, vessel: str, keys: Iterable[str], *, complete: bool = True) -> None:
         """Remember what was poured in, and whether its list was complete."""
         before = self.state.vessel(vessel)
-        self.state.vessels[vessel] = Vessel(before.incomplete or not complete, before.poured | frozenset(keys))
+        self.state.put_vessel(vessel, Vessel(before.incomplete or not complete, before.poured | frozenset(keys)))
 
     def note(self, code: str, component: str, source: str, target: str) -> None:
         """Keep a finding."""
@@ -237,8 +249,10 @@ class Folding:
     def _put(self, vessel: str, component: str, holding: Holding) -> None:
         if holding.amount is not None and holding.amount < 0:
             self.note(NEGATIVE_CONTENT, component, vessel, vessel)
-        self.state.holdings[vessel, component] = holding
+        self.state.put(vessel, component, holding)
 
     def _post(self, component: str, source: str, target: str, amount: int, variance: int, basis: str) -> None:
+        if amount < 0:
+            source, target, amount = target, source, -amount
         if amount:
             self.transfers.append(Transfer(component, source, target, amount, root(variance), basis))
