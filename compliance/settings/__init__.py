@@ -11,7 +11,10 @@ BASE_DIR = Path(__file__).resolve().parents[2]
 DATA = Path(os.environ.get("GRAMLEDGER_DATA", BASE_DIR / ".demo")).resolve()
 """The data folder: database, attachments, secret key. One folder is one installation."""
 
-PUBLIC_URL = os.environ.get("PUBLIC_URL", "http://127.0.0.1:8000").rstrip("/")
+BIND = os.environ.get("BIND") or "127.0.0.1:8000"
+"""Address and port to listen at; 0.0.0.0:8000 serves the local network."""
+
+PUBLIC_URL = (os.environ.get("PUBLIC_URL") or f"http://{BIND}").rstrip("/")
 """What codes on labels contain. Hosts, CSRF origins and proxy headers derive from it."""
 
 
