@@ -65,7 +65,7 @@ def _covered() -> frozenset[str]:
 
 
 def check_glyphs(data: object) -> None:
-    """Raise `MissingGlyphError` naming each character in `data` that cannot be drawn, with its field; "\\n" breaks a line."""
+    """Raise `MissingGlyphError` naming each character that cannot be drawn, with its field; line breaks are allowed."""
     problems = [
         Problem(path, f"the paper's font cannot draw {_name(char)}: write it in another way")
         for path, text in _strings(data, "")

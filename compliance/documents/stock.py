@@ -53,7 +53,7 @@ STOCKS: tuple[Stock, ...] = (
 
 
 def find_stock(name: str | None, start: int, page: PaperSize) -> Stock:
-    """The stock of that name, or the first of the page size; `PaperDataError` if unknown, of another page, or too few."""
+    """The stock of that name, or the first of the page size; `PaperDataError` if there is none or no such position."""
     fitting = [stock for stock in STOCKS if stock.page == page]
     chosen = next((stock for stock in fitting if name in (None, stock.name)), None)
     if chosen is None:
