@@ -1,8 +1,8 @@
 """The guard of a supervisor: a process of its own that outlives it by a moment.
 
 It reads process group numbers from its standard input: "+123" starts to watch a group, "-123" ends it. When the input
-ends, the supervisor is gone, whatever killed it: the guard then ends every group it watches, first asking, then by force.
-Run by its path, with the standard library only, so that it starts in milliseconds. Argument: the grace in seconds.
+ends, the supervisor is gone, whatever killed it: the guard then ends every group it watches, asking first, then
+by force. Run by its path, with the standard library only: it starts in milliseconds. Argument: the grace in seconds.
 """
 
 import os
