@@ -114,8 +114,17 @@ def _tidy(text: str) -> str:
     return " ".join(unicodedata.normalize("NFKC", text).replace("−", "-").replace("’", "'").split())
 
 
-def _one_part(typed: str, dimension: str, default_unit: str | None) -> tuple[Decimal, units.Unit, Decimal]:
-    example = units.DIMENSIONS[dimension].example
+def read_number(text: str, example: str = "1.5") -> Decimal:
+    """A bare number, read as strictly as the number of an amount. Raises QuantityError."""
+    typed = _tidy(text)
+    number, rest = _number(typed, example)
+    if rest or (number and abs(number.adjusted()) > 30):
+        raise QuantityError("not_a_number", typed=typed, example=example)
+    return number
+
+
+def _number(typed: str, example: str) -> tuple[Decimal, str]:
+    """The number with which the text begins, and what follows it."""
     if _NOT_FINITE.match(typed):
         raise QuantityError("not_finite", typed=typed, example=example)
     if grouped := _GROUPED.match(typed):
@@ -123,11 +132,15 @@ def _one_part(typed: str, dimension: str, default_unit: str | None) -> tuple[Dec
     number = _PLAIN.match(typed)
     if not number or re.match(r"[0-9.,'_]", typed[number.end() :]):
         raise QuantityError("not_a_number", typed=typed, example=example)
-    word = typed[number.end() :].strip()
+    return Decimal(number[0]) or Decimal(0), typed[number.end() :].strip()  # a zero keeps no exponent
+
+
+def _one_part(typed: str, dimension: str, default_unit: str | None) -> tuple[Decimal, units.Unit, Decimal]:
+    example = units.DIMENSIONS[dimension].example
+    value, word = _number(typed, example)
     if not word and default_unit is None:
         raise QuantityError("missing_unit", typed=typed, example=example)
     unit = _unit(typed, word or default_unit or "", dimension)
-    value = Decimal(number[0]) or Decimal(0)  # a zero keeps no exponent
     return value, unit, _convert(typed, value, unit, dimension)
 
 

@@ -28,7 +28,7 @@ class Unit:
 
 @dataclass(frozen=True)
 class Dimension:
-    """What is measured, its base unit, and the units in which it is shown: (unit, from how many base units), falling."""
+    """What is measured, its base unit, and the units in which it is shown (unit, from how many base units), falling."""
 
     name: str
     noun: str
