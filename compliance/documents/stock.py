@@ -44,7 +44,7 @@ STOCKS: tuple[Stock, ...] = (
     Stock("4 per A4", "A4", 105.0, 148.5, 2, 2, 0.0, 0.0),
     Stock("2 per A4", "A4", 210.0, 148.5, 1, 2, 0.0, 0.0, safe=8.0),
     Stock("1 per A4", "A4", 210.0, 297.0, 1, 1, 0.0, 0.0, safe=10.0),
-    Stock("8 per A4", "A4", 105.0, 74.25, 2, 4, 0.0, 0.0),
+    Stock("8 per A4", "A4", 105.0, 74.25, 2, 4, 0.0, 0.0, safe=4.0),
     Stock("4 per Letter", "Letter", 107.95, 139.7, 2, 2, 0.0, 0.0),
     Stock("2 per Letter", "Letter", 215.9, 139.7, 1, 2, 0.0, 0.0, safe=8.0),
     Stock("1 per Letter", "Letter", 215.9, 279.4, 1, 1, 0.0, 0.0, safe=10.0),

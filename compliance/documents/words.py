@@ -1,0 +1,114 @@
+"""The sentences of the papers, and the few figures derived from frozen data: one place for PDF and HTML twin alike."""
+
+from collections.abc import Sequence
+from decimal import Decimal
+
+from django.utils.translation import gettext as _
+from django.utils.translation import gettext_lazy
+
+from .shapes import HazardData, ManifestContainerData, Pictogram, SignalWord
+
+_SYMBOL_NAMES = {
+    "GHS01": gettext_lazy("exploding bomb"),
+    "GHS02": gettext_lazy("flame"),
+    "GHS03": gettext_lazy("flame over circle"),
+    "GHS04": gettext_lazy("gas cylinder"),
+    "GHS05": gettext_lazy("corrosion"),
+    "GHS06": gettext_lazy("skull and crossbones"),
+    "GHS07": gettext_lazy("exclamation mark"),
+    "GHS08": gettext_lazy("health hazard"),
+    "GHS09": gettext_lazy("environment"),
+}
+_SIGNAL_WORDS = {"Danger": gettext_lazy("Danger"), "Warning": gettext_lazy("Warning"), "": ""}
+
+
+def symbol_name(code: Pictogram) -> str:
+    """What a pictogram shows, by the standard's name."""
+    return str(_SYMBOL_NAMES[code])
+
+
+def signal_word(word: SignalWord) -> str:
+    """The signal word in the reader's language, empty if there is none."""
+    return str(_SIGNAL_WORDS[word])
+
+
+def known(text: str | None) -> str:
+    """The text, or "unknown": never an empty cell or a 0."""
+    return text or _("unknown")
+
+
+def has_hazards(hazards: HazardData) -> bool:
+    """Whether anything at all was entered."""
+    return bool(hazards["signal_word"] or hazards["pictograms"] or hazards["statements"])
+
+
+def label_title(hazards: HazardData) -> str:
+    """The headline of a waste label: without entered hazards it does not claim that there are none."""
+    return _("Hazardous waste") if has_hazards(hazards) else _("Waste, hazards not entered")
+
+
+def no_hazards() -> str:
+    """Said where hazards are missing."""
+    return _("No hazards have been entered. That does not mean there are none: ask before handling.")
+
+
+def no_contents() -> str:
+    """Said where contents are missing."""
+    return _("Contents unknown: treat as if they could react with anything.")
+
+
+def nothing_to_avoid() -> str:
+    """Said where nothing was named that must not meet."""
+    return _("nothing named: ask before adding or mixing anything")
+
+
+def no_consignment_note() -> str:
+    """What a manifest is not; stands on its head."""
+    return _(
+        "This manifest is the workshop's own record of the load. It is no legal consignment note: where the law asks "
+        "for one, that note must go along as well."
+    )
+
+
+def ask_locally() -> str:
+    """Who decides; the last caution of every paper."""
+    return _("Local rules and licensed practice decide how this waste is stored, carried and treated.")
+
+
+def uncertainty(text: str | None) -> str:
+    """A standard uncertainty, or that none was stated."""
+    return f"± {text}" if text else _("not stated")
+
+
+def gross_kg(text: str | None) -> str:
+    """Kilograms of one container."""
+    return f"{text} kg" if text else _("unknown")
+
+
+def total_gross(containers: Sequence[ManifestContainerData]) -> str:
+    """Kilograms of the whole load; with an unknown container in it, only what is at least there."""
+    weights = [each["gross_kg"] for each in containers]
+    total = sum((Decimal(weight) for weight in weights if weight), Decimal(0))
+    unknown = sum(not weight for weight in weights)
+    if not unknown:
+        return f"{total} kg"
+    return _("unknown: %(total)s kg and %(count)d not weighed") % {"total": total, "count": unknown}
+
+
+def never_together(containers: Sequence[ManifestContainerData]) -> list[tuple[str, list[str]]]:
+    """Each thing that must not be met, with the codes of the containers that must not meet it."""
+    found: dict[str, list[str]] = {}
+    for container in containers:
+        for other in container["must_not_meet"]:
+            found.setdefault(other, []).append(container["code"])
+    return list(found.items())
+
+
+def grouped(digest: str) -> str:
+    """A hash in groups of four, to be read aloud and compared."""
+    return " ".join(digest[start : start + 4] for start in range(0, len(digest), 4))
+
+
+def witness(sequence: int, digest: str) -> str:
+    """What the code beside the chain head contains: the entry's number and the hash."""
+    return f"{sequence} {digest}"
