@@ -141,9 +141,13 @@ def _expect(value: Any, kind: Any, where: str) -> None:
         raise CanonicalError(f"{where}: {kind.__name__} expected, {type(value).__name__} found")
 
 
-@cache
 def type_hints(kind: type) -> dict[str, Any]:
     """Return the resolved type hints of a dataclass, with their annotations."""
+    return _cached_hints(kind)
+
+
+@cache
+def _cached_hints(kind: Any) -> dict[str, Any]:
     return typing.get_type_hints(kind, include_extras=True)
 
 

@@ -1,0 +1,160 @@
+"""Writes to the journal: append an entry, add an attachment. Nothing here changes or removes."""
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+from datetime import UTC, datetime, timedelta
+from uuid import UUID
+
+from django.db import transaction
+from django_scopes import scope, scopes_disabled
+
+from chemicals.books import canonical, events
+from chemicals.books.clearance import VERDICTS, Clearance
+from chemicals.books.occurred import Occurred
+from chemicals.journal import files
+from chemicals.journal.models import Attachment, Entry, Head
+from chemicals.workshop.errors import ConflictError, InvalidInputError
+from chemicals.workshop.models import Membership
+from chemicals.workshop.permissions import require_writer
+
+CLOCK_TOLERANCE = timedelta(minutes=5)
+"""How far ahead a device's clock may run before its time is refused as lying in the future."""
+
+MAGIC = {b"%PDF-": "application/pdf", b"\x89PNG\r\n\x1a\n": "image/png", b"\xff\xd8\xff": "image/jpeg"}
+"""First bytes of the kinds of file that may be attached."""
+
+
+@dataclass(frozen=True)
+class Appended:
+    """An entry, and whether this call wrote it (False: it was there already under the same key)."""
+
+    entry: Entry
+    is_new: bool
+
+
+def append(
+    *,
+    actor: Membership,
+    now: datetime,
+    key: UUID,
+    event: events.Event,
+    occurred: Occurred | None,
+    clearance: Clearance,
+    attachments: Sequence[str] = (),
+) -> Appended:
+    """Append an entry at the end of the workshop's chain; call it inside the transaction of the whole record.
+
+    ``key`` comes from the form or the Idempotency-Key: the same key and content returns the first entry, another
+    content raises ConflictError. ``occurred`` None means now.
+    """
+    require_writer(actor)
+    if clearance.verdict not in VERDICTS:
+        raise ValueError(f"unknown verdict {clearance.verdict}")
+    if occurred is not None and occurred.at > now + CLOCK_TOLERANCE and occurred.precision != "day":
+        raise InvalidInputError.of("occurred_at", "This lies in the future. Write when it happened.")
+    with transaction.atomic(), scope(workshop=actor.workshop):
+        head = _lock_head(actor)
+        first = Entry.objects.filter(uuid=key).select_related("member__user").first()
+        if first is not None:
+            return Appended(_same(first, event, occurred, attachments), is_new=False)
+        _require_free_key(key)
+        _require_files(actor, attachments)
+        when = occurred or Occurred(now)
+        body = canonical.Body(
+            format=canonical.FORMAT,
+            workshop=actor.workshop.uuid,
+            sequence=head.sequence + 1,
+            entry=key,
+            kind=event.KIND,
+            kind_version=event.VERSION,
+            occurred_at=when.at.astimezone(UTC),
+            precision=when.precision,
+            recorded_at=now.astimezone(UTC),
+            member=actor.uuid,
+            clearance=clearance,
+            payload=events.encode(event),
+            attachments=tuple(sorted(attachments)),
+        )
+        return Appended(_write(actor, head, body, event), is_new=True)
+
+
+def _lock_head(actor: Membership) -> Head:
+    Head.objects.get_or_create(workshop=actor.workshop, defaults={"hash": canonical.GENESIS})
+    return Head.objects.select_for_update().get(workshop=actor.workshop)
+
+
+def _write(actor: Membership, head: Head, body: canonical.Body, event: events.Event) -> Entry:
+    data = canonical.encode_body(body)
+    previous = bytes(head.hash)
+    about = event.about()
+    entry = Entry.objects.create(
+        workshop=actor.workshop,
+        sequence=body.sequence,
+        uuid=body.entry,
+        kind=body.kind,
+        kind_version=body.kind_version,
+        occurred_at=body.occurred_at,
+        precision=body.precision,
+        recorded_at=body.recorded_at,
+        member=actor,
+        verdict=body.clearance.verdict,
+        about=None if about is None else Entry.objects.get(uuid=about),
+        body=data,
+        previous_hash=previous,
+        hash=canonical.chain_hash(previous, data),
+    )
+    head.sequence, head.hash = entry.sequence, entry.hash
+    head.save(update_fields=["sequence", "hash"])
+    return entry
+
+
+def _same(first: Entry, event: events.Event, occurred: Occurred | None, attachments: Sequence[str]) -> Entry:
+    """Return the first entry if the new one says the same was observed. Figures used may have changed meanwhile."""
+    body = canonical.decode_body(bytes(first.body))
+    fresh = canonical.load(canonical.dump(events.encode(event)))
+    same = (
+        (body.kind, body.kind_version) == (event.KIND, event.VERSION)
+        and body.payload["observed"] == fresh["observed"]
+        and (occurred is None or (body.occurred_at, body.precision) == (occurred.at, occurred.precision))
+        and body.attachments == tuple(sorted(attachments))
+    )
+    if not same:
+        raise ConflictError("This key was used for another record. Open a fresh form and record again.")
+    return first
+
+
+def _require_free_key(key: UUID) -> None:
+    with scopes_disabled():
+        if Entry.objects.filter(uuid=key).exists():
+            raise ConflictError("This key was used before. Open a fresh form and record again.")
+
+
+def _require_files(actor: Membership, attachments: Sequence[str]) -> None:
+    known = set(Attachment.objects.filter(sha256__in=attachments).values_list("sha256", flat=True))
+    missing = sorted(set(attachments) - known)
+    if missing:
+        raise InvalidInputError.of(
+            "attachments", f"No such file in this workshop: {', '.join(missing)}. Upload it first."
+        )
+
+
+def add_attachment(*, actor: Membership, now: datetime, name: str, data: bytes) -> Attachment:
+    """Keep a PDF, PNG or JPEG file (told by its content); the same bytes are kept once."""
+    require_writer(actor)
+    media_type = next((kind for magic, kind in MAGIC.items() if data.startswith(magic)), None)
+    if media_type is None:
+        raise InvalidInputError.of("file", "Only PDF, PNG and JPEG files are kept. Choose one of these.")
+    sha256 = files.keep(data)
+    with scope(workshop=actor.workshop):
+        attachment, _ = Attachment.objects.get_or_create(
+            workshop=actor.workshop,
+            sha256=sha256,
+            defaults={
+                "name": canonical.check_text(name)[:200] or "file",
+                "media_type": media_type,
+                "size": len(data),
+                "added_at": now,
+                "added_by": actor,
+            },
+        )
+    return attachment

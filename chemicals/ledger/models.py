@@ -1,0 +1,212 @@
+"""Every vessel, and the projection of the journal: postings, contents, holdings, findings.
+
+All but vessels and components can be rebuilt from the journal. Amounts are integers: micrograms, nanolitres.
+"""
+
+import uuid
+
+from django.db import models
+from django.utils.translation import gettext_lazy as _
+from django_scopes import ScopedManager
+
+from chemicals.books.events import ASSUMED, BOUNDARIES, COMPUTED, OBSERVED
+from chemicals.journal.models import Entry
+from chemicals.ledger.fields import ExactIntegerField
+from chemicals.register.models import Product
+from chemicals.workshop.models import Membership, Place, Workshop
+
+LARGEST = 10**15
+"""The largest amount: a tonne of metal, or a thousand cubic metres."""
+
+
+class VesselKind(models.TextChoices):
+    """What a vessel is."""
+
+    STOCK = "stock", _("stock container")
+    BATH = "bath", _("bath")
+    RINSE = "rinse", _("rinse")
+    ANODE = "anode", _("anode set")
+    WASTE = "waste", _("waste container")
+
+
+class Vessel(models.Model):
+    """Anything that holds matter. ``code`` is short, typed or scanned, and unique everywhere."""
+
+    uuid = models.UUIDField(default=uuid.uuid4, unique=True, editable=False)
+    workshop = models.ForeignKey(Workshop, on_delete=models.PROTECT, related_name="vessels")
+    code = models.CharField(_("code"), max_length=8, unique=True)
+    kind = models.CharField(_("kind"), max_length=8, choices=VesselKind.choices)
+    name = models.CharField(_("name"), max_length=80)
+    place = models.ForeignKey(Place, null=True, blank=True, on_delete=models.PROTECT, related_name="vessels")
+    product = models.ForeignKey(Product, null=True, blank=True, on_delete=models.PROTECT, related_name="vessels")
+    capacity = models.BigIntegerField(_("capacity"), null=True, blank=True)
+    created_at = models.DateTimeField()
+    created_by = models.ForeignKey(Membership, on_delete=models.PROTECT, related_name="+")
+
+    objects: "models.Manager[Vessel]" = ScopedManager(workshop="workshop")
+
+    class Meta:
+        constraints = [
+            models.UniqueConstraint(fields=["workshop", "name"], name="vessel_name_once"),
+            models.CheckConstraint(condition=models.Q(kind__in=VesselKind.values), name="vessel_kind"),
+        ]
+
+    def __str__(self) -> str:
+        return self.name
+
+
+class ComponentKind(models.TextChoices):
+    """What is balanced. ``everything`` stands for all components that an incomplete list does not name."""
+
+    METAL = "metal", _("metal")
+    VOLUME = "volume", _("volume")
+    GROSS_MASS = "gross mass", _("gross mass")
+    EVERYTHING = "everything", _("everything else")
+
+
+class Component(models.Model):
+    """What is balanced in a workshop; the code is the element's symbol, ``volume`` or ``gross mass``."""
+
+    workshop = models.ForeignKey(Workshop, on_delete=models.PROTECT, related_name="components")
+    code = models.CharField(max_length=16, blank=True)
+    kind = models.CharField(max_length=12, choices=ComponentKind.choices)
+
+    objects: "models.Manager[Component]" = ScopedManager(workshop="workshop")
+
+    class Meta:
+        constraints = [
+            models.UniqueConstraint(fields=["workshop", "code"], name="component_code_once"),
+            models.CheckConstraint(condition=models.Q(kind__in=ComponentKind.values), name="component_kind"),
+        ]
+
+    def __str__(self) -> str:
+        return self.code
+
+
+class Basis(models.TextChoices):
+    """Where a figure comes from."""
+
+    OBSERVED = OBSERVED, _("observed")
+    COMPUTED = COMPUTED, _("computed")
+    ASSUMED = ASSUMED, _("assumed")
+
+
+class Posting(models.Model):
+    """The signed amount of one component on one vessel or boundary that follows from an entry.
+
+    Two postings of one ``transfer`` sum to zero.
+    """
+
+    workshop = models.ForeignKey(Workshop, on_delete=models.PROTECT, related_name="postings")
+    entry = models.ForeignKey(Entry, on_delete=models.PROTECT, related_name="postings")
+    transfer = models.PositiveSmallIntegerField()
+    component = models.ForeignKey(Component, on_delete=models.PROTECT, related_name="postings")
+    vessel = models.ForeignKey(Vessel, null=True, on_delete=models.PROTECT, related_name="postings")
+    boundary = models.CharField(max_length=12, blank=True)
+    amount = models.BigIntegerField()
+    sd = models.BigIntegerField()
+    basis = models.CharField(max_length=8, choices=Basis.choices)
+    occurred_at = models.DateTimeField()
+
+    objects: "models.Manager[Posting]" = ScopedManager(workshop="workshop")
+
+    class Meta:
+        constraints = [
+            models.UniqueConstraint(fields=["entry", "transfer", "vessel", "boundary"], name="posting_end_once"),
+            models.CheckConstraint(
+                condition=models.Q(vessel=None, boundary__in=sorted(BOUNDARIES))
+                | models.Q(vessel__isnull=False, boundary=""),
+                name="posting_vessel_or_boundary",
+            ),
+            models.CheckConstraint(
+                condition=models.Q(amount__gte=-LARGEST, amount__lte=LARGEST), name="posting_amount_range"
+            ),
+            models.CheckConstraint(condition=models.Q(sd__gte=0), name="posting_sd_not_negative"),
+            models.CheckConstraint(condition=models.Q(basis__in=Basis.values), name="posting_basis"),
+        ]
+        indexes = [
+            models.Index(fields=["vessel", "component", "occurred_at", "amount"], name="posting_balance"),
+            models.Index(fields=["workshop", "component", "occurred_at"], name="posting_by_component"),
+        ]
+
+    def __str__(self) -> str:
+        return f"{self.amount} {self.component} {self.vessel or self.boundary}"
+
+
+class Holding(models.Model):
+    """What a vessel holds of a component now: the fold's state. ``amount`` None is unknown, not zero."""
+
+    workshop = models.ForeignKey(Workshop, on_delete=models.PROTECT, related_name="holdings")
+    vessel = models.ForeignKey(Vessel, on_delete=models.PROTECT, related_name="holdings")
+    component = models.ForeignKey(Component, on_delete=models.PROTECT, related_name="holdings")
+    amount = models.BigIntegerField(null=True)
+    variance = ExactIntegerField()
+
+    objects: "models.Manager[Holding]" = ScopedManager(workshop="workshop")
+
+    class Meta:
+        constraints = [models.UniqueConstraint(fields=["vessel", "component"], name="holding_once")]
+
+    def __str__(self) -> str:
+        return f"{self.vessel}: {self.amount} {self.component}"
+
+
+class Memory(models.Model):
+    """What the fold remembers of a vessel as a whole: is its list incomplete, what was poured in since last empty."""
+
+    workshop = models.ForeignKey(Workshop, on_delete=models.PROTECT, related_name="memories")
+    vessel = models.OneToOneField(Vessel, on_delete=models.PROTECT, related_name="memory")
+    incomplete = models.BooleanField(default=False)
+    poured = models.JSONField(default=list)
+
+    objects: "models.Manager[Memory]" = ScopedManager(workshop="workshop")
+
+    def __str__(self) -> str:
+        return str(self.vessel)
+
+
+class Content(models.Model):
+    """What a vessel held of a component just after an entry: the running content with its variance."""
+
+    workshop = models.ForeignKey(Workshop, on_delete=models.PROTECT, related_name="contents")
+    entry = models.ForeignKey(Entry, on_delete=models.PROTECT, related_name="contents")
+    vessel = models.ForeignKey(Vessel, on_delete=models.PROTECT, related_name="contents")
+    component = models.ForeignKey(Component, on_delete=models.PROTECT, related_name="contents")
+    occurred_at = models.DateTimeField()
+    sequence = models.BigIntegerField()
+    amount = models.BigIntegerField(null=True)
+    variance = ExactIntegerField()
+
+    objects: "models.Manager[Content]" = ScopedManager(workshop="workshop")
+
+    class Meta:
+        constraints = [models.UniqueConstraint(fields=["entry", "vessel", "component"], name="content_once")]
+        indexes = [
+            models.Index(fields=["vessel", "component", "occurred_at", "sequence"], name="content_running"),
+            models.Index(fields=["workshop", "occurred_at"], condition=models.Q(amount=None), name="content_unknown"),
+        ]
+
+    def __str__(self) -> str:
+        return f"{self.vessel}: {self.amount} {self.component}"
+
+
+class Finding(models.Model):
+    """What a person should know about an entry: a code and the ends it concerns (vessel identifiers or boundaries)."""
+
+    workshop = models.ForeignKey(Workshop, on_delete=models.PROTECT, related_name="findings")
+    entry = models.ForeignKey(Entry, on_delete=models.PROTECT, related_name="findings")
+    code = models.CharField(max_length=24)
+    component = models.CharField(max_length=16, blank=True)
+    source = models.CharField(max_length=36, blank=True)
+    target = models.CharField(max_length=36, blank=True)
+    occurred_at = models.DateTimeField()
+
+    objects: "models.Manager[Finding]" = ScopedManager(workshop="workshop")
+
+    class Meta:
+        constraints = [
+            models.UniqueConstraint(fields=["entry", "code", "component", "source", "target"], name="finding_once")
+        ]
+
+    def __str__(self) -> str:
+        return self.code

@@ -1,0 +1,107 @@
+"""Set-up of the process: baths with their figures, rack types, routes. Plain settings; matter is in the journal."""
+
+import uuid
+
+from django.core.validators import MaxValueValidator, MinValueValidator
+from django.db import models
+from django.utils.translation import gettext_lazy as _
+from django_scopes import ScopedManager
+
+from chemicals.ledger.models import Vessel
+from chemicals.workshop.models import Workshop
+
+
+class AnodeKind(models.TextChoices):
+    """What an anode does: a soluble one gives its metal to the bath, an inert one nothing."""
+
+    SOLUBLE = "soluble", _("soluble")
+    INERT = "inert", _("inert")
+
+
+class Tank(models.Model):
+    """A vessel that parts go through. A bath has a metal with its valence; a rinse has none.
+
+    ``mark`` in nanolitres, ``efficiency`` and its uncertainty in parts per million.
+    """
+
+    vessel = models.OneToOneField(Vessel, on_delete=models.PROTECT, related_name="tank")
+    mark = models.BigIntegerField(_("volume at the mark"), null=True, blank=True)
+    bath_type = models.CharField(_("bath type"), max_length=80, blank=True)
+    metal = models.CharField(_("metal"), max_length=2, blank=True)
+    valence = models.PositiveSmallIntegerField(_("valence"), null=True, blank=True)
+    efficiency = models.PositiveIntegerField(_("current efficiency"), default=1_000_000)
+    efficiency_sd = models.PositiveIntegerField(_("its uncertainty"), default=30_000)
+    anode_kind = models.CharField(_("anode"), max_length=8, choices=AnodeKind.choices, blank=True)
+    anode = models.ForeignKey(Vessel, null=True, blank=True, on_delete=models.PROTECT, related_name="+")
+
+    objects: "models.Manager[Tank]" = ScopedManager(workshop="vessel__workshop")
+
+    class Meta:
+        constraints = [
+            models.CheckConstraint(
+                condition=models.Q(metal="", valence=None) | (~models.Q(metal="") & models.Q(valence__gte=1)),
+                name="tank_metal_with_valence",
+            ),
+            models.CheckConstraint(
+                condition=~models.Q(anode_kind="soluble") | models.Q(anode__isnull=False), name="tank_soluble_anode_set"
+            ),
+            models.CheckConstraint(condition=models.Q(efficiency__gt=0), name="tank_efficiency_above_zero"),
+        ]
+
+    def __str__(self) -> str:
+        return self.vessel.name
+
+
+class RackType(models.Model):
+    """Parts on a rack: drag-out per load in nanolitres with its relative uncertainty in ppm, area in mm2."""
+
+    uuid = models.UUIDField(default=uuid.uuid4, unique=True, editable=False)
+    workshop = models.ForeignKey(Workshop, on_delete=models.PROTECT, related_name="rack_types")
+    name = models.CharField(_("name"), max_length=80)
+    area = models.BigIntegerField(_("area"), null=True, blank=True)
+    drag_out = models.BigIntegerField(_("drag-out per load"), validators=[MinValueValidator(0)])
+    drag_out_sd = models.PositiveIntegerField(
+        _("its uncertainty"), default=300_000, validators=[MaxValueValidator(2_000_000)]
+    )
+
+    objects: "models.Manager[RackType]" = ScopedManager(workshop="workshop")
+
+    class Meta:
+        constraints = [
+            models.UniqueConstraint(fields=["workshop", "name"], name="rack_type_name_once"),
+            models.CheckConstraint(condition=models.Q(drag_out__gte=0), name="rack_type_drag_out_not_negative"),
+        ]
+
+    def __str__(self) -> str:
+        return self.name
+
+
+class Route(models.Model):
+    """The tanks that a load goes through, in order; the first one plates."""
+
+    uuid = models.UUIDField(default=uuid.uuid4, unique=True, editable=False)
+    workshop = models.ForeignKey(Workshop, on_delete=models.PROTECT, related_name="routes")
+    name = models.CharField(_("name"), max_length=80)
+
+    objects: "models.Manager[Route]" = ScopedManager(workshop="workshop")
+
+    class Meta:
+        constraints = [models.UniqueConstraint(fields=["workshop", "name"], name="route_name_once")]
+
+    def __str__(self) -> str:
+        return self.name
+
+
+class RouteStep(models.Model):
+    """One tank of a route."""
+
+    route = models.ForeignKey(Route, on_delete=models.PROTECT, related_name="steps")
+    position = models.PositiveSmallIntegerField()
+    vessel = models.ForeignKey(Vessel, on_delete=models.PROTECT, related_name="+")
+
+    class Meta:
+        ordering = ["position"]
+        constraints = [models.UniqueConstraint(fields=["route", "position"], name="route_position_once")]
+
+    def __str__(self) -> str:
+        return f"{self.position} {self.vessel}"
