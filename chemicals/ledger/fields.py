@@ -1,11 +1,16 @@
 """A column for integers of any size, kept as text: variances reach the square of a bigint."""
 
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 from django.db import models
 
+if TYPE_CHECKING:
+    _Text = models.CharField[int, int]
+else:
+    _Text = models.CharField  # only the type stubs know it as generic
 
-class ExactIntegerField(models.CharField):  # type: ignore[type-arg]
+
+class ExactIntegerField(_Text):
     """An exact integer of up to 64 digits. Not for sums in SQL."""
 
     def __init__(self, *args: Any, **kwargs: Any) -> None:

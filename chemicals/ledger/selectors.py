@@ -1,0 +1,192 @@
+"""Reads of the ledger: vessels, what they hold, balances on a date."""
+
+from collections.abc import Iterator, Mapping
+from dataclasses import dataclass
+from datetime import datetime
+from uuid import UUID
+
+from django.db.models import F, Max, QuerySet, Sum
+from django_scopes import scope, scopes_disabled
+
+from chemicals.books import fold
+from chemicals.books.events import GROSS_MASS, VOLUME
+from chemicals.books.fold.state import State
+from chemicals.journal import selectors as journal
+from chemicals.journal.models import Entry
+from chemicals.ledger import projection
+from chemicals.ledger.codes import tidy_code
+from chemicals.ledger.models import Content, Finding, Holding, Memory, Posting, Vessel, VesselKind
+from chemicals.workshop.errors import NotFoundError
+from chemicals.workshop.models import Membership, Workshop
+
+
+def list_vessels_for(member: Membership, *kinds: VesselKind) -> QuerySet[Vessel]:
+    """Return the vessels of the member's workshop (of the kinds, if given), by name. One query."""
+    with scope(workshop=member.workshop):
+        vessels = Vessel.objects.select_related("place", "product").order_by("name")
+        return vessels.filter(kind__in=kinds) if kinds else vessels
+
+
+def get_vessel_for(member: Membership, uuid: UUID) -> Vessel:
+    """Return one vessel of the member's workshop."""
+    try:
+        return list_vessels_for(member).get(uuid=uuid)
+    except Vessel.DoesNotExist as error:
+        raise NotFoundError("There is no such vessel in this workshop.") from error
+
+
+def find_workshop_of_code(code: str) -> Workshop | None:
+    """Return the workshop in which a code was given out; whoever asks must be checked as its member next."""
+    with scopes_disabled():
+        vessel = Vessel.objects.filter(code=tidy_code(code)).select_related("workshop").first()
+        return None if vessel is None else vessel.workshop
+
+
+def get_vessel_by_code_for(member: Membership, code: str) -> Vessel:
+    """Return the vessel that a typed or scanned code names."""
+    try:
+        return list_vessels_for(member).get(code=tidy_code(code))
+    except Vessel.DoesNotExist as error:
+        raise NotFoundError("No vessel of this workshop has this code.") from error
+
+
+@dataclass(frozen=True)
+class Held:
+    """What a vessel holds of a component: base units, standard uncertainty; amount None is unknown."""
+
+    component: str
+    amount: int | None
+    sd: int
+
+
+def list_held(vessel: Vessel) -> list[Held]:
+    """Return what a vessel holds now: volume and gross mass first, then metals. One query."""
+    first = {VOLUME: 0, GROSS_MASS: 1}
+    with scope(workshop=vessel.workshop):
+        rows = Holding.objects.filter(vessel=vessel).values_list("component__code", "amount", "variance")
+        held = [Held(code, amount, fold.state.root(variance)) for code, amount, variance in rows]
+    return sorted(held, key=lambda row: (first.get(row.component, 2), row.component))
+
+
+def read_memory(vessel: Vessel) -> tuple[bool, frozenset[str]]:
+    """Return whether the vessel's list is incomplete, and what was poured in since it was last empty. One query."""
+    with scope(workshop=vessel.workshop):
+        memory = Memory.objects.filter(vessel=vessel).first()
+    return (False, frozenset()) if memory is None else (memory.incomplete, frozenset(memory.poured))
+
+
+def list_findings_for(member: Membership) -> QuerySet[Finding]:
+    """Return the findings of the member's workshop, newest first. One query."""
+    with scope(workshop=member.workshop):
+        return Finding.objects.select_related("entry").order_by("-occurred_at", "-pk")
+
+
+def list_postings_of(entry: Entry) -> QuerySet[Posting]:
+    """Return what followed from an entry, transfer by transfer. One query."""
+    with scope(workshop=entry.workshop):
+        postings = Posting.objects.filter(entry=entry).select_related("component", "vessel")
+        return postings.order_by("transfer", "amount")
+
+
+def get_balances_at(workshop: Workshop, at: datetime) -> dict[tuple[str, str], int | None]:
+    """Return (vessel uuid, component) -> what it held at that moment; None is unknown. Two queries, three if any is.
+
+    Amounts are sums of postings; what was unknown at the moment is looked up where there ever was an unknown.
+    """
+    with scope(workshop=workshop):
+        rows = (
+            Posting.objects.filter(vessel__isnull=False, occurred_at__lte=at)
+            .order_by()
+            .values_list("vessel_id", "component_id")
+            .annotate(total=Sum("amount"))
+        )
+        sums = {(vessel, component): total for vessel, component, total in rows}
+        unknown = _unknown_at(at)
+        return _with_names(workshop, {**sums, **unknown})
+
+
+def _unknown_at(at: datetime) -> dict[tuple[int, int], int | None]:
+    """Return the pairs whose last content at that moment was unknown."""
+    ever = set(
+        Content.objects.filter(amount=None, occurred_at__lte=at).order_by().values_list("vessel_id", "component_id")
+    )
+    if not ever:
+        return {}
+    last: dict[tuple[int, int], int | None] = {}
+    contents = Content.objects.filter(
+        vessel_id__in={vessel for vessel, _ in ever},
+        component_id__in={component for _, component in ever},
+        occurred_at__lte=at,
+    ).order_by("occurred_at", "sequence")
+    for vessel, component, amount in contents.values_list("vessel_id", "component_id", "amount"):
+        last[vessel, component] = amount
+    return {pair: None for pair in ever if last[pair] is None}
+
+
+def _with_names(workshop: Workshop, rows: Mapping[tuple[int, int], int | None]) -> dict[tuple[str, str], int | None]:
+    vessels = {pk: str(uuid) for pk, uuid in workshop.vessels.values_list("pk", "uuid")}
+    components = dict(workshop.components.values_list("pk", "code"))
+    return {(vessels[vessel], components[component]): amount for (vessel, component), amount in rows.items()}
+
+
+def load_state(workshop: Workshop, vessels: tuple[str, ...]) -> State:
+    """Return the fold's state of the named vessels, to try out an entry without writing it. Two queries."""
+    with scope(workshop=workshop):
+        return projection.load_state(workshop, vessels)
+
+
+def get_last_change(workshop: Workshop) -> datetime | None:
+    """Return when the latest matter entry of the books occurred."""
+    with scope(workshop=workshop):
+        last: datetime | None = Posting.objects.aggregate(last=Max("occurred_at"))["last"]
+        return last
+
+
+def verify_projection(workshop: Workshop) -> Iterator[tuple[int, str]]:
+    """Yield (sequence, sentence) for every entry whose rows are not what the journal says; sequence 0 for holdings."""
+    with scope(workshop=workshop):
+        state, followed = fold.rebuild(journal.iterate_fold_entries(workshop))
+        missing = {c for f in followed.values() for _, c, _ in f.contents} - set(
+            workshop.components.values_list("code", flat=True)
+        )
+        if missing:
+            yield 0, f"The books lack the components {', '.join(sorted(missing))}."
+            return
+        names = projection.Names(workshop, ())
+        kept = projection.stored_rows()
+        for entry in Entry.objects.order_by("sequence").defer("body"):
+            folded = followed.get(entry.uuid, fold.Folded((), (), ()))
+            if kept.get(entry.pk, set()) != projection.expected_rows(entry, folded, names):
+                yield entry.sequence, "What the ledger keeps of this entry is not what follows from it."
+        yield from _verify_holdings(state)
+
+
+def _verify_holdings(state: State) -> Iterator[tuple[int, str]]:
+    stored = {
+        (str(vessel), component): fold.state.Holding(amount, variance)
+        for vessel, component, amount, variance in Holding.objects.values_list(
+            "vessel__uuid", "component__code", "amount", "variance"
+        )
+    }
+    for key in sorted(set(stored) | set(state.holdings)):
+        if stored.get(key) != state.holdings.get(key):
+            yield 0, f"The holding of {key[1]} in vessel {key[0]} is not what the entries say."
+
+
+def count_crossings() -> dict[str, int]:
+    """Return how many rows of the ledger point into another workshop, by relation; all zero in a sound database."""
+    with scopes_disabled():
+        return {
+            f"{table.__name__.lower()}.{relation}": table._default_manager.exclude(**{f"{relation}__workshop": F("workshop")})
+            .exclude(**{relation: None})
+            .count()
+            for table, relations in {
+                Vessel: ("place", "product", "created_by"),
+                Posting: ("entry", "component", "vessel"),
+                Holding: ("vessel", "component"),
+                Content: ("entry", "vessel", "component"),
+                Finding: ("entry",),
+                Memory: ("vessel",),
+            }.items()
+            for relation in relations
+        }
