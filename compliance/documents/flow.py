@@ -1,4 +1,4 @@
-"""Blocks that know their height for a width, and draw themselves: what labels and manifests are made of. Points throughout."""
+"""Blocks that know their height for a width and draw themselves: what papers are made of. Lengths in points."""
 
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
@@ -157,7 +157,7 @@ class Group:
 
 
 def paginate(groups: Sequence[Group], width: float, room: float) -> list[list[Block]]:
-    """Fill pages of height `room` in order. A group that would fit on a page is not torn; a longer one repeats its head."""
+    """Fill pages of height `room`; a group that fits on one page is not torn, a longer one repeats its head."""
     pages: list[list[Block]] = [[]]
     left = room
     for group in groups:

@@ -14,9 +14,9 @@ from .pictograms import draw_pictogram
 from .shapes import WasteLabelData
 from .stock import PAGES, Stock
 
-# Sizes run together from the largest to the smallest. The aim for a pictogram is a fifteenth of the label, as Regulation
-# (EC) 1272/2008, annex I, 1.2.1 asks of supply labels, and never less than its 1 cm2; where the text needs the room we go
-# down to two fifths of that side. Below 6.6 pt nobody reads with goggles on.
+# Sizes run together from the largest to the smallest. The aim for a pictogram is a fifteenth of the label, as
+# Regulation (EC) 1272/2008, annex I, 1.2.1 asks of supply labels, and never less than its 1 cm2; where the text needs
+# the room we go down to two fifths of that side. Below 6.6 pt nobody reads with goggles on.
 _LARGEST_TEXT, _SMALLEST_TEXT = 18.0, 6.6
 _STEPS = 40
 
@@ -135,12 +135,10 @@ def _contents(data: WasteLabelData, sizes: Sizes) -> Iterator[Block]:
     if not data["contents"]:
         yield Text(words.no_contents(), sizes.style())
     for line in data["contents"]:
-        name = Stack([Text(line["name"], sizes.style()), *_note(line["note"], sizes)])
-        yield Columns([name, Text(words.known(line["amount"]), sizes.style(), align=1.0)], [0.68, 0.32])
-
-
-def _note(note: str, sizes: Sizes) -> list[Block]:
-    return [Text(note, sizes.style(factor=0.9), grey=0.25)] if note else []
+        name = f"{line['name']} ({line['note']})" if line["note"] else line["name"]
+        yield Columns(
+            [Text(name, sizes.style()), Text(words.known(line["amount"]), sizes.style(), align=1.0)], [0.68, 0.32]
+        )
 
 
 def _foot(data: WasteLabelData, sizes: Sizes, *, wide: bool) -> Block:
@@ -151,7 +149,7 @@ def _foot(data: WasteLabelData, sizes: Sizes, *, wide: bool) -> Block:
     name = Text(workshop["name"], sizes.style(SEMIBOLD))
     address = Text(workshop["address"].replace("\n", ", "), small)
     call = Text(_("In an emergency call %s") % words.known(workshop["telephone"]), sizes.style(SEMIBOLD))
-    who = [Columns([Stack([name, address]), call], [0.5, 0.5])] if wide else [name, address, call]
+    who = [Columns([Stack([name, address]), call], [0.5, 0.5], gap=5 * MM)] if wide else [name, address, call]
     issued = Text(_issued(data), Style(REGULAR, max(5.5, small.size * 0.8)))
     return Stack([Gap(3), Columns(dates, [0.5, 0.5], gap=5 * MM), Rule(0.8, 3, 2), *who, issued])
 

@@ -7,7 +7,8 @@ from . import fonts
 from .check import check_data
 from .flow import MM
 from .label import draw_label
-from .shapes import PaperSize, WasteLabelData
+from .manifest import draw_manifest
+from .shapes import ManifestData, PaperSize, WasteLabelData
 from .stock import PAGES, find_stock
 
 
@@ -24,5 +25,7 @@ def render_pdf(kind: str, data: dict[str, Any], *, paper_size: PaperSize) -> byt
     if kind == "waste-label":
         label = cast("WasteLabelData", data)
         draw_label(canvas, label, find_stock(label.get("stock"), label.get("start", 1), paper_size))
+    else:
+        draw_manifest(canvas, cast("ManifestData", data), paper_size)
     canvas.save()
     return target.getvalue()

@@ -2,6 +2,7 @@
 
 from collections.abc import Sequence
 from decimal import Decimal
+from typing import Literal
 
 from django.utils.translation import gettext as _
 from django.utils.translation import gettext_lazy
@@ -102,6 +103,25 @@ def never_together(containers: Sequence[ManifestContainerData]) -> list[tuple[st
         for other in container["must_not_meet"]:
             found.setdefault(other, []).append(container["code"])
     return list(found.items())
+
+
+def mode(mode: Literal["brought", "picked up"]) -> str:
+    """How the load changes hands."""
+    return _("picked up here") if mode == "picked up" else _("brought to the receiver")
+
+
+def signatories(mode: Literal["brought", "picked up"]) -> list[str]:
+    """Who signs, in the order of custody."""
+    carrier = [_("Picked up by")] if mode == "picked up" else []
+    return [_("Handed over by"), *carrier, _("Received by")]
+
+
+def chain_meaning(sequence: int) -> str:
+    """Why a hash stands on the paper."""
+    return _(
+        "Entry %(sequence)d of the workshop's journal ends with this hash. Whoever keeps this sheet can prove later "
+        "that no earlier entry was changed."
+    ) % {"sequence": sequence}
 
 
 def grouped(digest: str) -> str:
