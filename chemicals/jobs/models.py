@@ -73,12 +73,15 @@ class Job(models.Model):
 class Schedule(models.Model):
     """When a repeated task is due next. The column decides, no timer does: a missed tick catches up once."""
 
-    task = models.CharField(max_length=60, unique=True)
+    task = models.CharField(max_length=60)
     every_seconds = models.PositiveIntegerField()
     due_at = models.DateTimeField()
 
     class Meta:
-        constraints = [models.CheckConstraint(condition=Q(every_seconds__gte=1), name="schedule_every_positive")]
+        constraints = [
+            models.UniqueConstraint(fields=["task"], name="schedule_task_once"),
+            models.CheckConstraint(condition=Q(every_seconds__gte=1), name="schedule_every_positive"),
+        ]
 
     def __str__(self) -> str:
         return f"{self.task} every {self.every_seconds} s"

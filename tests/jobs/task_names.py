@@ -1,0 +1,8 @@
+"""The tests' tasks by name; importable by settings, before there are apps."""
+
+TASKS = {
+    "insert": "tests.jobs.effects.insert",
+    "insert-then-fail": "tests.jobs.effects.insert_then_fail",
+    "overtaken": "tests.jobs.effects.be_overtaken",
+    "steps": "tests.jobs.effects.insert_in_steps",
+}
