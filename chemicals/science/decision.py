@@ -1,8 +1,9 @@
 """Is a value within its limit? Probability, verdict and guard band, after JCGM 106:2012 (clauses 7 and 8).
 
-The value x with its standard uncertainty u stands for a distribution of what the true value may be. `within` is said only
-if the probability of the wrong side is at most the risk, `outside` only if that of the right side is; between the two it
-is undecided: have it analysed. The guard band w is the distance from the limit at which the verdict turns to within.
+The value x with its standard uncertainty u stands for a distribution of what the true value may be. `within` is said
+only if the probability of the wrong side is at most the risk, `outside` only if that of the right side is; between the
+two it is undecided: have it analysed. The guard band w is the distance from the limit, on its good side, at which the
+verdict turns to within.
 """
 
 import math
@@ -53,7 +54,8 @@ def decide(
     verdict: Verdict = "within" if wrong <= risk else "outside" if right <= risk else "undecided"
     margin = NormalDist().inv_cdf(1 - risk) * scale
     if distribution == "lognormal":
-        margin = abs(limit * math.expm1(scale**2 / 2 - margin if direction == "below" else scale**2 / 2 + margin))
+        sign = -1 if direction == "below" else 1
+        margin = sign * limit * math.expm1(scale**2 / 2 + sign * margin)
     return Decision(over, verdict, margin)
 
 

@@ -16,7 +16,8 @@ F: Final = 96485.33212  # C/mol, CODATA 2018 (exact: 1.602176634e-19 C x 6.02214
 C_PER_AH: Final = 3600.0
 CM3_PER_DM2_UM: Final = 0.01  # 1 dm2 x 1 um = 100 cm2 x 0.0001 cm
 BASIS: Final = "Faraday's law, m = e Q M / (z F), with F = 96485.33212 C/mol (CODATA 2018)"
-HIGHEST_VALENCE: Final = 8
+DENSITY_BASIS: Final = "(CRC Handbook of Chemistry and Physics, 80th edition)"
+MOST_ELECTRONS: Final = 8  # per atom: no element has a higher valence in solution
 
 
 @cache

@@ -25,6 +25,7 @@ MESSAGES: Final = {
     "empty": "No formula is typed: write for example CuSO4.5H2O.",
     "too_long": "The formula is longer than 200 characters: write the formula of one substance.",
     "unknown_element": '"%(found)s" in "%(typed)s" is no element: write symbols such as Cu, O or Au, with capitals.',
+    "unknown_symbol": '"%(found)s" is no element: write a symbol such as Cu or Au, with its capital.',
     "charge": '"%(typed)s" carries a charge: write the neutral substance, for example CuSO4 instead of Cu2+.',
     "brackets": 'The brackets of "%(typed)s" do not pair: close each bracket that opens, and no other.',
     "count": 'A count in "%(typed)s" is 0 or over 9999: write whole counts of 1 and more.',
@@ -84,7 +85,7 @@ def atomic_weight(symbol: str) -> Decimal:
     """Standard atomic weight. Raises FormulaError for a symbol that no element has."""
     element = _elements().get(symbol)
     if element is None:
-        raise FormulaError("unknown_element", found=symbol, typed=symbol)
+        raise FormulaError("unknown_symbol", found=symbol)
     return Decimal(str(element.mass))
 
 
