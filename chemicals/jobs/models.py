@@ -54,7 +54,7 @@ class Job(models.Model):
             ),
             models.CheckConstraint(
                 condition=Q(state__in=[State.DONE, State.FAILED], finished_at__isnull=False)
-                | Q(state__in=[State.QUEUED, State.RUNNING], finished_at__isnull=True),
+                | ~Q(state__in=[State.DONE, State.FAILED]) & Q(finished_at__isnull=True),
                 name="job_finished_when_over",
             ),
             models.CheckConstraint(condition=Q(progress_done__lte=F("progress_total")), name="job_progress_in_total"),
