@@ -47,7 +47,7 @@ def _head(data: ManifestData) -> Block:
     load = _("drop-off %(code)s on %(date)s") % {"code": drop_off["code"], "date": drop_off["date"]}
     title = Stack(
         [
-            Text(_("Manifest %d") % data["number"], _TITLE),
+            Text(words.paper_title("manifest", data), _TITLE),
             Text(f"{data['workshop']['name']}: {load}", _STRONG),
             Gap(4),
             Text(words.no_consignment_note(), _BODY),
@@ -79,12 +79,7 @@ def _groups(data: ManifestData) -> Iterator[Group]:
     nothing = Gap(0)
     yield Group([_parties(data), Gap(6)], nothing)
     yield Group([*_dangers(data), Gap(6)], nothing)
-    count = len(data["containers"])
-    load = _("The load: %(count)d waste containers, gross %(total)s") % {
-        "count": count,
-        "total": words.total_gross(data["containers"]),
-    }
-    yield Group([Text(load, _HEADING)], nothing)
+    yield Group([Text(words.load(data["containers"]), _HEADING)], nothing)
     for container in data["containers"]:
         yield _container(container)
     yield Group([Rule(0.4, 4, 6), _chain(data), Gap(8), *_signatures(data)], nothing)
@@ -109,9 +104,9 @@ def _party(title: str, name: str, address: str, what: str, value: str) -> Block:
 
 def _dangers(data: ManifestData) -> Iterator[Block]:
     """What must never be mixed, and the cautions."""
-    apart: list[Block] = [Text(_("Must never meet, and must not share a bund or a vehicle"), _STRONG)]
+    apart: list[Block] = [Text(_("Must never meet, nor share a bund or a vehicle"), _HEADING)]
     for other, codes in words.never_together(data["containers"]):
-        apart.append(Columns([Text(other, _HEADING), Text(", ".join(codes), _BODY)], [0.3, 0.7]))
+        apart.append(Columns([Text(other, _STRONG), Text(", ".join(codes), _BODY)], [0.3, 0.7]))
     if len(apart) == 1:
         apart.append(Text(words.nothing_to_avoid(), _BODY))
     yield Framed(Stack(apart), pad=6)
@@ -124,7 +119,7 @@ def _container(container: ManifestContainerData) -> Group:
     title, header = _container_title(container, ""), _contents_header()
     lines = [_content(line) for line in container["contents"]] or [Text(words.no_contents(), _SMALL)]
     contents = Stack([header, *lines[:_BESIDE]])
-    beside = Columns([contents, Stack(_hazards(container))], [_CONTENTS_SHARE, 1 - _CONTENTS_SHARE], gap=10)
+    beside = Columns([contents, Stack(list(_hazards(container)))], [_CONTENTS_SHARE, 1 - _CONTENTS_SHARE], gap=10)
     more: list[Block] = [
         Columns([line, Gap(0)], [_CONTENTS_SHARE, 1 - _CONTENTS_SHARE], gap=10) for line in lines[_BESIDE:]
     ]

@@ -3,6 +3,9 @@
 from io import BytesIO
 from typing import Any, cast
 
+from django.template.loader import render_to_string
+from django.utils.translation import get_language
+
 from . import fonts
 from .check import check_data
 from .flow import MM
@@ -10,6 +13,8 @@ from .label import draw_label
 from .manifest import draw_manifest
 from .shapes import ManifestData, PaperSize, WasteLabelData
 from .stock import PAGES, find_stock
+from .twin import twin_context
+from .words import paper_title
 
 
 def render_pdf(kind: str, data: dict[str, Any], *, paper_size: PaperSize) -> bytes:
@@ -21,7 +26,11 @@ def render_pdf(kind: str, data: dict[str, Any], *, paper_size: PaperSize) -> byt
 
     wide, high = PAGES[paper_size]
     target = BytesIO()
-    canvas = Canvas(target, pagesize=(wide * MM, high * MM), invariant=1, initialFontName=fonts.REGULAR, lang="en")
+    size, language = (wide * MM, high * MM), get_language() or "en"
+    canvas = Canvas(target, pagesize=size, invariant=1, initialFontName=fonts.REGULAR, lang=language)
+    canvas.setTitle(paper_title(kind, data))
+    canvas.setAuthor(data["workshop"]["name"])
+    canvas.setProducer("Gramledger")
     if kind == "waste-label":
         label = cast("WasteLabelData", data)
         draw_label(canvas, label, find_stock(label.get("stock"), label.get("start", 1), paper_size))
@@ -29,3 +38,9 @@ def render_pdf(kind: str, data: dict[str, Any], *, paper_size: PaperSize) -> byt
         draw_manifest(canvas, cast("ManifestData", data), paper_size)
     canvas.save()
     return target.getvalue()
+
+
+def render_html(kind: str, data: dict[str, Any], *, pdf_url: str = "") -> str:
+    """The page with the same facts; `pdf_url` adds a link to the issued bytes. Raises `PaperDataError`."""
+    check_data(kind, data)
+    return render_to_string(f"documents/{kind}.html", {**twin_context(kind, data), "pdf_url": pdf_url})

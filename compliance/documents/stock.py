@@ -48,7 +48,7 @@ STOCKS: tuple[Stock, ...] = (
     Stock("4 per Letter", "Letter", 107.95, 139.7, 2, 2, 0.0, 0.0),
     Stock("2 per Letter", "Letter", 215.9, 139.7, 1, 2, 0.0, 0.0, safe=8.0),
     Stock("1 per Letter", "Letter", 215.9, 279.4, 1, 1, 0.0, 0.0, safe=10.0),
-    Stock("6 per Letter", "Letter", 101.6, 84.0, 2, 3, 4.0, 13.0, gap_x=4.7),
+    Stock("6 per Letter", "Letter", 101.6, 84.0, 2, 3, 4.0, 13.0, gap_x=4.7, safe=4.0),
 )
 
 

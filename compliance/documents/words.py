@@ -1,8 +1,8 @@
 """The sentences of the papers, and the few figures derived from frozen data: one place for PDF and HTML twin alike."""
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from decimal import Decimal
-from typing import Literal
+from typing import Any, Literal
 
 from django.utils.translation import gettext as _
 from django.utils.translation import gettext_lazy
@@ -41,6 +41,12 @@ def known(text: str | None) -> str:
 def has_hazards(hazards: HazardData) -> bool:
     """Whether anything at all was entered."""
     return bool(hazards["signal_word"] or hazards["pictograms"] or hazards["statements"])
+
+
+def paper_title(kind: str, data: Mapping[str, Any]) -> str:
+    """Kind and number of a paper."""
+    pattern: str = _("Label %d") if kind == "waste-label" else _("Manifest %d")
+    return pattern % data["number"]
 
 
 def label_title(hazards: HazardData) -> str:
@@ -96,6 +102,12 @@ def total_gross(containers: Sequence[ManifestContainerData]) -> str:
     return _("unknown: %(total)s kg and %(count)d not weighed") % {"total": total, "count": unknown}
 
 
+def load(containers: Sequence[ManifestContainerData]) -> str:
+    """The headline over the containers: how many, how heavy."""
+    total = total_gross(containers)
+    return _("The load: %(count)d waste containers, gross %(total)s") % {"count": len(containers), "total": total}
+
+
 def never_together(containers: Sequence[ManifestContainerData]) -> list[tuple[str, list[str]]]:
     """Each thing that must not be met, with the codes of the containers that must not meet it."""
     found: dict[str, list[str]] = {}
@@ -119,8 +131,8 @@ def signatories(mode: Literal["brought", "picked up"]) -> list[str]:
 def chain_meaning(sequence: int) -> str:
     """Why a hash stands on the paper."""
     return _(
-        "Entry %(sequence)d of the workshop's journal ends with this hash. Whoever keeps this sheet can prove later "
-        "that no earlier entry was changed."
+        "Entry %(sequence)d of the workshop's journal ends with this hash. Whoever keeps this sheet can tell later "
+        "whether that entry or an earlier one was changed."
     ) % {"sequence": sequence}
 
 
