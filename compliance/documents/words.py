@@ -45,8 +45,8 @@ def has_hazards(hazards: HazardData) -> bool:
 
 def paper_title(kind: str, data: Mapping[str, Any]) -> str:
     """Kind and number of a paper."""
-    pattern: str = _("Label %d") if kind == "waste-label" else _("Manifest %d")
-    return pattern % data["number"]
+    name = _("Label") if kind == "waste-label" else _("Manifest")
+    return f"{name} {data['number']}"
 
 
 def label_title(hazards: HazardData) -> str:
