@@ -54,14 +54,21 @@ def require_free_port(bind: str) -> None:
 
 @contextmanager
 def hold_folder(data: Path) -> Iterator[None]:
-    """Keep the data folder for this process: one service, upgrade or restore at a time. Ends with the process."""
-    data.mkdir(parents=True, exist_ok=True, mode=0o700)
-    with (data / "in-use").open("w") as handle:
-        try:
-            fcntl.flock(handle, fcntl.LOCK_EX | fcntl.LOCK_NB)
-        except BlockingIOError as error:
-            raise StartError(f"Gramledger already runs on the folder {data}. End it first.") from error
-        yield
+    """Keep the data folder for this process: one service, upgrade or restore at a time. Ends with the process.
+
+    Meanwhile this process and its children write files that only their user may read.
+    """
+    mask = os.umask(0o077)
+    try:
+        data.mkdir(parents=True, exist_ok=True)
+        with (data / "in-use").open("w") as handle:
+            try:
+                fcntl.flock(handle, fcntl.LOCK_EX | fcntl.LOCK_NB)
+            except BlockingIOError as error:
+                raise StartError(f"Gramledger already runs on the folder {data}. End it first.") from error
+            yield
+    finally:
+        os.umask(mask)
 
 
 def _migrations_of_code() -> set[tuple[str, str]]:

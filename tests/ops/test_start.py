@@ -56,8 +56,10 @@ def test_a_folder_serves_one_process_at_a_time(tmp_path: Path) -> None:
         with pytest.raises(start.StartError, match="already runs"), start.hold_folder(tmp_path):
             pass
         other.communicate("")
-    with start.hold_folder(tmp_path):
-        assert tmp_path.stat().st_mode & 0o777 <= 0o755
+    with start.hold_folder(tmp_path / "new"):
+        (tmp_path / "new" / "file").touch()
+        assert (tmp_path / "new").stat().st_mode & 0o777 == 0o700
+        assert (tmp_path / "new" / "file").stat().st_mode & 0o777 == 0o600
 
 
 @pytest.mark.django_db

@@ -1,6 +1,5 @@
 """The demo in one command."""
 
-from collections.abc import Sequence
 from pathlib import Path
 from typing import Any
 
@@ -22,7 +21,7 @@ class Command(BaseCommand):
     """Serve the invented demo workshop from its own data folder, with jobs running, until Ctrl-C."""
 
     help = "Serve the invented demo workshop until Ctrl-C."
-    requires_system_checks: Sequence[str] = []  # the second start takes less than 5 s; `make test` runs the checks
+    requires_system_checks = ()  # the second start takes less than 5 s; `make test` runs the checks
 
     def handle(self, *args: Any, **options: Any) -> None:
         try:
@@ -69,7 +68,7 @@ class Command(BaseCommand):
     def greet(self, users: list[DemoUser]) -> None:
         """Print the address and who can sign in there."""
         width = max(len(email) for email, _, _ in users)
-        self.say(f"\nGramledger, invented demo data: {settings.PUBLIC_URL}\n")
+        self.say(f"\nGramledger, invented demo data: {settings.PUBLIC_URL}\n\n")
         for email, password, role in users:
             self.say(f"  {email:<{width}}  {password}  ({role})")
         self.say("\nCtrl-C ends it.")

@@ -1,7 +1,6 @@
 """Real use in one command."""
 
 import os
-from collections.abc import Sequence
 from typing import Any
 
 from django.conf import settings
@@ -18,7 +17,6 @@ class Command(BaseCommand):
     """Serve a workshop from its own data folder until Ctrl-C or SIGTERM."""
 
     help = "Serve a workshop from the folder GRAMLEDGER_DATA until Ctrl-C or SIGTERM."
-    requires_system_checks: Sequence[str] = ["__all__"]
 
     def handle(self, *args: Any, **options: Any) -> None:
         try:
@@ -60,7 +58,7 @@ class Command(BaseCommand):
         """Print the address; before there is a user, the one for the first start."""
         self.say(f"\nGramledger: {settings.PUBLIC_URL}   data: {settings.DATA}")
         if token is not None:
-            self.say(f"First start. Open this address once:\n\n  {settings.PUBLIC_URL}/first-start?token={token}\n")
+            self.say(f"First start. Open this address once:\n\n  {settings.PUBLIC_URL}/first-start?token={token}\n\n")
         self.say("Ctrl-C ends it.")
 
     def say(self, text: str) -> None:

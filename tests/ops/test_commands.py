@@ -1,0 +1,137 @@
+"""`run` and `serve` as a person starts them."""
+
+import http.client
+import os
+import re
+import signal
+import socket
+import subprocess
+import sys
+import time
+from collections.abc import Callable, Iterator
+from contextlib import contextmanager
+from pathlib import Path
+
+import pytest
+
+from compliance.ops.management.commands.run import Command as Run
+from compliance.ops.start import StartError, write_private
+
+ROOT = Path(__file__).resolve().parents[2]
+
+
+def free_address() -> str:
+    with socket.socket() as probe:
+        probe.bind(("127.0.0.1", 0))
+        return f"127.0.0.1:{probe.getsockname()[1]}"
+
+
+def environment(**values: str) -> dict[str, str]:
+    ours = {"DJANGO_SETTINGS_MODULE", "GRAMLEDGER_DATA", "DATABASE_URL", "REDIS_URL", "BIND", "PUBLIC_URL"}
+    return {name: value for name, value in os.environ.items() if name not in ours} | values
+
+
+def refusal(command: str, **values: str) -> str:
+    """Start, expect a refusal, return its sentence."""
+    program = [sys.executable, "manage.py", command]
+    variables = environment(**values)
+    result = subprocess.run(program, check=False, cwd=ROOT, env=variables, capture_output=True, text=True, timeout=30)
+    assert result.returncode == 1, result.stdout
+    return result.stderr
+
+
+def test_serve_asks_for_a_data_folder() -> None:
+    assert "Set GRAMLEDGER_DATA to the folder" in refusal("serve")
+
+
+def test_serve_refuses_the_folder_of_the_demo(tmp_path: Path) -> None:
+    write_private(tmp_path / "demo-users.txt", "")
+    assert "holds the demo" in refusal("serve", GRAMLEDGER_DATA=str(tmp_path))
+
+
+def test_serving_the_whole_network_needs_the_address_that_labels_contain(tmp_path: Path) -> None:
+    sentence = refusal("serve", GRAMLEDGER_DATA=str(tmp_path), BIND="0.0.0.0:8000")
+    assert "Set PUBLIC_URL" in sentence
+
+
+def test_a_taken_port_is_said_in_one_sentence(tmp_path: Path) -> None:
+    with socket.socket() as listener:
+        listener.bind(("127.0.0.1", 0))
+        listener.listen()
+        bind = f"127.0.0.1:{listener.getsockname()[1]}"
+        for command in ("run", "serve"):
+            sentence = refusal(command, GRAMLEDGER_DATA=str(tmp_path), BIND=bind)
+            assert sentence.startswith(f"CommandError: Another program listens at {bind}.")
+
+
+def test_the_demo_does_not_touch_a_folder_that_it_did_not_make(tmp_path: Path) -> None:
+    with pytest.raises(StartError, match="holds people but no demo"):
+        Run().read(tmp_path / "demo-users.txt")
+
+
+def test_the_demos_people_are_read_as_they_were_written(tmp_path: Path) -> None:
+    write_private(tmp_path / "demo-users.txt", "ada@example.org\tquiet copper\towner\n")
+    assert Run().read(tmp_path / "demo-users.txt") == [("ada@example.org", "quiet copper", "owner")]
+
+
+class Service:
+    """A service that runs: its output so far and its address."""
+
+    def __init__(self, process: "subprocess.Popen[str]", bind: str, log: Path) -> None:
+        self.process = process
+        self.bind = bind
+        self.log = log
+
+    def answers(self) -> bool:
+        connection = http.client.HTTPConnection(self.bind, timeout=2)
+        try:
+            connection.request("GET", "/")
+            return connection.getresponse().status < 500
+        except OSError:
+            return False
+        finally:
+            connection.close()
+
+    def wait_for(self, condition: Callable[[], bool], seconds: float = 30) -> None:
+        deadline = time.monotonic() + seconds
+        while not condition():
+            assert time.monotonic() < deadline, self.log.read_text()
+            time.sleep(0.05)
+
+
+@contextmanager
+def serving(data: Path, log: Path) -> Iterator[Service]:
+    bind = free_address()
+    variables = environment(GRAMLEDGER_DATA=str(data), BIND=bind)
+    with log.open("w") as output:
+        command = [sys.executable, "manage.py", "serve"]
+        process = subprocess.Popen(command, cwd=ROOT, env=variables, stdout=output, stderr=output, text=True)
+    try:
+        yield Service(process, bind, log)
+    finally:
+        process.kill()
+        process.wait()
+
+
+def test_serve_from_the_first_start_to_ctrl_c_and_again(tmp_path: Path) -> None:
+    data, log = tmp_path / "data", tmp_path / "log"
+    tokens = []
+    for _ in range(2):
+        with serving(data, log) as service:
+            service.wait_for(service.answers)
+            tokens += re.findall(r"/first-start\?token=([\w-]+)", log.read_text())
+            assert "already runs on the folder" in refusal("serve", GRAMLEDGER_DATA=str(data), BIND=free_address())
+            service.process.send_signal(signal.SIGINT)
+            assert service.process.wait(15) == 0
+            assert not service.answers()
+    assert len(set(tokens)) == 2
+    assert (data / "gramledger.sqlite3").stat().st_mode & 0o077 == 0
+
+
+def test_killing_the_service_leaves_nobody_at_its_port(tmp_path: Path) -> None:
+    with serving(tmp_path / "data", tmp_path / "log") as service:
+        service.wait_for(service.answers)
+        service.process.kill()
+        service.process.wait()
+        service.wait_for(lambda: not service.answers())
+        assert not service.answers()
