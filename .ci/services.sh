@@ -12,11 +12,14 @@ command -v redis-server >/dev/null || missing+=(redis-server)
 command -v chromium >/dev/null || missing+=(chromium)
 if [ ${#missing[@]} -gt 0 ]; then
     echo "Installing ${missing[*]}"
-    export DEBIAN_FRONTEND=noninteractive
+    export DEBIAN_FRONTEND=noninteractive LC_ALL=C.UTF-8  # the locale decides the encoding of a new cluster
     as_root apt-get update -qq
-    as_root apt-get install -y -qq --no-install-recommends "${missing[@]}"
+    as_root env DEBIAN_FRONTEND="$DEBIAN_FRONTEND" LC_ALL="$LC_ALL" apt-get install -y -qq --no-install-recommends "${missing[@]}"
 fi
 
+if [ -z "$(pg_lsclusters --no-header)" ]; then
+    as_root pg_createcluster --encoding UTF8 "$(ls /usr/lib/postgresql | sort -V | tail -n 1)" main
+fi
 read -r version cluster port status _ < <(pg_lsclusters --no-header)
 if [ "$status" != online ]; then
     echo "Starting PostgreSQL $version"
@@ -28,7 +31,7 @@ as_postgres psql -q -v ON_ERROR_STOP=1 -d postgres <<'SQL'
 SELECT 'CREATE ROLE gramledger' WHERE NOT EXISTS (SELECT FROM pg_roles WHERE rolname = 'gramledger') \gexec
 ALTER ROLE gramledger LOGIN CREATEDB PASSWORD 'gramledger';
 SQL
-PGPASSWORD=gramledger psql -q -h 127.0.0.1 -U gramledger -d postgres -c "SELECT 1" >/dev/null
+PGPASSWORD=gramledger psql -q -h 127.0.0.1 -U gramledger -d postgres -Atc "SHOW server_encoding" | grep -qx UTF8
 
 if [ "$(redis-cli ping 2>/dev/null)" != PONG ]; then
     echo "Starting Redis"
