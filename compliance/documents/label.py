@@ -10,7 +10,7 @@ from .codes import draw_code
 from .errors import DoesNotFitError, Problem
 from .flow import MM, Block, Columns, Framed, Gap, Picture, Rule, Stack, Text
 from .fonts import BOLD, REGULAR, SEMIBOLD, Style
-from .pictograms import draw_pictogram
+from .pictograms import pictogram_rows
 from .shapes import WasteLabelData
 from .stock import PAGES, Stock
 
@@ -103,23 +103,14 @@ def _hazards(data: WasteLabelData, sizes: Sizes, width: float) -> tuple[Block, B
         return head, Text(words.no_hazards(), sizes.style(SEMIBOLD)), Rule(0.8, 3, 3)
     codes = hazards["pictograms"]
     diagonal = min(sizes.diagonal, width, max(width / max(len(codes), 1), sizes.least))
+    rows = Stack(pictogram_rows(codes, diagonal, int(width / diagonal + 1e-6)))
     word = words.signal_word(hazards["signal_word"])
     signal = [Text(word, sizes.style(BOLD, 1.6))] if word else []
-    pictures = Stack([*_pictogram_rows(codes, diagonal, width), *signal])
     statements = [Text(statement, sizes.style()) for statement in hazards["statements"]]
-    return head, pictures, Stack([*statements, Rule(0.8, 3, 3)])
-
-
-def _pictogram_rows(codes: list[Any], diagonal: float, width: float) -> Iterator[Block]:
-    per_row = max(1, int(width / diagonal + 1e-6))
-    for start in range(0, len(codes), per_row):
-        row = codes[start : start + per_row]
-
-        def paint(canvas: Any, x: float, y: float, row: list[Any] = row) -> None:
-            for number, code in enumerate(row):
-                draw_pictogram(canvas, code, (x + number * diagonal, y), diagonal)
-
-        yield Picture(diagonal * len(row), diagonal, paint)
+    taken = len(codes) * diagonal
+    if 0 < taken <= 0.45 * width:
+        return head, Columns([rows, Stack([*signal, *statements])], [taken, 1.0]), Rule(0.8, 3, 3)
+    return head, Stack([rows, *signal]), Stack([*statements, Rule(0.8, 3, 3)])
 
 
 def _inside(data: WasteLabelData, sizes: Sizes) -> list[Block]:

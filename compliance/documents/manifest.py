@@ -10,7 +10,7 @@ from .codes import draw_code
 from .errors import DoesNotFitError, Problem
 from .flow import MM, Block, Columns, Framed, Gap, Group, Picture, Rule, Stack, Text, paginate
 from .fonts import BOLD, REGULAR, SEMIBOLD, Style
-from .pictograms import draw_pictogram
+from .pictograms import pictogram_rows
 from .shapes import HazardData, ManifestContainerData, ManifestContentData, ManifestData, PaperSize
 from .stock import PAGES
 
@@ -168,15 +168,7 @@ def _hazards(container: ManifestContainerData) -> Iterator[Block]:
 
 
 def _hazard_lines(hazards: HazardData) -> Iterator[Block]:
-    codes = hazards["pictograms"]
-    for start in range(0, len(codes), 4):
-        row = codes[start : start + 4]
-
-        def paint(canvas: Any, x: float, y: float, row: Any = row) -> None:
-            for number, code in enumerate(row):
-                draw_pictogram(canvas, code, (x + number * _DIAMOND, y), _DIAMOND)
-
-        yield Picture(_DIAMOND * len(row), _DIAMOND, paint)
+    yield from pictogram_rows(hazards["pictograms"], _DIAMOND, 4)
     if hazards["signal_word"]:
         yield Text(words.signal_word(hazards["signal_word"]), _HEADING)
     for statement in hazards["statements"]:

@@ -7,9 +7,10 @@ and in a page.
 
 import math
 import re
-from collections.abc import Iterator
+from collections.abc import Iterator, Sequence
 from typing import Any, Literal, NamedTuple
 
+from .flow import Block, Picture
 from .shapes import Pictogram
 
 Ink = Literal["black", "white", "red"]
@@ -286,3 +287,18 @@ def _pdf_path(canvas: Any, path: str) -> Any:
     for command, numbers in commands(path):
         verbs[command](*numbers)
     return drawn
+
+
+def pictogram_rows(codes: Sequence[Pictogram], diagonal: float, per_row: int) -> list[Block]:
+    """The diamonds side by side, in as few rows as `per_row` allows and those of equal length."""
+    rows = math.ceil(len(codes) / max(1, per_row))
+    length = math.ceil(len(codes) / max(1, rows))
+    return [_row(codes[start : start + length], diagonal) for start in range(0, len(codes), max(1, length))]
+
+
+def _row(codes: Sequence[Pictogram], diagonal: float) -> Block:
+    def paint(canvas: Any, x: float, y: float) -> None:
+        for number, code in enumerate(codes):
+            draw_pictogram(canvas, code, (x + number * diagonal, y), diagonal)
+
+    return Picture(diagonal * len(codes), diagonal, paint)
