@@ -5,7 +5,8 @@ volume V stays and
 
     C_n - C0 = (C_{n-1} - C0) V / (V + D),    from clean water C_N = C0 [1 - (V / (V + D))^N].
 
-The usual C0 N D / V counts no drag-out of the rinse itself; the strict series never passes C0.
+The usual C0 N D / V counts no drag-out of the rinse itself; the strict series never passes C0. `expm1` and `log1p` keep
+the first few dips of a large tank exact.
 """
 
 import math
@@ -17,7 +18,7 @@ BASIS: Final = "strict series of a static rinse, C_N = C0 + (C_start - C0) (V / 
 
 def static_concentration(volume: float, drag_out: float, dips: int, bath: float, start: float = 0.0) -> float:
     """Concentration after so many dips, in the unit of `bath` and `start`. Volume and drag-out in one unit."""
-    return bath + (start - bath) * math.exp(-dips * math.log1p(drag_out / volume))
+    return start + (bath - start) * -math.expm1(-dips * math.log1p(drag_out / volume))
 
 
 def dips_to_reach(volume: float, drag_out: float, target: float, bath: float, start: float = 0.0) -> int | None:
@@ -31,5 +32,5 @@ def dips_to_reach(volume: float, drag_out: float, target: float, bath: float, st
         return 0
     if (target >= bath) if rising else (target <= bath):
         return None
-    needed = math.log((bath - start) / (bath - target)) / math.log1p(drag_out / volume)
+    needed = -math.log1p(-(target - start) / (bath - start)) / math.log1p(drag_out / volume)
     return math.ceil(needed * (1 - SLACK))
