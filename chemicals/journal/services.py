@@ -53,7 +53,7 @@ def append(
     if occurred is not None and occurred.at > now + CLOCK_TOLERANCE and occurred.precision != "day":
         raise InvalidInputError.of("occurred_at", "This lies in the future. Write when it happened.")
     with transaction.atomic(), scope(workshop=actor.workshop):
-        head = _lock_head(actor)
+        head = lock_chain(actor)
         first = Entry.objects.filter(uuid=key).select_related("member__user").first()
         if first is not None:
             return Appended(_same(first, event, occurred, attachments), is_new=False)
@@ -78,7 +78,8 @@ def append(
         return Appended(_write(actor, head, body, event), is_new=True)
 
 
-def _lock_head(actor: Membership) -> Head:
+def lock_chain(actor: Membership) -> Head:
+    """Lock the end of the workshop's chain until the transaction ends: records of a workshop wait for each other."""
     Head.objects.get_or_create(workshop=actor.workshop, defaults={"hash": canonical.GENESIS})
     return Head.objects.select_for_update().get(workshop=actor.workshop)
 

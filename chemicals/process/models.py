@@ -77,11 +77,12 @@ class RackType(models.Model):
 
 
 class Route(models.Model):
-    """The tanks that a load goes through, in order; the first one plates."""
+    """The tanks that a load goes through, in order, on its usual rack type; the first tank plates."""
 
     uuid = models.UUIDField(default=uuid.uuid4, unique=True, editable=False)
     workshop = models.ForeignKey(Workshop, on_delete=models.PROTECT, related_name="routes")
     name = models.CharField(_("name"), max_length=80)
+    rack = models.ForeignKey(RackType, on_delete=models.PROTECT, related_name="routes", verbose_name=_("rack type"))
 
     objects: "models.Manager[Route]" = ScopedManager(workshop="workshop")
 

@@ -1,0 +1,80 @@
+"""Turns what a person says into names and rows, and collects everything that is wrong with it."""
+
+from typing import Any, TypeVar
+from uuid import UUID
+
+from django.db.models import Model
+from django_scopes import scope
+
+from chemicals.books import events
+from chemicals.books.events import Figure, Measured
+from chemicals.journal.models import Entry
+from chemicals.ledger.models import Vessel
+from chemicals.process.fields import VesselField, describe
+from chemicals.science.quantity import Quantity
+from chemicals.workshop.errors import FieldError, InvalidInputError
+from chemicals.workshop.models import Membership
+
+WATER = Figure(998_200, 2_000, "water at 20 °C, 0.9982 g/mL (CRC Handbook); hotter or colder is within the uncertainty")
+"""Density of water in ug/mL."""
+
+
+Row = TypeVar("Row", bound=Model)
+
+
+class Draft:
+    """Looks things up for one member; what is missing is noted under its field and raised at the end, all at once."""
+
+    def __init__(self, member: Membership) -> None:
+        self.member = member
+        self.errors: list[FieldError] = []
+
+    def refuse(self, field: str, message: str) -> None:
+        """Note what is wrong with a field and how to mend it."""
+        self.errors.append(FieldError(field, message))
+
+    def finish(self) -> None:
+        """Raise everything that was noted."""
+        if self.errors:
+            raise InvalidInputError(self.errors)
+
+    def vessel(self, data: Any, field: str, *, under: str = "") -> Vessel | None:
+        """Return the vessel that a field names, of the kinds that the field allows."""
+        uuid = getattr(data, field)
+        kind = dict(describe(type(data)))[field]
+        assert isinstance(kind, VesselField)  # noqa: S101  (a table error, not an input error)
+        if uuid is None:
+            return None
+        with scope(workshop=self.member.workshop):
+            vessel = Vessel.objects.filter(uuid=uuid, kind__in=kind.kinds).select_related("product").first()
+        if vessel is None:
+            self.refuse(under + field, "There is no such vessel here. Choose one from the list.")
+        return vessel
+
+    def entry(self, field: str, uuid: UUID, *kinds: type[events.Event]) -> Entry | None:
+        """Return an entry of the workshop, of one of the kinds (any, if none is named)."""
+        entry = self.find(Entry, field, uuid)
+        if entry is not None and kinds and entry.kind not in {kind.KIND for kind in kinds}:
+            self.refuse(field, f"This is no {kinds[0].KIND}. Choose one from the list.")
+            return None
+        return entry
+
+    def find(self, table: type[Row], field: str, uuid: UUID) -> Row | None:
+        """Return a row of the workshop by its uuid."""
+        with scope(workshop=self.member.workshop):
+            found = table._default_manager.filter(uuid=uuid).first()
+        if found is None:
+            self.refuse(field, "There is no such thing in this workshop. Choose one from the list.")
+        return found
+
+
+def measured(quantity: Quantity | None, sd: Quantity | None = None) -> Measured | None:
+    """Return the amount as the journal keeps it."""
+    if quantity is None:
+        return None
+    return Measured(quantity.typed, quantity.unit, quantity.base, None if sd is None else sd.base)
+
+
+def by_dimension(quantity: Quantity, dimension: str) -> Measured | None:
+    """Return the amount if it is of the dimension: a mass or a volume may be typed in the same field."""
+    return measured(quantity) if quantity.dimension == dimension else None

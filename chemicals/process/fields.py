@@ -1,0 +1,91 @@
+"""What the fields of an input are: one description for the page, the API and the error that names the field."""
+
+import dataclasses
+from collections.abc import Sequence
+from dataclasses import dataclass, field
+from typing import Any
+
+from django.utils.functional import Promise
+
+from chemicals.ledger.models import VesselKind
+
+Text = str | Promise
+
+
+@dataclass(frozen=True)
+class FieldKind:
+    """Base: label and help as shown; required or not."""
+
+    label: Text
+    help: Text = ""
+    required: bool = True
+
+
+@dataclass(frozen=True)
+class AmountField(FieldKind):
+    """An amount as typed; its unit must be of one of the dimensions of science.units."""
+
+    dimensions: tuple[str, ...] = ()
+    example: str = ""
+
+
+@dataclass(frozen=True)
+class VesselField(FieldKind):
+    """One vessel of the workshop, of one of the kinds."""
+
+    kinds: tuple[VesselKind, ...] = ()
+
+
+@dataclass(frozen=True)
+class ReferenceField(FieldKind):
+    """One row of the workshop: product, rack type, route, receiver or entry (by its kind)."""
+
+    to: str = ""
+
+
+@dataclass(frozen=True)
+class ChoiceField(FieldKind):
+    """One of a list of (value, label)."""
+
+    choices: tuple[tuple[str, Text], ...] = ()
+
+
+@dataclass(frozen=True)
+class TextField(FieldKind):
+    """A line of text."""
+
+    longest: int = 200
+
+
+@dataclass(frozen=True)
+class FlagField(FieldKind):
+    """Yes or no."""
+
+
+@dataclass(frozen=True)
+class MomentField(FieldKind):
+    """A date and time in the workshop's zone."""
+
+
+@dataclass(frozen=True)
+class RowsField(FieldKind):
+    """A list of smaller inputs of one type."""
+
+    of: type[Any] = object
+    blank_rows: int = 3
+
+
+EMPTY: dict[type[FieldKind], Any] = {RowsField: (), TextField: "", FlagField: False}
+"""What a field holds that was left empty, where it is not None."""
+
+
+def use(kind: FieldKind, default: Any = dataclasses.MISSING) -> Any:
+    """Return a dataclass field that carries its description; one that is not required has a default."""
+    if default is dataclasses.MISSING and not kind.required:
+        default = EMPTY.get(type(kind))
+    return field(default=default, metadata={"kind": kind})
+
+
+def describe(data: type[Any]) -> Sequence[tuple[str, FieldKind]]:
+    """Return (name, description) of every field of an input, in order."""
+    return [(f.name, f.metadata["kind"]) for f in dataclasses.fields(data)]

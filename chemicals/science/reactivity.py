@@ -1,0 +1,70 @@
+"""What must never meet: the pairs of rule that is never soft, each with the gas or danger named.
+
+Facts of chemistry that any safety text on plating states; the names are those of the substances. What a product reacts
+as is declared by the user from the safety data sheet. "unknown" counts as both an acid and a cyanide.
+"""
+
+from collections.abc import Iterable, Iterator
+from dataclasses import dataclass
+
+ACID, CYANIDE, HYPOCHLORITE, AMMONIA, OXIDISER, SULFIDE, SULFITE, FLUORIDE, NITRIC, ORGANIC, PRECIOUS, UNKNOWN = (
+    "acid", "cyanide", "hypochlorite", "ammonia", "oxidiser", "sulfide", "sulfite", "fluoride",
+    "nitric or chromic acid", "organic", "silver or gold", "unknown",
+)  # fmt: skip
+REACTS_AS = {
+    ACID: "an acid, or anything with a pH below 7",
+    CYANIDE: "free cyanide, or a salt that gives it",
+    HYPOCHLORITE: "hypochlorite (bleach)",
+    AMMONIA: "ammonia or an ammonium salt in alkali",
+    OXIDISER: "an oxidiser such as peroxide or persulfate",
+    SULFIDE: "sulfide or polysulfide",
+    SULFITE: "sulfite, dithionite or thiosulfate",
+    FLUORIDE: "fluoride",
+    NITRIC: "nitric or chromic acid",
+    ORGANIC: "an organic liquid or solid that burns",
+    PRECIOUS: "a silver or gold solution",
+    UNKNOWN: "unknown: nobody knows what is in it",
+}
+"""Every declared reactivity with its meaning."""
+
+
+@dataclass(frozen=True)
+class Danger:
+    """Two kinds of liquid that must not meet, and what happens if they do."""
+
+    first: str
+    second: str
+    danger: str
+
+
+DANGERS = (
+    Danger(ACID, CYANIDE, "hydrogen cyanide, a gas that kills within minutes"),
+    Danger(NITRIC, CYANIDE, "hydrogen cyanide, a gas that kills within minutes"),
+    Danger(OXIDISER, CYANIDE, "cyanogen chloride or a violent reaction"),
+    Danger(HYPOCHLORITE, CYANIDE, "cyanogen chloride, a poisonous gas"),
+    Danger(HYPOCHLORITE, ACID, "chlorine, a poisonous gas"),
+    Danger(HYPOCHLORITE, NITRIC, "chlorine, a poisonous gas"),
+    Danger(HYPOCHLORITE, AMMONIA, "chloramines, poisonous gases"),
+    Danger(SULFIDE, ACID, "hydrogen sulfide, a poisonous gas"),
+    Danger(SULFIDE, NITRIC, "hydrogen sulfide and nitrogen oxides, poisonous gases"),
+    Danger(SULFITE, ACID, "sulfur dioxide, a poisonous gas"),
+    Danger(SULFITE, NITRIC, "sulfur dioxide and nitrogen oxides, poisonous gases"),
+    Danger(FLUORIDE, ACID, "hydrogen fluoride, which burns deep and poisons"),
+    Danger(FLUORIDE, NITRIC, "hydrogen fluoride, which burns deep and poisons"),
+    Danger(NITRIC, ORGANIC, "fire, and nitrogen oxides that kill hours later"),
+    Danger(AMMONIA, PRECIOUS, "fulminating silver or gold, which explodes when it stands or dries"),
+)
+
+
+def find_dangers(one: Iterable[str], other: Iterable[str]) -> Iterator[Danger]:
+    """Yield every danger of pouring one liquid into the other, each given as what it reacts as."""
+    left, right = _widen(one), _widen(other)
+    for danger in DANGERS:
+        meet = danger.first in left and danger.second in right
+        if meet or (danger.second in left and danger.first in right):
+            yield danger
+
+
+def _widen(kinds: Iterable[str]) -> set[str]:
+    found = set(kinds)
+    return found | {ACID, CYANIDE} if UNKNOWN in found else found
