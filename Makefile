@@ -15,7 +15,7 @@ LOCK := .venv/bin/uv pip compile --quiet --generate-hashes --no-emit-index-url -
 run: .venv/run-stamp  ## serve the invented demo workshop on http://127.0.0.1:8000
 	@$(PY) manage.py run
 
-serve upgrade: export GRAMLEDGER_DATA := $(or $(GRAMLEDGER_DATA),$(HOME)/.local/share/gramledger)
+serve upgrade: export GRAMLEDGER_DATA := $(or $(GRAMLEDGER_DATA),$(if $(HOME),$(HOME)/.local/share/gramledger))
 
 serve: .venv/run-stamp $(if $(DATABASE_URL)$(REDIS_URL),.venv/scaled-stamp)  ## serve your own workshop
 	@$(PY) manage.py serve

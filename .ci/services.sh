@@ -2,6 +2,7 @@
 # Installs what is missing of PostgreSQL, Redis and Chromium (Debian), starts what does not answer, and makes the role
 # that the tests use. Fails if one of the three is not there in the end.
 set -euo pipefail
+PATH="$PATH:/usr/local/sbin:/usr/sbin:/sbin"
 
 as_root() { if [ "$(id -u)" = 0 ]; then "$@"; else sudo -n "$@"; fi; }
 as_postgres() { if [ "$(id -u)" = 0 ]; then runuser -u postgres -- "$@"; else sudo -n -u postgres "$@"; fi; }
