@@ -9,6 +9,7 @@ import json
 import types
 import typing
 import unicodedata
+from collections.abc import Callable
 from dataclasses import dataclass
 from datetime import UTC, datetime
 from functools import cache
@@ -56,7 +57,12 @@ def dump(value: Any) -> bytes:
 
 def load(data: bytes) -> Any:
     """Return the plain value behind canonical bytes; floats and odd spellings are refused."""
-    value = json.loads(data, parse_float=_refuse_float, parse_constant=_refuse_float)
+    try:
+        value = json.loads(data.decode(), parse_float=_refuse_float, parse_constant=_refuse_float)
+    except CanonicalError:
+        raise
+    except (ValueError, RecursionError) as error:
+        raise CanonicalError(f"These bytes are no canonical text: {error}") from error
     if dump(value) != data:
         raise CanonicalError("These bytes are not in canonical form.")
     return value
@@ -68,8 +74,11 @@ def encode_body(body: Body) -> bytes:
 
 
 def decode_body(data: bytes) -> Body:
-    """Return the entry behind its canonical bytes."""
-    return from_plain(Body, load(data))
+    """Return the entry behind its canonical bytes; another format is refused."""
+    body = from_plain(Body, load(data))
+    if body.format != FORMAT:
+        raise CanonicalError(f"Body.format: this version of the program does not know format {body.format}.")
+    return body
 
 
 def chain_hash(previous: bytes, body: bytes) -> bytes:
@@ -127,13 +136,23 @@ def _build_scalar(hint: Any, value: Any, where: str) -> Any:
     if hint is Any:
         return value
     if hint is UUID:
-        _expect(value, str, where)
-        return UUID(value)
+        return _build_spelled(UUID, value, where)
     if hint is datetime:
-        _expect(value, str, where)
-        return datetime.strptime(value, "%Y-%m-%dT%H:%M:%S.%fZ").replace(tzinfo=UTC)
+        return _build_spelled(_parse_time, value, where)
     _expect(value, hint, where)
     return value
+
+
+def _build_spelled(build: Callable[[str], Any], value: Any, where: str) -> Any:
+    """Build a value from its one spelling."""
+    _expect(value, str, where)
+    try:
+        built = build(value)
+    except ValueError as error:
+        raise CanonicalError(f"{where}: {error}") from error
+    if to_plain(built) != value:
+        raise CanonicalError(f"{where}: {value!r} is spelled {to_plain(built)!r}")
+    return built
 
 
 def _expect(value: Any, kind: Any, where: str) -> None:
@@ -155,12 +174,20 @@ def _plain(value: Any) -> Any:
     if isinstance(value, str):
         return check_text(value)
     if isinstance(value, dict):
-        return {check_text(key): _plain(item) for key, item in value.items()}
+        plain = {_check_key(key): _plain(item) for key, item in value.items()}
+        if len(plain) != len(value):
+            raise CanonicalError("Two names differ in their bytes only. Keep one of them.")
+        return plain
     if isinstance(value, list):
         return [_plain(item) for item in value]
     if value is None or isinstance(value, bool | int):
         return value
     raise CanonicalError(f"{type(value).__name__} has no canonical form; write decimals as strings.")
+
+
+def _check_key(key: Any) -> str:
+    _expect(key, str, "a name")
+    return check_text(key)
 
 
 def check_text(text: str) -> str:
@@ -174,7 +201,11 @@ def check_text(text: str) -> str:
 def _format_time(value: datetime) -> str:
     if value.tzinfo is None:
         raise CanonicalError("A time without a zone cannot be recorded.")
-    return value.astimezone(UTC).strftime("%Y-%m-%dT%H:%M:%S.%fZ")
+    return value.astimezone(UTC).replace(tzinfo=None).isoformat(timespec="microseconds") + "Z"
+
+
+def _parse_time(text: str) -> datetime:
+    return datetime.strptime(text, "%Y-%m-%dT%H:%M:%S.%fZ").replace(tzinfo=UTC)
 
 
 def _refuse_float(text: str) -> Any:

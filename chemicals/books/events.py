@@ -3,9 +3,7 @@
 A field annotated ``Used`` is a figure that was relied on that day (composition, density, drag-out, efficiency); every
 other field is what was observed. Amounts are integers in base units: micrograms, nanolitres, microcoulombs,
 micrograms per litre, micrograms per kilogram, parts per million. A kind version never changes: a new shape is a new
-version with a pure upcaster.
-
-Ends of a movement are vessel identifiers (text) or one of BOUNDARIES.
+version with a pure upcaster. Ends of a movement are vessel identifiers (text) or one of BOUNDARIES.
 """
 
 from collections.abc import Callable, Mapping
@@ -14,6 +12,7 @@ from datetime import datetime
 from typing import Annotated, Any, ClassVar, TypeVar
 from uuid import UUID
 
+from chemicals.books import checks
 from chemicals.books.canonical import CanonicalError, from_plain, to_plain, type_hints
 
 T = TypeVar("T")
@@ -43,6 +42,14 @@ class Measured:
     base: int
     sd: int | None = None
 
+    def __post_init__(self) -> None:
+        checks.not_negative("Measured", base=self.base, sd=self.stated_sd)
+
+    @property
+    def stated_sd(self) -> int:
+        """Return the standard uncertainty, 0 where none was stated."""
+        return self.sd or 0
+
 
 @dataclass(frozen=True)
 class Figure:
@@ -51,6 +58,9 @@ class Figure:
     base: int
     sd: int
     source: str
+
+    def __post_init__(self) -> None:
+        checks.not_negative("Figure", base=self.base, sd=self.sd)
 
 
 @dataclass(frozen=True)
@@ -61,6 +71,10 @@ class Share:
     amount: int
     sd: int
     per: str
+
+    def __post_init__(self) -> None:
+        checks.not_negative("Share", amount=self.amount, sd=self.sd)
+        checks.one_of("Share", ("kg", "L"), per=self.per)
 
 
 @dataclass(frozen=True)
@@ -116,6 +130,10 @@ class Opening(Event):
     held: tuple[Held, ...]
     density: Used[Figure | None]
     poured: Used[tuple[str, ...]]
+
+    def __post_init__(self) -> None:
+        # volume and mass have fields of their own
+        checks.once("Opening", held=[VOLUME, GROSS_MASS, *(held.component for held in self.held)])
 
     def vessels(self) -> tuple[str, ...]:
         return (self.vessel,)
@@ -192,6 +210,9 @@ class Deposit:
     faraday: str
     efficiency: Figure
 
+    def __post_init__(self) -> None:
+        checks.positive("Deposit", molar_mass=self.molar_mass, faraday=self.faraday, valence=self.valence)
+
 
 @dataclass(frozen=True)
 class Run(Event):
@@ -247,6 +268,9 @@ class LevelReading(Event):
     lost_to: str
     water_density: Used[Figure]
 
+    def __post_init__(self) -> None:
+        checks.one_of("LevelReading", (AIR, SPILL), lost_to=self.lost_to)
+
     def vessels(self) -> tuple[str, ...]:
         return (self.vessel,)
 
@@ -273,7 +297,10 @@ class Analysis(Event):
 
 @dataclass(frozen=True)
 class Acceptance(Event):
-    """An analysis was accepted: from its sampling time on, the content is concentration times volume."""
+    """An analysis was accepted: from its sampling time on, the content is concentration times volume.
+
+    The entry's time is the time of sampling, as in the analysis.
+    """
 
     KIND = "acceptance"
     analysis: UUID
@@ -348,14 +375,24 @@ def decode(
     kind: str, version: int, payload: Mapping[str, Any], upcasters: Mapping[tuple[str, int], Upcaster] = UPCASTERS
 ) -> Event:
     """Return the event behind a payload of any version; an unknown kind or shape is refused."""
-    if kind not in CURRENT or version > CURRENT[kind].VERSION:
+    if kind not in CURRENT or not 1 <= version <= CURRENT[kind].VERSION:
         raise CanonicalError(f"This version of the program does not know {kind} version {version}.")
     current = dict(payload)
     for step in range(version, CURRENT[kind].VERSION):
         current = upcasters[kind, step](current)
-    if set(current) != {"observed", "used"}:
-        raise CanonicalError(f"{kind}: a payload has the parts observed and used.")
+    _check_parts(kind, current)
     return from_plain(CURRENT[kind], {**current["observed"], **current["used"]})
+
+
+def _check_parts(kind: str, payload: Mapping[str, Any]) -> None:
+    """Refuse a payload whose fields do not stand in the part they belong to."""
+    if set(payload) != {"observed", "used"} or not all(type(part) is dict for part in payload.values()):
+        raise CanonicalError(f"{kind}: a payload has the parts observed and used.")
+    hints = type_hints(CURRENT[kind])
+    for part, is_used in (("observed", False), ("used", True)):
+        astray = sorted(name for name in payload[part] if name in hints and _is_used(hints[name]) is not is_used)
+        if astray:
+            raise CanonicalError(f"{kind}: {', '.join(astray)} does not belong to what was {part}.")
 
 
 def _is_used(hint: Any) -> bool:

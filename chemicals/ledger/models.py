@@ -134,13 +134,17 @@ class Posting(models.Model):
 
 
 class Holding(models.Model):
-    """What a vessel holds of a component now: the fold's state. ``amount`` None is unknown, not zero."""
+    """What a vessel holds of a component now: the fold's state. ``amount`` None is unknown, not zero.
+
+    ``known_part`` is what the postings sum to while the amount is unknown, else 0.
+    """
 
     workshop = models.ForeignKey(Workshop, on_delete=models.PROTECT, related_name="holdings")
     vessel = models.ForeignKey(Vessel, on_delete=models.PROTECT, related_name="holdings")
     component = models.ForeignKey(Component, on_delete=models.PROTECT, related_name="holdings")
     amount = models.BigIntegerField(null=True)
     variance = ExactIntegerField()
+    known_part = models.BigIntegerField(default=0)
 
     objects: "models.Manager[Holding]" = ScopedManager(workshop="workshop")
 

@@ -21,10 +21,10 @@ def load_state(workshop: Workshop, vessels: Iterable[str]) -> State:
     state = State()
     names = list(vessels)
     rows = models.Holding.objects.filter(vessel__uuid__in=names).values_list(
-        "vessel__uuid", "component__code", "amount", "variance"
+        "vessel__uuid", "component__code", "amount", "variance", "known_part"
     )
-    for vessel, component, amount, variance in rows:
-        state.holdings[str(vessel), component] = Holding(amount, variance)
+    for vessel, component, amount, variance, known_part in rows:
+        state.holdings[str(vessel), component] = Holding(amount, variance, known_part)
     memories = models.Memory.objects.filter(vessel__uuid__in=names).values_list("vessel__uuid", "incomplete", "poured")
     for vessel, incomplete, poured in memories:
         state.vessels[str(vessel)] = Vessel(incomplete, frozenset(poured))
@@ -126,6 +126,7 @@ def _upsert_holdings(workshop: Workshop, state: State, keys: set[tuple[str, str]
             component_id=names.components[component],
             amount=state.holding(vessel, component).amount,
             variance=state.holding(vessel, component).variance,
+            known_part=state.holding(vessel, component).known_part,
         )
         for vessel, component in sorted(keys)
     ]
@@ -134,7 +135,7 @@ def _upsert_holdings(workshop: Workshop, state: State, keys: set[tuple[str, str]
         batch_size=BATCH,
         update_conflicts=True,
         unique_fields=["vessel", "component"],
-        update_fields=["amount", "variance"],
+        update_fields=["amount", "variance", "known_part"],
     )
 
 

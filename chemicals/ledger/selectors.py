@@ -163,9 +163,9 @@ def verify_projection(workshop: Workshop) -> Iterator[tuple[int, str]]:
 
 def _verify_holdings(state: State) -> Iterator[tuple[int, str]]:
     stored = {
-        (str(vessel), component): fold.state.Holding(amount, variance)
-        for vessel, component, amount, variance in Holding.objects.values_list(
-            "vessel__uuid", "component__code", "amount", "variance"
+        (str(vessel), component): fold.state.Holding(amount, variance, known_part)
+        for vessel, component, amount, variance, known_part in Holding.objects.values_list(
+            "vessel__uuid", "component__code", "amount", "variance", "known_part"
         )
     }
     for key in sorted(set(stored) | set(state.holdings)):

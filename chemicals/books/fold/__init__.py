@@ -10,15 +10,16 @@ from typing import Any
 from uuid import UUID
 
 from chemicals.books import events
-from chemicals.books.fold import analysis, making, opening, run, waste
-from chemicals.books.fold.state import EVERY, Finding, Folding, Holding, State, Transfer
+from chemicals.books.fold import analysis, level, making, opening, run, waste
+from chemicals.books.fold.folding import Folding
+from chemicals.books.fold.state import EVERY, Finding, Holding, State, Transfer
 
 VERSION = 1
 """Version of the projection; a change of meaning raises it."""
 
 FOLDS: Mapping[type[events.Event], Callable[[Folding, Any], None]] = {
     events.Opening: opening.fold_opening,
-    events.LevelReading: opening.fold_level_reading,
+    events.LevelReading: level.fold_level_reading,
     events.Receipt: making.fold_receipt,
     events.MakeUp: making.fold_make_up,
     events.TopUp: making.fold_top_up,
@@ -75,14 +76,20 @@ def _contents(state: State) -> Iterator[tuple[str, str, Holding]]:
             yield vessel, component, state.holding(vessel, component)
 
 
-def rebuild(entries: Iterable[Entry]) -> tuple[State, dict[UUID, Folded]]:
-    """Fold all entries from the beginning; return the final state and what followed from each."""
+def standing(entries: Iterable[Entry]) -> list[Entry]:
+    """Return the entries that count, in fold order: none that is cancelled, no acceptance of a cancelled analysis."""
     everything = list(entries)
     cancelled = {entry.event.entry for entry in everything if isinstance(entry.event, events.Cancellation)}
-    state = State()
-    followed = {
-        entry.uuid: fold_event(state, entry.event)
+    return [
+        entry
         for entry in sorted(everything, key=lambda entry: entry.order)
         if entry.uuid not in cancelled
-    }
+        and not (isinstance(entry.event, events.Acceptance) and entry.event.analysis in cancelled)
+    ]
+
+
+def rebuild(entries: Iterable[Entry]) -> tuple[State, dict[UUID, Folded]]:
+    """Fold all entries from the beginning; return the final state and what followed from each."""
+    state = State()
+    followed = {entry.uuid: fold_event(state, entry.event) for entry in standing(entries)}
     return state, followed

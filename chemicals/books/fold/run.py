@@ -2,81 +2,81 @@
 
 from decimal import ROUND_HALF_EVEN, Decimal, localcontext
 
-from chemicals.books.events import ASSUMED, COMPUTED, GROSS_MASS, OBSERVED, PARTS, Deposit, Measured, Run
-from chemicals.books.fold.state import Folding, root
+from chemicals.books.events import ASSUMED, COMPUTED, GROSS_MASS, OBSERVED, PARTS, Deposit, Figure, Run
+from chemicals.books.fold.arithmetic import product, quotient, root
+from chemicals.books.fold.folding import Folding
+from chemicals.books.fold.state import WEIGHT_LOST
 
 MILLION = 10**6
+ALL_DISSOLVES = Figure(MILLION, 0, "a soluble anode has no other reaction")
+Amount = tuple[int, int, str]
+"""An amount in micrograms, its standard uncertainty and its basis."""
 
 
 def fold_run(folding: Folding, event: Run) -> None:
     """bath -> parts, anode set -> bath, then each step drags out to the next and drags in."""
     if event.deposit is not None and event.route:
-        _deposit(folding, event, event.route[0].tank, event.deposit)
+        bath = event.route[0].tank
+        plated = _weighed(event) or _by_faraday(event, event.deposit, event.deposit.efficiency)
+        _plate(folding, event.deposit.metal, bath, PARTS, plated)
+        if plated is not None and plated[0] < 0:
+            folding.note(WEIGHT_LOST, event.deposit.metal, bath, PARTS)
+        if event.anode is not None:
+            _plate(folding, event.deposit.metal, event.anode, bath, _dissolved(event, event.deposit))
     ends = [step.tank for step in event.route[1:]] + [PARTS]
-    for step, end in zip(event.route, ends, strict=True):
-        if step.drag_out.base:
-            folding.pour(step.tank, end, step.drag_out.base, step.drag_out.sd, ASSUMED)
+    for step, end in zip(event.route, ends, strict=False):  # a route of no tanks drags nothing out
+        folding.pour(step.tank, end, step.drag_out.base, step.drag_out.sd, ASSUMED)
 
 
-def _deposit(folding: Folding, event: Run, bath: str, figures: Deposit) -> None:
-    onto_parts = _weighed(event) or _by_faraday(event, figures)
-    if onto_parts is None:
-        folding.move_unknown(figures.metal, bath, PARTS)
-    else:
-        _plate(folding, figures.metal, bath, PARTS, *onto_parts)
-    if event.anode is None:
-        return
-    charge = charge_of(event)
-    if charge is None:
-        folding.move_unknown(figures.metal, event.anode, bath)
-        return
-    dissolved = faraday_mass(charge.base, figures, MILLION)
-    _plate(folding, figures.metal, event.anode, bath, dissolved, _relative(dissolved, charge), COMPUTED)
-
-
-def _plate(folding: Folding, metal: str, source: str, target: str, amount: int, sd: int, basis: str) -> None:
+def _plate(folding: Folding, metal: str, source: str, target: str, amount: Amount | None) -> None:
     """Move metal without liquid: its mass leaves with it."""
-    folding.move(metal, source, target, amount, sd, basis)
-    folding.move(GROSS_MASS, source, target, amount, sd, basis)
+    for component in (metal, GROSS_MASS):
+        if amount is None:
+            folding.move_unknown(component, source, target)
+        else:
+            folding.move(component, source, target, *amount)
 
 
-def _weighed(event: Run) -> tuple[int, int, str] | None:
+def _weighed(event: Run) -> Amount | None:
     before, after = event.weight_before, event.weight_after
     if before is None or after is None:
         return None
-    variance = (before.sd or 0) ** 2 + (after.sd or 0) ** 2
-    return after.base - before.base, root(variance), OBSERVED
+    return after.base - before.base, root(before.stated_sd**2 + after.stated_sd**2), OBSERVED
 
 
-def _by_faraday(event: Run, figures: Deposit) -> tuple[int, int, str] | None:
+def _dissolved(event: Run, figures: Deposit) -> Amount | None:
+    """Return what a soluble anode lost: all charge dissolves metal. Without charge, as much as plated the weight."""
+    weighed, efficiency = _weighed(event), figures.efficiency
+    if charge_of(event) is None and weighed is not None and weighed[0] >= 0 and efficiency.base > 0:
+        return *quotient(weighed[0], weighed[1], efficiency.base, efficiency.sd, MILLION), ASSUMED
+    return _by_faraday(event, figures, ALL_DISSOLVES)
+
+
+def _by_faraday(event: Run, figures: Deposit, efficiency: Figure) -> Amount | None:
     charge = charge_of(event)
     if charge is None:
         return None
-    mass = faraday_mass(charge.base, figures, figures.efficiency.base)
-    sd = _relative(mass, charge) + mass * figures.efficiency.sd // figures.efficiency.base
-    return mass, sd, COMPUTED
+    base, sd = charge
+    doubts = faraday_mass(sd, figures, efficiency.base), faraday_mass(base, figures, efficiency.sd)
+    return faraday_mass(base, figures, efficiency.base), root(doubts[0] ** 2 + doubts[1] ** 2), COMPUTED
 
 
-def charge_of(event: Run) -> Measured | None:
-    """Return the charge in microcoulombs: as read, else current (uA) times time (ms); None where neither is known."""
+def charge_of(event: Run) -> tuple[int, int] | None:
+    """Return the charge in microcoulombs and its standard uncertainty; None where it is not known.
+
+    As read, else current (uA) times time (ms).
+    """
     if event.charge is not None:
-        return event.charge
+        return event.charge.base, event.charge.stated_sd
     if event.current is None or event.time is None:
         return None
-    base = event.current.base * event.time.base // 1000
-    sd = _relative(base, event.current) + _relative(base, event.time)
-    return Measured(f"{event.current.typed} x {event.time.typed}", "uC", base, sd)
+    return product(event.current.base, event.current.stated_sd, event.time.base, event.time.stated_sd, 1000)
 
 
 def faraday_mass(charge: int, figures: Deposit, efficiency_ppm: int) -> int:
     """Return the mass in micrograms: M Q / (z F) x efficiency (Faraday's laws of electrolysis)."""
     with localcontext() as context:
-        context.prec = 40
+        context.prec = 60
         mass = Decimal(figures.molar_mass) * charge * efficiency_ppm
         mass /= figures.valence * Decimal(figures.faraday) * MILLION
         return int(mass.to_integral_value(ROUND_HALF_EVEN))
-
-
-def _relative(amount: int, measured: Measured) -> int:
-    """Return the uncertainty of an amount that is proportional to a measured figure."""
-    return abs(amount) * (measured.sd or 0) // max(abs(measured.base), 1)

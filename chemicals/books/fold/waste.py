@@ -1,8 +1,8 @@
 """Waste: into the container, and with the container to a receiver."""
 
 from chemicals.books.events import OBSERVED, RECEIVER, DrumOff, HandOver
+from chemicals.books.fold.folding import Folding
 from chemicals.books.fold.making import fold_move
-from chemicals.books.fold.state import Folding
 
 
 def fold_drum_off(folding: Folding, event: DrumOff) -> None:

@@ -87,6 +87,7 @@ class Migration(migrations.Migration):
                 ('id', models.BigAutoField(auto_created=True, primary_key=True, serialize=False, verbose_name='ID')),
                 ('amount', models.BigIntegerField(null=True)),
                 ('variance', chemicals.ledger.fields.ExactIntegerField()),
+                ('known_part', models.BigIntegerField(default=0)),
                 ('component', models.ForeignKey(on_delete=django.db.models.deletion.PROTECT, related_name='holdings', to='ledger.component')),
                 ('workshop', models.ForeignKey(on_delete=django.db.models.deletion.PROTECT, related_name='holdings', to='workshop.workshop')),
                 ('vessel', models.ForeignKey(on_delete=django.db.models.deletion.PROTECT, related_name='holdings', to='ledger.vessel')),
