@@ -24,7 +24,7 @@ def load_state(workshop: Workshop, vessels: Iterable[str]) -> State:
         "vessel__uuid", "component__code", "amount", "variance", "known_part"
     )
     for vessel, component, amount, variance, known_part in rows:
-        state.holdings[str(vessel), component] = Holding(amount, variance, known_part)
+        state.put(str(vessel), component, Holding(amount, variance, known_part))
     memories = models.Memory.objects.filter(vessel__uuid__in=names).values_list("vessel__uuid", "incomplete", "poured")
     for vessel, incomplete, poured in memories:
         state.vessels[str(vessel)] = Vessel(incomplete, frozenset(poured))

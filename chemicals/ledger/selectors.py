@@ -5,7 +5,7 @@ from dataclasses import dataclass
 from datetime import datetime
 from uuid import UUID
 
-from django.db.models import F, Max, QuerySet, Sum
+from django.db.models import F, Max, Model, Q, QuerySet, Sum
 from django_scopes import scope, scopes_disabled
 
 from chemicals.books import fold
@@ -88,27 +88,27 @@ def list_postings_of(entry: Entry) -> QuerySet[Posting]:
         return postings.order_by("transfer", "amount")
 
 
-def get_balances_at(workshop: Workshop, at: datetime) -> dict[tuple[str, str], int | None]:
-    """Return (vessel uuid, component) -> what it held at that moment; None is unknown. Two queries, three if any is.
+def get_balances_before(workshop: Workshop, before: datetime) -> dict[tuple[str, str], int | None]:
+    """Return (vessel uuid, component) -> what it held just before a moment; None is unknown.
 
-    Amounts are sums of postings; what was unknown at the moment is looked up where there ever was an unknown.
+    Four queries, one more if anything ever was unknown. Amounts are sums of postings; what was unknown at the moment is looked up where there ever was an unknown.
     """
     with scope(workshop=workshop):
         rows = (
-            Posting.objects.filter(vessel__isnull=False, occurred_at__lte=at)
+            Posting.objects.filter(vessel__isnull=False, occurred_at__lt=before)
             .order_by()
             .values_list("vessel_id", "component_id")
             .annotate(total=Sum("amount"))
         )
         sums = {(vessel, component): total for vessel, component, total in rows}
-        unknown = _unknown_at(at)
+        unknown = _unknown_before(before)
         return _with_names(workshop, {**sums, **unknown})
 
 
-def _unknown_at(at: datetime) -> dict[tuple[int, int], int | None]:
+def _unknown_before(before: datetime) -> dict[tuple[int, int], int | None]:
     """Return the pairs whose last content at that moment was unknown."""
     ever = set(
-        Content.objects.filter(amount=None, occurred_at__lte=at).order_by().values_list("vessel_id", "component_id")
+        Content.objects.filter(amount=None, occurred_at__lt=before).order_by().values_list("vessel_id", "component_id")
     )
     if not ever:
         return {}
@@ -116,7 +116,7 @@ def _unknown_at(at: datetime) -> dict[tuple[int, int], int | None]:
     contents = Content.objects.filter(
         vessel_id__in={vessel for vessel, _ in ever},
         component_id__in={component for _, component in ever},
-        occurred_at__lte=at,
+        occurred_at__lt=before,
     ).order_by("occurred_at", "sequence")
     for vessel, component, amount in contents.values_list("vessel_id", "component_id", "amount"):
         last[vessel, component] = amount
@@ -175,18 +175,19 @@ def _verify_holdings(state: State) -> Iterator[tuple[int, str]]:
 
 def count_crossings() -> dict[str, int]:
     """Return how many rows of the ledger point into another workshop, by relation; all zero in a sound database."""
+    tables: dict[type[Model], tuple[str, ...]] = {
+        Vessel: ("place", "product", "created_by"),
+        Posting: ("entry", "component", "vessel"),
+        Holding: ("vessel", "component"),
+        Content: ("entry", "vessel", "component"),
+        Finding: ("entry",),
+        Memory: ("vessel",),
+    }
     with scopes_disabled():
         return {
-            f"{table.__name__.lower()}.{relation}": table._default_manager.exclude(**{f"{relation}__workshop": F("workshop")})
-            .exclude(**{relation: None})
-            .count()
-            for table, relations in {
-                Vessel: ("place", "product", "created_by"),
-                Posting: ("entry", "component", "vessel"),
-                Holding: ("vessel", "component"),
-                Content: ("entry", "vessel", "component"),
-                Finding: ("entry",),
-                Memory: ("vessel",),
-            }.items()
+            f"{table.__name__.lower()}.{relation}": table._default_manager.exclude(
+                Q(**{relation: None}) | Q(**{f"{relation}__workshop": F("workshop")})
+            ).count()
+            for table, relations in tables.items()
             for relation in relations
         }

@@ -1,0 +1,82 @@
+"""May this be done? Asks what was poured in, what the waste stream may hold, and what must never meet."""
+
+from collections.abc import Iterator
+from dataclasses import dataclass
+from datetime import datetime
+
+from django_scopes import scope
+
+from chemicals.books import events
+from chemicals.books.events import BOUNDARIES
+from chemicals.books.occurred import Occurred
+from chemicals.ledger.models import Vessel
+from chemicals.ledger.selectors import read_memory
+from chemicals.process.inputs import Input
+from chemicals.process.selectors import Trial, try_out
+from chemicals.register.selectors import list_reactivity
+from chemicals.science.reactivity import UNKNOWN, find_dangers
+from chemicals.workshop.models import Membership, Workshop
+from compliance.waste.selectors import get_declared_reactivity
+
+FIRST_STEPS = (
+    "Everyone out, and warn others. Shut off from outside only. Call the emergency number.",
+    "Nobody returns without breathing apparatus; oxygen is given by trained people.",
+    "Follow your local rules and the written instruction of this workplace.",
+)
+"""What to do first where liquids met that must never meet."""
+
+
+@dataclass(frozen=True)
+class Preview:
+    """The answer before anything is written: allowed or not, why, and what would be recorded."""
+
+    allowed: bool
+    reasons: tuple[str, ...]
+    trial: Trial
+
+
+def preview(member: Membership, now: datetime, data: Input, occurred: Occurred | None) -> Preview:
+    """Return the verdict on an input and what would follow from it. Writes nothing."""
+    trial = try_out(member, now, data, occurred)
+    reasons = tuple(find_reasons(member.workshop, trial.event))
+    return Preview(not reasons, reasons, trial)
+
+
+def find_reasons(workshop: Workshop, event: events.Event) -> Iterator[str]:
+    """Yield why this must not be done: every pair of liquids that would meet, with the danger named."""
+    with scope(workshop=workshop):
+        rows = Vessel.objects.filter(uuid__in=event.vessels()).select_related("workshop")
+        vessels = {str(vessel.uuid): vessel for vessel in rows}
+    for one, other in _meetings(event):
+        if one not in BOUNDARIES:
+            for danger in find_dangers(react_as(vessels[one]), react_as(vessels[other])):
+                yield (
+                    f"{vessels[one].name} ({danger.first}) and {vessels[other].name} ({danger.second}) must never "
+                    f"meet, either way round: {danger.danger}."
+                )
+
+
+def _meetings(event: events.Event) -> Iterator[tuple[str, str]]:
+    """Yield every pair of vessels whose contents would meet."""
+    if isinstance(event, events.Move):
+        yield event.source, event.target
+    elif isinstance(event, events.TopUp):
+        yield event.source, event.tank
+    elif isinstance(event, events.MakeUp):
+        stocks = [item.stock for item in event.ingredients]
+        for number, stock in enumerate(stocks):
+            yield stock, event.tank
+            yield from ((stock, other) for other in stocks[:number] if other != stock)
+
+
+def react_as(vessel: Vessel) -> frozenset[str]:
+    """Return what a vessel may react as: everything poured in since last empty, not today's balance.
+
+    A vessel with an incomplete list into which nothing known was poured may hold anything.
+    """
+    incomplete, poured = read_memory(vessel)
+    known = list_reactivity(vessel.workshop, poured)
+    kinds = {kind for key in poured for kind in known.get(key, [UNKNOWN])}
+    if incomplete and not poured:
+        kinds.add(UNKNOWN)
+    return frozenset(kinds | get_declared_reactivity(vessel))

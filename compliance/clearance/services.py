@@ -1,0 +1,55 @@
+"""The door through which every record of matter goes: ask first, then record the answer with the fact."""
+
+from collections.abc import Sequence
+from datetime import datetime
+from uuid import UUID
+
+from django.db import transaction
+
+from chemicals.books.clearance import ALLOWED, INCIDENT, Clearance
+from chemicals.books.occurred import Occurred
+from chemicals.journal.services import Appended, lock_chain
+from chemicals.process.inputs import Input
+from chemicals.process.selectors import try_out
+from chemicals.process.services import record_matter
+from chemicals.workshop.errors import ConflictError
+from chemicals.workshop.models import Membership
+from chemicals.workshop.permissions import require_writer
+from compliance.clearance.selectors import FIRST_STEPS, find_reasons
+
+
+class RefusedError(ConflictError):
+    """This may not be done. If it has happened already, it is recorded as an incident."""
+
+    def __init__(self, reasons: Sequence[str]) -> None:
+        super().__init__(" ".join(reasons))
+        self.reasons = tuple(reasons)
+
+
+def record(
+    *,
+    actor: Membership,
+    now: datetime,
+    key: UUID,
+    data: Input,
+    occurred: Occurred | None = None,
+    already_happened: bool = False,
+    attachments: Sequence[str] = (),
+) -> Appended:
+    """Record what happened, if it may be done; else raise RefusedError, unless it has happened already."""
+    require_writer(actor)
+    with transaction.atomic():
+        lock_chain(actor)  # nothing is poured in between the answer and the record
+        reasons = tuple(find_reasons(actor.workshop, try_out(actor, now, data, occurred).event))
+        if reasons and not already_happened:
+            raise RefusedError(reasons)
+        clearance = Clearance(INCIDENT, reasons + FIRST_STEPS) if reasons else Clearance(ALLOWED)
+        return record_matter(
+            actor=actor,
+            now=now,
+            key=key,
+            data=data,
+            occurred=occurred,
+            clearance=clearance,
+            attachments=attachments,
+        )

@@ -1,0 +1,146 @@
+"""Writes about receivers and drop-offs: draft, packed with a manifest, handed over."""
+
+from datetime import date, datetime
+from uuid import uuid5
+
+from django.db import transaction
+from django_scopes import scope
+
+from chemicals.books.occurred import Occurred
+from chemicals.process.inputs import HandOverInput
+from chemicals.science.quantity import Quantity, parse, show
+from chemicals.science.reactivity import find_dangers
+from chemicals.workshop.errors import ConflictError, FieldError, InvalidInputError
+from chemicals.workshop.models import Membership
+from chemicals.workshop.permissions import require_same_workshop, require_writer
+from compliance.clearance.selectors import react_as
+from compliance.clearance.services import RefusedError, record
+from compliance.documents.models import PaperKind
+from compliance.documents.services import issue_paper
+from compliance.dropoffs.manifest import build_manifest
+from compliance.dropoffs.models import DropOff, DropOffContainer, Mode, Receiver, State
+from compliance.waste.models import WasteContainer
+
+
+def create_receiver(*, actor: Membership, name: str, address: str = "", reference: str = "") -> Receiver:
+    """Create a receiver."""
+    require_writer(actor)
+    with transaction.atomic(), scope(workshop=actor.workshop):
+        if not name.strip():
+            raise InvalidInputError.of("name", "Write who takes the waste.")
+        if Receiver.objects.filter(name=name.strip()).exists():
+            raise InvalidInputError.of("name", "There is a receiver of this name. Choose it from the list.")
+        return Receiver.objects.create(
+            workshop=actor.workshop, name=name.strip(), address=address.strip(), reference=reference.strip()
+        )
+
+
+def create_drop_off(
+    *,
+    actor: Membership,
+    now: datetime,
+    receiver: Receiver,
+    mode: str,
+    planned_for: date,
+    containers: list[WasteContainer],
+) -> DropOff:
+    """Draft a drop-off of closed containers."""
+    require_writer(actor)
+    require_same_workshop(actor, receiver, *(container.vessel for container in containers))
+    errors = []
+    if mode not in Mode.values:
+        errors.append(FieldError("mode", "Choose brought or picked up."))
+    if not containers:
+        errors.append(FieldError("containers", "Choose at least one closed container."))
+    errors.extend(
+        FieldError("containers", f"{container.vessel.name} is not closed. Weigh and close it first.")
+        for container in containers
+        if container.closed_at is None
+    )
+    with transaction.atomic(), scope(workshop=actor.workshop):
+        taken = DropOffContainer.objects.filter(vessel__in=[container.vessel for container in containers])
+        errors.extend(
+            FieldError("containers", f"{row.vessel.name} goes along on another drop-off already.")
+            for row in taken.select_related("vessel")
+        )
+        if errors:
+            raise InvalidInputError(errors)
+        drop_off = DropOff.objects.create(
+            workshop=actor.workshop,
+            receiver=receiver,
+            mode=mode,
+            planned_for=planned_for,
+            created_at=now,
+            created_by=actor,
+        )
+        DropOffContainer.objects.bulk_create(
+            DropOffContainer(drop_off=drop_off, vessel=container.vessel) for container in containers
+        )
+        return drop_off
+
+
+def find_load_dangers(containers: list[WasteContainer]) -> tuple[str, ...]:
+    """Return every pair of containers that must not share a vehicle or a bund, with the danger named."""
+    found = []
+    kinds = [react_as(container.vessel) for container in containers]
+    for number, container in enumerate(containers):
+        for other in range(number):
+            found += [
+                f"{containers[other].vessel.name} and {container.vessel.name} must not go in one load: {danger.danger}."
+                for danger in find_dangers(kinds[number], kinds[other])
+            ]
+    return tuple(found)
+
+
+def pack_drop_off(*, actor: Membership, now: datetime, drop_off: DropOff) -> DropOff:
+    """Pack: issue the manifest with the contents as the books have them now. From here on the list stands."""
+    require_writer(actor)
+    require_same_workshop(actor, drop_off)
+    with transaction.atomic(), scope(workshop=actor.workshop):
+        locked = DropOff.objects.select_for_update().select_related("receiver", "workshop").get(pk=drop_off.pk)
+        if locked.state != State.DRAFT:
+            raise ConflictError("This drop-off is packed already.")
+        containers = _containers_of(locked)
+        dangers = find_load_dangers(containers)
+        if dangers:
+            raise RefusedError(dangers)
+        key = uuid5(locked.uuid, "manifest")
+        data = build_manifest(locked, containers)
+        locked.manifest = issue_paper(actor=actor, now=now, key=key, kind=PaperKind.MANIFEST, data=data)
+        locked.state = State.PACKED
+        locked.save(update_fields=["manifest", "state"])
+        return locked
+
+
+def hand_over(*, actor: Membership, now: datetime, drop_off: DropOff, occurred: Occurred | None = None) -> DropOff:
+    """Record that every container went to the receiver, all of it."""
+    require_writer(actor)
+    require_same_workshop(actor, drop_off)
+    with transaction.atomic(), scope(workshop=actor.workshop):
+        locked = DropOff.objects.select_for_update().select_related("receiver", "workshop").get(pk=drop_off.pk)
+        if locked.state != State.PACKED:
+            raise ConflictError("Only a packed drop-off can be handed over. Pack it first.")
+        for container in _containers_of(locked):
+            record(
+                actor=actor,
+                now=now,
+                key=uuid5(locked.uuid, str(container.vessel.uuid)),
+                data=HandOverInput(
+                    container=container.vessel.uuid, receiver=locked.receiver.name, gross=_gross(container)
+                ),
+                occurred=occurred,
+            )
+        locked.state = State.HANDED_OVER
+        locked.save(update_fields=["state"])
+        return locked
+
+
+def _containers_of(drop_off: DropOff) -> list[WasteContainer]:
+    rows = WasteContainer.objects.filter(vessel__drop_off_container__drop_off=drop_off)
+    return list(rows.select_related("vessel__workshop", "stream").order_by("vessel__name"))
+
+
+def _gross(container: WasteContainer) -> Quantity | None:
+    if container.gross is None:
+        return None
+    return parse(show(container.gross, "mass", digits=16), "mass")

@@ -1,0 +1,69 @@
+"""Reads about waste: streams, containers, what a container may react as."""
+
+from dataclasses import dataclass
+from uuid import UUID
+
+from django.db.models import Prefetch, QuerySet
+from django_scopes import scope
+
+from chemicals.books.events import VOLUME
+from chemicals.ledger.models import Holding, Vessel, VesselKind
+from chemicals.workshop.errors import NotFoundError
+from chemicals.workshop.models import Membership
+from compliance.waste.models import WasteContainer, WasteStream
+
+
+def list_streams_for(member: Membership) -> QuerySet[WasteStream]:
+    """Return the waste streams of the member's workshop, by name. One query."""
+    with scope(workshop=member.workshop):
+        return WasteStream.objects.order_by("name")
+
+
+def get_stream_for(member: Membership, uuid: UUID) -> WasteStream:
+    """Return one waste stream of the member's workshop."""
+    try:
+        return list_streams_for(member).get(uuid=uuid)
+    except WasteStream.DoesNotExist as error:
+        raise NotFoundError("There is no such waste stream in this workshop.") from error
+
+
+def list_containers_for(member: Membership) -> QuerySet[WasteContainer]:
+    """Return the waste containers with stream, vessel and volume held, by name. Two queries."""
+    with scope(workshop=member.workshop):
+        volumes = Prefetch("vessel__holdings", Holding.objects.filter(component__code=VOLUME), to_attr="volumes")
+        return (
+            WasteContainer.objects.select_related("vessel__place", "stream", "vessel__drop_off_container__drop_off")
+            .prefetch_related(volumes)
+            .order_by("vessel__name")
+        )
+
+
+def get_container_for(member: Membership, uuid: UUID) -> WasteContainer:
+    """Return one waste container by its vessel's uuid."""
+    try:
+        return list_containers_for(member).get(vessel__uuid=uuid)
+    except WasteContainer.DoesNotExist as error:
+        raise NotFoundError("There is no such waste container in this workshop.") from error
+
+
+@dataclass(frozen=True)
+class Fill:
+    """How full a container is: nanolitres; None is unknown."""
+
+    volume: int | None
+    capacity: int | None
+
+
+def read_fill(container: WasteContainer) -> Fill:
+    """Return how full a listed container is, without a query."""
+    rows: list[Holding] = getattr(container.vessel, "volumes", [])
+    return Fill(rows[0].amount if rows else 0, container.vessel.capacity)
+
+
+def get_declared_reactivity(vessel: Vessel) -> frozenset[str]:
+    """Return what the stream of a waste container may react as, whatever is in the container today."""
+    if vessel.kind != VesselKind.WASTE:
+        return frozenset()
+    with scope(workshop=vessel.workshop):
+        container = WasteContainer.objects.filter(vessel=vessel).select_related("stream").first()
+    return frozenset() if container is None else frozenset(container.stream.reactivity)
