@@ -2,7 +2,7 @@
 
 from collections.abc import Iterable
 
-from chemicals.books.events import ASSUMED, BOUNDARIES, COMPUTED, GROSS_MASS, UNACCOUNTED, VOLUME, Figure
+from chemicals.books.events import ASSUMED, BOUNDARIES, COMPUTED, GROSS_MASS, OBSERVED, UNACCOUNTED, VOLUME, Figure
 from chemicals.books.fold.arithmetic import portion, product, root
 from chemicals.books.fold.state import (
     EVERY,
@@ -67,12 +67,12 @@ class Folding:
         """Move a weighed part of a stock: every component goes in proportion to the mass."""
         self._take(source, target, mass, sd, basis, by=GROSS_MASS)
 
-    def pour_all(self, source: str, target: str, basis: str) -> None:
-        """Move everything; the source is empty afterwards and remembers nothing."""
+    def pour_all(self, source: str, target: str) -> None:
+        """Move everything, as the books have it; the source is empty afterwards and remembers nothing."""
         if source == target:
             return
         for component in self.state.components(source):
-            self._move_all(component, source, target, basis)
+            self._move_all(component, source, target)
         self._remember_from(source, target)
         self.state.put_vessel(source, Vessel())
 
@@ -117,6 +117,7 @@ class Folding:
         if whole.amount is None or whole.amount <= 0:
             self._take_blindly(source, target, part, sd, basis, by=by)
             return
+        follows = COMPUTED if basis == OBSERVED else basis
         for component in self.state.components(source):
             held = self.state.holding(source, component)
             if component == by:
@@ -125,7 +126,7 @@ class Folding:
                 self.move_unknown(component, source, target)
             else:
                 gone = portion(held.amount, held.variance, part, sd, whole.amount, whole.variance)
-                self._shift(component, source, target, *gone, basis)
+                self._shift(component, source, target, *gone, follows)
         self._remember_from(source, target)
 
     def _take_blindly(self, source: str, target: str, part: int, sd: int, basis: str, *, by: str) -> None:
@@ -142,11 +143,11 @@ class Folding:
             for end in {source, target} - BOUNDARIES:
                 self.remember(end, (), incomplete=True, listed=[by])
 
-    def _move_all(self, component: str, source: str, target: str, basis: str) -> None:
+    def _move_all(self, component: str, source: str, target: str) -> None:
         held = self.state.holding(source, component)
+        basis = COMPUTED if held.amount is not None else ASSUMED
         if held.amount is None:
             self.move_unknown(component, source, target)
-            basis = ASSUMED
         if held.booked > 0:
             self._shift(component, source, target, held.booked, held.variance, 0, basis)
         left = self.state.holding(source, component)

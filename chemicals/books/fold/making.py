@@ -100,7 +100,7 @@ def fold_top_up(folding: Folding, event: TopUp) -> None:
 def fold_move(folding: Folding, event: Move) -> None:
     """Vessel -> vessel in proportion to the volume, or all of it."""
     if event.volume is None:
-        folding.pour_all(event.source, event.target, OBSERVED)
+        folding.pour_all(event.source, event.target)
     else:
         folding.pour(event.source, event.target, event.volume.base, event.volume.stated_sd, OBSERVED)
 

@@ -1,6 +1,9 @@
 """The state of the books while folding: what every vessel holds, and what followed from an entry."""
 
+from bisect import insort
+from collections.abc import Mapping
 from dataclasses import dataclass, field
+from types import MappingProxyType
 
 from chemicals.books.fold.arithmetic import root
 
@@ -55,14 +58,22 @@ class Vessel:
 class State:
     """All holdings and vessels. A missing holding is nothing, or unknown where the vessel's list is incomplete."""
 
-    holdings: dict[tuple[str, str], Holding] = field(default_factory=dict)
     vessels: dict[str, Vessel] = field(default_factory=dict)
-    touched: set[tuple[str, str]] = field(default_factory=set)
+    touched: set[tuple[str, str]] = field(default_factory=set, compare=False)
     """(vessel, component) of every holding written, EVERY for the vessel itself; the caller clears it."""
+    _holdings: dict[tuple[str, str], Holding] = field(default_factory=dict)
+    _listed: dict[str, list[str]] = field(default_factory=dict, compare=False)
+
+    @property
+    def holdings(self) -> Mapping[tuple[str, str], Holding]:
+        """Return all holdings by (vessel, component), to read; they are written by ``put``."""
+        return MappingProxyType(self._holdings)
 
     def put(self, vessel: str, component: str, holding: Holding) -> None:
         """Write a holding."""
-        self.holdings[vessel, component] = holding
+        if (vessel, component) not in self._holdings:
+            insort(self._listed.setdefault(vessel, []), component)
+        self._holdings[vessel, component] = holding
         self.touched.add((vessel, component))
 
     def put_vessel(self, name: str, vessel: Vessel) -> None:
@@ -76,14 +87,14 @@ class State:
 
     def holding(self, vessel: str, component: str) -> Holding:
         """Return what a vessel holds of a component."""
-        known = self.holdings.get((vessel, component))
+        known = self._holdings.get((vessel, component))
         if known is not None:
             return known
         return Holding(None) if self.vessel(vessel).incomplete else Holding(0)
 
-    def components(self, vessel: str) -> list[str]:
+    def components(self, vessel: str) -> tuple[str, ...]:
         """Return the components listed in a vessel, in a fixed order."""
-        return sorted(component for name, component in self.holdings if name == vessel)
+        return tuple(self._listed.get(vessel, ()))
 
 
 @dataclass(frozen=True)

@@ -1,6 +1,6 @@
 """Waste: into the container, and with the container to a receiver."""
 
-from chemicals.books.events import OBSERVED, RECEIVER, DrumOff, HandOver
+from chemicals.books.events import RECEIVER, DrumOff, HandOver
 from chemicals.books.fold.folding import Folding
 from chemicals.books.fold.making import fold_move
 
@@ -12,4 +12,4 @@ def fold_drum_off(folding: Folding, event: DrumOff) -> None:
 
 def fold_hand_over(folding: Folding, event: HandOver) -> None:
     """Waste container -> receiver: everything, and the container remembers nothing."""
-    folding.pour_all(event.container, RECEIVER, OBSERVED)
+    folding.pour_all(event.container, RECEIVER)
