@@ -1,22 +1,10 @@
 """What can be wrong with a paper: typed, all at once, each naming the field and the remedy."""
 
-from collections.abc import Sequence
-from typing import NamedTuple
+from chemicals.workshop.errors import FieldError, InvalidInputError
 
 
-class Problem(NamedTuple):
-    """One thing wrong: the field as a path ("containers[2].origin") and what to do about it."""
-
-    field: str
-    message: str
-
-
-class PaperError(ValueError):
-    """A paper that cannot be drawn; `problems` lists everything that is wrong."""
-
-    def __init__(self, problems: Sequence[Problem]) -> None:
-        self.problems = tuple(problems)
-        super().__init__("; ".join(f"{problem.field}: {problem.message}" for problem in problems))
+class PaperError(InvalidInputError):
+    """A paper that cannot be drawn; fields are paths into its data, such as "containers[2].origin"."""
 
 
 class PaperDataError(PaperError):
@@ -28,4 +16,7 @@ class MissingGlyphError(PaperError):
 
 
 class DoesNotFitError(PaperError):
-    """The text does not fit on the label at a legible size."""
+    """The text does not fit on the label or the page at a legible size."""
+
+
+__all__ = ["DoesNotFitError", "FieldError", "MissingGlyphError", "PaperDataError", "PaperError"]

@@ -4,8 +4,8 @@ from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from typing import Any, Protocol
 
-from . import fonts
-from .fonts import Style
+from compliance.documents import fonts
+from compliance.documents.fonts import Style
 
 MM = 72 / 25.4
 _LEADING = 1.22  # line distance as a share of the size

@@ -16,7 +16,7 @@ import font_source_sans_pro
 from reportlab.pdfbase import pdfmetrics
 from reportlab.pdfbase.ttfonts import TTFont
 
-from .errors import MissingGlyphError, Problem
+from compliance.documents.errors import FieldError, MissingGlyphError
 
 REGULAR, SEMIBOLD, BOLD = "SourceSansPro", "SourceSansProSemibold", "SourceSansProBold"
 
@@ -67,7 +67,7 @@ def _covered() -> frozenset[str]:
 def check_glyphs(data: object) -> None:
     """Raise `MissingGlyphError` naming each character that cannot be drawn, with its field; line breaks are allowed."""
     problems = [
-        Problem(path, f"the paper's font cannot draw {_name(char)}: write it in another way")
+        FieldError(path, f"the paper's font cannot draw {_name(char)}: write it in another way")
         for path, text in _strings(data, "")
         for char in dict.fromkeys(text)
         if char != "\n" and char not in _covered()

@@ -5,14 +5,14 @@ from typing import Any, NamedTuple
 
 from django.utils.translation import gettext as _
 
-from . import words
-from .codes import draw_code
-from .errors import DoesNotFitError, Problem
-from .flow import MM, Block, Columns, Framed, Gap, Picture, Rule, Stack, Text
-from .fonts import BOLD, REGULAR, SEMIBOLD, Style
-from .pictograms import pictogram_rows
-from .shapes import WasteLabelData
-from .stock import PAGES, Stock
+from compliance.documents import words
+from compliance.documents.codes import draw_code
+from compliance.documents.errors import DoesNotFitError, FieldError
+from compliance.documents.flow import MM, Block, Columns, Framed, Gap, Picture, Rule, Stack, Text
+from compliance.documents.fonts import BOLD, REGULAR, SEMIBOLD, Style
+from compliance.documents.pictograms import pictogram_rows
+from compliance.documents.shapes import WasteLabelData
+from compliance.documents.stock import PAGES, Stock
 
 # Sizes run together from the largest to the smallest. The aim for a pictogram is a fifteenth of the label, as
 # Regulation (EC) 1272/2008, annex I, 1.2.1 asks of supply labels, and never less than its 1 cm2; where the text needs
@@ -55,7 +55,7 @@ def _fitting(data: WasteLabelData, stock: Stock, width: float, height: float) ->
         if body.height(width) + foot.height(width) <= height:
             return body, foot
     message = _("the text does not fit on %(stock)s at a legible size: choose larger label stock or say less")
-    raise DoesNotFitError([Problem("stock", message % {"stock": stock.name})])
+    raise DoesNotFitError([FieldError("stock", message % {"stock": stock.name})])
 
 
 def _sizes(stock: Stock) -> Iterator[Sizes]:

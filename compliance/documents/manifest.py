@@ -5,14 +5,14 @@ from typing import Any
 
 from django.utils.translation import gettext as _
 
-from . import words
-from .codes import draw_code
-from .errors import DoesNotFitError, Problem
-from .flow import MM, Block, Columns, Framed, Gap, Group, Picture, Rule, Stack, Text, paginate
-from .fonts import BOLD, REGULAR, SEMIBOLD, Style
-from .pictograms import pictogram_rows
-from .shapes import HazardData, ManifestContainerData, ManifestContentData, ManifestData, PaperSize
-from .stock import PAGES
+from compliance.documents import words
+from compliance.documents.codes import draw_code
+from compliance.documents.errors import DoesNotFitError, FieldError
+from compliance.documents.flow import MM, Block, Columns, Framed, Gap, Group, Picture, Rule, Stack, Text, paginate
+from compliance.documents.fonts import BOLD, REGULAR, SEMIBOLD, Style
+from compliance.documents.pictograms import pictogram_rows
+from compliance.documents.shapes import HazardData, ManifestContainerData, ManifestContentData, ManifestData, PaperSize
+from compliance.documents.stock import PAGES
 
 _MARGIN = 15 * MM
 _BODY, _STRONG, _HEADING = Style(REGULAR, 9), Style(SEMIBOLD, 9), Style(BOLD, 11)
@@ -33,7 +33,9 @@ def draw_manifest(canvas: Any, data: ManifestData, paper_size: PaperSize) -> Non
     room = high - 2 * _MARGIN - head.height(width) - foot_height
     pages = paginate(list(_groups(data)), width, room)
     if any(sum(block.height(width) for block in page) > room for page in pages):
-        raise DoesNotFitError([Problem("containers", _("one text is longer than a page: say less, or in more lines"))])
+        raise DoesNotFitError(
+            [FieldError("containers", _("one text is longer than a page: say less, or in more lines"))]
+        )
     for number, page in enumerate(pages, start=1):
         head.draw(canvas, _MARGIN, high - _MARGIN, width)
         Stack(page).draw(canvas, _MARGIN, high - _MARGIN - head.height(width), width)

@@ -10,8 +10,8 @@ import re
 from collections.abc import Iterator, Sequence
 from typing import Any, Literal, NamedTuple
 
-from .flow import Block, Picture
-from .shapes import Pictogram
+from compliance.documents.flow import Block, Picture
+from compliance.documents.shapes import Pictogram
 
 Ink = Literal["black", "white", "red"]
 INKS: dict[Ink, str] = {"black": "#000000", "white": "#ffffff", "red": "#e1001a"}

@@ -6,15 +6,15 @@ from typing import Any, cast
 from django.template.loader import render_to_string
 from django.utils.translation import get_language
 
-from . import fonts
-from .check import check_data
-from .flow import MM
-from .label import draw_label
-from .manifest import draw_manifest
-from .shapes import ManifestData, PaperSize, WasteLabelData
-from .stock import PAGES, find_stock
-from .twin import twin_context
-from .words import paper_title
+from compliance.documents import fonts
+from compliance.documents.check import check_data
+from compliance.documents.flow import MM
+from compliance.documents.label import draw_label
+from compliance.documents.manifest import draw_manifest
+from compliance.documents.shapes import ManifestData, PaperSize, WasteLabelData
+from compliance.documents.stock import PAGES, find_stock
+from compliance.documents.twin import twin_context
+from compliance.documents.words import paper_title
 
 
 def render_pdf(kind: str, data: dict[str, Any], *, paper_size: PaperSize) -> bytes:

@@ -47,7 +47,7 @@ class LabelContentData(TypedDict):
 
 
 class WasteLabelData(TypedDict):
-    """Kind "waste-label". `number`, `chain_*`, `issued_*` and `workshop` are filled in when the paper is issued.
+    """Kind "waste-label". Issuing fills in the fields of `FILLED_IN`.
 
     `stock` names a label stock of `stock.STOCKS` (left out: the first of the paper size); `start` is the first free
     position on a used sheet, 1 being top left, counted along the rows.
@@ -69,6 +69,7 @@ class WasteLabelData(TypedDict):
     chain_sequence: int
     issued_at: str
     issued_by: str
+    paper_size: NotRequired[PaperSize]
     stock: NotRequired[str]
     start: NotRequired[int]
 
@@ -113,7 +114,7 @@ class ManifestContainerData(TypedDict):
 
 
 class ManifestData(TypedDict):
-    """Kind "manifest". `number`, `chain_*`, `issued_*` and `workshop` are filled in when the paper is issued."""
+    """Kind "manifest". Issuing fills in the fields of `FILLED_IN`."""
 
     workshop: WorkshopData
     number: int
@@ -126,6 +127,7 @@ class ManifestData(TypedDict):
     chain_sequence: int
     issued_at: str
     issued_by: str
+    paper_size: NotRequired[PaperSize]
 
 
 PaperData = WasteLabelData | ManifestData
@@ -133,3 +135,5 @@ SHAPES: dict[str, type[WasteLabelData] | type[ManifestData]] = {
     "waste-label": WasteLabelData,
     "manifest": ManifestData,
 }
+FILLED_IN = frozenset({"workshop", "number", "chain_head", "chain_sequence", "issued_at", "issued_by", "paper_size"})
+"""Fields that issuing fills in; whoever asks for a paper leaves them out."""

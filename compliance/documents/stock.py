@@ -2,8 +2,8 @@
 
 from typing import NamedTuple
 
-from .errors import PaperDataError, Problem
-from .shapes import PaperSize
+from compliance.documents.errors import FieldError, PaperDataError
+from compliance.documents.shapes import PaperSize
 
 PAGES: dict[PaperSize, tuple[float, float]] = {"A4": (210.0, 297.0), "Letter": (215.9, 279.4)}  # ISO 216; ANSI Y14.1
 
@@ -58,7 +58,7 @@ def find_stock(name: str | None, start: int, page: PaperSize) -> Stock:
     chosen = next((stock for stock in fitting if name in (None, stock.name)), None)
     if chosen is None:
         names = ", ".join(stock.name for stock in fitting)
-        raise PaperDataError([Problem("stock", f"{name!r} is no label stock on {page}: use one of {names}")])
+        raise PaperDataError([FieldError("stock", f"{name!r} is no label stock on {page}: use one of {names}")])
     if not 1 <= start <= chosen.labels:
-        raise PaperDataError([Problem("start", f"{chosen.name} has positions 1 to {chosen.labels}, not {start}")])
+        raise PaperDataError([FieldError("start", f"{chosen.name} has positions 1 to {chosen.labels}, not {start}")])
     return chosen

@@ -4,10 +4,10 @@ from typing import Any, cast
 
 from django.utils.translation import gettext as _
 
-from . import words
-from .codes import code_svg
-from .pictograms import INKS, parts
-from .shapes import HazardData, ManifestContainerData, ManifestData, Pictogram, WasteLabelData
+from compliance.documents import words
+from compliance.documents.codes import code_svg
+from compliance.documents.pictograms import INKS, parts
+from compliance.documents.shapes import HazardData, ManifestContainerData, ManifestData, Pictogram, WasteLabelData
 
 
 def twin_context(kind: str, data: dict[str, Any]) -> dict[str, Any]:

@@ -7,7 +7,7 @@ from typing import Any, Literal
 from django.utils.translation import gettext as _
 from django.utils.translation import gettext_lazy
 
-from .shapes import HazardData, ManifestContainerData, Pictogram, SignalWord
+from compliance.documents.shapes import HazardData, ManifestContainerData, Pictogram, SignalWord
 
 _SYMBOL_NAMES = {
     "GHS01": gettext_lazy("exploding bomb"),

@@ -170,12 +170,12 @@ def test_a_character_without_a_drawing_is_refused_with_its_name_and_field(label:
     label["workshop"]["name"] = "Shop \U0001f40b\u200b"
     with pytest.raises(MissingGlyphError) as caught:
         render_pdf("waste-label", label, paper_size="A4")
-    problems = {problem.field: problem.message for problem in caught.value.problems}
+    problems = {error.field: error.message for error in caught.value.errors}
     assert problems.keys() == {"contents[1].name", "workshop.name"}
     assert "'漂' (U+6F02 CJK UNIFIED IDEOGRAPH-6F02)" in str(caught.value)
     assert "'🐋' (U+1F40B WHALE)" in str(caught.value)
     assert "(U+200B ZERO WIDTH SPACE)" in str(caught.value)
-    assert len(caught.value.problems) == 5
+    assert len(caught.value.errors) == 5
 
 
 @pytest.mark.parametrize(
@@ -193,7 +193,7 @@ def test_all_faults_of_shape_are_told_at_once_with_their_fields(manifest: Data) 
     manifest["containers"][1] |= {"gross_kg": "1,500", "volume": 3, "codes": [7]}
     with pytest.raises(PaperDataError) as caught:
         render_pdf("manifest", manifest, paper_size="A4")
-    assert {problem.field for problem in caught.value.problems} == {
+    assert {error.field for error in caught.value.errors} == {
         "url",
         "chain_head",
         "number",
