@@ -8,7 +8,7 @@ from urllib.parse import unquote, urlsplit
 from django.core.management.utils import get_random_secret_key
 
 BASE_DIR = Path(__file__).resolve().parents[2]
-DATA = Path(os.environ.get("GRAMLEDGER_DATA", BASE_DIR / ".demo")).resolve()
+DATA = Path(os.environ.get("GRAMLEDGER_DATA") or BASE_DIR / ".demo").resolve()
 """The data folder: database, attachments, secret key. One folder is one installation."""
 
 BIND = os.environ.get("BIND") or "127.0.0.1:8000"
