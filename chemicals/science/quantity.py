@@ -72,6 +72,7 @@ class Quantity:
 _NUMBER: Final = r"[+-]?(?:[0-9]+(?:\.[0-9]*)?|\.[0-9]+)(?:[eE][+-]?[0-9]+)?"
 _PLAIN: Final = re.compile(_NUMBER)
 _GROUPED: Final = re.compile(r"[+-]?[0-9]+(?:[.,'_ ][0-9]+)+")  # more separators than one decimal point
+_RAISED: Final = re.compile(r"[0-9][⁰¹²³⁴⁵⁶⁷⁸⁹₀₁₂₃₄₅₆₇₈₉]")  # 10² is a hundred, and would be tidied into 102
 _NOT_FINITE: Final = re.compile(r"[+-]?(?:nan|inf|infinity|∞)(?![a-z])", re.IGNORECASE)
 _PARTS: Final = re.compile(rf"(?P<number>{_NUMBER})\s*(?P<unit>[a-zA-Z][a-zA-Z ]*)")
 _IN_PARTS: Final = ("time", "mass")  # "4 h 30 min", "5 lb 3 oz"
@@ -81,6 +82,8 @@ def measure(text: str, dimension: str, *, default_unit: str | None = None, allow
     """The amount that the text says, unrounded; a bare number is taken in `default_unit`. Raises QuantityError."""
     typed = _tidy(text)
     example = units.DIMENSIONS[dimension].example
+    if _RAISED.search(text):
+        raise QuantityError("not_a_number", typed=text.strip(), example=example)
     if not typed:
         raise QuantityError("empty", example=example)
     if len(typed) > LONGEST:
@@ -118,7 +121,7 @@ def read_number(text: str, example: str = "1.5") -> Decimal:
     """A bare number, read as strictly as the number of an amount. Raises QuantityError."""
     typed = _tidy(text)
     number, rest = _number(typed, example)
-    if rest or (number and abs(number.adjusted()) > 30):
+    if rest or _RAISED.search(text) or (number and abs(number.adjusted()) > 30):
         raise QuantityError("not_a_number", typed=typed, example=example)
     return number
 
@@ -197,8 +200,8 @@ def _refuse_grouping(number: str) -> None:
     whole = re.sub(r"[^0-9]", "", number[: -len(after) - 1])
     as_decimal = f"{int(whole)}.{after}".rstrip("0").rstrip(".")
     if len(marks) == 1:
-        grouping = len(after) == 3 and len(before) <= 3 and not before.startswith("0")
-        readings = [*readings, as_decimal] if grouping else [as_decimal]
+        comma_can_group = len(after) == 3 and len(before) <= 3 and not before.startswith("0")
+        readings = [*readings, as_decimal] if comma_can_group or marks != [","] else [as_decimal]
     elif marks[-1] != marks[-2]:
         readings = [as_decimal]
     sign = "-" if number.startswith("-") else ""

@@ -85,6 +85,7 @@ def test_what_is_typed_is_understood_and_echoed(typed: str, dimension: str, base
         ("1.500.000 g", "mass", "ambiguous", '"1.500.000" is ambiguous: write 1500000.'),
         ("1 500 g", "mass", "ambiguous", '"1 500" is ambiguous: write 1500 or 1.5.'),
         ("1'500 g", "mass", "ambiguous", '"1\'500" is ambiguous: write 1500 or 1.5.'),
+        ("1 5 g", "mass", "ambiguous", '"1 5" is ambiguous: write 15 or 1.5.'),
         ("1_500 g", "mass", "ambiguous", '"1_500" is ambiguous: write 1500 or 1.5.'),
         ("5 ton", "mass", "ambiguous_unit", '"ton" is ambiguous: write t (1000 kg), short ton or long ton.'),
         ("5 gr", "mass", "ambiguous_unit", '"gr" is ambiguous: write g (gram) or grain.'),
@@ -96,6 +97,7 @@ def test_what_is_typed_is_understood_and_echoed(typed: str, dimension: str, base
         ("Infinity L", "volume", "not_finite", '"Infinity L" is not a finite number: write for example 2.5 L.'),
         ("much", "mass", "not_a_number", 'The number in "much" cannot be read: write for example 2.5 g.'),
         ("1..5 g", "mass", "not_a_number", 'The number in "1..5 g" cannot be read: write for example 2.5 g.'),
+        ("10² g", "mass", "not_a_number", 'The number in "10² g" cannot be read: write for example 2.5 g.'),
         ("5", "mass", "missing_unit", '"5" has no unit: write for example 2.5 g.'),
         ("0.25", "fraction", "missing_unit", '"0.25" has no unit: write for example 25 %.'),
         ("2 L", "mass", "wrong_dimension", '"2 L" is a volume; a mass is needed, for example 2.5 g.'),
@@ -148,6 +150,11 @@ def test_a_long_text_is_refused_before_it_is_read() -> None:
     assert refused.value.code == "too_long"
 
 
+def test_a_fraction_in_one_character_is_never_read_as_digits() -> None:
+    with pytest.raises(QuantityError, match="is not a unit known here"):
+        parse("1½ L", "volume")
+
+
 def test_a_bare_number_takes_the_default_unit() -> None:
     assert parse("0.44", "current", default_unit="A").base == 440_000
     assert parse("0.25", "fraction", default_unit="1").base == 250_000
@@ -174,7 +181,7 @@ def test_a_measure_keeps_what_the_books_could_not() -> None:
     assert measure("0.5 mm2", "area").exact == Decimal("0.5")
 
 
-@pytest.mark.parametrize("typed", ["1,500", "nan", "5 g", "1e31", "1e-31", "", "x"])
+@pytest.mark.parametrize("typed", ["1,500", "nan", "5 g", "1e31", "1e-31", "", "x", "10²"])
 def test_a_bare_number_is_read_as_strictly(typed: str) -> None:
     with pytest.raises(QuantityError):
         read_number(typed)
