@@ -107,8 +107,8 @@ def _party(title: str, name: str, address: str, what: str, value: str) -> Block:
 def _dangers(data: ManifestData) -> Iterator[Block]:
     """What must never be mixed, and the cautions."""
     apart: list[Block] = [Text(_("Must never meet, nor share a bund or a vehicle"), _HEADING)]
-    for other, codes in words.never_together(data["containers"]):
-        apart.append(Columns([Text(other, _STRONG), Text(", ".join(codes), _BODY)], [0.3, 0.7]))
+    for other, which in words.never_together(data["containers"]):
+        apart.append(Columns([Text(other, _STRONG), Text(which, _BODY)], [0.3, 0.7]))
     if len(apart) == 1:
         apart.append(Text(words.nothing_to_avoid(), _BODY))
     yield Framed(Stack(apart), pad=6)

@@ -108,13 +108,19 @@ def load(containers: Sequence[ManifestContainerData]) -> str:
     return _("The load: %(count)d waste containers, gross %(total)s") % {"count": len(containers), "total": total}
 
 
-def never_together(containers: Sequence[ManifestContainerData]) -> list[tuple[str, list[str]]]:
-    """Each thing that must not be met, with the codes of the containers that must not meet it."""
+def never_together(containers: Sequence[ManifestContainerData]) -> list[tuple[str, str]]:
+    """Each thing that must not be met, with the waste containers that must not meet it."""
     found: dict[str, list[str]] = {}
     for container in containers:
         for other in container["must_not_meet"]:
             found.setdefault(other, []).append(container["code"])
-    return list(found.items())
+    return [(other, _which(codes, len(containers))) for other, codes in found.items()]
+
+
+def _which(codes: list[str], total: int) -> str:
+    if len(codes) == total > 3:
+        return _("all %d waste containers") % total
+    return ", ".join(codes)
 
 
 def mode(mode: Literal["brought", "picked up"]) -> str:

@@ -157,6 +157,13 @@ def test_what_must_never_meet_names_the_containers_of_each(manifest: Data) -> No
     assert "cyanideW-0001,W-0002hypochloriteW-0001acidW-0002" in text
 
 
+def test_what_no_container_may_meet_is_said_for_all_at_once(manifest_of: Callable[[int], Data]) -> None:
+    data = manifest_of(5)
+    data["containers"][4]["must_not_meet"] = ["cyanide"]
+    text = squeezed(text_of(render_pdf("manifest", data, paper_size="A4")))
+    assert "cyanideall5wastecontainershypochloriteW-0001,W-0002,W-0003,W-0004" in text
+
+
 def test_without_entered_hazards_a_label_does_not_claim_that_there_are_none(label: Data) -> None:
     label |= {"hazards": {"signal_word": "", "pictograms": [], "statements": []}, "contents": [], "must_not_meet": []}
     text = squeezed(text_of(render_pdf("waste-label", label, paper_size="A4")))
