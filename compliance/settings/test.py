@@ -1,10 +1,13 @@
 """Settings of the test suite: quick hashes, a data folder of its own, the database that DATABASE_URL names."""
 
+import atexit
 import os
+import shutil
 import tempfile
 from pathlib import Path
 
 _folder = tempfile.mkdtemp(prefix="gramledger-test-")
+atexit.register(shutil.rmtree, _folder, ignore_errors=True)
 os.environ["GRAMLEDGER_DATA"] = _folder
 
 from compliance.settings import *  # noqa: E402, F403  (settings are read after the folder is set)
