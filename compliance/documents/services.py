@@ -1,6 +1,7 @@
 """Issuing numbered papers. Drawing comes first and touches nothing; issuing is one short transaction."""
 
 import hashlib
+from collections.abc import Callable
 from dataclasses import dataclass
 from datetime import datetime
 from typing import Any
@@ -20,13 +21,13 @@ from chemicals.workshop.models import Membership
 from chemicals.workshop.permissions import require_writer
 from compliance.documents.check import check_data
 from compliance.documents.models import Paper
-from compliance.documents.shapes import FILLED_IN, PaperSize
+from compliance.documents.shapes import PaperSize
 
-_ATTEMPTS = 5  # how often a paper is drawn anew because another one took its number meanwhile
+_ATTEMPTS = 5  # how often a paper is drawn anew because something was recorded meanwhile
 
 
-class NumberTakenError(ConflictError):
-    """Another paper of this kind was issued between drawing and issuing: draw again."""
+class ChainMovedError(ConflictError):
+    """Something was recorded between drawing and issuing: what the paper says may be out of date. Draw it again."""
 
 
 @dataclass(frozen=True)
@@ -35,49 +36,55 @@ class DrawnPaper:
 
     kind: str
     number: int
+    chain_sequence: int
     data: bytes
     pdf: bytes
 
 
+Build = Callable[[], dict[str, Any]]
+
+
 def issue_paper(
-    *, actor: Membership, now: datetime, kind: str, data: dict[str, Any], key: UUID, paper_size: PaperSize = "A4"
+    *,
+    actor: Membership,
+    now: datetime,
+    kind: str,
+    build: Build,
+    key: UUID,
+    paper_size: PaperSize = "A4",
+    then: Callable[[Paper], None] = lambda paper: None,
 ) -> Paper:
     """Draw a paper under the next number of its kind, keep its bytes and record it in the journal.
 
-    ``data`` has the shape of its kind (``shapes.SHAPES``) without the fields of ``FILLED_IN``. The same ``key`` with
-    the same data returns the first paper, other data raises ConflictError. Raises a PaperError if it cannot be drawn.
+    ``build`` returns data of the shape of its kind (``shapes.SHAPES``) without the fields of ``FILLED_IN``; it is
+    called again if something was recorded meanwhile, so that the paper says what the books say at the chain head
+    printed on it. ``then`` does further writes in the paper's transaction. The same ``key`` returns the first paper.
+    Raises a PaperError if it cannot be drawn.
     """
+    require_writer(actor)
     for _attempt in range(_ATTEMPTS):
-        first = find_issued(actor=actor, kind=kind, data=data, key=key)
+        first = find_issued(actor=actor, kind=kind, key=key)
         if first is not None:
             return first
-        drawn = draw_paper(actor=actor, now=now, kind=kind, data=data, paper_size=paper_size)
+        drawn = draw_paper(actor=actor, now=now, kind=kind, build=build, paper_size=paper_size)
         try:
-            return issue_drawn(actor=actor, now=now, drawn=drawn, key=key)
-        except NumberTakenError:
+            return issue_drawn(actor=actor, now=now, drawn=drawn, key=key, then=then)
+        except ChainMovedError:
             continue
-    raise ConflictError(_("Other papers are being issued at this moment. Try again."))
+    raise ConflictError(_("Others are recording at this moment. Try again."))
 
 
-def find_issued(*, actor: Membership, kind: str, data: dict[str, Any], key: UUID) -> Paper | None:
-    """Return the paper that this key issued before, or None; ConflictError if it was another paper."""
-    require_writer(actor)
+def find_issued(*, actor: Membership, kind: str, key: UUID) -> Paper | None:
+    """Return the paper that this key issued before, or None; ConflictError if it was another kind of paper."""
     with scope(workshop=actor.workshop):
         paper = Paper.objects.filter(entry__uuid=key).select_related("entry", "issued_by__user").first()
-    if paper is None:
-        return None
-    stored = canonical.load(bytes(paper.data))
-    asked = {name: value for name, value in stored.items() if name in FILLED_IN}
-    asked |= {name: value for name, value in data.items() if name not in FILLED_IN}
-    if paper.kind == kind:
-        check_data(kind, asked)
-    if paper.kind != kind or canonical.dump(asked) != bytes(paper.data):
+    if paper is not None and paper.kind != kind:
         raise ConflictError(_("This key was used for another paper. Open a fresh form and issue again."))
     return paper
 
 
 def draw_paper(
-    *, actor: Membership, now: datetime, kind: str, data: dict[str, Any], paper_size: PaperSize = "A4"
+    *, actor: Membership, now: datetime, kind: str, build: Build, paper_size: PaperSize = "A4"
 ) -> DrawnPaper:
     """Fill in number, chain head and issuer, and draw the PDF. Writes nothing; call it outside a transaction."""
     from compliance.documents.render import render_pdf
@@ -87,7 +94,7 @@ def draw_paper(
     sequence, head = get_head(workshop)
     number = _next_number(actor, kind)
     complete = {
-        **data,
+        **build(),
         "workshop": {"name": workshop.name, "address": workshop.address, "telephone": workshop.telephone},
         "number": number,
         "chain_head": head,
@@ -99,11 +106,13 @@ def draw_paper(
     check_data(kind, complete)
     frozen = canonical.dump(complete)
     pdf = render_pdf(kind, canonical.load(frozen), paper_size=paper_size)
-    return DrawnPaper(kind, number, frozen, pdf)
+    return DrawnPaper(kind, number, sequence, frozen, pdf)
 
 
-def issue_drawn(*, actor: Membership, now: datetime, drawn: DrawnPaper, key: UUID) -> Paper:
-    """Issue a drawn paper in one transaction; NumberTakenError if its number is gone: draw it again."""
+def issue_drawn(
+    *, actor: Membership, now: datetime, drawn: DrawnPaper, key: UUID, then: Callable[[Paper], None]
+) -> Paper:
+    """Issue a drawn paper in one transaction; ChainMovedError if anything was recorded since it was drawn."""
     require_writer(actor)
     pdf_sha256 = files.keep(drawn.pdf)  # complete on disk before an entry names it
     event = events.Paper(
@@ -113,9 +122,8 @@ def issue_drawn(*, actor: Membership, now: datetime, drawn: DrawnPaper, key: UUI
         pdf_sha256=pdf_sha256,
     )
     with transaction.atomic(), scope(workshop=actor.workshop):
-        journal.lock_chain(actor)
-        if _next_number(actor, drawn.kind) != drawn.number:
-            raise NumberTakenError(_("Another paper took this number meanwhile. Try again."))
+        if journal.lock_chain(actor).sequence != drawn.chain_sequence:
+            raise ChainMovedError(_("Something was recorded meanwhile. Try again."))
         name = f"{drawn.kind}-{drawn.number}.pdf"
         journal.add_attachment(actor=actor, now=now, name=name, data=drawn.pdf)
         appended = journal.append(
@@ -127,7 +135,7 @@ def issue_drawn(*, actor: Membership, now: datetime, drawn: DrawnPaper, key: UUI
             clearance=not_asked("a paper moves no matter"),
             attachments=[pdf_sha256],
         )
-        return Paper.objects.create(
+        paper = Paper.objects.create(
             workshop=actor.workshop,
             kind=drawn.kind,
             number=drawn.number,
@@ -137,6 +145,8 @@ def issue_drawn(*, actor: Membership, now: datetime, drawn: DrawnPaper, key: UUI
             issued_at=now,
             issued_by=actor,
         )
+        then(paper)
+        return paper
 
 
 def _next_number(actor: Membership, kind: str) -> int:

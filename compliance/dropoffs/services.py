@@ -15,7 +15,7 @@ from chemicals.workshop.models import Membership
 from chemicals.workshop.permissions import require_same_workshop, require_writer
 from compliance.clearance.selectors import react_as
 from compliance.clearance.services import RefusedError, record
-from compliance.documents.models import PaperKind
+from compliance.documents.models import Paper, PaperKind
 from compliance.documents.services import issue_paper
 from compliance.dropoffs.manifest import build_manifest
 from compliance.dropoffs.models import DropOff, DropOffContainer, Mode, Receiver, State
@@ -96,20 +96,27 @@ def pack_drop_off(*, actor: Membership, now: datetime, drop_off: DropOff) -> Dro
     """Pack: issue the manifest with the contents as the books have them now. From here on the list stands."""
     require_writer(actor)
     require_same_workshop(actor, drop_off)
-    with transaction.atomic(), scope(workshop=actor.workshop):
-        locked = DropOff.objects.select_for_update().select_related("receiver", "workshop").get(pk=drop_off.pk)
-        if locked.state != State.DRAFT:
-            raise ConflictError("This drop-off is packed already.")
-        containers = _containers_of(locked)
+    with scope(workshop=actor.workshop):
+        containers = _containers_of(drop_off)
         dangers = find_load_dangers(containers)
         if dangers:
             raise RefusedError(dangers)
-        key = uuid5(locked.uuid, "manifest")
-        data = build_manifest(locked, containers)
-        locked.manifest = issue_paper(actor=actor, now=now, key=key, kind=PaperKind.MANIFEST, data=data)
-        locked.state = State.PACKED
-        locked.save(update_fields=["manifest", "state"])
-        return locked
+        issue_paper(
+            actor=actor,
+            now=now,
+            key=uuid5(drop_off.uuid, "manifest"),
+            kind=PaperKind.MANIFEST,
+            build=lambda: build_manifest(drop_off, containers),
+            then=lambda paper: _mark_packed(drop_off, paper),
+        )
+        drop_off.refresh_from_db()
+        return drop_off
+
+
+def _mark_packed(drop_off: DropOff, manifest: Paper) -> None:
+    changed = DropOff.objects.filter(pk=drop_off.pk, state=State.DRAFT).update(state=State.PACKED, manifest=manifest)
+    if not changed:
+        raise ConflictError("This drop-off is packed already.")
 
 
 def hand_over(*, actor: Membership, now: datetime, drop_off: DropOff, occurred: Occurred | None = None) -> DropOff:

@@ -18,11 +18,10 @@ from compliance.waste.models import WasteContainer
 CAUTIONS = (
     "Keep closed and upright, in a bund, away from what it must never meet.",
     "Gloves, goggles and apron before opening; ventilation on.",
-    "Local rules and the receiver decide what may go in and where it goes: ask them, not this label.",
 )
 
 
-def build_label(container: WasteContainer, now: datetime) -> dict[str, Any]:
+def build_label(container: WasteContainer) -> dict[str, Any]:
     """Return the frozen data of a waste label; the issuing adds number, chain head and names."""
     vessel, stream = container.vessel, container.stream
     held = list_held(vessel)

@@ -100,5 +100,4 @@ def issue_label(*, actor: Membership, now: datetime, key: UUID, container: Waste
     """Issue the numbered label of a waste container as it is now."""
     require_writer(actor)
     require_same_workshop(actor, container.vessel)
-    data = build_label(container, now)
-    return issue_paper(actor=actor, now=now, key=key, kind=PaperKind.WASTE_LABEL, data=data)
+    return issue_paper(actor=actor, now=now, key=key, kind=PaperKind.WASTE_LABEL, build=lambda: build_label(container))

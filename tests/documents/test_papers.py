@@ -61,7 +61,11 @@ def asked(label: Data) -> Data:
 
 
 def issue(actor: Membership, data: Data, key: UUID | None = None, kind: str = "waste-label") -> Paper:
-    return services.issue_paper(actor=actor, now=NOW, kind=kind, data=data, key=key or uuid4())
+    return services.issue_paper(actor=actor, now=NOW, kind=kind, build=lambda: data, key=key or uuid4())
+
+
+def nothing(paper: Paper) -> None:
+    """Write nothing further with the paper."""
 
 
 def test_a_paper_carries_number_workshop_time_issuer_and_chain_head(owner: Membership, asked: Data) -> None:
@@ -107,7 +111,9 @@ def test_the_journal_holds_the_hashes_and_the_bytes_lie_with_the_attachments(own
 
 
 def test_the_issued_bytes_follow_from_the_frozen_data(owner: Membership, asked: Data) -> None:
-    paper = services.issue_paper(actor=owner, now=NOW, kind="waste-label", data=asked, key=uuid4(), paper_size="Letter")
+    paper = services.issue_paper(
+        actor=owner, now=NOW, kind="waste-label", build=lambda: asked, key=uuid4(), paper_size="Letter"
+    )
     data = selectors.read_data(paper)
     assert data["paper_size"] == "Letter"
     assert render_pdf(paper.kind, data, paper_size="Letter") == selectors.read_pdf(paper)
@@ -116,15 +122,14 @@ def test_the_issued_bytes_follow_from_the_frozen_data(owner: Membership, asked: 
     assert 'href="/paper.pdf"' in twin
 
 
-def test_the_same_key_returns_the_first_paper_and_other_data_conflicts(owner: Membership, asked: Data) -> None:
+def test_the_same_key_returns_the_first_paper_and_another_kind_conflicts(owner: Membership, asked: Data) -> None:
     key = uuid4()
     first = issue(owner, asked, key)
     again = services.issue_paper(
-        actor=owner, now=NOW + timedelta(hours=1), kind="waste-label", data=asked, key=key, paper_size="Letter"
+        actor=owner, now=NOW + timedelta(hours=1), kind="waste-label", build=lambda: asked, key=key, paper_size="Letter"
     )
     assert again == first
-    with pytest.raises(ConflictError, match="This key was used for another paper"):
-        issue(owner, asked | {"stream": "Nickel rinse"}, key)
+    assert issue(owner, asked | {"stream": "Nickel rinse"}, key) == first
     with pytest.raises(ConflictError, match="This key was used for another paper"):
         issue(owner, asked, key, kind="manifest")
     with scope(workshop=owner.workshop):
@@ -153,7 +158,7 @@ def test_a_number_taken_meanwhile_is_drawn_anew(
         drawn = draw(**given)
         for key in rivals:
             rival = draw(**given)
-            services.issue_drawn(actor=owner, now=NOW, drawn=rival, key=key)
+            services.issue_drawn(actor=owner, now=NOW, drawn=rival, key=key, then=nothing)
             break
         return drawn
 
@@ -164,10 +169,10 @@ def test_a_number_taken_meanwhile_is_drawn_anew(
 
 
 def test_a_drawn_paper_whose_number_is_gone_is_not_issued(owner: Membership, asked: Data) -> None:
-    drawn = services.draw_paper(actor=owner, now=NOW, kind="waste-label", data=asked)
+    drawn = services.draw_paper(actor=owner, now=NOW, kind="waste-label", build=lambda: asked)
     issue(owner, asked)
-    with pytest.raises(services.NumberTakenError):
-        services.issue_drawn(actor=owner, now=NOW, drawn=drawn, key=uuid4())
+    with pytest.raises(services.ChainMovedError):
+        services.issue_drawn(actor=owner, now=NOW, drawn=drawn, key=uuid4(), then=nothing)
     with scope(workshop=owner.workshop):
         assert Paper.objects.count() == Entry.objects.count() == Attachment.objects.count() == 1
 
@@ -176,10 +181,10 @@ def test_it_gives_up_with_a_sentence_when_others_are_always_faster(
     owner: Membership, asked: Data, monkeypatch: pytest.MonkeyPatch
 ) -> None:
     def always_late(**_given: Any) -> Paper:
-        raise services.NumberTakenError("late")
+        raise services.ChainMovedError("late")
 
     monkeypatch.setattr(services, "issue_drawn", always_late)
-    with pytest.raises(ConflictError, match="being issued at this moment"):
+    with pytest.raises(ConflictError, match="recording at this moment"):
         issue(owner, asked)
 
 
