@@ -77,6 +77,7 @@ def test_faraday_finds_any_one_of_current_time_and_mass(left_out: str) -> None:
     )
     assert whole["charge_Ah"] == pytest.approx(1.76)
     assert whole["current_density_A_dm2"] == pytest.approx(1.0)
+    assert whole["rate_um_per_h"] * 4 == pytest.approx(whole["thickness_um"], rel=1e-12)
 
 
 def test_faraday_counts_the_efficiency_and_the_density() -> None:
@@ -190,6 +191,9 @@ def test_each_refusal_names_the_remedy() -> None:
         "efficiency": '"95" is too much: write at most 1.',
         "gold": "There is no such field: leave it out. "
         "There are element, valence, current, time, mass, efficiency, area, density.",
+    }
+    assert refused("limit", LIMIT | {"value": True}) == {
+        "value": "This is neither text nor a number: write for example 1.9."
     }
     assert refused("static-rinse", RINSE | {"dips": 1, "bath": "-1 g/L"}) == {
         "bath": '"-1 g/L" is too little: write at least 0 g/L.'

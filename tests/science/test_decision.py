@@ -81,6 +81,11 @@ def test_an_exact_value_is_never_undecided(
     assert (found.probability_over, found.verdict, found.guard_band) == (over, verdict, 0.0)
 
 
+def test_a_risk_reached_exactly_is_still_accepted() -> None:
+    assert decide(2.0, 0.1, 2.0, risk=0.5).verdict == "within"
+    assert decide(2.0, 0.1, 2.0, risk=0.49).verdict == "undecided"
+
+
 def test_a_smaller_risk_is_more_often_undecided() -> None:
     assert decide(1.9, 0.1, 2.07, risk=0.05).verdict == "within"
     assert decide(1.9, 0.1, 2.07, risk=0.01).verdict == "undecided"

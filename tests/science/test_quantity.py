@@ -77,6 +77,7 @@ def test_what_is_typed_is_understood_and_echoed(typed: str, dimension: str, base
     [
         ("1,500 g", "mass", "ambiguous", '"1,500" is ambiguous: write 1500 or 1.5.'),
         ("1,5 g", "mass", "ambiguous", '"1,5" is ambiguous: write 1.5.'),
+        ("12345,678 g", "mass", "ambiguous", '"12345,678" is ambiguous: write 12345.678.'),
         ("0,500 g", "mass", "ambiguous", '"0,500" is ambiguous: write 0.5.'),
         ("-1,500 g", "mass", "ambiguous", '"-1,500" is ambiguous: write -1500 or -1.5.'),
         ("1.500,5 g", "mass", "ambiguous", '"1.500,5" is ambiguous: write 1500.5.'),
@@ -111,6 +112,7 @@ def test_what_is_typed_is_understood_and_echoed(typed: str, dimension: str, base
             "below_absolute_zero",
             '"-300 degC" is below absolute zero: write a warmer temperature.',
         ),
+        ("0.9 ug", "mass", "too_small", '"0.9 ug" is less than can be recorded: write 0 or at least 1 µg.'),
         ("0.4 ug", "mass", "too_small", '"0.4 ug" is less than can be recorded: write 0 or at least 1 µg.'),
         ("1e-40 g", "mass", "too_small", '"1e-40 g" is less than can be recorded: write 0 or at least 1 µg.'),
         ("1e7 kg", "mass", "too_large", '"1e7 kg" is more than can be recorded: write at most 1000000 kg.'),
