@@ -12,12 +12,12 @@ from typing import Any
 from uuid import UUID
 
 from django.conf import settings
-from django.db import transaction
+from django.db import connection, transaction
 from django.db.models import F, Q, QuerySet
 
 from chemicals.jobs.due import LIMIT, back_off, firings
 from chemicals.jobs.models import Job, Schedule, State
-from chemicals.jobs.registry import Step, find_task, require_known
+from chemicals.jobs.registry import Step, find_task, refuse_writes, require_known
 from chemicals.workshop.models import Workshop
 
 logger = logging.getLogger(__name__)
@@ -139,9 +139,11 @@ def _give_up(pk: UUID, attempts: int, now: datetime) -> None:
 
 def _perform(job: Job, now: datetime) -> None:
     try:
+        with connection.execute_wrapper(refuse_writes):
+            effect = find_task(job.task)(json.loads(job.payload), now=now)
         with transaction.atomic():
-            step = find_task(job.task)(json.loads(job.payload), now=now)
-            _finish(job, step, now)
+            step = None if effect is None else effect()
+            _finish(job, step if isinstance(step, Step) else None, now)
     except ClaimLostError:
         logger.warning("job_claim_lost id=%s task=%s attempt=%s", job.pk, job.task, job.attempts)
     except Exception as error:  # whatever a task raises is kept on its job, and the worker lives on

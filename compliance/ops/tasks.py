@@ -6,7 +6,9 @@ from typing import Any
 
 from django.contrib.sessions.models import Session
 
+from chemicals.jobs.registry import Effect
 
-def clear_sessions(payload: Mapping[str, Any], *, now: datetime) -> None:
+
+def clear_sessions(payload: Mapping[str, Any], *, now: datetime) -> Effect:
     """Delete the sessions that have run out; they hold nothing that is still needed."""
-    Session.objects.filter(expire_date__lt=now).delete()
+    return Session.objects.filter(expire_date__lt=now).delete

@@ -91,6 +91,16 @@ def test_a_failure_leaves_no_effect_and_is_tried_again_after_a_pause() -> None:
     assert effects.labels() == []
 
 
+def test_a_task_that_writes_before_it_returns_its_effect_is_stopped() -> None:
+    job = enqueue(task="insert-at-once")
+    services.run(job.pk, now=NOW, worker="w1")
+    job.refresh_from_db()
+    assert job.last_error.startswith(
+        "WriteOutsideEffectError: Move this into the function that the task returns: INSERT"
+    )
+    assert effects.labels() == []
+
+
 def test_after_the_limit_a_job_is_failed_until_a_person_queues_it_again() -> None:
     job = enqueue(task="insert-then-fail")
     for day in range(LIMIT):
