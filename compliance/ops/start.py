@@ -34,6 +34,16 @@ def split_address(bind: str) -> tuple[str, int]:
     return host.strip("[]"), int(port)
 
 
+def require_public_address(bind: str) -> None:
+    """Refuse to guess what a phone in the workshop can reach, if the whole network is served."""
+    host, port = split_address(bind)
+    if host in {"0.0.0.0", "::"} and not os.environ.get("PUBLIC_URL"):  # noqa: S104  (the user's wish)
+        raise StartError(
+            f"BIND={bind} serves the whole network. Set PUBLIC_URL to the address that phones will open, "
+            f"like http://workshop.local:{port}; codes on labels contain it."
+        )
+
+
 def require_free_port(bind: str) -> None:
     """Refuse an address that cannot be listened at, before a web server fails at it again and again."""
     host, port = split_address(bind)

@@ -49,8 +49,9 @@ def test_serve_refuses_the_folder_of_the_demo(tmp_path: Path) -> None:
     assert "holds the demo" in refusal("serve", GRAMLEDGER_DATA=str(tmp_path))
 
 
-def test_serving_the_whole_network_needs_the_address_that_labels_contain(tmp_path: Path) -> None:
-    sentence = refusal("serve", GRAMLEDGER_DATA=str(tmp_path), BIND="0.0.0.0:8000")
+@pytest.mark.parametrize("command", ["run", "serve"])
+def test_serving_the_whole_network_needs_the_address_that_labels_contain(command: str, tmp_path: Path) -> None:
+    sentence = refusal(command, GRAMLEDGER_DATA=str(tmp_path), BIND="0.0.0.0:8000")
     assert "Set PUBLIC_URL" in sentence
 
 

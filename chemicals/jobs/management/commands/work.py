@@ -21,6 +21,7 @@ class Command(BaseCommand):
     """Do background jobs until told to stop. Any number of these may run at once."""
 
     help = "Do background jobs until SIGTERM or Ctrl-C; the job in hand is finished first."
+    requires_system_checks = ()  # a worker shows no pages; whoever starts it has checked
     stopping = False
 
     def add_arguments(self, parser: CommandParser) -> None:

@@ -25,6 +25,7 @@ class Command(BaseCommand):
 
     def handle(self, *args: Any, **options: Any) -> None:
         try:
+            start.require_public_address(settings.BIND)
             with start.hold_folder(settings.DATA):
                 start.require_free_port(settings.BIND)
                 users = self.prepare()

@@ -36,12 +36,7 @@ class Command(BaseCommand):
             raise start.StartError("Set GRAMLEDGER_DATA to the folder for this workshop's data. Back that folder up.")
         if (settings.DATA / "demo-users.txt").exists():
             raise start.StartError(f"The folder {settings.DATA} holds the demo. Name another one in GRAMLEDGER_DATA.")
-        host, port = start.split_address(settings.BIND)
-        if host in {"0.0.0.0", "::"} and not os.environ.get("PUBLIC_URL"):  # noqa: S104  (asked for by the user)
-            raise start.StartError(
-                f"BIND={settings.BIND} serves the whole network. Set PUBLIC_URL to the address that phones will open, "
-                f"like http://workshop.local:{port}; codes on labels contain it."
-            )
+        start.require_public_address(settings.BIND)
 
     def prepare(self) -> None:
         """Migrate a new database; leave an older one to `make upgrade`, which makes a backup first."""
