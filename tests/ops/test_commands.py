@@ -3,13 +3,15 @@
 import http.client
 import os
 import re
+import shutil
 import signal
 import socket
+import sqlite3
 import subprocess
 import sys
 import time
 from collections.abc import Callable, Iterator
-from contextlib import contextmanager
+from contextlib import closing, contextmanager
 from pathlib import Path
 
 import pytest
@@ -73,6 +75,35 @@ def test_the_demo_does_not_touch_a_folder_that_it_did_not_make(tmp_path: Path) -
 def test_the_demos_people_are_read_as_they_were_written(tmp_path: Path) -> None:
     write_private(tmp_path / "demo-users.txt", "ada@example.org\tquiet copper\towner\n")
     assert Run().read(tmp_path / "demo-users.txt") == [("ada@example.org", "quiet copper", "owner")]
+
+
+@pytest.fixture(scope="module")
+def migrated(tmp_path_factory: pytest.TempPathFactory) -> Path:
+    """Return a database file of this version."""
+    data = tmp_path_factory.mktemp("migrated")
+    command = [sys.executable, "manage.py", "migrate", "--verbosity", "0"]
+    subprocess.run(command, check=True, cwd=ROOT, env=environment(GRAMLEDGER_DATA=str(data)))
+    return data / "gramledger.sqlite3"
+
+
+@pytest.mark.parametrize(
+    ("change", "sentence"),
+    [
+        ("DROP TRIGGER journal_refuses_update", "journal_refuses_update"),
+        ("DELETE FROM django_migrations WHERE app = 'jobs'", "older than this program (jobs.0001_initial ...)"),
+        (
+            "INSERT INTO django_migrations (app, name, applied) VALUES ('jobs', '0999_later', '2026-03-01')",
+            "newer than this program: it has jobs.0999_later",
+        ),
+    ],
+)
+def test_serve_refuses_a_database_that_is_not_as_this_version_needs_it(
+    migrated: Path, tmp_path: Path, change: str, sentence: str
+) -> None:
+    shutil.copy(migrated, tmp_path / migrated.name)
+    with closing(sqlite3.connect(tmp_path / migrated.name)) as database, database:
+        database.execute(change)
+    assert sentence in refusal("serve", GRAMLEDGER_DATA=str(tmp_path), BIND=free_address())
 
 
 class Service:

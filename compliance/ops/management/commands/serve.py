@@ -17,6 +17,7 @@ class Command(BaseCommand):
     """Serve a workshop from its own data folder until Ctrl-C or SIGTERM."""
 
     help = "Serve a workshop from the folder GRAMLEDGER_DATA until Ctrl-C or SIGTERM."
+    requires_system_checks = ()  # done below, the database's among them
 
     def handle(self, *args: Any, **options: Any) -> None:
         try:
@@ -47,6 +48,7 @@ class Command(BaseCommand):
         if pending:
             self.say("Preparing the database ...")
             call_command("migrate", interactive=False, verbosity=0)
+        self.check(databases=["default"])  # is the journal still guarded by its triggers?
         start.collect_static(settings.DATA)
 
     def greet(self, token: str | None) -> None:
