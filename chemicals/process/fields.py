@@ -8,6 +8,8 @@ from typing import Any
 from django.utils.functional import Promise
 
 from chemicals.ledger.models import VesselKind
+from chemicals.science.quantity import Quantity, QuantityError, parse
+from chemicals.science.units import DIMENSIONS
 
 Text = str | Promise
 
@@ -89,3 +91,26 @@ def use(kind: FieldKind, default: Any = dataclasses.MISSING) -> Any:
 def describe(data: type[Any]) -> Sequence[tuple[str, FieldKind]]:
     """Return (name, description) of every field of an input, in order."""
     return [(f.name, f.metadata["kind"]) for f in dataclasses.fields(data)]
+
+
+def read_amount(kind: AmountField, typed: str) -> Quantity:
+    """Return the amount that was typed, in the dimension that its unit belongs to. Raises QuantityError."""
+    errors = []
+    for dimension in kind.dimensions:
+        try:
+            return parse(typed, dimension)
+        except QuantityError as error:
+            errors.append(error)
+    raise _join(kind, errors)
+
+
+def _join(kind: AmountField, errors: Sequence[QuantityError]) -> QuantityError:
+    """Return one error that speaks of all dimensions of the field."""
+    first = errors[0]
+    if first.code == "wrong_dimension":
+        needed = " or ".join(DIMENSIONS[dimension].noun for dimension in kind.dimensions)
+        return QuantityError(first.code, **{**first.params, "needed": needed, "example": kind.example})
+    if first.code == "unknown_unit":
+        known = ", ".join(error.params["known"] for error in errors)
+        return QuantityError(first.code, **{**first.params, "known": known})
+    return first

@@ -10,6 +10,8 @@ from django_scopes import scope
 from chemicals.ledger.models import Vessel, VesselKind
 from chemicals.ledger.services import create_vessel
 from chemicals.process.models import AnodeKind, RackType, Route, RouteStep, Tank
+from chemicals.register.models import Product
+from chemicals.register.models import Product
 from chemicals.science.formula import METALS
 from chemicals.workshop.errors import FieldError, InvalidInputError
 from chemicals.workshop.models import Membership, Place
@@ -80,6 +82,52 @@ def _check_tank(actor: Membership, tank: TankInput) -> None:
         raise InvalidInputError(errors)
     if tank.anode is not None:
         require_same_workshop(actor, tank.anode)
+
+
+HOLDERS = (VesselKind.STOCK, VesselKind.ANODE)
+
+
+def create_holder(
+    *,
+    actor: Membership,
+    now: datetime,
+    kind: str,
+    name: str,
+    product: Product | None = None,
+    place: Place | None = None,
+    capacity: int | None = None,
+) -> Vessel:
+    """Create a stock container of a product, or an anode set. Capacity in nanolitres."""
+    require_writer(actor)
+    errors = []
+    if kind not in HOLDERS:
+        errors.append(FieldError("kind", "Choose a stock container or an anode set."))
+    if kind == VesselKind.STOCK and product is None:
+        errors.append(FieldError("product", "A stock container holds one product. Choose the product."))
+    if errors:
+        raise InvalidInputError(errors)
+    return create_vessel(
+        actor=actor, now=now, kind=VesselKind(kind), name=name, place=place, product=product, capacity=capacity
+    )
+
+
+def create_stock(
+    *,
+    actor: Membership,
+    now: datetime,
+    kind: str,
+    name: str,
+    product: Product | None = None,
+    place: Place | None = None,
+    capacity: int | None = None,
+) -> Vessel:
+    """Create a stock container or an anode set; its product says what is in what arrives. Capacity in nanolitres."""
+    require_writer(actor)
+    if kind not in (VesselKind.STOCK, VesselKind.ANODE):
+        raise InvalidInputError.of("kind", "Choose a stock container or an anode set. Tanks are set up as tanks.")
+    return create_vessel(
+        actor=actor, now=now, kind=VesselKind(kind), name=name, place=place, product=product, capacity=capacity
+    )
 
 
 def create_rack_type(

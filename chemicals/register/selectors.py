@@ -19,6 +19,14 @@ def list_substances_for(member: Membership) -> QuerySet[Substance]:
         return Substance.objects.order_by("name")
 
 
+def get_substance_for(member: Membership, uuid: UUID) -> Substance:
+    """Return one substance of the member's workshop."""
+    try:
+        return list_substances_for(member).get(uuid=uuid)
+    except Substance.DoesNotExist as error:
+        raise NotFoundError("There is no such substance in this workshop.") from error
+
+
 def list_products_for(member: Membership) -> QuerySet[Product]:
     """Return the products of the member's workshop, by name. One query."""
     with scope(workshop=member.workshop):
