@@ -1,12 +1,15 @@
 """Reads of the journal."""
 
-from collections.abc import Iterator
+from collections.abc import Iterable, Iterator
 from uuid import UUID
 
-from django.db.models import QuerySet
-from django_scopes import scope
+from django.db.backends.base.base import BaseDatabaseWrapper
+from django.db.models import BinaryField, Exists, Func, IntegerField, OuterRef, QuerySet, Value
+from django.db.models.sql.compiler import SQLCompiler
+from django_scopes import scope, scopes_disabled
 
 from chemicals.books import canonical, events, fold
+from chemicals.books.clearance import INCIDENT
 from chemicals.journal.models import Attachment, Entry, Head
 from chemicals.workshop.errors import NotFoundError
 from chemicals.workshop.models import Membership, Workshop
@@ -16,6 +19,58 @@ def list_entries_for(member: Membership) -> QuerySet[Entry]:
     """Return all entries of the member's workshop, newest record first, with their authors. One query."""
     with scope(workshop=member.workshop):
         return Entry.objects.select_related("member__user", "about").order_by("-sequence")
+
+
+class _Position(Func):
+    """Where bytes stand in bytes, counted from 1; 0 if they do not stand there."""
+
+    function = "INSTR"
+    output_field = IntegerField()
+
+    def as_postgresql(self, compiler: SQLCompiler, connection: BaseDatabaseWrapper) -> tuple[str, list[object]]:
+        turned = self.copy()
+        turned.set_source_expressions(self.get_source_expressions()[::-1])
+        sql, params = turned.as_sql(compiler, connection, template="POSITION(%(expressions)s)", arg_joiner=" IN ")
+        return sql, list(params)
+
+
+def list_entries_naming(member: Membership, uuid: UUID) -> QuerySet[Entry]:
+    """Return the entries that name a vessel, by its uuid: cancelled ones and analyses too, newest first. One query."""
+    wanted = Value(str(uuid).encode(), output_field=BinaryField())
+    return list_entries_for(member).alias(position=_Position("body", wanted)).filter(position__gt=0)
+
+
+def list_incidents_for(member: Membership) -> QuerySet[Entry]:
+    """Return the entries that were recorded as incidents and not cancelled, newest first. One query."""
+    return list_entries_for(member).filter(~_cancelled(), verdict=INCIDENT)
+
+
+def list_unanswered_for(member: Membership, kind: str, *answers: str) -> QuerySet[Entry]:
+    """Return the entries of a kind, not cancelled, of which no standing entry of the ``answers`` speaks. One query."""
+    with scope(workshop=member.workshop):
+        answered = Entry.objects.filter(~_cancelled(), about=OuterRef("pk"), kind__in=answers)
+        return list_entries_for(member).filter(~_cancelled(), ~Exists(answered), kind=kind)
+
+
+def _cancelled() -> Exists:
+    with scopes_disabled():
+        return Exists(Entry.objects.filter(about=OuterRef("pk"), kind=events.Cancellation.KIND))
+
+
+def list_mentions_of(entry: Entry) -> QuerySet[Entry]:
+    """Return the later entries that speak of this one, in order of recording. One query."""
+    with scope(workshop=entry.workshop):
+        return Entry.objects.filter(about=entry).select_related("member__user").order_by("sequence")
+
+
+def find_cancelled(entries: Iterable[Entry]) -> set[int]:
+    """Return the primary keys of those entries of one workshop that a later entry cancelled. One query."""
+    rows = list(entries)
+    if not rows:
+        return set()
+    with scope(workshop=rows[0].workshop):
+        mine = Entry.objects.filter(about__in=rows, kind=events.Cancellation.KIND)
+        return {pk for pk in mine.values_list("about_id", flat=True) if pk is not None}
 
 
 def get_entry_for(member: Membership, uuid: UUID) -> Entry:

@@ -10,6 +10,7 @@ from django_scopes import scope, scopes_disabled
 
 from chemicals.books import fold
 from chemicals.books.events import GROSS_MASS, VOLUME
+from chemicals.books.fold.arithmetic import quotient
 from chemicals.books.fold.state import State
 from chemicals.journal import selectors as journal
 from chemicals.journal.models import Entry
@@ -18,6 +19,8 @@ from chemicals.ledger.codes import tidy_code
 from chemicals.ledger.models import Content, Finding, Holding, Memory, Posting, Vessel, VesselKind
 from chemicals.workshop.errors import NotFoundError
 from chemicals.workshop.models import Membership, Workshop
+
+NANOLITRES_PER_LITRE = 10**9
 
 
 def list_vessels_for(member: Membership, *kinds: VesselKind) -> QuerySet[Vessel]:
@@ -68,6 +71,57 @@ def list_held(vessel: Vessel) -> list[Held]:
     return sorted(held, key=lambda row: (first.get(row.component, 2), row.component))
 
 
+@dataclass(frozen=True)
+class HeldMetal(Held):
+    """A metal in a vessel, also per litre where the volume is known: ug/L with standard uncertainty, or None."""
+
+    concentration: int | None
+    concentration_sd: int
+
+
+@dataclass(frozen=True)
+class Contents:
+    """What a vessel holds now. ``volume`` and ``mass`` None: nothing was ever recorded of it.
+
+    ``incomplete``: there may be more in it than is listed.
+    """
+
+    volume: Held | None
+    mass: Held | None
+    metals: tuple[HeldMetal, ...]
+    incomplete: bool
+
+
+def list_contents_for(member: Membership) -> dict[int, Contents]:
+    """Return what every vessel of the member's workshop holds, by the vessel's primary key. Two queries."""
+    with scope(workshop=member.workshop):
+        rows = Holding.objects.values_list("vessel_id", "component__code", "amount", "variance")
+        incomplete = set(Memory.objects.filter(incomplete=True).values_list("vessel_id", flat=True))
+    held: dict[int, list[Held]] = {}
+    for vessel, code, amount, variance in rows.order_by("component__code"):
+        held.setdefault(vessel, []).append(Held(code, amount, fold.state.root(variance)))
+    return {vessel: _contents(held.get(vessel, []), vessel in incomplete) for vessel in {*held, *incomplete}}
+
+
+def read_contents(vessel: Vessel) -> Contents:
+    """Return what one vessel holds now. Two queries."""
+    return _contents(list_held(vessel), read_memory(vessel)[0])
+
+
+def _contents(held: list[Held], incomplete: bool) -> Contents:  # noqa: FBT001  (one of two facts of a vessel)
+    by_code = {row.component: row for row in held}
+    volume, mass = by_code.pop(VOLUME, None), by_code.pop(GROSS_MASS, None)
+    return Contents(volume, mass, tuple(_per_litre(row, volume) for row in by_code.values()), incomplete)
+
+
+def _per_litre(metal: Held, volume: Held | None) -> HeldMetal:
+    """Amount over volume, as if their uncertainties were independent."""
+    if metal.amount is None or volume is None or volume.amount is None or volume.amount <= 0:
+        return HeldMetal(metal.component, metal.amount, metal.sd, None, 0)
+    per_litre, sd = quotient(metal.amount, metal.sd, volume.amount, volume.sd, NANOLITRES_PER_LITRE)
+    return HeldMetal(metal.component, metal.amount, metal.sd, per_litre, sd)
+
+
 def read_memory(vessel: Vessel) -> tuple[bool, frozenset[str]]:
     """Return whether the vessel's list is incomplete, and what was poured in since it was last empty. One query."""
     with scope(workshop=vessel.workshop):
@@ -91,7 +145,8 @@ def list_postings_of(entry: Entry) -> QuerySet[Posting]:
 def get_balances_before(workshop: Workshop, before: datetime) -> dict[tuple[str, str], int | None]:
     """Return (vessel uuid, component) -> what it held just before a moment; None is unknown.
 
-    Four queries, one more if anything ever was unknown. Amounts are sums of postings; what was unknown at the moment is looked up where there ever was an unknown.
+    Four queries, one more if anything ever was unknown. Amounts are sums of postings; what was unknown at the moment
+    is looked up where there ever was an unknown.
     """
     with scope(workshop=workshop):
         rows = (

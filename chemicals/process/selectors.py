@@ -8,8 +8,10 @@ from django.db.models import Prefetch, QuerySet
 from django_scopes import scope
 
 from chemicals.books import fold
-from chemicals.books.events import Event
+from chemicals.books.events import Acceptance, Analysis, Event
 from chemicals.books.occurred import Occurred
+from chemicals.journal import selectors as journal
+from chemicals.journal.models import Entry
 from chemicals.ledger import selectors as ledger
 from chemicals.ledger.models import Vessel
 from chemicals.process.build import build
@@ -46,6 +48,12 @@ def get_tank_of(vessel: Vessel) -> Tank | None:
     """Return the tank settings of a vessel, if it is a bath or a rinse."""
     with scope(workshop=vessel.workshop):
         return Tank.objects.filter(vessel=vessel).select_related("anode", "vessel").first()
+
+
+def list_open_analyses_for(member: Membership) -> list[tuple[Entry, Analysis]]:
+    """Return the analyses that are neither accepted nor cancelled, newest first. One query."""
+    rows = journal.list_unanswered_for(member, Analysis.KIND, Acceptance.KIND)
+    return [(row, event) for row in rows if isinstance(event := journal.read_event(row), Analysis)]
 
 
 def list_rack_types_for(member: Membership) -> QuerySet[RackType]:

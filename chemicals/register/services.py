@@ -7,6 +7,7 @@ from datetime import date, datetime
 from django.db import transaction
 from django_scopes import scope
 
+from chemicals.journal import services as journal
 from chemicals.journal.models import Attachment
 from chemicals.register.models import CompositionLine, Form, Per, Product, ProductRevision, Substance
 from chemicals.science.formula import FormulaError, parse_formula
@@ -79,6 +80,13 @@ class RevisionInput:
     statements: tuple[str, ...] = ()
     safety_data_sheet: Attachment | None = None
     sheet_date: date | None = None
+
+
+def keep_sheet(*, actor: Membership, now: datetime, name: str, data: bytes) -> Attachment:
+    """Keep a safety data sheet, so that a revision can name it. Raises InvalidInputError if it is no PDF file."""
+    if not data.startswith(b"%PDF-"):
+        raise InvalidInputError.of("safety_data_sheet", "A safety data sheet is a PDF file. Choose the PDF.")
+    return journal.add_attachment(actor=actor, now=now, name=name, data=data)
 
 
 def create_product(
