@@ -11,7 +11,6 @@ from chemicals.ledger.models import Vessel, VesselKind
 from chemicals.ledger.services import create_vessel
 from chemicals.process.models import AnodeKind, RackType, Route, RouteStep, Tank
 from chemicals.register.models import Product
-from chemicals.register.models import Product
 from chemicals.science.formula import METALS
 from chemicals.workshop.errors import FieldError, InvalidInputError
 from chemicals.workshop.models import Membership, Place
@@ -106,25 +105,6 @@ def create_holder(
         errors.append(FieldError("product", "A stock container holds one product. Choose the product."))
     if errors:
         raise InvalidInputError(errors)
-    return create_vessel(
-        actor=actor, now=now, kind=VesselKind(kind), name=name, place=place, product=product, capacity=capacity
-    )
-
-
-def create_stock(
-    *,
-    actor: Membership,
-    now: datetime,
-    kind: str,
-    name: str,
-    product: Product | None = None,
-    place: Place | None = None,
-    capacity: int | None = None,
-) -> Vessel:
-    """Create a stock container or an anode set; its product says what is in what arrives. Capacity in nanolitres."""
-    require_writer(actor)
-    if kind not in (VesselKind.STOCK, VesselKind.ANODE):
-        raise InvalidInputError.of("kind", "Choose a stock container or an anode set. Tanks are set up as tanks.")
     return create_vessel(
         actor=actor, now=now, kind=VesselKind(kind), name=name, place=place, product=product, capacity=capacity
     )
