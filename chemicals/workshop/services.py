@@ -34,6 +34,18 @@ def create_workshop(
         return Membership.objects.create(workshop=workshop, user=owner, role=Role.OWNER)
 
 
+@transaction.atomic
+def change_workshop(*, actor: Membership, name: str, address: str, telephone: str, time_zone: str) -> Workshop:
+    """Change what papers print of the workshop, and the zone in which its days begin; entries keep their moments."""
+    require_owner(actor)
+    workshop = Workshop.objects.select_for_update().get(pk=actor.workshop_id)
+    workshop.name, workshop.time_zone = name.strip(), time_zone
+    workshop.address, workshop.telephone = address.strip(), telephone.strip()
+    _clean(workshop)
+    workshop.save(update_fields=["name", "address", "telephone", "time_zone"])
+    return workshop
+
+
 def create_user(*, email: str, password: str | None, name: str) -> User:
     """Create a user; the password must pass the validators, the address must be new."""
     user = User(email=User.objects.normalize_email(email).lower(), name=name.strip())
