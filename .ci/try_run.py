@@ -1,5 +1,7 @@
-"""Runs `make run` in the clone that CLONE names, with an empty environment and home, as a stranger would: it must
-answer, end on Ctrl-C without leaving a process, and answer within five seconds the second time."""
+"""Runs `make run` in the clone that the argument names, with an empty environment and home, as a stranger would.
+
+It must answer, end on Ctrl-C without leaving a process, and answer within five seconds the second time.
+"""
 
 import os
 import signal
@@ -10,7 +12,7 @@ import time
 import urllib.request
 from pathlib import Path
 
-CLONE = Path(os.environ["CLONE"])
+CLONE = Path(sys.argv[1])
 URL = "http://127.0.0.1:8000/"
 FIRST_SECONDS, SECOND_SECONDS = 600, 5
 
