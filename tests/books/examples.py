@@ -1,0 +1,146 @@
+"""One rich entry of every kind, and the golden files that keep its bytes.
+
+``python -m tests.books.examples`` writes the golden files that are missing and never touches one that is there: a new
+version of a kind gets a file beside the old one.
+"""
+
+import json
+from collections.abc import Mapping
+from datetime import UTC, datetime
+from pathlib import Path
+from uuid import UUID, uuid5
+
+from chemicals.books import canonical
+from chemicals.books.canonical import GENESIS, Body
+from chemicals.books.clearance import ALLOWED, INCIDENT, Clearance
+from chemicals.books.events import (
+    AIR,
+    Acceptance,
+    Analysis,
+    Cancellation,
+    Deposit,
+    DrumOff,
+    Event,
+    Figure,
+    HandOver,
+    Held,
+    Ingredient,
+    LevelReading,
+    MakeUp,
+    Measured,
+    Move,
+    Opening,
+    Paper,
+    Receipt,
+    Recipe,
+    Run,
+    Share,
+    Step,
+    TopUp,
+    encode,
+)
+
+GOLDEN = Path(__file__).parent / "golden"
+WORKSHOP = UUID("0b6f7c1e-3f57-4c1d-9d0a-7f5b2f3c9a10")
+WATER = Figure(998_200, 100, "water at 20 °C")
+BATH, RINSE, STOCK, ANODES, DRUM = (str(uuid5(WORKSHOP, name)) for name in ("bath", "rinse", "stock", "anodes", "drum"))
+RECIPE = Recipe(
+    uuid5(WORKSHOP, "copper sulfate"),
+    3,
+    "Kupfersulfat, “blau” – 25 kg\nSäurefrei",
+    solid=True,
+    complete=False,
+    shares=(Share("Cu", 254_500_000, 500_000, "kg"), Share("Fe", 0, 1_000, "kg")),
+    density=None,
+)
+
+EXAMPLES: Mapping[str, Event] = {
+    event.KIND: event
+    for event in (
+        Opening(
+            BATH,
+            complete=False,
+            volume=Measured("2.5", "gal", 9_463_529_460, 100_000_000),
+            mass=None,
+            held=(Held("Cu", Measured("473", "g", 473_000_000, 9_000_000)), Held("Zn", Measured("0", "g", 0))),
+            density=Figure(1_180_000, 5_000, "hydrometer"),
+            poured=("an older bath", RECIPE.key),
+        ),
+        Receipt(STOCK, Measured("25", "kg", 25_000_000_000, 10_000_000), None, "LOT 7/ä", RECIPE),
+        MakeUp(
+            BATH,
+            (
+                Ingredient(STOCK, Measured("2", "kg", 2_000_000_000, 1_000_000), None),
+                Ingredient(DRUM, None, Measured("100", "mL", 100_000_000)),
+            ),
+            Measured("10", "L", 10_000_000_000, 50_000_000),
+            WATER,
+        ),
+        TopUp(BATH, "water supply", None, Measured("10", "L", 10_000_000_000, 50_000_000), WATER),
+        Run(
+            "12 knobs, Ø 8 mm",
+            (Step(BATH, Figure(5_000_000, 1_500_000, "rack type 2")), Step(RINSE, Figure(5_000_000, 1_500_000, "r2"))),
+            None,
+            Measured("0.44", "A", 440_000, 4_000),
+            Measured("4", "h", 14_400_000, 60_000),
+            Measured("5.6", "g", 5_600_000, 50_000),
+            Measured("7.7", "g", 7_700_000, 50_000),
+            Deposit("Cu", "63.546", 2, "96485.33212", Figure(980_000, 20_000, "as entered")),
+            ANODES,
+            "rack type 2",
+        ),
+        Move(BATH, RINSE, Measured("1", "L", 1_000_000_000)),
+        DrumOff(RINSE, DRUM, None),
+        LevelReading(BATH, Measured("9.2", "L", 9_200_000_000, 50_000_000), AIR, WATER),
+        Analysis(
+            BATH,
+            "Cu",
+            Measured("196", "g/L", 196_000_000, 2_000_000),
+            "CuSO4.5H2O",
+            datetime(2026, 3, 4, 16, 5, 6, 7, tzinfo=UTC),
+            Figure(49_882_000, 509_000, "titration"),
+        ),
+        Acceptance(uuid5(WORKSHOP, "analysis"), BATH, "Cu", Figure(49_882_000, 509_000, "titration")),
+        HandOver(DRUM, "collection point, gate 3", Measured("41.5", "kg", 41_500_000_000)),
+        Cancellation(uuid5(WORKSHOP, "a mistake"), "the wrong tank"),
+        Paper("manifest", 17, "ab" * 32, "cd" * 32),
+    )
+}
+
+
+def body_of(event: Event) -> Body:
+    """Return an entry around an event."""
+    return Body(
+        format=1,
+        workshop=WORKSHOP,
+        sequence=42,
+        entry=uuid5(WORKSHOP, event.KIND),
+        kind=event.KIND,
+        kind_version=event.VERSION,
+        occurred_at=datetime(2026, 3, 2, 11, tzinfo=UTC),
+        precision="day",
+        recorded_at=datetime(2026, 3, 2, 17, 30, 15, 123456, tzinfo=UTC),
+        member=uuid5(WORKSHOP, "olga"),
+        clearance=Clearance(INCIDENT, ("pH unknown",)) if isinstance(event, Move) else Clearance(ALLOWED),
+        payload=encode(event),
+        attachments=("0f" * 32, "f0" * 32),
+    )
+
+
+def golden_file(kind: str, version: int) -> Path:
+    """Return where the bytes of a kind version are kept."""
+    return GOLDEN / f"{kind.replace(' ', '-')}-v{version}.json"
+
+
+def write_missing() -> None:
+    """Write the golden files that are not there yet."""
+    for event in EXAMPLES.values():
+        path = golden_file(event.KIND, event.VERSION)
+        if not path.exists():
+            data = canonical.encode_body(body_of(event))
+            kept = {"body": data.decode(), "hash": canonical.chain_hash(GENESIS, data).hex()}
+            path.write_text(json.dumps(kept, ensure_ascii=False, indent=1) + "\n", encoding="utf-8")
+
+
+if __name__ == "__main__":
+    write_missing()

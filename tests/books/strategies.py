@@ -1,0 +1,87 @@
+"""Anything that can be recorded, for the tests that try whatever they can think of."""
+
+import dataclasses
+import types
+import typing
+import unicodedata
+from datetime import UTC, datetime
+from uuid import UUID
+
+from hypothesis import strategies as st
+
+from chemicals.books.canonical import type_hints
+from chemicals.books.events import (
+    AIR,
+    EVENTS,
+    GROSS_MASS,
+    SPILL,
+    VOLUME,
+    Deposit,
+    Event,
+    Figure,
+    Held,
+    LevelReading,
+    Measured,
+    Opening,
+    Share,
+)
+
+texts = st.text(st.characters(exclude_categories=("Cc", "Cs"), include_characters="\n"), max_size=12).map(
+    lambda text: unicodedata.normalize("NFC", text)
+)
+amounts = st.integers(0, 10**15)
+held_lists = st.lists(
+    st.builds(
+        Held,
+        component=texts.filter(lambda name: name not in (VOLUME, GROSS_MASS)),
+        amount=st.builds(Measured, typed=texts, unit=texts, base=amounts),
+    ),
+    max_size=3,
+    unique_by=lambda held: held.component,
+).map(tuple)
+
+Values = st.SearchStrategy[typing.Any]
+SCALARS: dict[object, Values] = {
+    str: texts,
+    int: st.integers(-(10**18), 10**18),
+    bool: st.booleans(),
+    UUID: st.uuids(),
+    datetime: st.datetimes(datetime(1, 1, 2), datetime(9999, 12, 30), timezones=st.just(UTC)),  # noqa: DTZ001
+}
+FIELDS: dict[type, dict[str, Values]] = {
+    Measured: {"base": amounts, "sd": st.none() | amounts},
+    Figure: {"base": amounts, "sd": amounts},
+    Share: {"amount": amounts, "sd": amounts, "per": st.sampled_from(["kg", "L"])},
+    Deposit: {
+        "molar_mass": st.decimals("0.001", "999", places=3).map(str),
+        "faraday": st.just("96485.33212"),
+        "valence": st.integers(1, 8),
+    },
+    Opening: {"held": held_lists},
+    LevelReading: {"lost_to": st.sampled_from([AIR, SPILL])},
+}
+"""Fields that may not hold everything their type allows."""
+
+
+def values_of(hint: typing.Any) -> Values:
+    """Return a strategy for the values of a field's type."""
+    origin, args = typing.get_origin(hint), typing.get_args(hint)
+    if origin is typing.Annotated:
+        return values_of(args[0])
+    if origin in (types.UnionType, typing.Union):
+        return st.none() | values_of(next(arg for arg in args if arg is not types.NoneType))
+    if origin is tuple:
+        return st.lists(values_of(args[0]), max_size=3).map(tuple)
+    if dataclasses.is_dataclass(hint):
+        kind = typing.cast("type", hint)
+        own = FIELDS.get(kind, {})
+        free = {name: values_of(inner) for name, inner in type_hints(kind).items() if name in _names(kind) - set(own)}
+        return st.builds(kind, **free, **own)
+    return SCALARS[hint]
+
+
+def _names(kind: type) -> set[str]:
+    return {field.name for field in dataclasses.fields(kind)}
+
+
+EVENTS_OF: dict[type[Event], Values] = {kind: values_of(kind) for kind in EVENTS}

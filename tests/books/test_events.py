@@ -1,0 +1,194 @@
+"""Events of every kind: to their payload and back, for ever."""
+
+import json
+from collections.abc import Mapping
+from dataclasses import dataclass, fields, replace
+from pathlib import Path
+from typing import Any, ClassVar
+from uuid import UUID
+
+import pytest
+from hypothesis import given, settings
+from hypothesis import strategies as st
+
+from chemicals.books import canonical, events
+from chemicals.books.canonical import GENESIS, CanonicalError, chain_hash, decode_body, encode_body
+from chemicals.books.events import CURRENT, EVENTS, Event, Figure, Held, LevelReading, Measured, Share, decode, encode
+from chemicals.books.fold import FOLDS
+from tests.books.examples import EXAMPLES, GOLDEN, body_of, golden_file
+from tests.books.strategies import EVENTS_OF
+from tests.books.words import WATER, copper_deposit, grams, opening
+
+KINDS = sorted(CURRENT)
+
+
+def through_the_journal(event: Event) -> Event:
+    """Return an event as it comes back from the bytes of its entry."""
+    body = decode_body(encode_body(body_of(event)))
+    return decode(body.kind, body.kind_version, body.payload)
+
+
+@pytest.mark.parametrize("kind", EVENTS, ids=lambda kind: str(kind.KIND))
+@settings(max_examples=40)
+@given(data=st.data())
+def test_any_event_comes_back_from_the_journal(kind: type[Event], data: st.DataObject) -> None:
+    event = data.draw(EVENTS_OF[kind])
+    assert through_the_journal(event) == event
+
+
+@pytest.mark.parametrize("kind", KINDS)
+def test_the_example_of_a_kind_comes_back(kind: str) -> None:
+    assert through_the_journal(EXAMPLES[kind]) == EXAMPLES[kind]
+
+
+@pytest.mark.parametrize("kind", KINDS)
+def test_every_version_of_a_kind_has_a_golden_file(kind: str) -> None:
+    wanted = {golden_file(kind, version) for version in range(1, CURRENT[kind].VERSION + 1)}
+    assert wanted <= set(GOLDEN.iterdir())
+
+
+def test_every_golden_file_belongs_to_a_kind() -> None:
+    kinds = {golden_file(kind, version) for kind in KINDS for version in range(1, CURRENT[kind].VERSION + 1)}
+    assert set(GOLDEN.iterdir()) == kinds
+
+
+@pytest.mark.parametrize("path", sorted(GOLDEN.iterdir()), ids=lambda path: str(path.stem))
+def test_golden_bytes_decode_and_are_written_the_same(path: Path) -> None:
+    golden = json.loads(path.read_text(encoding="utf-8"))
+    data = golden["body"].encode()
+    body = decode_body(data)
+    assert golden_file(body.kind, body.kind_version) == path
+    assert encode_body(body) == data
+    assert chain_hash(GENESIS, data).hex() == golden["hash"]
+    event = decode(body.kind, body.kind_version, body.payload)
+    assert body.kind == event.KIND
+    if body.kind_version == event.VERSION:
+        assert encode(event) == body.payload
+        assert event == EXAMPLES[body.kind]
+
+
+@pytest.mark.parametrize("kind", KINDS)
+def test_a_missing_or_surplus_field_is_refused_by_name(kind: str) -> None:
+    for part in ("observed", "used"):
+        for name in encode(EXAMPLES[kind])[part]:
+            payload = encode(EXAMPLES[kind])
+            del payload[part][name]
+            with pytest.raises(CanonicalError, match=f"missing \\['{name}'\\]"):
+                decode(kind, 1, payload)
+        payload = encode(EXAMPLES[kind])
+        payload[part]["colour"] = "blue"
+        with pytest.raises(CanonicalError, match=r"surplus \['colour'\]"):
+            decode(kind, 1, payload)
+
+
+@pytest.mark.parametrize("kind", KINDS)
+def test_a_field_in_the_wrong_part_is_refused_by_name(kind: str) -> None:
+    for part, other in (("observed", "used"), ("used", "observed")):
+        for name in encode(EXAMPLES[kind])[part]:
+            payload = encode(EXAMPLES[kind])
+            payload[other][name] = payload[part].pop(name)
+            with pytest.raises(CanonicalError, match=f"{kind}: {name} does not belong to what was {other}"):
+                decode(kind, 1, payload)
+
+
+@pytest.mark.parametrize(
+    "payload", [{}, {"observed": {}}, {"observed": {}, "used": {}, "more": {}}, {"observed": [], "used": {}}]
+)
+def test_a_payload_has_two_parts(payload: dict[str, Any]) -> None:
+    with pytest.raises(CanonicalError, match="the parts observed and used"):
+        decode("move", 1, payload)
+
+
+@pytest.mark.parametrize(("kind", "version"), [("teleport", 1), ("move", 2), ("move", 0), ("move", -1)])
+def test_an_unknown_kind_or_version_is_refused(kind: str, version: int) -> None:
+    with pytest.raises(CanonicalError, match=f"does not know {kind} version {version}"):
+        decode(kind, version, encode(EXAMPLES["move"]))
+
+
+def test_an_older_version_is_lifted_step_by_step(monkeypatch: pytest.MonkeyPatch) -> None:
+    """Version 1 had no words, version 2 had them without a language."""
+
+    @dataclass(frozen=True)
+    class Note(Event):
+        KIND: ClassVar[str] = "note"
+        VERSION: ClassVar[int] = 3
+        words: str
+        language: str
+
+    def to_2(payload: dict[str, Any]) -> dict[str, Any]:
+        return {**payload, "observed": {"words": "nothing said"}}
+
+    def to_3(payload: dict[str, Any]) -> dict[str, Any]:
+        return {**payload, "observed": {**payload["observed"], "language": "en"}}
+
+    monkeypatch.setattr(events, "CURRENT", {**CURRENT, "note": Note})
+    upcasters = {("note", 1): to_2, ("note", 2): to_3}
+    old: Mapping[str, Any] = {"observed": {}, "used": {}}
+    assert decode("note", 1, old, upcasters) == Note("nothing said", "en")
+    assert decode("note", 2, {"observed": {"words": "hm"}, "used": {}}, upcasters) == Note("hm", "en")
+    assert decode("note", 3, encode(Note("hm", "de")), upcasters) == Note("hm", "de")
+    assert old == {"observed": {}, "used": {}}
+
+
+def test_every_step_between_versions_has_its_upcaster() -> None:
+    steps = {(kind, version) for kind in KINDS for version in range(1, CURRENT[kind].VERSION)}
+    assert set(events.UPCASTERS) == steps
+
+
+def test_what_was_observed_and_what_was_used_stand_apart() -> None:
+    payload = encode(EXAMPLES["receipt"])
+    assert sorted(payload["observed"]) == ["lot", "mass", "vessel", "volume"]
+    assert sorted(payload["used"]) == ["recipe"]
+
+
+@pytest.mark.parametrize("kind", KINDS)
+def test_an_event_names_the_vessels_it_may_change(kind: str) -> None:
+    event = EXAMPLES[kind]
+    assert all(UUID(vessel) for vessel in event.vessels())  # no boundary among them
+    assert bool(event.vessels()) is (type(event) in FOLDS or kind == "analysis")
+
+
+def test_an_event_names_the_entry_it_speaks_of() -> None:
+    about = {kind for kind in KINDS if EXAMPLES[kind].about() is not None}
+    assert about == {"acceptance", "cancellation"}
+
+
+@pytest.mark.parametrize(
+    ("build", "field"),
+    [
+        (lambda: Measured("-1", "g", -1), r"Measured\.base"),
+        (lambda: Measured("1", "g", 1, -1), r"Measured\.sd"),
+        (lambda: Figure(-1, 0, "guess"), r"Figure\.base"),
+        (lambda: Figure(1, -1, "guess"), r"Figure\.sd"),
+        (lambda: Share("Cu", -1, 0, "kg"), r"Share\.amount"),
+        (lambda: Share("Cu", 1, -1, "kg"), r"Share\.sd"),
+        (lambda: Share("Cu", 1, 0, "gal"), r"Share\.per: 'gal'"),
+        (lambda: replace(copper_deposit(), valence=0), r"Deposit\.valence"),
+        (lambda: replace(copper_deposit(), molar_mass="copper"), r"Deposit\.molar_mass"),
+        (lambda: replace(copper_deposit(), molar_mass="NaN"), r"Deposit\.molar_mass"),
+        (lambda: replace(copper_deposit(), faraday="0"), r"Deposit\.faraday"),
+        (
+            lambda: replace(opening("bath", Cu=grams(1)), held=opening("bath", Cu=grams(1)).held * 2),
+            r"Opening\.held: Cu",
+        ),
+        (lambda: replace(opening("bath"), held=(Held("volume", grams(1)),)), r"Opening\.held: volume"),
+        (lambda: LevelReading("bath", grams(1), "the moon", WATER), r"LevelReading\.lost_to"),
+    ],
+)
+def test_figures_that_cannot_be_are_refused_by_name(build: Any, field: str) -> None:
+    with pytest.raises(CanonicalError, match=field):
+        build()
+
+
+@pytest.mark.parametrize("kind", KINDS)
+def test_the_fields_of_an_event_cannot_be_changed(kind: str) -> None:
+    event = EXAMPLES[kind]
+    name = fields(event)[0].name  # type: ignore[arg-type]  # every event is a dataclass
+    with pytest.raises(AttributeError):
+        setattr(event, name, "other")
+
+
+def test_bytes_are_the_same_whatever_the_order_of_fields() -> None:
+    payload = encode(EXAMPLES["run"])
+    turned = {part: dict(reversed(values.items())) for part, values in reversed(payload.items())}
+    assert canonical.dump(turned) == canonical.dump(payload)
