@@ -11,7 +11,7 @@ from django_scopes import scope, scopes_disabled
 from chemicals.books import fold
 from chemicals.books.events import GROSS_MASS, VOLUME
 from chemicals.books.fold.arithmetic import quotient
-from chemicals.books.fold.state import State
+from chemicals.books.fold.state import State, Transfer
 from chemicals.journal import selectors as journal
 from chemicals.journal.models import Entry
 from chemicals.ledger import projection
@@ -140,6 +140,21 @@ def list_postings_of(entry: Entry) -> QuerySet[Posting]:
     with scope(workshop=entry.workshop):
         postings = Posting.objects.filter(entry=entry).select_related("component", "vessel")
         return postings.order_by("transfer", "amount")
+
+
+def list_transfers_of(entry: Entry) -> list[Transfer]:
+    """Return what followed from an entry as movements between ends: vessels by uuid, or boundaries. One query."""
+    pairs: dict[int, list[Posting]] = {}
+    for posting in list_postings_of(entry):
+        pairs.setdefault(posting.transfer, []).append(posting)
+    return [
+        Transfer(taker.component.code, _end(giver), _end(taker), taker.amount, taker.sd, taker.basis)
+        for giver, taker in pairs.values()
+    ]
+
+
+def _end(posting: Posting) -> str:
+    return posting.boundary if posting.vessel is None else str(posting.vessel.uuid)
 
 
 def get_balances_before(workshop: Workshop, before: datetime) -> dict[tuple[str, str], int | None]:

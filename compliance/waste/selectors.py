@@ -38,6 +38,13 @@ def list_containers_for(member: Membership) -> QuerySet[WasteContainer]:
         )
 
 
+def list_closed_vessels(member: Membership) -> frozenset[UUID]:
+    """Return the vessels of the closed waste containers, into which nothing goes any more. One query."""
+    with scope(workshop=member.workshop):
+        closed = WasteContainer.objects.filter(closed_at__isnull=False)
+        return frozenset(closed.values_list("vessel__uuid", flat=True))
+
+
 def get_container_for(member: Membership, uuid: UUID) -> WasteContainer:
     """Return one waste container by its vessel's uuid."""
     try:

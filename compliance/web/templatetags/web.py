@@ -1,0 +1,85 @@
+"""Filters of the pages: amounts and moments."""
+
+from datetime import datetime
+
+from django import template
+from django.utils.html import format_html
+from django.utils.safestring import SafeString
+
+from chemicals.journal.models import Entry
+from chemicals.ledger.selectors import Held, HeldMetal
+from chemicals.science.quantity import show
+from compliance.documents.twin import symbol
+from compliance.web import words
+
+register = template.Library()
+
+
+@register.filter
+def moment(at: datetime | None) -> SafeString | str:
+    """Show a moment in the workshop's zone."""
+    return "" if at is None else _time(at, words.moment(at))
+
+
+@register.filter
+def happened(entry: Entry) -> SafeString:
+    """Show when an entry happened, as precisely as is known."""
+    return _time(entry.occurred_at, words.moment(entry.occurred_at, entry.precision))
+
+
+def _time(at: datetime, text: str) -> SafeString:
+    return format_html('<time datetime="{}">{}</time>', at.isoformat(), text)
+
+
+@register.filter
+def volume(nanolitres: int | None) -> str:
+    """Show a volume."""
+    return words.amount(nanolitres, "volume")
+
+
+@register.filter
+def mass(micrograms: int | None) -> str:
+    """Show a mass."""
+    return words.amount(micrograms, "gross mass")
+
+
+@register.filter
+def held(row: Held | None) -> str:
+    """Show what a vessel holds of a component, with its uncertainty."""
+    return words.amount(0, "volume") if row is None else words.with_uncertainty(row.amount, row.sd, row.component)
+
+
+@register.filter
+def per_litre(row: HeldMetal) -> str:
+    """Show a concentration with its uncertainty; nothing where there is none."""
+    if row.concentration is None:
+        return ""
+    text = show(row.concentration, "concentration")
+    return f"{text} ± {show(row.concentration_sd, 'concentration', digits=2)}" if row.concentration_sd else text
+
+
+@register.filter
+def in_unit(base: int | None, dimension: str) -> str:
+    """Show base units of any dimension."""
+    return str(words.UNKNOWN) if base is None else show(base, dimension)
+
+
+@register.filter
+def component(code: str) -> str:
+    """Show the name of what is balanced."""
+    return words.component_name(code)
+
+
+@register.filter
+def kind(code: str) -> str:
+    """Show the kind of an entry."""
+    return str(words.KINDS[code])
+
+
+@register.filter
+def verdict(code: str) -> str:
+    """Show the recorded answer to "may this be done?"."""
+    return str(words.VERDICTS[code])
+
+
+register.filter("pictogram", symbol)
