@@ -20,10 +20,13 @@ def path_of(sha256: str) -> Path:
 
 
 def keep(data: bytes) -> str:
-    """Write the bytes durably, unless they are there already; return their SHA-256 in hex."""
+    """Write the bytes durably, unless they are there already; return their SHA-256 in hex.
+
+    A missing or changed file is mended by keeping its bytes again.
+    """
     sha256 = hashlib.sha256(data).hexdigest()
     path = path_of(sha256)
-    if path.exists():
+    if path.exists() and path.read_bytes() == data:
         return sha256
     path.parent.mkdir(parents=True, exist_ok=True)
     handle, fresh = tempfile.mkstemp(dir=path.parent)

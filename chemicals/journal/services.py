@@ -10,12 +10,13 @@ from django_scopes import scope, scopes_disabled
 
 from chemicals.books import canonical, events
 from chemicals.books.clearance import VERDICTS, Clearance
-from chemicals.books.occurred import Occurred
+from chemicals.books.occurred import DAY, Occurred
 from chemicals.journal import files
 from chemicals.journal.models import Attachment, Entry, Head
-from chemicals.workshop.errors import ConflictError, InvalidInputError
+from chemicals.workshop.errors import ConflictError, FieldError, InvalidInputError
 from chemicals.workshop.models import Membership
 from chemicals.workshop.permissions import require_writer
+from chemicals.workshop.texts import find_bad_lines, find_unwritable, tidy
 
 CLOCK_TOLERANCE = timedelta(minutes=5)
 """How far ahead a device's clock may run before its time is refused as lying in the future."""
@@ -50,8 +51,10 @@ def append(
     require_writer(actor)
     if clearance.verdict not in VERDICTS:
         raise ValueError(f"unknown verdict {clearance.verdict}")
-    if occurred is not None and occurred.at > now + CLOCK_TOLERANCE and occurred.precision != "day":
-        raise InvalidInputError.of("occurred_at", "This lies in the future. Write when it happened.")
+    when = occurred or Occurred(now)
+    _require_past(actor, now, when)
+    attachments = sorted(set(attachments))
+    _require_writable(event, clearance)
     with transaction.atomic(), scope(workshop=actor.workshop):
         head = lock_chain(actor)
         first = Entry.objects.filter(uuid=key).select_related("member__user").first()
@@ -59,7 +62,6 @@ def append(
             return Appended(_same(first, event, occurred, attachments), is_new=False)
         _require_free_key(key)
         _require_files(actor, attachments)
-        when = occurred or Occurred(now)
         body = canonical.Body(
             format=canonical.FORMAT,
             workshop=actor.workshop.uuid,
@@ -73,9 +75,27 @@ def append(
             member=actor.uuid,
             clearance=clearance,
             payload=events.encode(event),
-            attachments=tuple(sorted(attachments)),
+            attachments=tuple(attachments),
         )
         return Appended(_write(actor, head, body, event), is_new=True)
+
+
+def _require_past(actor: Membership, now: datetime, when: Occurred) -> None:
+    """A day counts as past from its first hour, in the workshop's zone, though it stands for its noon."""
+    zone = actor.workshop.zone
+    if when.precision == DAY:
+        ahead = when.at.astimezone(zone).date() > now.astimezone(zone).date()
+    else:
+        ahead = when.at > now + CLOCK_TOLERANCE
+    if ahead:
+        raise InvalidInputError.of("occurred_at", "This lies in the future. Write when it happened.")
+
+
+def _require_writable(event: events.Event, clearance: Clearance) -> None:
+    """Refuse texts that have no canonical bytes, all at once and by field."""
+    errors = [*find_unwritable(canonical.to_plain(event)), *find_unwritable(clearance.reasons, "reasons")]
+    if errors:
+        raise InvalidInputError(sorted(errors, key=lambda error: error.field))
 
 
 def lock_chain(actor: Membership) -> Head:
@@ -117,7 +137,7 @@ def _same(first: Entry, event: events.Event, occurred: Occurred | None, attachme
         (body.kind, body.kind_version) == (event.KIND, event.VERSION)
         and body.payload["observed"] == fresh["observed"]
         and (occurred is None or (body.occurred_at, body.precision) == (occurred.at, occurred.precision))
-        and body.attachments == tuple(sorted(attachments))
+        and body.attachments == tuple(attachments)
     )
     if not same:
         raise ConflictError("This key was used for another record. Open a fresh form and record again.")
@@ -143,15 +163,18 @@ def add_attachment(*, actor: Membership, now: datetime, name: str, data: bytes) 
     """Keep a PDF, PNG or JPEG file (told by its content); the same bytes are kept once."""
     require_writer(actor)
     media_type = next((kind for magic, kind in MAGIC.items() if data.startswith(magic)), None)
+    errors = [FieldError("file", error.message) for error in find_bad_lines(name=name)]
     if media_type is None:
-        raise InvalidInputError.of("file", "Only PDF, PNG and JPEG files are kept. Choose one of these.")
+        errors.append(FieldError("file", "Only PDF, PNG and JPEG files are kept. Choose one of these."))
+    if errors or media_type is None:
+        raise InvalidInputError(errors)
     sha256 = files.keep(data)
     with scope(workshop=actor.workshop):
         attachment, _ = Attachment.objects.get_or_create(
             workshop=actor.workshop,
             sha256=sha256,
             defaults={
-                "name": canonical.check_text(name)[:200] or "file",
+                "name": tidy(name)[:200] or "file",
                 "media_type": media_type,
                 "size": len(data),
                 "added_at": now,

@@ -40,14 +40,18 @@ def expected(connection: BaseDatabaseWrapper) -> dict[str, str]:
     return SQLITE if connection.vendor == "sqlite" else POSTGRESQL
 
 
+def _statement(connection: BaseDatabaseWrapper, name: str) -> str:
+    tail = " EXECUTE FUNCTION journal_refuses()" if connection.vendor == "postgresql" else ""
+    return f"CREATE TRIGGER {name} {expected(connection)[name]}{tail}"
+
+
 def install(connection: BaseDatabaseWrapper) -> None:
     """Create the triggers."""
     with connection.cursor() as cursor:
         if connection.vendor == "postgresql":
             cursor.execute(FUNCTION)
-        for name, rest in expected(connection).items():
-            tail = " EXECUTE FUNCTION journal_refuses()" if connection.vendor == "postgresql" else ""
-            cursor.execute(f"CREATE TRIGGER {name} {rest}{tail}")
+        for name in expected(connection):
+            cursor.execute(_statement(connection, name))
 
 
 def remove(connection: BaseDatabaseWrapper) -> None:
@@ -59,15 +63,17 @@ def remove(connection: BaseDatabaseWrapper) -> None:
 
 
 def present(connection: BaseDatabaseWrapper) -> set[str]:
-    """Return the names of the triggers on the journal that are there and enabled."""
-    sql = (
-        f"SELECT name FROM sqlite_master WHERE type = 'trigger' AND tbl_name = '{TABLE}'"  # noqa: S608  (a constant)
-        if connection.vendor == "sqlite"
-        else f"SELECT tgname FROM pg_trigger WHERE tgrelid = '{TABLE}'::regclass AND NOT tgisinternal AND tgenabled = 'O'"  # noqa: S608, E501
-    )
+    """Return the names of the triggers that are there, enabled, and do what they should."""
     with connection.cursor() as cursor:
-        cursor.execute(sql)
-        return {row[0] for row in cursor.fetchall()}
+        if connection.vendor == "sqlite":
+            cursor.execute("SELECT name, sql FROM sqlite_master WHERE type = 'trigger' AND tbl_name = %s", [TABLE])
+            return {name for name, sql in cursor if name in SQLITE and sql == _statement(connection, name)}
+        cursor.execute(
+            "SELECT tgname FROM pg_trigger JOIN pg_proc ON pg_proc.oid = tgfoid"
+            " WHERE tgrelid = %s::regclass AND tgenabled = 'O' AND proname = 'journal_refuses'",
+            [TABLE],
+        )
+        return {row[0] for row in cursor}
 
 
 @register(Tags.database)
@@ -83,7 +89,7 @@ def check_triggers(databases: Any = None, **kwargs: Any) -> list[CheckMessage]:
             problems.append(
                 Error(
                     f"The journal of database {alias} lacks the triggers {', '.join(missing)}.",
-                    hint="A migration remade the table: install them again with chemicals.journal.triggers.install.",
+                    hint="Something remade the table or removed them: chemicals.journal.triggers.install makes them.",
                     id="journal.E001",
                 )
             )
