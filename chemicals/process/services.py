@@ -9,13 +9,11 @@ from django_scopes import scope
 
 from chemicals.books import events
 from chemicals.books.clearance import Clearance
-from chemicals.books.occurred import Occurred
 from chemicals.journal import services as journal
 from chemicals.journal.models import Entry
 from chemicals.journal.services import Appended
 from chemicals.ledger.services import project_entry
-from chemicals.process.build import build
-from chemicals.process.inputs import Input
+from chemicals.process.build import Built
 from chemicals.workshop.errors import ConflictError
 from chemicals.workshop.models import Membership
 from chemicals.workshop.permissions import require_writer
@@ -26,20 +24,19 @@ def record_matter(
     actor: Membership,
     now: datetime,
     key: UUID,
-    data: Input,
-    occurred: Occurred | None,
+    built: Built,
     clearance: Clearance,
     attachments: Sequence[str] = (),
 ) -> Appended:
     """Record what happened: append the entry and bring the ledger up to date.
 
-    ``clearance`` is the recorded answer to "may this be done?"; only compliance.clearance makes one from the rules.
+    ``built`` comes from ``process.build``, under the same lock of the chain. ``clearance`` is the recorded answer to
+    "may this be done?"; only compliance.clearance makes one from the rules.
     The same ``key`` with the same content returns the first entry and changes nothing.
     """
     require_writer(actor)
     with transaction.atomic(), scope(workshop=actor.workshop):
         journal.lock_chain(actor)
-        built = build(actor, now, data, occurred)
         appended = journal.append(
             actor=actor,
             now=now,
@@ -57,7 +54,9 @@ def record_matter(
 
 def _require_possible(entry: Entry, event: events.Event) -> None:
     """Refuse what earlier entries make impossible; the transaction is rolled back with the entry in it."""
-    others = Entry.objects.filter(about=entry.about).exclude(pk=entry.pk) if entry.about else Entry.objects.none()
+    if entry.about is None:
+        return
+    others = list(Entry.objects.filter(about=entry.about).exclude(pk=entry.pk))
     cancelled = set(
         Entry.objects.filter(kind=events.Cancellation.KIND, about__in=others).values_list("about_id", flat=True)
     )

@@ -5,12 +5,13 @@ from datetime import datetime
 from uuid import UUID
 
 from django.db import transaction
+from django_scopes import scope
 
 from chemicals.books.clearance import ALLOWED, INCIDENT, Clearance
 from chemicals.books.occurred import Occurred
 from chemicals.journal.services import Appended, lock_chain
+from chemicals.process.build import build
 from chemicals.process.inputs import Input
-from chemicals.process.selectors import try_out
 from chemicals.process.services import record_matter
 from chemicals.workshop.errors import ConflictError
 from chemicals.workshop.models import Membership
@@ -38,9 +39,10 @@ def record(
 ) -> Appended:
     """Record what happened, if it may be done; else raise RefusedError, unless it has happened already."""
     require_writer(actor)
-    with transaction.atomic():
+    with transaction.atomic(), scope(workshop=actor.workshop):
         lock_chain(actor)  # nothing is poured in between the answer and the record
-        reasons = tuple(find_reasons(actor.workshop, try_out(actor, now, data, occurred).event))
+        built = build(actor, now, data, occurred)
+        reasons = tuple(find_reasons(actor.workshop, built.event))
         if reasons and not already_happened:
             raise RefusedError(reasons)
         clearance = Clearance(INCIDENT, reasons + FIRST_STEPS) if reasons else Clearance(ALLOWED)
@@ -48,8 +50,7 @@ def record(
             actor=actor,
             now=now,
             key=key,
-            data=data,
-            occurred=occurred,
+            built=built,
             clearance=clearance,
             attachments=attachments,
         )

@@ -38,7 +38,7 @@ def test_no_float_touches_an_amount() -> None:
             named = isinstance(node, ast.Name) and node.id in ("float", "FloatField")
             attribute = isinstance(node, ast.Attribute) and node.attr == "FloatField"
             if literal or named or attribute:
-                floats.append(f"{path}:{node.lineno}")
+                floats.append(f"{path}: {ast.unparse(node)}")
     assert floats == []
 
 
