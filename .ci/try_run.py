@@ -26,9 +26,11 @@ def answers() -> bool:
 
 
 def processes() -> list[str]:
-    """Return the command lines that name the clone."""
+    """Return the command lines of others that name the clone or work in it."""
     found = []
     for path in Path("/proc").glob("[0-9]*/cmdline"):
+        if path.parent.name == str(os.getpid()):
+            continue
         try:
             line = path.read_bytes().replace(b"\0", b" ").decode(errors="replace")
             where = str((path.parent / "cwd").readlink())
