@@ -4,7 +4,7 @@ from datetime import UTC, datetime
 from uuid import UUID
 
 from chemicals.books.events import COMPUTED, UNACCOUNTED, VOLUME, Acceptance, Analysis, Event, Figure, Measured, Move
-from chemicals.books.fold.state import NEGATIVE_CONTENT, UNKNOWN_LEVEL, WAS_UNKNOWN
+from chemicals.books.fold.state import NEGATIVE_CONTENT, TOO_MUCH, UNKNOWN_LEVEL, WAS_UNKNOWN
 from tests.books.words import Books, G, L, bases, codes, grams, litres, moved, opening
 
 SAMPLE = UUID("00000000-0000-4000-8000-00000000000a")
@@ -91,3 +91,14 @@ def test_an_analysis_of_less_than_nothing_asks_for_the_level() -> None:
     assert books.holds("bath", VOLUME) == -2 * L
     assert codes(books.record(found(45)[1])) == {UNKNOWN_LEVEL}
     assert books.holds("bath", "Cu") == 0
+
+
+def test_a_result_in_the_wrong_unit_makes_the_content_unknown() -> None:
+    """A million kilograms in a litre: the books do not believe it, and no longer believe themselves either."""
+    books = Books(opening("bath", litres(10), Cu=grams(500)))
+    folded = books.record(found(10**9)[1])
+    assert folded.transfers == ()
+    assert books.holds("bath", "Cu") is None
+    assert [(finding.code, finding.source, finding.target) for finding in folded.findings] == [
+        (TOO_MUCH, UNACCOUNTED, "bath")
+    ]

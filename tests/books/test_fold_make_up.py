@@ -19,6 +19,7 @@ from chemicals.books.fold.state import (
     UNKNOWN_LEVEL,
     UNKNOWN_MASS,
     WAS_UNKNOWN,
+    Finding,
 )
 from tests.books.words import (
     KG,
@@ -112,6 +113,7 @@ def test_an_ingredient_without_an_amount_leaves_both_ends_unknown() -> None:
     books = a_workshop_with_stock()
     folded = books.record(made_up(Ingredient("bag", None, None), level=litres(10)))
     assert moved(folded, "Cu") == []
+    assert Finding(UNKNOWN_AMOUNT, "Cu", "bag", "bath") in folded.findings
     assert books.holds("bag", "Cu") is None
     assert books.holds("bath", "Cu") is None
     assert books.holds("bath", "Ag") == 0  # the salt's list is complete: it brought no silver

@@ -265,6 +265,12 @@ def test_a_dip_only_and_twice_into_the_same_tank() -> None:
     assert moved(folded, "Cu") == [("bath", "first", 1 * G)]
 
 
+def test_a_bath_that_is_its_own_anode_gives_itself_nothing() -> None:
+    books = a_bath()
+    books.record(load(deposit=copper_deposit(0), anode="bath", before=grams(5), after=grams(6)))
+    assert books.holds("bath", "Cu") == 999 * G
+
+
 def test_a_run_through_no_tank_is_nothing() -> None:
     run = Run("knobs", (), coulombs(3600), None, None, None, None, copper_deposit(), None, "rack")
     assert a_line().record(run).transfers == ()
