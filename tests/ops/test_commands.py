@@ -15,6 +15,7 @@ from contextlib import closing, contextmanager
 from pathlib import Path
 
 import pytest
+from pytest_django import Settings
 
 from compliance.ops.management.commands.run import Command as Run
 from compliance.ops.start import StartError, write_private
@@ -75,6 +76,16 @@ def test_the_demo_does_not_touch_a_folder_that_it_did_not_make(tmp_path: Path) -
 def test_the_demos_people_are_read_as_they_were_written(tmp_path: Path) -> None:
     write_private(tmp_path / "demo-users.txt", "ada@example.org\tquiet copper\towner\n")
     assert Run().read(tmp_path / "demo-users.txt") == [("ada@example.org", "quiet copper", "owner")]
+
+
+@pytest.mark.django_db
+def test_the_demo_is_loaded_once_and_its_people_are_kept_for_its_user_only(tmp_path: Path, settings: Settings) -> None:
+    settings.ATTACHMENTS = tmp_path / "attachments"
+    kept = tmp_path / "demo-users.txt"
+    people = Run().load_or_read(kept)
+    assert {role for _, _, role in people} == {"owner", "worker", "observer"}
+    assert kept.stat().st_mode & 0o777 == 0o600
+    assert Run().load_or_read(kept) == people
 
 
 @pytest.fixture(scope="module")
