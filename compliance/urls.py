@@ -1,5 +1,7 @@
 """All addresses: pages at the top, the API under /api/v1/."""
 
-from django.urls import URLPattern, URLResolver
+from django.urls import URLPattern, URLResolver, include, path
 
-urlpatterns: list[URLPattern | URLResolver] = []
+urlpatterns: list[URLPattern | URLResolver] = [
+    path("api/v1/", include("compliance.api.urls")),
+]

@@ -195,6 +195,8 @@ SPECTACULAR_SETTINGS = {
     "VERSION": "1",
     "OAS_VERSION": "3.1.0",
     "SERVE_INCLUDE_SCHEMA": False,
+    "POSTPROCESSING_HOOKS": ["compliance.api.schema.drop_enum_marks"],  # choices stand where they are used
+    "ENUM_GENERATE_CHOICE_DESCRIPTION": False,
 }
 
 REDIS_URL = os.environ.get("REDIS_URL", "")

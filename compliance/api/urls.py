@@ -1,0 +1,61 @@
+"""The addresses of the API. Lists and things end in a slash; verbs and files do not."""
+
+from django.urls import URLPattern, include, path
+
+from compliance.api.views import calculations, doors, entries, papers, register, vessels, waste, workshop
+from compliance.api.views.description import SchemaView
+
+WORKSHOP: list[URLPattern] = [
+    path("", workshop.WorkshopDetailView.as_view(), name="api-workshop"),
+    path("places/", workshop.PlacesView.as_view(), name="api-places"),
+    path("places/<uuid:uuid>/", workshop.PlaceView.as_view(), name="api-place"),
+    path("substances/", register.SubstancesView.as_view(), name="api-substances"),
+    path("substances/<uuid:uuid>/", register.SubstanceView.as_view(), name="api-substance"),
+    path("products/", register.ProductsView.as_view(), name="api-products"),
+    path("products/<uuid:uuid>/", register.ProductView.as_view(), name="api-product"),
+    path("products/<uuid:uuid>/revisions/", register.RevisionsView.as_view(), name="api-revisions"),
+    path("vessels/", vessels.VesselsView.as_view(), name="api-vessels"),
+    path("vessels/<uuid:uuid>/", vessels.VesselView.as_view(), name="api-vessel"),
+    path("tanks/", vessels.TanksView.as_view(), name="api-tanks"),
+    path("tanks/<uuid:uuid>/", vessels.TankView.as_view(), name="api-tank"),
+    path("rack-types/", vessels.RackTypesView.as_view(), name="api-rack-types"),
+    path("rack-types/<uuid:uuid>/", vessels.RackTypeView.as_view(), name="api-rack-type"),
+    path("routes/", vessels.RoutesView.as_view(), name="api-routes"),
+    path("routes/<uuid:uuid>/", vessels.RouteView.as_view(), name="api-route"),
+    path("entries/", entries.EntriesView.as_view(), name="api-entries"),
+    path("entries/<uuid:uuid>/", entries.EntryView.as_view(), name="api-entry"),
+    path("metals/", entries.MetalsView.as_view(), name="api-metals"),
+    path("balances/", entries.BalanceView.as_view(), name="api-balance"),
+    path("waste-streams/", waste.StreamsView.as_view(), name="api-waste-streams"),
+    path("waste-streams/<uuid:uuid>/", waste.StreamView.as_view(), name="api-waste-stream"),
+    path("waste-containers/", waste.ContainersView.as_view(), name="api-waste-containers"),
+    path("waste-containers/<uuid:uuid>/", waste.ContainerView.as_view(), name="api-waste-container"),
+    path("waste-containers/<uuid:uuid>/close", waste.CloseView.as_view(), name="api-close"),
+    path("waste-containers/<uuid:uuid>/label", waste.LabelView.as_view(), name="api-label"),
+    path("receivers/", waste.ReceiversView.as_view(), name="api-receivers"),
+    path("receivers/<uuid:uuid>/", waste.ReceiverView.as_view(), name="api-receiver"),
+    path("drop-offs/", waste.DropOffsView.as_view(), name="api-drop-offs"),
+    path("drop-offs/<uuid:uuid>/", waste.DropOffView.as_view(), name="api-drop-off"),
+    path("drop-offs/<uuid:uuid>/pack", waste.PackView.as_view(), name="api-pack"),
+    path("drop-offs/<uuid:uuid>/hand-over", waste.HandOverView.as_view(), name="api-hand-over"),
+    path("papers/", papers.PapersView.as_view(), name="api-papers"),
+    path("papers/<uuid:uuid>/", papers.PaperView.as_view(), name="api-paper"),
+    path("papers/<uuid:uuid>.pdf", papers.PaperPdfView.as_view(), name="api-paper-pdf"),
+    path("attachments/", papers.AttachmentsView.as_view(), name="api-attachments"),
+    path("attachments/<str:sha256>", papers.AttachmentView.as_view(), name="api-attachment"),
+    *(path(f"preview/{verb}", view.as_view(), name=f"api-preview-{verb}") for verb, view in doors.PREVIEWS.items()),
+    *(path(f"record/{verb}", view.as_view(), name=f"api-record-{verb}") for verb, view in doors.RECORDS.items()),
+]
+
+urlpatterns = [
+    path("schema", SchemaView.as_view(), name="api-schema"),
+    path("workshops/", workshop.WorkshopsView.as_view(), name="api-workshops"),
+    path("workshops/<uuid:workshop>/", include(WORKSHOP)),
+    path("calculations/", calculations.CalculationsView.as_view(), name="api-calculations"),
+    *(
+        path(f"calculations/{name}", view.as_view(), name=f"api-calculate-{name}")
+        for name, view in calculations.VIEWS.items()
+    ),
+    path("", workshop.NowhereView.as_view(), name="api-root"),
+    path("<path:rest>", workshop.NowhereView.as_view(), name="api-nowhere"),
+]

@@ -1,0 +1,111 @@
+"""Substances, products and their revisions."""
+
+from typing import Any
+
+from django.db.models import QuerySet
+from rest_framework.request import Request
+from rest_framework.response import Response
+
+from chemicals.journal.selectors import get_attachment_for
+from chemicals.register.models import Product, ProductRevision, Substance
+from chemicals.register.selectors import (
+    get_current_revision,
+    get_product_for,
+    get_substance_for,
+    list_current_revisions_for,
+    list_revisions_of,
+    list_substances_for,
+)
+from chemicals.register.services import LineInput, RevisionInput, create_product, create_substance, revise_product
+from compliance.api.pagination import NewestFirst
+from compliance.api.serializers import register as shapes
+from compliance.api.views.base import ListCreateView, Lookup, WorkshopView
+
+
+class SubstancesView(ListCreateView):
+    """Chemical species, of which products are made."""
+
+    shape, input_class = shapes.SubstanceShape, shapes.SubstanceInput
+
+    def rows(self) -> QuerySet[Substance]:
+        """Return the substances."""
+        return list_substances_for(self.member)
+
+    def create(self, **said: Any) -> Substance:
+        """Create a substance."""
+        return create_substance(actor=self.member, **said)
+
+
+class SubstanceView(WorkshopView):
+    """One substance."""
+
+    shape = shapes.SubstanceShape
+
+    def get(self, request: Request, **kwargs: Any) -> Response:
+        """Return the substance."""
+        return self.respond(get_substance_for(self.member, kwargs["uuid"]))
+
+
+class _RevisionsView(ListCreateView):
+    """Base of the views that write a revision."""
+
+    shape = shapes.RevisionShape
+
+    def build_revision(
+        self, *, lines: list[dict[str, Any]] | None = None, safety_data_sheet: str | None = None, **said: Any
+    ) -> RevisionInput:
+        """Return what is known of the product, with the things that it names."""
+        lookup = Lookup(self.member)
+        found = [
+            (lookup.find(f"lines.{number}.substance", get_substance_for, line["substance"]), line["content"])
+            for number, line in enumerate(lines or [])
+        ]
+        sheet = lookup.find("safety_data_sheet", get_attachment_for, safety_data_sheet or None)
+        lookup.finish()
+        words = {name: tuple(value) if isinstance(value, list) else value for name, value in said.items()}
+        inputs = tuple(LineInput(substance, content) for substance, content in found if substance is not None)
+        return RevisionInput(lines=inputs, safety_data_sheet=sheet, **words)
+
+
+class ProductsView(_RevisionsView):
+    """Products in their current revisions."""
+
+    input_class = shapes.ProductInput
+
+    def rows(self) -> QuerySet[ProductRevision]:
+        """Return the current revisions."""
+        return list_current_revisions_for(self.member)
+
+    def create(self, *, name: str, supplier: str = "", **said: Any) -> ProductRevision:
+        """Create a product with its first revision."""
+        revision = self.build_revision(**said)
+        return create_product(actor=self.member, now=self.now, name=name, supplier=supplier, revision=revision)
+
+
+class ProductView(WorkshopView):
+    """One product in its current revision."""
+
+    shape = shapes.RevisionShape
+
+    def get(self, request: Request, **kwargs: Any) -> Response:
+        """Return the current revision."""
+        return self.respond(get_current_revision(get_product_for(self.member, kwargs["uuid"])))
+
+
+class RevisionsView(_RevisionsView):
+    """All revisions of a product, the newest first; a new one leaves the earlier ones as they were."""
+
+    input_class = shapes.RevisionInput
+    pagination_class = NewestFirst
+
+    def rows(self) -> QuerySet[ProductRevision]:
+        """Return the revisions."""
+        return list_revisions_of(self._product())
+
+    def create(self, **said: Any) -> ProductRevision:
+        """Write the next revision."""
+        product = self._product()
+        return revise_product(actor=self.member, now=self.now, product=product, revision=self.build_revision(**said))
+
+    def _product(self) -> Product:
+        return get_product_for(self.member, self.kwargs["uuid"])
