@@ -70,9 +70,13 @@ def _build_output(hint: Any, help_text: str) -> Any:
     if get_origin(hint) is dict:
         number = serializers.FloatField(help_text=_("The value under this name."))
         return serializers.DictField(child=number, **options)
-    return {Decimal: serializers.FloatField, float: serializers.FloatField, int: serializers.IntegerField}.get(
-        hint, serializers.CharField
-    )(**options)
+    known: dict[Any, type[serializers.Field[Any, Any, Any, Any]]] = {
+        Decimal: serializers.FloatField,
+        float: serializers.FloatField,
+        int: serializers.IntegerField,
+        str: serializers.CharField,
+    }
+    return known[hint](**options)
 
 
 class CalculationShape(Shape):

@@ -4,7 +4,7 @@
 the whole request is meant.
 """
 
-from collections.abc import Iterable, Iterator, Mapping
+from collections.abc import Iterable, Iterator, Mapping, Sequence
 from typing import Any
 
 from django.core.exceptions import BadRequest, PermissionDenied, SuspiciousOperation
@@ -48,15 +48,21 @@ def answer(error: Exception, context: Mapping[str, Any]) -> Response | None:
     status = next((status for kind, status in STATUS if isinstance(error, kind)), None)
     if status is None:
         return None
-    reasons = {"reasons": list(error.reasons)} if isinstance(error, RefusedError) else {}
-    return _respond(status, list(_domain_errors(error)), **reasons)
+    reasons = error.reasons if isinstance(error, RefusedError) else None
+    return _respond(status, _domain_errors(error), reasons=reasons)
 
 
 def _respond(
-    status: int, errors: Iterable[FieldError], *, headers: Mapping[str, str] | None = None, **more: Any
+    status: int,
+    errors: Iterable[FieldError],
+    *,
+    headers: Mapping[str, str] | None = None,
+    reasons: Sequence[str] | None = None,
 ) -> Response:
-    plain = [{"field": error.field, "message": error.message} for error in errors]
-    return Response({"errors": plain, **more}, status=status, headers=headers)
+    said: dict[str, Any] = {"errors": [{"field": error.field, "message": error.message} for error in errors]}
+    if reasons is not None:
+        said["reasons"] = list(reasons)
+    return Response(said, status=status, headers=headers)
 
 
 def _domain_errors(error: Exception) -> Iterator[FieldError]:

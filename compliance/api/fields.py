@@ -2,7 +2,7 @@
 
 from collections.abc import Mapping
 from datetime import date, datetime
-from typing import Any
+from typing import Any, cast
 from uuid import UUID
 
 from django.utils.translation import gettext_lazy as _
@@ -160,13 +160,13 @@ class Moment(serializers.DateTimeField):
 class MomentOrDay(serializers.Field[datetime | date, str, str, Any]):
     """When something happened: a moment with its offset, or only the day if nothing finer is known."""
 
-    default_error_messages = MISSING
+    default_error_messages = {**MISSING}
 
     def to_internal_value(self, data: str) -> datetime | date:
         """Return the moment, or the day."""
-        if _read_date(data) is not None:
-            return Day().run_validation(data)
-        return Moment().run_validation(data)
+        field: serializers.Field[Any, Any, Any, Any] = Moment() if _read_date(data) is None else Day()
+        found: datetime | date = field.run_validation(data)
+        return found
 
     def to_representation(self, value: datetime | date) -> str:
         """Return it in ISO 8601."""
@@ -260,6 +260,11 @@ class Strict(serializers.Serializer[Any]):
         if errors:
             raise serializers.ValidationError(errors)
         return values
+
+
+def rows(row: type[Strict], *, most: int, **options: Any) -> Any:
+    """Return a field that takes a list of smaller inputs of one kind."""
+    return cast("Any", row)(many=True, max_length=most, **options)
 
 
 def _as_dict(detail: Any) -> dict[str, Any]:

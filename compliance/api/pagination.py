@@ -55,9 +55,10 @@ class EntryCursor(StableCursor):
     ordering = "-sequence"
 
 
-def _is_key(position: str | None) -> bool:
+def _is_key(position: object) -> bool:
     """Say whether a position is a row's number; a cursor without one points at the beginning."""
-    return position is None or (position.isascii() and position.isdigit() and len(position) <= 18)
+    text = "" if position is None else str(position)
+    return position is None or (text.isascii() and text.isdigit() and len(text) <= 18)
 
 
 def _refuse() -> ValidationError:

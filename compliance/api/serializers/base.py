@@ -123,7 +123,9 @@ class ErrorRow(Shape):
 class Errors(Shape):
     """Everything that is wrong, at once."""
 
-    errors = ErrorRow(many=True, help_text=_("One row for each thing that is wrong."))
+    errors = ErrorRow(  # type: ignore[assignment]  # a field of the answer, not the serializer's own attribute
+        many=True, help_text=_("One row for each thing that is wrong.")
+    )
 
 
 class Refusal(Errors):

@@ -13,9 +13,9 @@ from chemicals.books.events import ASSUMED, COMPUTED, OBSERVED
 from chemicals.books.fold.state import Transfer
 from chemicals.books.occurred import PRECISIONS, Occurred
 from chemicals.process import fields as kinds
-from chemicals.process.inputs import Input
+from chemicals.process.inputs import INPUTS, Input
 from chemicals.workshop.models import Workshop
-from compliance.api.fields import Amount, Choice, Flag, Identifier, Moment, MomentOrDay, Strict, Text, Words
+from compliance.api.fields import Amount, Choice, Flag, Identifier, Moment, MomentOrDay, Strict, Text, Words, rows
 from compliance.api.serializers.base import End, Estimate, Figure, Shape, choices_of, dimension_of
 from compliance.api.serializers.entries import FindingShape, PayloadShape
 
@@ -43,11 +43,7 @@ class Door(Strict):
     )
 
 
-COMMON = tuple(Door().fields)
-
-
-@cache
-def build_door(verb: type[Input]) -> type[Door]:
+def _build_door(verb: type[Input]) -> type[Door]:
     """Return the serializer of a verb: its own fields and those of every verb."""
     own = {name: _build_field(kind) for name, kind in kinds.describe(verb)}
     return type(verb.__name__, (Door,), {**own, "__doc__": verb.__doc__, "__module__": __name__})
@@ -74,9 +70,12 @@ BUILDERS: Mapping[type[kinds.FieldKind], Callable[[Any, dict[str, Any]], Any]] =
     kinds.MomentField: lambda kind, options: Moment(**options),
     kinds.VesselField: lambda kind, options: Identifier(**options),
     kinds.ReferenceField: lambda kind, options: Identifier(**options),
-    kinds.RowsField: lambda kind, options: _build_rows(kind.of)(many=True, max_length=MOST_ROWS, **options),
+    kinds.RowsField: lambda kind, options: rows(_build_rows(kind.of), most=MOST_ROWS, **options),
 }
 """Which field takes which kind."""
+
+DOORS = {name: _build_door(verb) for name, verb in INPUTS.items()}
+"""What may be said of each verb, by its name in addresses."""
 
 
 def build_input(verb: type[Any], said: Mapping[str, Any]) -> Any:
@@ -114,7 +113,7 @@ class TransferShape(Shape):
     """An amount of one component that would go from one end to another."""
 
     component = serializers.CharField(help_text=_("The metal, volume or gross mass."))
-    source = End(help_text=_("Where it would come from."))
+    source = End(help_text=_("Where it would come from."))  # type: ignore[assignment]  # a field of the answer
     target = End(help_text=_("Where it would go."))
     amount = Figure(source="*", of=_moved, help_text=_("How much."))
     basis = choices_of((OBSERVED, COMPUTED, ASSUMED), _("Where the figure comes from."))

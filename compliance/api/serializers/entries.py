@@ -86,7 +86,7 @@ class FindingShape(Shape):
     code = choices_of(FINDINGS, _("A code that does not change with the language."))
     message = Meaning(source="code", help_text=_("What the code means."))
     component = serializers.CharField(help_text=_("The metal, volume or gross mass; empty means everything else."))
-    source = End(help_text=_("Where it came from."))
+    source = End(help_text=_("Where it came from."))  # type: ignore[assignment]  # a field of the answer
     target = End(help_text=_("Where it went."))
 
 
@@ -157,7 +157,9 @@ class BalanceRow(Shape):
 class FlowShape(Shape):
     """What went from one end to another over the period."""
 
-    source = serializers.CharField(help_text=_("Where it came from: a vessel's name, or a boundary."))
+    source = serializers.CharField(  # type: ignore[assignment]  # a field of the answer
+        help_text=_("Where it came from: a vessel's name, or a boundary.")
+    )
     target = serializers.CharField(help_text=_("Where it went."))
     amount = Figure(of=_estimate, help_text=_("How much."))
     between_vessels = serializers.BooleanField(help_text=_("True if both ends are vessels: nothing entered or left."))

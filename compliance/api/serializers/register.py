@@ -7,7 +7,7 @@ from rest_framework import serializers
 from chemicals.register.models import Form, Per
 from chemicals.register.services import PICTOGRAMS, SIGNAL_WORDS
 from chemicals.science.reactivity import REACTS_AS
-from compliance.api.fields import LONGEST_AMOUNT, Choice, Day, Flag, Identifier, Strict, Text, Words
+from compliance.api.fields import LONGEST_AMOUNT, Choice, Day, Flag, Identifier, Strict, Text, Words, rows
 from compliance.api.serializers.base import Figure, Person, Shape, choices_of
 
 KINDS_HELP = format_lazy(
@@ -88,7 +88,7 @@ class RevisionInput(Strict):
     """What is known of a product from now on; earlier revisions stay as they were."""
 
     form = Choice(choices=Form.choices, help_text=_("The physical form."))
-    lines = LineInput(many=True, required=False, max_length=50, help_text=_("The composition."))
+    lines = rows(LineInput, most=50, required=False, help_text=_("The composition."))
     complete = Flag(required=False, help_text=_("Whether the composition names every metal in it; true if left out."))
     density = Text(
         required=False, allow_blank=True, max_length=LONGEST_AMOUNT, help_text=_('For example "1.84 g/cm3".')

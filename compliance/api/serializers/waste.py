@@ -188,7 +188,7 @@ class PaperShape(Shape):
 class PaperDetail(PaperShape):
     """An issued paper with what it says."""
 
-    data = serializers.DictField(
+    content = serializers.DictField(
         help_text=_("The frozen data that it was drawn from; its fields follow from its kind.")
     )
 

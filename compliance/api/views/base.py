@@ -1,6 +1,6 @@
 """What all views share: who asks, in which workshop, what may stand in the request, and one domain call."""
 
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Iterable, Sequence
 from contextlib import ExitStack
 from datetime import datetime
 from typing import Any, ClassVar, TypeVar
@@ -38,16 +38,17 @@ T = TypeVar("T")
 class OneKind(BaseContentNegotiation):
     """Every answer has one kind, whatever the request would accept."""
 
-    def select_parser(self, request: Request, parsers: Sequence[BaseParser]) -> BaseParser | None:
+    def select_parser(self, request: Request, parsers: Iterable[BaseParser]) -> BaseParser | None:
         """Return the parser of the body's kind, if there is one."""
         kind = (request.content_type or "").partition(";")[0].strip().lower()
         return next((parser for parser in parsers if parser.media_type == kind), None)
 
     def select_renderer(
-        self, request: Request, renderers: Sequence[BaseRenderer], format_suffix: str | None = None
+        self, request: Request, renderers: Iterable[BaseRenderer], format_suffix: str | None = None
     ) -> tuple[BaseRenderer, str]:
         """Return the one renderer."""
-        return renderers[0], renderers[0].media_type or ""
+        renderer = next(iter(renderers))
+        return renderer, renderer.media_type or ""
 
 
 class ApiView(GenericAPIView[Any]):
@@ -58,7 +59,7 @@ class ApiView(GenericAPIView[Any]):
     ``media_types`` what a file may be.
     """
 
-    schema = ApiSchema()
+    schema: ApiSchema | None = ApiSchema()  # None keeps a view out of the description
     metadata_class = None
     parser_classes: Sequence[type[BaseParser]] = (StrictJSONParser,)
     content_negotiation_class = OneKind
@@ -151,13 +152,18 @@ class ListView(ListModelMixin, WorkshopView):
 class ListCreateView(ListView):
     """A list in pages, to which a POST adds."""
 
-    def create(self, **said: Any) -> object:
+    def create(self, said: dict[str, Any]) -> object:
         """Create the thing that the body describes: one domain call."""
         raise NotImplementedError
 
     def post(self, request: Request, **kwargs: Any) -> Response:
         """Create one."""
-        return self.respond(self.create(**self.read_body(request)), 201)
+        return self.respond(self.create(self.read_body(request)), 201)
+
+
+def freeze(said: dict[str, Any]) -> dict[str, Any]:
+    """Return what a body says as a frozen input keeps it: lists as tuples."""
+    return {name: tuple(value) if isinstance(value, list) else value for name, value in said.items()}
 
 
 class Lookup:
@@ -176,6 +182,11 @@ class Lookup:
         except NotFoundError as error:
             self.errors.append(FieldError(field, str(error)))
             return None
+
+    def find_all(self, field: str, get: Callable[[Membership, Any], T], keys: Iterable[UUID]) -> list[T]:
+        """Return the things of a list; each missing one is noted under its number."""
+        found = [self.find(f"{field}.{number}", get, key) for number, key in enumerate(keys)]
+        return [thing for thing in found if thing is not None]
 
     def finish(self) -> None:
         """Raise everything that was noted."""

@@ -13,7 +13,7 @@ from chemicals.process.inputs import INPUTS, Input
 from chemicals.science.quantity import Quantity, echo
 from compliance.api.keys import read_key
 from compliance.api.serializers.base import With
-from compliance.api.serializers.doors import PreviewShape, build_door, build_input, build_occurred
+from compliance.api.serializers.doors import DOORS, PreviewShape, build_input, build_occurred
 from compliance.api.serializers.entries import EntryDetail
 from compliance.api.views.base import WorkshopView
 from compliance.api.views.entries import name_vessels, read_entry
@@ -86,7 +86,7 @@ def _build_views(base: type[WorkshopView], doc: str) -> dict[str, type[WorkshopV
         name: type(
             f"{verb.__name__.removesuffix('Input')}{base.__name__}",
             (base,),
-            {"verb": verb, "input_class": build_door(verb), "__doc__": doc.format(doc=verb.__doc__)},
+            {"verb": verb, "input_class": DOORS[name], "__doc__": doc.format(doc=verb.__doc__)},
         )
         for name, verb in INPUTS.items()
     }

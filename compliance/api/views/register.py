@@ -19,7 +19,7 @@ from chemicals.register.selectors import (
 from chemicals.register.services import LineInput, RevisionInput, create_product, create_substance, revise_product
 from compliance.api.pagination import NewestFirst
 from compliance.api.serializers import register as shapes
-from compliance.api.views.base import ListCreateView, Lookup, WorkshopView
+from compliance.api.views.base import ListCreateView, Lookup, WorkshopView, freeze
 
 
 class SubstancesView(ListCreateView):
@@ -31,7 +31,7 @@ class SubstancesView(ListCreateView):
         """Return the substances."""
         return list_substances_for(self.member)
 
-    def create(self, **said: Any) -> Substance:
+    def create(self, said: dict[str, Any]) -> Substance:
         """Create a substance."""
         return create_substance(actor=self.member, **said)
 
@@ -51,20 +51,17 @@ class _RevisionsView(ListCreateView):
 
     shape = shapes.RevisionShape
 
-    def build_revision(
-        self, *, lines: list[dict[str, Any]] | None = None, safety_data_sheet: str | None = None, **said: Any
-    ) -> RevisionInput:
+    def build_revision(self, said: dict[str, Any]) -> RevisionInput:
         """Return what is known of the product, with the things that it names."""
         lookup = Lookup(self.member)
         found = [
             (lookup.find(f"lines.{number}.substance", get_substance_for, line["substance"]), line["content"])
-            for number, line in enumerate(lines or [])
+            for number, line in enumerate(said.pop("lines", []))
         ]
-        sheet = lookup.find("safety_data_sheet", get_attachment_for, safety_data_sheet or None)
+        sheet = lookup.find("safety_data_sheet", get_attachment_for, said.pop("safety_data_sheet", None))
         lookup.finish()
-        words = {name: tuple(value) if isinstance(value, list) else value for name, value in said.items()}
         inputs = tuple(LineInput(substance, content) for substance, content in found if substance is not None)
-        return RevisionInput(lines=inputs, safety_data_sheet=sheet, **words)
+        return RevisionInput(lines=inputs, safety_data_sheet=sheet, **freeze(said))
 
 
 class ProductsView(_RevisionsView):
@@ -76,9 +73,10 @@ class ProductsView(_RevisionsView):
         """Return the current revisions."""
         return list_current_revisions_for(self.member)
 
-    def create(self, *, name: str, supplier: str = "", **said: Any) -> ProductRevision:
+    def create(self, said: dict[str, Any]) -> ProductRevision:
         """Create a product with its first revision."""
-        revision = self.build_revision(**said)
+        name, supplier = said.pop("name"), said.pop("supplier", "")
+        revision = self.build_revision(said)
         return create_product(actor=self.member, now=self.now, name=name, supplier=supplier, revision=revision)
 
 
@@ -102,10 +100,10 @@ class RevisionsView(_RevisionsView):
         """Return the revisions."""
         return list_revisions_of(self._product())
 
-    def create(self, **said: Any) -> ProductRevision:
+    def create(self, said: dict[str, Any]) -> ProductRevision:
         """Write the next revision."""
         product = self._product()
-        return revise_product(actor=self.member, now=self.now, product=product, revision=self.build_revision(**said))
+        return revise_product(actor=self.member, now=self.now, product=product, revision=self.build_revision(said))
 
     def _product(self) -> Product:
         return get_product_for(self.member, self.kwargs["uuid"])

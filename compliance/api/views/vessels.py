@@ -1,7 +1,6 @@
 """Vessels, tanks, rack types, routes."""
 
 from typing import Any
-from uuid import UUID
 
 from django.db.models import QuerySet
 from django.utils.translation import gettext as _
@@ -43,15 +42,13 @@ class VesselsView(ListCreateView):
             rows = rows.filter(code=tidy_code(self.query["code"]))
         return rows
 
-    def create(self, *, product: UUID | None = None, place: UUID | None = None, **said: Any) -> Vessel:
+    def create(self, said: dict[str, Any]) -> Vessel:
         """Set up a stock container or an anode set."""
         lookup = Lookup(self.member)
-        things = {
-            "product": lookup.find("product", get_product_for, product),
-            "place": lookup.find("place", get_place_for, place),
-        }
+        product = lookup.find("product", get_product_for, said.pop("product", None))
+        place = lookup.find("place", get_place_for, said.pop("place", None))
         lookup.finish()
-        return create_holder(actor=self.member, now=self.now, **things, **said)
+        return create_holder(actor=self.member, now=self.now, product=product, place=place, **said)
 
 
 class VesselView(WorkshopView):
@@ -74,15 +71,13 @@ class TanksView(ListCreateView):
         """Return the tanks."""
         return list_tanks_for(self.member)
 
-    def create(self, *, place: UUID | None = None, anode: UUID | None = None, **said: Any) -> Tank:
+    def create(self, said: dict[str, Any]) -> Tank:
         """Set up a bath or a rinse."""
         lookup = Lookup(self.member)
-        things = {
-            "place": lookup.find("place", get_place_for, place),
-            "anode": lookup.find("anode", get_vessel_for, anode),
-        }
+        place = lookup.find("place", get_place_for, said.pop("place", None))
+        anode = lookup.find("anode", get_vessel_for, said.pop("anode", None))
         lookup.finish()
-        return create_tank(actor=self.member, now=self.now, tank=TankInput(**things, **said))
+        return create_tank(actor=self.member, now=self.now, tank=TankInput(place=place, anode=anode, **said))
 
 
 class TankView(WorkshopView):
@@ -107,7 +102,7 @@ class RackTypesView(ListCreateView):
         """Return the rack types."""
         return list_rack_types_for(self.member)
 
-    def create(self, **said: Any) -> RackType:
+    def create(self, said: dict[str, Any]) -> RackType:
         """Create a rack type."""
         return create_rack_type(actor=self.member, **said)
 
@@ -131,16 +126,14 @@ class RoutesView(ListCreateView):
         """Return the routes."""
         return list_routes_for(self.member)
 
-    def create(self, *, rack: UUID, vessels: list[UUID], **said: Any) -> Route:
+    def create(self, said: dict[str, Any]) -> Route:
         """Create a route."""
         lookup = Lookup(self.member)
-        found = lookup.find("rack", get_rack_type_for, rack)
-        tanks = [lookup.find(f"vessels.{number}", get_vessel_for, uuid) for number, uuid in enumerate(vessels)]
+        rack = lookup.find("rack", get_rack_type_for, said["rack"])
+        vessels = lookup.find_all("vessels", get_vessel_for, said["vessels"])
         lookup.finish()
-        assert found is not None  # noqa: S101  (else finish has raised)
-        route = create_route(
-            actor=self.member, rack=found, vessels=[tank for tank in tanks if tank is not None], **said
-        )
+        assert rack is not None  # noqa: S101  (else finish has raised)
+        route = create_route(actor=self.member, name=said["name"], rack=rack, vessels=vessels)
         return get_route_for(self.member, route.uuid)
 
 

@@ -2,7 +2,6 @@
 
 from datetime import date, datetime
 from typing import Any
-from uuid import UUID
 
 from django.db.models import QuerySet
 from rest_framework.request import Request
@@ -13,7 +12,7 @@ from compliance.api.keys import read_key
 from compliance.api.pagination import NewestFirst
 from compliance.api.serializers import waste as shapes
 from compliance.api.serializers.doors import build_occurred
-from compliance.api.views.base import ListCreateView, Lookup, WorkshopView
+from compliance.api.views.base import ListCreateView, Lookup, WorkshopView, freeze
 from compliance.dropoffs.models import DropOff, Mode, Receiver
 from compliance.dropoffs.selectors import get_drop_off_for, get_receiver_for, list_drop_offs_for, list_receivers_for
 from compliance.dropoffs.services import create_drop_off, create_receiver, hand_over, pack_drop_off
@@ -31,10 +30,9 @@ class StreamsView(ListCreateView):
         """Return the streams."""
         return list_streams_for(self.member)
 
-    def create(self, **said: Any) -> WasteStream:
+    def create(self, said: dict[str, Any]) -> WasteStream:
         """Create a stream."""
-        words = {name: tuple(value) if isinstance(value, list) else value for name, value in said.items()}
-        return create_stream(actor=self.member, stream=StreamInput(**words))
+        return create_stream(actor=self.member, stream=StreamInput(**freeze(said)))
 
 
 class StreamView(WorkshopView):
@@ -56,13 +54,14 @@ class ContainersView(ListCreateView):
         """Return the containers."""
         return list_containers_for(self.member)
 
-    def create(self, *, stream: UUID, place: UUID | None = None, **said: Any) -> WasteContainer:
+    def create(self, said: dict[str, Any]) -> WasteContainer:
         """Put up an empty container."""
         lookup = Lookup(self.member)
-        found, where = lookup.find("stream", get_stream_for, stream), lookup.find("place", get_place_for, place)
+        stream = lookup.find("stream", get_stream_for, said.pop("stream"))
+        place = lookup.find("place", get_place_for, said.pop("place", None))
         lookup.finish()
-        assert found is not None  # noqa: S101  (else finish has raised)
-        made = create_container(actor=self.member, now=self.now, stream=found, place=where, **said)
+        assert stream is not None  # noqa: S101  (else finish has raised)
+        made = create_container(actor=self.member, now=self.now, stream=stream, place=place, **said)
         return get_container_for(self.member, made.vessel.uuid)
 
 
@@ -110,7 +109,7 @@ class ReceiversView(ListCreateView):
         """Return the receivers."""
         return list_receivers_for(self.member)
 
-    def create(self, **said: Any) -> Receiver:
+    def create(self, said: dict[str, Any]) -> Receiver:
         """Create a receiver."""
         return create_receiver(actor=self.member, **said)
 
@@ -134,20 +133,20 @@ class DropOffsView(ListCreateView):
         """Return the drop-offs."""
         return list_drop_offs_for(self.member)
 
-    def create(self, *, receiver: UUID, planned_for: date, containers: list[UUID], mode: str = Mode.BROUGHT) -> DropOff:
+    def create(self, said: dict[str, Any]) -> DropOff:
         """Draft a drop-off."""
         lookup = Lookup(self.member)
-        found = lookup.find("receiver", get_receiver_for, receiver)
-        rows = [lookup.find(f"containers.{number}", get_container_for, uuid) for number, uuid in enumerate(containers)]
+        receiver = lookup.find("receiver", get_receiver_for, said["receiver"])
+        containers = lookup.find_all("containers", get_container_for, said["containers"])
         lookup.finish()
-        assert found is not None  # noqa: S101  (else finish has raised)
+        assert receiver is not None  # noqa: S101  (else finish has raised)
         made = create_drop_off(
             actor=self.member,
             now=self.now,
-            receiver=found,
-            mode=mode,
-            planned_for=planned_for,
-            containers=[row for row in rows if row is not None],
+            receiver=receiver,
+            mode=said.get("mode", Mode.BROUGHT),
+            planned_for=said["planned_for"],
+            containers=containers,
         )
         return get_drop_off_for(self.member, made.uuid)
 

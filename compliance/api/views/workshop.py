@@ -31,7 +31,9 @@ class WorkshopsView(ListModelMixin, ApiView):
         """Return the token's membership."""
         if getattr(self, "swagger_fake_view", False):
             return Membership.objects.none()
-        return list_members_for(self.request.auth).filter(pk=self.request.auth.pk)
+        member = self.request.auth
+        assert isinstance(member, Membership)  # noqa: S101  (tokens are the only way in)
+        return list_members_for(member).filter(pk=member.pk)
 
     def get(self, request: Request, **kwargs: Any) -> Response:
         """Return one page."""
@@ -58,7 +60,7 @@ class PlacesView(ListCreateView):
         """Return the places."""
         return list_places_for(self.member)
 
-    def create(self, **said: Any) -> Place:
+    def create(self, said: dict[str, Any]) -> Place:
         """Create a place."""
         return create_place(actor=self.member, **said)
 
