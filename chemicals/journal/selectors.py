@@ -108,15 +108,16 @@ def read_event(entry: Entry) -> events.Event:
 
 
 def as_fold_entry(entry: Entry) -> fold.Entry:
-    """Return the entry as the fold needs it."""
-    return fold.Entry(entry.uuid, entry.occurred_at, entry.sequence, read_event(entry))
+    """Return the entry as the fold needs it: what happened, and when, is read from its bytes."""
+    body = read_body(entry)
+    event = events.decode(body.kind, body.kind_version, body.payload)
+    return fold.Entry(entry.uuid, body.occurred_at, entry.sequence, event)
 
 
 def iterate_fold_entries(workshop: Workshop) -> Iterator[fold.Entry]:
     """Yield every entry of a workshop as the fold needs it, in order of recording. One query."""
     with scope(workshop=workshop):
-        rows = Entry.objects.order_by("sequence").only("uuid", "occurred_at", "sequence", "body")
-        for entry in rows.iterator(chunk_size=2000):
+        for entry in Entry.objects.order_by("sequence").only("uuid", "sequence", "body").iterator(chunk_size=2000):
             yield as_fold_entry(entry)
 
 

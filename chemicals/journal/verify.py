@@ -1,10 +1,9 @@
-"""Re-hash the journal and compare it with its columns: the first broken entry is named."""
+"""Re-hash the journal and compare it with its columns and files: the first broken entry is named."""
 
 from collections.abc import Iterator
 from dataclasses import dataclass
 from typing import Any
 
-from django.db.models import F
 from django_scopes import scope
 
 from chemicals.books import canonical, events
@@ -15,45 +14,73 @@ from chemicals.workshop.models import Workshop
 
 @dataclass(frozen=True)
 class Problem:
-    """Something that cannot be: the place, and a sentence."""
+    """Something that cannot be: a sentence, and the entry that it concerns (None: no single one)."""
 
-    workshop: str
-    sequence: int
+    sequence: int | None
     message: str
 
 
-def verify_chain(workshop: Workshop) -> Iterator[Problem]:
-    """Yield what is wrong with a workshop's chain, bytes, columns and files, first things first."""
-    previous, expected = canonical.GENESIS, 1
+def verify_chain(workshop: Workshop) -> list[Problem]:
+    """Return what is wrong with a workshop's entries and their head, in order of the chain."""
     with scope(workshop=workshop):
-        for entry in Entry.objects.order_by("sequence").select_related("member", "about").iterator(chunk_size=2000):
-            for message in _check_entry(workshop, entry, previous, expected):
-                yield Problem(workshop.name, entry.sequence, message)
-            previous, expected = bytes(entry.hash), entry.sequence + 1
-        head = Head.objects.filter(workshop=workshop).first()
+        walk = Walk(workshop, frozenset(Attachment.objects.values_list("sha256", flat=True)))
+        found = []
+        rows = Entry.objects.order_by("sequence").select_related("member", "about")
+        try:
+            for entry in rows.iterator(chunk_size=2000):
+                found += walk.step(entry)
+        except (ValueError, TypeError) as error:  # a column that holds what its type cannot
+            return [*found, Problem(walk.sequence + 1, f"The row cannot be read: {error}")]
+        return [*found, *walk.end(Head.objects.filter(workshop=workshop).first())]
+
+
+class Walk:
+    """Goes along the chain, entry by entry."""
+
+    def __init__(self, workshop: Workshop, listed: frozenset[str]) -> None:
+        self.workshop = workshop
+        self.listed = listed
+        self.sequence = 0
+        self.hash = canonical.GENESIS
+
+    def step(self, entry: Entry) -> list[Problem]:
+        """Return what is wrong with the next entry."""
+        found = []
+        if entry.sequence != self.sequence + 1:
+            found.append(Problem(self.sequence + 1, "The entry is missing: it was removed or moved."))
+        elif bytes(entry.previous_hash) != self.hash:
+            found.append(Problem(entry.sequence, "The hash before does not fit: an entry was changed or moved."))
+        found += [Problem(entry.sequence, message) for message in _check_entry(self.workshop, entry, self.listed)]
+        self.sequence, self.hash = entry.sequence, bytes(entry.hash)
+        return found
+
+    def end(self, head: Head | None) -> list[Problem]:
+        """Return what is wrong with the end of the chain."""
         sequence, digest = (0, canonical.GENESIS) if head is None else (head.sequence, bytes(head.hash))
-        if (sequence, digest) != (expected - 1, previous):
-            yield Problem(workshop.name, expected, "The chain ends elsewhere than its head says: entries were removed.")
+        if sequence > self.sequence:
+            return [Problem(self.sequence + 1, f"The entry is missing: the chain ends at {sequence}.")]
+        if sequence < self.sequence:
+            return [Problem(sequence + 1, f"The entry is surplus: the chain ends at {sequence}.")]
+        return [] if digest == self.hash else [Problem(sequence, "The hash at the end of the chain does not fit.")]
 
 
-def _check_entry(workshop: Workshop, entry: Entry, previous: bytes, expected: int) -> Iterator[str]:
-    if entry.sequence != expected:
-        yield f"Entry {expected} is missing: it was removed or moved."
-    if bytes(entry.previous_hash) != previous:
-        yield "The hash of the entry before does not fit: an entry was removed, inserted or moved."
+def _check_entry(workshop: Workshop, entry: Entry, listed: frozenset[str]) -> Iterator[str]:
     if canonical.chain_hash(bytes(entry.previous_hash), bytes(entry.body)) != bytes(entry.hash):
         yield "The bytes were changed: their hash does not fit."
         return
     try:
         body = canonical.decode_body(bytes(entry.body))
         event = events.decode(body.kind, body.kind_version, body.payload)
-    except (canonical.CanonicalError, ValueError) as error:
+    except ValueError as error:
         yield f"The bytes cannot be read: {error}"
         return
     for name, column, said in _compare(workshop, entry, body, event):
         if column != said:
             yield f"The column {name} says {column}, the bytes say {said}."
-    yield from _check_files(body)
+    for sha256 in body.attachments:
+        message = _check_file(sha256) if sha256 in listed else f"The file {sha256} is not listed any more."
+        if message:
+            yield message
 
 
 def _compare(
@@ -68,21 +95,17 @@ def _compare(
     yield "about", entry.about.uuid if entry.about else None, event.about()
 
 
-def _check_files(body: canonical.Body) -> Iterator[str]:
-    for sha256 in body.attachments:
-        try:
-            files.read(sha256)
-        except files.DamagedFileError as error:
-            yield str(error)
+def _check_file(sha256: str) -> str | None:
+    try:
+        files.read(sha256)
+    except files.DamagedFileError as error:
+        return str(error)
+    return None
 
 
-def count_crossings() -> dict[str, int]:
-    """Return how many rows of the journal point into another workshop, by relation; all zero in a sound database."""
-    from django_scopes import scopes_disabled
-
-    with scopes_disabled():
-        return {
-            "entry.member": Entry.objects.exclude(member__workshop=F("workshop")).count(),
-            "entry.about": Entry.objects.exclude(about=None).exclude(about__workshop=F("workshop")).count(),
-            "attachment.added_by": Attachment.objects.exclude(added_by__workshop=F("workshop")).count(),
-        }
+def verify_files(workshop: Workshop) -> list[Problem]:
+    """Return the files of a workshop that are missing or were changed, whether an entry names them or not."""
+    with scope(workshop=workshop):
+        rows = list(Attachment.objects.order_by("pk").values_list("sha256", "name"))
+    messages = ((name, _check_file(sha256)) for sha256, name in rows)
+    return [Problem(None, f"{name}: {message}") for name, message in messages if message]

@@ -112,7 +112,10 @@ class Posting(models.Model):
 
     class Meta:
         constraints = [
-            models.UniqueConstraint(fields=["entry", "transfer", "vessel", "boundary"], name="posting_end_once"),
+            models.UniqueConstraint(fields=["entry", "transfer", "vessel"], name="posting_vessel_once"),
+            models.UniqueConstraint(
+                fields=["entry", "transfer", "boundary"], condition=models.Q(vessel=None), name="posting_boundary_once"
+            ),
             models.CheckConstraint(
                 condition=models.Q(vessel=None, boundary__in=sorted(BOUNDARIES))
                 | models.Q(vessel__isnull=False, boundary=""),

@@ -1,5 +1,6 @@
 """Between the fold's state and the tables. All functions run inside the workshop's scope and a transaction."""
 
+from collections import Counter, defaultdict
 from collections.abc import Iterable, Iterator, Mapping
 from uuid import UUID
 
@@ -41,6 +42,11 @@ class Names:
         for code in sorted(set(components) - set(self.components)):
             component = models.Component.objects.create(workshop=workshop, code=code, kind=_kind(code))
             self.components[code] = component.pk
+
+    @property
+    def known(self) -> set[str]:
+        """Return every vessel and component that has a row."""
+        return {*self.vessels, *self.components}
 
 
 def _kind(code: str) -> ComponentKind:
@@ -173,19 +179,19 @@ def _differing(entries: Mapping[int, Entry], followed: Mapping[UUID, fold.Folded
     return {
         pk
         for pk, entry in entries.items()
-        if kept.get(pk, set()) != expected_rows(entry, followed.get(entry.uuid, nothing), names)
+        if kept[pk] != expected_rows(entry, followed.get(entry.uuid, nothing), names)
     }
 
 
 Row = tuple[object, ...]
 
 
-def stored_rows() -> dict[int, set[Row]]:
-    """Return the projected rows of the scope's workshop as plain tuples, by entry. Three queries."""
-    rows: dict[int, set[Row]] = {}
+def stored_rows() -> Mapping[int, Counter[Row]]:
+    """Return the projected rows of the scope's workshop as counted plain tuples, by entry. Three queries."""
+    rows: dict[int, Counter[Row]] = defaultdict(Counter)
     for table, fields in ROWS.items():
         for entry_id, *values in table._default_manager.values_list("entry_id", *fields).iterator(chunk_size=BATCH):
-            rows.setdefault(entry_id, set()).add((table.__name__, *values))
+            rows[entry_id][table.__name__, *values] += 1
     return rows
 
 
@@ -196,14 +202,14 @@ ROWS: Mapping[type[Model], tuple[str, ...]] = {
 }
 
 
-def expected_rows(entry: Entry, folded: fold.Folded, names: Names) -> set[Row]:
-    """Return the rows that should be there for an entry, as plain tuples."""
+def expected_rows(entry: Entry, folded: fold.Folded, names: Names) -> Counter[Row]:
+    """Return the rows that should be there for an entry, as counted plain tuples."""
     made: list[Model] = [
         *_postings(entry, folded, names),
         *_contents(entry, folded, names),
         *_findings(entry, folded),
     ]
-    return {(type(row).__name__, *(getattr(row, field) for field in ROWS[type(row)])) for row in made}
+    return Counter((type(row).__name__, *(getattr(row, field) for field in ROWS[type(row)])) for row in made)
 
 
 def _delete(table: type[Model], entries: list[int]) -> None:

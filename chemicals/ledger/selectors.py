@@ -1,18 +1,17 @@
 """Reads of the ledger: vessels, what they hold, balances on a date."""
 
-from collections.abc import Iterator, Mapping
+from collections.abc import Mapping
 from dataclasses import dataclass
 from datetime import datetime
 from uuid import UUID
 
-from django.db.models import F, Max, Model, Q, QuerySet, Sum
+from django.db.models import Max, QuerySet, Sum
 from django_scopes import scope, scopes_disabled
 
 from chemicals.books import fold
 from chemicals.books.events import GROSS_MASS, VOLUME
 from chemicals.books.fold.arithmetic import quotient
 from chemicals.books.fold.state import State, Transfer
-from chemicals.journal import selectors as journal
 from chemicals.journal.models import Entry
 from chemicals.ledger import projection
 from chemicals.ledger.codes import tidy_code
@@ -210,54 +209,3 @@ def get_last_change(workshop: Workshop) -> datetime | None:
     with scope(workshop=workshop):
         last: datetime | None = Posting.objects.aggregate(last=Max("occurred_at"))["last"]
         return last
-
-
-def verify_projection(workshop: Workshop) -> Iterator[tuple[int, str]]:
-    """Yield (sequence, sentence) for every entry whose rows are not what the journal says; sequence 0 for holdings."""
-    with scope(workshop=workshop):
-        state, followed = fold.rebuild(journal.iterate_fold_entries(workshop))
-        missing = {c for f in followed.values() for _, c, _ in f.contents} - set(
-            workshop.components.values_list("code", flat=True)
-        )
-        if missing:
-            yield 0, f"The books lack the components {', '.join(sorted(missing))}."
-            return
-        names = projection.Names(workshop, ())
-        kept = projection.stored_rows()
-        for entry in Entry.objects.order_by("sequence").defer("body"):
-            folded = followed.get(entry.uuid, fold.Folded((), (), ()))
-            if kept.get(entry.pk, set()) != projection.expected_rows(entry, folded, names):
-                yield entry.sequence, "What the ledger keeps of this entry is not what follows from it."
-        yield from _verify_holdings(state)
-
-
-def _verify_holdings(state: State) -> Iterator[tuple[int, str]]:
-    stored = {
-        (str(vessel), component): fold.state.Holding(amount, variance, known_part)
-        for vessel, component, amount, variance, known_part in Holding.objects.values_list(
-            "vessel__uuid", "component__code", "amount", "variance", "known_part"
-        )
-    }
-    for key in sorted(set(stored) | set(state.holdings)):
-        if stored.get(key) != state.holdings.get(key):
-            yield 0, f"The holding of {key[1]} in vessel {key[0]} is not what the entries say."
-
-
-def count_crossings() -> dict[str, int]:
-    """Return how many rows of the ledger point into another workshop, by relation; all zero in a sound database."""
-    tables: dict[type[Model], tuple[str, ...]] = {
-        Vessel: ("place", "product", "created_by"),
-        Posting: ("entry", "component", "vessel"),
-        Holding: ("vessel", "component"),
-        Content: ("entry", "vessel", "component"),
-        Finding: ("entry",),
-        Memory: ("vessel",),
-    }
-    with scopes_disabled():
-        return {
-            f"{table.__name__.lower()}.{relation}": table._default_manager.exclude(
-                Q(**{relation: None}) | Q(**{f"{relation}__workshop": F("workshop")})
-            ).count()
-            for table, relations in tables.items()
-            for relation in relations
-        }

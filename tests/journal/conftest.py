@@ -10,6 +10,7 @@ from pytest_django import Settings
 
 from chemicals.books import events
 from chemicals.books.clearance import Clearance
+from chemicals.books.occurred import Occurred
 from chemicals.journal.services import Appended, append
 from chemicals.workshop.models import Membership
 
@@ -30,7 +31,7 @@ def note(worker: Membership, now: datetime) -> Note:
         event: events.Event | None = None,
         *,
         key: UUID | None = None,
-        occurred: "events.Any" = None,
+        occurred: Occurred | None = None,
         attachments: tuple[str, ...] = (),
         actor: Membership | None = None,
     ) -> Appended:

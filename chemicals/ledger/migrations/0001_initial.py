@@ -137,7 +137,11 @@ class Migration(migrations.Migration):
         ),
         migrations.AddConstraint(
             model_name='posting',
-            constraint=models.UniqueConstraint(fields=('entry', 'transfer', 'vessel', 'boundary'), name='posting_end_once'),
+            constraint=models.UniqueConstraint(fields=('entry', 'transfer', 'vessel'), name='posting_vessel_once'),
+        ),
+        migrations.AddConstraint(
+            model_name='posting',
+            constraint=models.UniqueConstraint(condition=models.Q(('vessel', None)), fields=('entry', 'transfer', 'boundary'), name='posting_boundary_once'),
         ),
         migrations.AddConstraint(
             model_name='posting',
