@@ -17,6 +17,7 @@ PATH_HELP = {
     "workshop": _("The token's own workshop."),
     "uuid": _("The thing's identifier."),
     "sha256": _("SHA-256 of the file in hex."),
+    "metal": _("The metal's symbol."),
 }
 KEY_HELP = _("A fresh uuid for each record: sent again with the same body it changes nothing and answers 200.")
 FAILURES: dict[int, tuple[Any, Any]] = {
@@ -47,7 +48,8 @@ class ApiSchema(AutoSchema):
     def get_operation_id(self) -> str:
         """Return the address in words; of a list or thing also what is done with it."""
         verb = self.method == "POST" and not self.path.endswith("/")
-        action = [] if verb else ["list" if self._is_list_view() else self.method_mapping[self.method.lower()]]
+        many = self.method == "GET" and self.path.endswith("/") and not self.path.endswith("}/")
+        action = [] if verb else ["list" if many else self.method_mapping[self.method.lower()]]
         return "_".join(word.strip(".").replace("-", "_") for word in [*self._words(), *action])
 
     def _words(self) -> list[str]:
@@ -87,7 +89,7 @@ class ApiSchema(AutoSchema):
         """Return what stands in the address and in headers."""
         path = [
             OpenApiParameter(
-                name, OpenApiTypes.STR if name == "sha256" else OpenApiTypes.UUID, "path", description=text
+                name, OpenApiTypes.UUID if name in ("workshop", "uuid") else OpenApiTypes.STR, "path", description=text
             )
             for name, text in PATH_HELP.items()
             if f"{{{name}}}" in self.path

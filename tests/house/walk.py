@@ -13,7 +13,7 @@ from chemicals.journal.models import Attachment
 from chemicals.journal.selectors import list_entries_for
 from chemicals.ledger.selectors import list_vessels_for
 from chemicals.process.inputs import INPUTS
-from chemicals.process.selectors import list_rack_types_for, list_routes_for
+from chemicals.process.selectors import list_rack_types_for, list_routes_for, list_tanks_for
 from chemicals.register.selectors import list_products_for, list_substances_for
 from chemicals.science.calculations import CALCULATIONS
 from chemicals.workshop.models import Membership
@@ -61,7 +61,7 @@ def things(member: Membership, sha256: str) -> Mapping[str, list[Any]]:
         "products": [product.uuid for product in list_products_for(member)[:1]],
         "substances": [row.uuid for row in list_substances_for(member)[:1]],
         "vessels": [vessel.uuid for vessel in one_of_each_kind],
-        "tanks": [vessel.uuid for vessel in list_vessels_for(member)[:1]],
+        "tanks": [tank.vessel.uuid for tank in list_tanks_for(member)[:1]],
         "entries": [entry.uuid for entry in list_entries_for(member)[:1]],
         "waste": [row.vessel.uuid for row in containers[:1]],
         "waste-containers": [row.vessel.uuid for row in containers[:1]],
@@ -75,6 +75,7 @@ def things(member: Membership, sha256: str) -> Mapping[str, list[Any]]:
         "routes": [row.uuid for row in list_routes_for(member)[:1]],
         "tokens": [member.uuid],
         "sha256": [sha256],
+        "rest": ["nowhere"],
         "code": [vessel.code for vessel in one_of_each_kind],
         "metal": list_metals_for(member)[:1],
         "verb": list(INPUTS),

@@ -13,7 +13,6 @@ from chemicals.books.events import CURRENT
 from chemicals.books.fold.state import FINDINGS
 from chemicals.books.occurred import PRECISIONS
 from chemicals.ledger.models import Basis, Posting
-from chemicals.science.formula import METALS
 from compliance.api.fields import Choice, Day, Identifier, Strict
 from compliance.api.serializers.base import End, Estimate, Figure, Hex, Named, Person, Shape, choices_of, dimension_of
 from compliance.api.serializers.query import PageQuery
@@ -117,11 +116,10 @@ class EntryDetail(EntryShape):
 
 
 class BalanceQuery(Strict):
-    """Of which metal, and over which days."""
+    """Over which days."""
 
-    metal = Choice(choices=[(symbol, symbol) for symbol in METALS], help_text=_("The metal's symbol."))
-    start = Day(help_text=_("The first day of the period, in the workshop's zone."))
-    end = Day(help_text=_("The last day of the period, which belongs to it."))
+    start = Day(required=False, help_text=_("The first day, in the workshop's zone; the beginning if left out."))
+    end = Day(required=False, help_text=_("The last day, which belongs to the period; today if left out."))
 
 
 def _estimate(amount: Amount) -> Estimate:

@@ -5,6 +5,7 @@ from typing import Any
 from zoneinfo import ZoneInfo
 
 from django.db.models import QuerySet
+from django.utils.translation import gettext as _
 from rest_framework.request import Request
 from rest_framework.response import Response
 
@@ -14,6 +15,7 @@ from chemicals.journal.selectors import find_cancelled, get_entry_for, list_entr
 from chemicals.ledger.selectors import list_findings_for, list_postings_of, list_vessels_for
 from chemicals.workshop.errors import InvalidInputError
 from chemicals.workshop.models import Membership
+from compliance.api.fields import EARLIEST
 from compliance.api.pagination import EntryCursor
 from compliance.api.serializers import entries as shapes
 from compliance.api.serializers.base import With
@@ -88,15 +90,15 @@ class BalanceView(WorkshopView):
 
     def get(self, request: Request, **kwargs: Any) -> Response:
         """Return the balance."""
-        zone, said = self.member.workshop.zone, self.query
-        if said["end"] < said["start"]:
-            raise InvalidInputError.of("end", "The period ends before it begins. Write a later last day.")
-        moments = begin(said["start"], zone), end(said["end"], zone)
-        return self.respond(get_book_balance(self.member, said["metal"], *moments))
+        zone = self.member.workshop.zone
+        first, last = self.query.get("start", EARLIEST), self.query.get("end", self.now.astimezone(zone).date())
+        if last < first:
+            raise InvalidInputError.of("end", _("The period ends before it begins. Write a later last day."))
+        return self.respond(get_book_balance(self.member, kwargs["metal"], begin(first, zone), end(last, zone)))
 
 
 class MetalsView(WorkshopView):
-    """The metals that the books know."""
+    """The metals that the books know: each has a balance of its own."""
 
     shape = shapes.MetalsShape
 
