@@ -102,3 +102,11 @@ def test_a_result_in_the_wrong_unit_makes_the_content_unknown() -> None:
     assert [(finding.code, finding.source, finding.target) for finding in folded.findings] == [
         (TOO_MUCH, UNACCOUNTED, "bath")
     ]
+
+
+def test_what_would_not_fit_is_not_believed_however_small_the_difference() -> None:
+    """A million litres with a million kilograms in the books; 1.5 kg/L are found, which is more than they can hold."""
+    books = Books(opening("bath", litres(10**6), Cu=grams(10**9)))
+    folded = books.record(found(1500)[1])
+    assert TOO_MUCH in codes(folded)
+    assert books.holds("bath", "Cu") is None

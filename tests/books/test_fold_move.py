@@ -2,16 +2,33 @@
 
 import pytest
 
-from chemicals.books.events import ASSUMED, COMPUTED, GROSS_MASS, OBSERVED, UNACCOUNTED, VOLUME, Measured, Move
+from chemicals.books.events import ASSUMED, COMPUTED, GROSS_MASS, OBSERVED, UNACCOUNTED, VOLUME, Measured, Move, Run
 from chemicals.books.fold.state import (
+    EVERY,
     NEGATIVE_CONTENT,
     TOO_MUCH,
     UNKNOWN_AMOUNT,
     UNKNOWN_CONTENTS,
     UNKNOWN_LEVEL,
     WAS_UNKNOWN,
+    Finding,
 )
-from tests.books.words import DENSE, KG, Books, G, L, bases, codes, grams, kilograms, litres, moved, opening
+from tests.books.words import (
+    DENSE,
+    KG,
+    Books,
+    G,
+    L,
+    bases,
+    codes,
+    copper_deposit,
+    grams,
+    kilograms,
+    litres,
+    moved,
+    opening,
+    step,
+)
 
 
 def poured(source: str, target: str, volume: Measured | None = None) -> Move:
@@ -107,7 +124,12 @@ def test_what_comes_out_of_an_empty_vessel_can_be_anything() -> None:
     assert books.holds("b", GROSS_MASS) is None
     assert not books.is_complete("b")
     assert not books.is_complete("never opened")
-    assert {UNKNOWN_LEVEL, UNKNOWN_CONTENTS, UNKNOWN_AMOUNT, NEGATIVE_CONTENT} == codes(folded)
+    assert set(folded.findings) == {
+        Finding(UNKNOWN_LEVEL, VOLUME, "never opened", "b"),
+        Finding(NEGATIVE_CONTENT, VOLUME, "never opened", "never opened"),
+        Finding(UNKNOWN_AMOUNT, GROSS_MASS, "never opened", "b"),
+        Finding(UNKNOWN_CONTENTS, EVERY, "never opened", "b"),
+    }
 
 
 def test_from_a_vessel_of_unknown_level_the_volume_is_known_and_its_content_is_not() -> None:
@@ -123,14 +145,31 @@ def test_from_a_vessel_of_unknown_level_the_volume_is_known_and_its_content_is_n
     assert UNKNOWN_LEVEL in codes(folded)
 
 
-def test_an_unknown_content_makes_the_target_unknown_but_only_of_that_component() -> None:
-    books = Books(opening("a", litres(10), complete=False), opening("b", litres(1), Ni=grams(3)))
-    books.record(opening("a", litres(10), complete=False, Ag=grams(10)))
+def with_copper_unknown() -> Books:
+    """Return the two tanks after a load took nobody knows how much copper out of the first."""
+    books = two_tanks()
+    books.record(Run("knobs", (step("a", 0),), None, None, None, None, None, copper_deposit(), None, "rack"))
+    return books
+
+
+@pytest.mark.parametrize("volume", [None, litres(1)])
+def test_an_unknown_content_makes_the_target_unknown_but_only_of_that_component(volume: Measured | None) -> None:
+    books = with_copper_unknown()
+    folded = books.record(poured("a", "b", volume))
+    assert books.holds("b", "Cu") is None
+    assert books.holds("b", "Ni") == 3 * G
+    assert books.holds("b", VOLUME) == (11 * L if volume is None else 2 * L)
+    assert books.is_complete("b")
+    assert Finding(UNKNOWN_AMOUNT, "Cu", "a", "b") in folded.findings
+
+
+def test_an_incomplete_source_makes_everything_unknown_that_it_does_not_list() -> None:
+    books = Books(opening("a", litres(10), complete=False, Ag=grams(10)), opening("b", litres(1), Ni=grams(3)))
     folded = books.record(poured("a", "b", litres(1)))
     assert books.holds("b", "Ag") == 1 * G
     assert books.holds("b", "Ni") is None
     assert books.holds("b", VOLUME) == 2 * L
-    assert UNKNOWN_CONTENTS in codes(folded)
+    assert folded.findings == (Finding(UNKNOWN_CONTENTS, EVERY, "a", "b"),)
 
 
 @pytest.mark.parametrize("volume", [None, litres(2), litres(10)])
@@ -144,24 +183,19 @@ def test_a_component_that_the_target_does_not_list_comes_along_known(volume: Mea
 
 def test_emptying_an_unknown_content_leaves_nothing_and_carries_what_was_known_of_it() -> None:
     """Of 500 g an unknown part went; the rest is carried along as a known part of an unknown amount."""
-    books = two_tanks()
-    books.record(opening("c", complete=False))
-    books.record(poured("c", "a", litres(1)))
-    assert books.holds("a", "Cu") is None
+    books = with_copper_unknown()
     folded = books.record(poured("a", "b"))
     assert books.holds("a", "Cu") == 0
-    assert books.holds("b", "Cu") is None
     assert books.holding("b", "Cu").known_part == 500 * G
     assert moved(folded, "Cu") == [("a", "b", 500 * G)]
     assert bases(folded, "Cu") == {ASSUMED}
+    assert bases(folded, VOLUME) == {COMPUTED}  # all that the books held
 
 
 def test_the_next_known_figure_is_posted_against_what_was_known() -> None:
     """500 g were known to be there when the content became unknown; found are 520 g: 20 g more."""
-    books = two_tanks()
-    books.record(opening("c", complete=False))
-    books.record(poured("c", "a", litres(1)))
-    folded = books.record(opening("a", litres(11), Cu=grams(520)))
+    books = with_copper_unknown()
+    folded = books.record(opening("a", litres(10), Cu=grams(520)))
     assert moved(folded, "Cu") == [(UNACCOUNTED, "a", 20 * G)]
     assert WAS_UNKNOWN in codes(folded)
 
@@ -172,6 +206,7 @@ def test_less_than_nothing_is_not_poured_on() -> None:
     books.record(poured("a", "c", litres(12)))
     folded = books.record(poured("a", "b"))
     assert moved(folded, VOLUME) == [(UNACCOUNTED, "a", 2 * L)]
+    assert bases(folded, VOLUME) == {COMPUTED}
     assert books.holds("a", VOLUME) == 0
     assert books.holds("b", VOLUME) == 1 * L
     assert NEGATIVE_CONTENT in codes(folded)
@@ -222,6 +257,6 @@ def test_more_than_the_books_can_hold_becomes_unknown_and_is_told() -> None:
 def test_more_than_the_books_can_hold_by_parts() -> None:
     books = Books(opening("a", litres(10**6)), opening("b", litres(10**6)))
     folded = books.record(poured("a", "b", litres(1)))
-    assert TOO_MUCH in codes(folded)
+    assert Finding(TOO_MUCH, VOLUME, "a", "b") in folded.findings
     assert moved(folded, VOLUME) == []
     assert (books.holds("a", VOLUME), books.holds("b", VOLUME)) == (None, None)

@@ -87,3 +87,16 @@ def test_the_copper_is_as_uncertain_as_scales_and_composition() -> None:
     share = replace(recipe.shares[0], sd=1 * G)
     books = Books(received("bag", replace(recipe, shares=(share,)), mass=kilograms(25, "0.1")))
     assert books.holding("bag", "Cu").variance == 35_674_957**2
+
+
+def test_the_other_measure_is_as_uncertain_as_the_first_and_the_density() -> None:
+    """6.0 +- 0.3 kg of 1.20 +- 0.08 kg/L: 5 L, (0.3/1.2)^2 + (6 x 0.08/1.2^2)^2 = 0.0625 + 0.1111 L^2: 0.416667 L.
+
+    5.0 +- 0.3 L of it: 6 kg, (0.3 x 1.2)^2 + (5 x 0.08)^2 = 0.1296 + 0.16 kg^2: 0.538145 kg.
+    """
+    density = Figure(1_200_000, 80_000, "hydrometer")
+    by_mass = Books().record(received("can", acid(density=density), mass=kilograms(6, "0.3")))
+    assert [(t.sd, t.basis) for t in by_mass.transfers if t.component == VOLUME] == [(416_666_667, COMPUTED)]
+    by_volume = Books().record(received("can", acid(density=density), volume=litres(5, "0.3")))
+    assert [t.sd for t in by_volume.transfers if t.component == GROSS_MASS] == [538_144_962]
+    assert [t.sd for t in by_volume.transfers if t.component == VOLUME] == [300_000_000]

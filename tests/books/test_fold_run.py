@@ -147,6 +147,16 @@ def test_a_soluble_anode_without_charge_loses_what_the_weight_tells() -> None:
     assert bases(folded, "Cu") == {OBSERVED, ASSUMED}
 
 
+def test_what_a_weight_tells_of_an_anode_is_as_uncertain_as_weight_and_efficiency() -> None:
+    """1.00 +- 0.03 g at 50 +- 2 %: 2 g, +- sqrt((0.03/0.5)^2 + (1 x 0.02/0.5^2)^2) = sqrt(0.0036 + 0.0064) = 0.1 g."""
+    weighed = load(
+        deposit=copper_deposit(500_000, 20_000), anode="anodes", before=grams(5, "0.03"), after=grams(6, 0)
+    )  # fmt: skip
+    folded = a_bath().record(weighed)
+    dissolved = next(transfer for transfer in folded.transfers if transfer.source == "anodes")
+    assert (dissolved.amount, dissolved.sd) == (2 * G, G // 10)
+
+
 def test_a_soluble_anode_of_which_nothing_tells_is_unknown() -> None:
     books = a_bath()
     books.record(load(deposit=copper_deposit(), anode="anodes"))
@@ -268,7 +278,9 @@ def test_a_dip_only_and_twice_into_the_same_tank() -> None:
 def test_a_bath_that_is_its_own_anode_gives_itself_nothing() -> None:
     books = a_bath()
     books.record(load(deposit=copper_deposit(0), anode="bath", before=grams(5), after=grams(6)))
+    folded = books.record(load(deposit=copper_deposit(0), anode="bath", charge=coulombs(3600)))
     assert books.holds("bath", "Cu") == 999 * G
+    assert folded.transfers == ()
 
 
 def test_a_run_through_no_tank_is_nothing() -> None:
