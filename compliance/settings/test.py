@@ -15,6 +15,9 @@ from compliance.settings import DATABASES, STORAGES  # noqa: E402
 
 if "sqlite" in str(DATABASES["default"]["ENGINE"]):
     DATABASES["default"]["TEST"] = {"NAME": str(Path(_folder) / "test.sqlite3")}  # a file: tests use threads
+DATA = Path(_folder)  # the package above this file was read first, before the folder was set
+ATTACHMENTS, STATIC_ROOT = DATA / "attachments", DATA / "static"
+STATIC_ROOT.mkdir()
 PASSWORD_HASHERS = ["django.contrib.auth.hashers.MD5PasswordHasher"]
 STORAGES["staticfiles"] = {"BACKEND": "django.contrib.staticfiles.storage.StaticFilesStorage"}
 AXES_ENABLED = False
