@@ -21,7 +21,7 @@ def list_entries_for(member: Membership) -> QuerySet[Entry]:
         return Entry.objects.select_related("member__user", "about").order_by("-sequence")
 
 
-class _Position(Func):
+class Position(Func):
     """Where bytes stand in bytes, counted from 1; 0 if they do not stand there."""
 
     function = "INSTR"
@@ -37,7 +37,7 @@ class _Position(Func):
 def list_entries_naming(member: Membership, uuid: UUID) -> QuerySet[Entry]:
     """Return the entries that name a vessel, by its uuid: cancelled ones and analyses too, newest first. One query."""
     wanted = Value(str(uuid).encode(), output_field=BinaryField())
-    return list_entries_for(member).alias(position=_Position("body", wanted)).filter(position__gt=0)
+    return list_entries_for(member).alias(position=Position("body", wanted)).filter(position__gt=0)
 
 
 def list_incidents_for(member: Membership) -> QuerySet[Entry]:

@@ -8,7 +8,7 @@ from django.db.models import Prefetch, QuerySet
 from django_scopes import scope
 
 from chemicals.books import fold
-from chemicals.books.events import Acceptance, Analysis, Event
+from chemicals.books.events import Acceptance, Analysis, Event, Run
 from chemicals.books.occurred import Occurred
 from chemicals.journal import selectors as journal
 from chemicals.journal.models import Entry
@@ -19,6 +19,9 @@ from chemicals.process.inputs import Input
 from chemicals.process.models import RackType, Route, RouteStep, Tank
 from chemicals.workshop.errors import NotFoundError
 from chemicals.workshop.models import Membership
+
+RECENT_RUNS = 20
+"""How far back the last run of a tank is looked for."""
 
 
 @dataclass(frozen=True)
@@ -54,6 +57,13 @@ def list_open_analyses_for(member: Membership) -> list[tuple[Entry, Analysis]]:
     """Return the analyses that are neither accepted nor cancelled, newest first. One query."""
     rows = journal.list_unanswered_for(member, Analysis.KIND, Acceptance.KIND)
     return [(row, event) for row in rows if isinstance(event := journal.read_event(row), Analysis)]
+
+
+def find_last_run(member: Membership, vessel: Vessel) -> Entry | None:
+    """Return the latest recorded run through a tank that was not cancelled. Two queries."""
+    runs = list(journal.list_entries_naming(member, vessel.uuid).filter(kind=Run.KIND)[:RECENT_RUNS])
+    cancelled = journal.find_cancelled(runs)
+    return next((run for run in runs if run.pk not in cancelled), None)
 
 
 def list_rack_types_for(member: Membership) -> QuerySet[RackType]:

@@ -3,11 +3,12 @@
 from typing import Any
 from uuid import UUID
 
-from django.db.models import QuerySet
+from django.db.models import BinaryField, QuerySet, Value
 from django_scopes import scope
 
 from chemicals.books import canonical
 from chemicals.journal import files
+from chemicals.journal.selectors import Position
 from chemicals.workshop.errors import NotFoundError
 from chemicals.workshop.models import Membership
 from compliance.documents.models import Paper
@@ -17,6 +18,12 @@ def list_papers_for(member: Membership) -> QuerySet[Paper]:
     """Return all papers of the member's workshop, newest first, with issuer and entry. One query."""
     with scope(workshop=member.workshop):
         return Paper.objects.select_related("issued_by__user", "entry").order_by("-issued_at", "-pk")
+
+
+def list_papers_naming(member: Membership, text: str) -> QuerySet[Paper]:
+    """Return the papers whose frozen data hold a text, such as the code of a container, newest first. One query."""
+    wanted = Value(text.encode(), output_field=BinaryField())
+    return list_papers_for(member).alias(position=Position("data", wanted)).filter(position__gt=0)
 
 
 def get_paper_for(member: Membership, uuid: UUID) -> Paper:

@@ -12,6 +12,10 @@ from chemicals.workshop.errors import NotFoundError
 from chemicals.workshop.models import Membership
 from compliance.waste.models import WasteContainer, WasteStream
 
+OPEN, CLOSED = "open", "closed"
+NEARLY_FULL = 80
+"""Percent of the capacity; headspace is kept for warmth and gas (common practice)."""
+
 
 def list_streams_for(member: Membership) -> QuerySet[WasteStream]:
     """Return the waste streams of the member's workshop, by name. One query."""
@@ -53,12 +57,37 @@ def get_container_for(member: Membership, uuid: UUID) -> WasteContainer:
         raise NotFoundError("There is no such waste container in this workshop.") from error
 
 
+def state_of(container: WasteContainer) -> str:
+    """Return how far a listed container is, without a query: open, closed, or the state of its drop-off."""
+    goes_along = getattr(container.vessel, "drop_off_container", None)
+    if goes_along is not None:
+        state: str = goes_along.drop_off.state
+        return state
+    return OPEN if container.closed_at is None else CLOSED
+
+
 @dataclass(frozen=True)
 class Fill:
     """How full a container is: nanolitres; None is unknown."""
 
     volume: int | None
     capacity: int | None
+
+    @property
+    def percent(self) -> int | None:
+        """Return how full it is in whole percent; None where that is not known."""
+        return None if self.volume is None or not self.capacity else self.volume * 100 // self.capacity
+
+    @property
+    def is_nearly_full(self) -> bool:
+        """Say whether it is time for an empty container."""
+        return self.percent is not None and self.percent >= NEARLY_FULL
+
+
+def list_filling_for(member: Membership) -> list[tuple[WasteContainer, Fill]]:
+    """Return the containers that are on no drop-off yet with their fill, the fullest first. Two queries."""
+    rows = [(row, read_fill(row)) for row in list_containers_for(member).filter(vessel__drop_off_container=None)]
+    return sorted(rows, key=lambda pair: -(pair[1].percent or 0))
 
 
 def read_fill(container: WasteContainer) -> Fill:

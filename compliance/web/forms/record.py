@@ -107,6 +107,7 @@ class InputRow(Row):
         super().__init__(**kwargs)
         for name, kind in describe(of):
             self.fields[name] = form.build(name, kind)
+            self.fields[name].initial = None  # a row that nobody touched stays empty
 
 
 def _values(of: type[Any], cleaned: Mapping[str, Any]) -> dict[str, Any]:

@@ -1,0 +1,56 @@
+"""The balance of a metal over a period: table, per vessel, flow picture."""
+
+from datetime import date, timedelta
+from typing import Any
+
+from django.http import HttpRequest, HttpResponse
+from django.utils import timezone
+
+from chemicals.balance.selectors import BookBalance, get_book_balance, list_metals_for
+from chemicals.science.formula import element_name
+from chemicals.workshop.models import Membership
+from compliance.web.door import page, show
+from compliance.web.export import Column, grams, is_wanted, to_csv
+from compliance.web.filters import PeriodForm, start_of
+from compliance.web.picture import draw_narrow, draw_wide
+from compliance.web.statement import lines_of, verdict_of
+
+COLUMNS = (
+    Column("what", lambda row: row.key),
+    Column("amount (g)", lambda row: grams(row.value)),
+    Column("standard uncertainty (g)", lambda row: grams(row.sd)),
+)
+
+
+@page()
+def index(request: HttpRequest, member: Membership) -> HttpResponse:
+    """Show the balance of a metal, this year so far unless another period is chosen."""
+    metals = list_metals_for(member)
+    today = timezone.localdate()
+    data = {"metal": metals[0] if metals else "", "since": date(today.year, 1, 1).isoformat(), "until": str(today)}
+    form = PeriodForm([(symbol, f"{element_name(symbol)} ({symbol})") for symbol in metals], data | request.GET.dict())
+    if not metals:
+        return show(request, member, "web/balance.html", here="balance", form=None)
+    if not form.is_valid():
+        return show(request, member, "web/balance.html", here="balance", form=form, status=400)
+    chosen = form.cleaned_data
+    end = start_of(chosen["until"] + timedelta(days=1))
+    balance = get_book_balance(member, chosen["metal"], start_of(chosen["since"]), end)
+    if is_wanted(request):
+        return to_csv(f"balance-{chosen['metal']}-{chosen['since']}-{chosen['until']}", COLUMNS, lines_of(balance))
+    return show(request, member, "web/balance.html", here="balance", form=form, **_context(balance), kept=_kept(form))
+
+
+def _context(balance: BookBalance) -> dict[str, Any]:
+    return {
+        "balance": balance,
+        "name": element_name(balance.component),
+        "lines": lines_of(balance),
+        "verdict": verdict_of(balance),
+        "wide": draw_wide(balance),
+        "narrow": draw_narrow(balance),
+    }
+
+
+def _kept(form: PeriodForm) -> dict[str, str]:
+    return {name: str(value) for name, value in form.cleaned_data.items()}

@@ -1,0 +1,33 @@
+"""Today: what happened last, what is full, what must be looked at."""
+
+from django.http import HttpRequest, HttpResponse
+
+from chemicals.journal.selectors import list_entries_for, list_incidents_for
+from chemicals.ledger.selectors import list_findings_for
+from chemicals.process.selectors import list_open_analyses_for
+from chemicals.workshop.models import Membership
+from compliance.waste.selectors import list_filling_for
+from compliance.web import words
+from compliance.web.door import page, show
+from compliance.web.rows import ends_of, entry_rows
+
+LAST = 8
+"""How many entries and findings the first page shows."""
+
+
+@page()
+def today(request: HttpRequest, member: Membership) -> HttpResponse:
+    """Show the first page of a workshop."""
+    ends = ends_of(member)
+    findings = list(list_findings_for(member)[:LAST])
+    return show(
+        request,
+        member,
+        "web/today.html",
+        here="today",
+        rows=entry_rows(member, list_entries_for(member)[:LAST]),
+        incidents=entry_rows(member, list_incidents_for(member)[:LAST]),
+        findings=[(found.entry, words.finding(found, ends)) for found in findings],
+        analyses=[(entry, event, ends.name(event.vessel)) for entry, event in list_open_analyses_for(member)],
+        filling=list_filling_for(member),
+    )

@@ -1,0 +1,167 @@
+"""Waste: streams, containers with their fill, what may go in, closing, labels."""
+
+from typing import Any
+from uuid import UUID, uuid4
+
+from django.contrib import messages
+from django.http import HttpRequest, HttpResponse, HttpResponseRedirect
+from django.utils import timezone
+from django.utils.translation import gettext as _
+
+from chemicals.journal.selectors import list_entries_naming
+from chemicals.ledger.models import VesselKind
+from chemicals.ledger.selectors import list_vessels_for, read_contents
+from chemicals.process.inputs import DrumOffInput
+from chemicals.science.reactivity import REACTS_AS
+from chemicals.workshop.errors import InvalidInputError
+from chemicals.workshop.models import Membership
+from chemicals.workshop.permissions import require_writer
+from chemicals.workshop.selectors import get_place_for
+from compliance.clearance.selectors import preview, react_as
+from compliance.documents.selectors import list_papers_naming
+from compliance.waste.models import WasteContainer
+from compliance.waste.selectors import (
+    get_container_for,
+    get_stream_for,
+    list_containers_for,
+    list_streams_for,
+    read_fill,
+    state_of,
+)
+from compliance.waste.services import StreamInput, close_container, create_container, create_stream, issue_label
+from compliance.web.door import page, show
+from compliance.web.export import Column, grams, is_wanted, litres, to_csv
+from compliance.web.forms.waste import CloseForm, ContainerForm, KeyForm, MayForm, StreamForm
+from compliance.web.rows import entry_rows
+from compliance.web.views.acts import address, fill_in, sent
+
+LAST = 10
+COLUMNS = (
+    Column("container", lambda row: row.vessel.name),
+    Column("code", lambda row: row.vessel.code),
+    Column("stream", lambda row: row.stream.name),
+    Column("place", lambda row: row.vessel.place.name if row.vessel.place else ""),
+    Column("volume (L)", lambda row: litres(read_fill(row).volume)),
+    Column("capacity (L)", lambda row: litres(row.vessel.capacity)),
+    Column("tare (g)", lambda row: grams(row.tare)),
+    Column("gross (g)", lambda row: grams(row.gross)),
+    Column("closed", lambda row: row.closed_at),
+    Column("state", state_of),
+)
+
+
+@page()
+def index(request: HttpRequest, member: Membership) -> HttpResponse:
+    """List containers with their fill, and the streams."""
+    containers = list_containers_for(member)
+    if is_wanted(request):
+        return to_csv("waste-containers", COLUMNS, containers)
+    rows = [(row, read_fill(row), state_of(row)) for row in containers]
+    return show(request, member, "web/waste.html", here="waste", rows=rows, streams=list_streams_for(member))
+
+
+@page()
+def container(request: HttpRequest, member: Membership, uuid: UUID) -> HttpResponse:
+    """Show a waste container; the code on it opens this page."""
+    return _container(request, member, get_container_for(member, uuid))
+
+
+def _container(
+    request: HttpRequest, member: Membership, found: WasteContainer, *, status: int = 200, **more: Any
+) -> HttpResponse:
+    context: dict[str, Any] = {
+        "container": found,
+        "vessel": found.vessel,
+        "fill": read_fill(found),
+        "contents": read_contents(found.vessel),
+        "reacts_as": [REACTS_AS[kind] for kind in sorted(react_as(found.vessel))],
+        "rows": entry_rows(member, list_entries_naming(member, found.vessel.uuid)[:LAST]),
+        "papers": list_papers_naming(member, found.vessel.code),
+        "state": state_of(found),
+        "close_form": CloseForm(),
+        "may_form": MayForm(_tanks(member), None),
+        "key": uuid4(),
+    }
+    return show(request, member, "web/waste-container.html", here="waste", status=status, **{**context, **more})
+
+
+def _tanks(member: Membership) -> list[tuple[UUID, str]]:
+    tanks = list_vessels_for(member, VesselKind.BATH, VesselKind.RINSE)
+    return [(vessel.uuid, f"{vessel.name} ({vessel.code})") for vessel in tanks]
+
+
+@page()
+def may_go_in(request: HttpRequest, member: Membership, uuid: UUID) -> HttpResponse:
+    """Answer whether the contents of a tank may go into a waste container. Writes nothing."""
+    found = get_container_for(member, uuid)
+    form = MayForm(_tanks(member), request.GET)
+    if not form.is_valid():
+        return _container(request, member, found, may_form=form, status=400)
+    data = DrumOffInput(source=form.cleaned_data["source"], target=found.vessel.uuid)
+    verdict = preview(member, timezone.now(), data, None)
+    context = {"container": found, "may_form": form, "verdict": verdict, "source": form.cleaned_data["source"]}
+    if request.headers.get("HX-Request"):
+        return show(request, member, "web/_may.html", **context)
+    return _container(request, member, found, **context)
+
+
+@page("POST", need=require_writer)
+def close(request: HttpRequest, member: Membership, uuid: UUID) -> HttpResponse:
+    """Close a container with its gross weight."""
+    found = get_container_for(member, uuid)
+    form = CloseForm(request.POST)
+    if form.is_valid():
+        try:
+            close_container(actor=member, now=timezone.now(), container=found, gross=form.cleaned_data["gross"].base)
+            messages.success(request, _("Closed. Print a new label, then put it on a drop-off."))
+            return HttpResponseRedirect(address("waste-container", member, uuid))
+        except InvalidInputError as error:
+            form.add_domain_errors(error)
+    return _container(request, member, found, close_form=form, status=400)
+
+
+@page("POST", need=require_writer)
+def label(request: HttpRequest, member: Membership, uuid: UUID) -> HttpResponse:
+    """Issue the numbered label of a container and show it; pressed twice, it is the same label."""
+    found = get_container_for(member, uuid)
+    form = KeyForm(request.POST)
+    if not form.is_valid():
+        raise InvalidInputError.of("key", _("This page is too old. Open the container once more."))
+    paper = issue_label(actor=member, now=timezone.now(), key=form.cleaned_data["key"], container=found)
+    return HttpResponseRedirect(address("paper", member, paper.uuid))
+
+
+@page("GET", "POST", need=require_writer)
+def add_stream(request: HttpRequest, member: Membership) -> HttpResponse:
+    """Add a waste stream."""
+
+    def act(form: StreamForm) -> str:
+        cleaned = form.cleaned_data
+        texts = {name: cleaned[name] for name in ("name", "origin", "profile_number", "code")}
+        create_stream(actor=member, stream=StreamInput(**texts, **form.hazards()))
+        return address("waste", member)
+
+    words = {"heading": _("Add a waste stream"), "button": _("Add the stream"), "back": address("waste", member)}
+    return fill_in(request, member, StreamForm(sent(request)), act, here="waste", **words)
+
+
+@page("GET", "POST", need=require_writer)
+def add_container(request: HttpRequest, member: Membership) -> HttpResponse:
+    """Put up an empty waste container."""
+
+    def act(form: ContainerForm) -> str:
+        cleaned = form.cleaned_data
+        made = create_container(
+            actor=member,
+            now=timezone.now(),
+            name=cleaned["name"],
+            stream=get_stream_for(member, cleaned["stream"]),
+            place=cleaned["place"] and get_place_for(member, cleaned["place"]),
+            capacity=cleaned["capacity"] and cleaned["capacity"].base,
+            material=cleaned["material"],
+            tare=cleaned["tare"] and cleaned["tare"].base,
+        )
+        return address("waste-container", member, made.vessel.uuid)
+
+    words = {"heading": _("Put up a waste container"), "button": _("Put it up"), "back": address("waste", member)}
+    return fill_in(request, member, ContainerForm(member, sent(request)), act, here="waste", **words)
