@@ -7,7 +7,7 @@ from django import forms
 from django.contrib.auth.forms import AuthenticationForm, SetPasswordForm
 from django.utils.translation import gettext_lazy as _
 
-from chemicals.workshop.models import Membership, Role, User
+from chemicals.workshop.models import Membership, Role
 from compliance.web.forms.base import Shown, WebForm
 from compliance.web.forms.fields import REQUIRED, LineField, WordField
 
@@ -21,7 +21,7 @@ class SignInForm(Shown, AuthenticationForm):
     }
 
 
-class NewPasswordForm(Shown, SetPasswordForm[User]):
+class NewPasswordForm(Shown, SetPasswordForm):  # type: ignore[type-arg]  # generic in its stubs only
     """A new password, twice."""
 
 

@@ -83,3 +83,27 @@ def verdict(code: str) -> str:
 
 
 register.filter("pictogram", symbol)
+
+
+@register.filter
+def signed_mass(micrograms: int | None) -> str:
+    """Show a mass with its sign."""
+    return words.signed(micrograms, "gross mass")
+
+
+@register.filter
+def doubt(micrograms: int) -> str:
+    """Show a standard uncertainty of a mass."""
+    return show(micrograms, "mass", digits=2)
+
+
+@register.filter
+def end(name: str) -> str:
+    """Show the end of a flow: the name of a vessel, or of a boundary."""
+    return str(words.BOUNDARIES.get(name, name))
+
+
+@register.filter
+def figure(value: object) -> str:
+    """Show a calculated value with the digits that mean something."""
+    return f"{value:.6g}" if isinstance(value, float) else str(value)

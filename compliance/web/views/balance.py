@@ -2,6 +2,7 @@
 
 from datetime import date, timedelta
 from typing import Any
+from urllib.parse import urlencode
 
 from django.http import HttpRequest, HttpResponse
 from django.utils import timezone
@@ -38,7 +39,7 @@ def index(request: HttpRequest, member: Membership) -> HttpResponse:
     balance = get_book_balance(member, chosen["metal"], start_of(chosen["since"]), end)
     if is_wanted(request):
         return to_csv(f"balance-{chosen['metal']}-{chosen['since']}-{chosen['until']}", COLUMNS, lines_of(balance))
-    return show(request, member, "web/balance.html", here="balance", form=form, **_context(balance), kept=_kept(form))
+    return show(request, member, "web/balance.html", here="balance", form=form, **_context(balance), **_kept(form))
 
 
 def _context(balance: BookBalance) -> dict[str, Any]:
@@ -52,5 +53,6 @@ def _context(balance: BookBalance) -> dict[str, Any]:
     }
 
 
-def _kept(form: PeriodForm) -> dict[str, str]:
-    return {name: str(value) for name, value in form.cleaned_data.items()}
+def _kept(form: PeriodForm) -> dict[str, Any]:
+    kept = {name: str(value) for name, value in form.cleaned_data.items()}
+    return {"kept": kept, "query": urlencode(kept)}
