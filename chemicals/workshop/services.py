@@ -135,5 +135,9 @@ def _clean(row: Workshop | Place) -> None:
             row.full_clean()
     except ValidationError as error:
         raise InvalidInputError(
-            [FieldError(field, m) for field, messages in error.message_dict.items() for m in messages]
+            [
+                FieldError("name" if field == "__all__" else field, message)
+                for field, messages in error.message_dict.items()
+                for message in messages
+            ]
         ) from error
