@@ -98,6 +98,12 @@ def test_a_gain_in_an_empty_vessel_has_an_unknown_mass() -> None:
     assert codes(folded) == {UNKNOWN_AMOUNT}
 
 
+def test_a_gain_on_top_of_a_mass_that_cannot_be_has_an_unknown_mass() -> None:
+    books = Books(opening("bath", litres(10), mass=grams(0)))
+    books.record(read(litres(11)))
+    assert books.holds("bath", GROSS_MASS) is None
+
+
 def test_more_water_than_the_vessel_weighs_is_told() -> None:
     """3 kg in 10 L (a weighing was wrong), and 5 L evaporate."""
     books = Books(opening("bath", litres(10), mass=grams(3000)))

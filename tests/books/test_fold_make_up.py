@@ -86,6 +86,14 @@ def test_the_copper_is_as_uncertain_as_the_scales() -> None:
     assert books.holding("bag", "Cu").variance == 5_090_000**2
 
 
+def test_what_is_poured_is_as_uncertain_as_the_measure_and_the_volume_as_the_level() -> None:
+    """1.0 +- 0.1 L out of 5 L with 100 g of sodium: 100 x 0.1 / 5 = 2 g."""
+    books = a_workshop_with_stock()
+    books.record(made_up(Ingredient("can", None, litres(1, "0.1")), level=litres(10, "0.2")))
+    assert books.holding("bath", "Na").variance == (2 * G) ** 2
+    assert books.holding("bath", VOLUME).variance == (L // 5) ** 2
+
+
 def test_taking_as_much_as_there_is_takes_every_unit() -> None:
     books = a_workshop_with_stock()
     books.record(made_up(Ingredient("bag", kilograms(25), None)))

@@ -16,7 +16,7 @@ from chemicals.books.events import (
     Run,
     Step,
 )
-from chemicals.books.fold.state import NEGATIVE_CONTENT, UNKNOWN_AMOUNT, UNKNOWN_LEVEL, WEIGHT_LOST
+from chemicals.books.fold.state import NEGATIVE_CONTENT, UNKNOWN_AMOUNT, UNKNOWN_LEVEL, WEIGHT_LOST, Finding
 from tests.books.words import (
     DENSE,
     ML,
@@ -118,7 +118,10 @@ def test_neither_weights_nor_charge_leave_the_bath_unknown(run: Run) -> None:
     assert folded.transfers == ()
     assert books.holds("bath", "Cu") is None
     assert books.holds("bath", VOLUME) == 10 * L
-    assert codes(folded) == {UNKNOWN_AMOUNT}
+    assert folded.findings == (
+        Finding(UNKNOWN_AMOUNT, "Cu", "bath", PARTS),
+        Finding(UNKNOWN_AMOUNT, GROSS_MASS, "bath", PARTS),
+    )
 
 
 def test_an_inert_anode_gives_nothing() -> None:

@@ -40,7 +40,7 @@ def read_level(folding: Folding, vessel: str, level: Measured, lost_to: str, wat
 def _gain_mass(folding: Folding, vessel: str, gained: int, doubt: int, volume: int) -> None:
     """What came from nowhere is taken to be as dense as what is there."""
     mass = folding.state.holding(vessel, GROSS_MASS).amount
-    if mass is None or mass < 0 or volume <= 0:
+    if mass is None or mass <= 0 or volume <= 0:
         folding.move_unknown(GROSS_MASS, UNACCOUNTED, vessel)
     else:
         folding.move(GROSS_MASS, UNACCOUNTED, vessel, ratio(mass, gained, volume), ratio(mass, doubt, volume), ASSUMED)
