@@ -203,9 +203,12 @@ REDIS_URL = os.environ.get("REDIS_URL", "")
 """Set it to let Celery carry jobs; left empty, `manage.py work` claims them."""
 JOB_LEASE_SECONDS = int(os.environ.get("JOB_LEASE_SECONDS", "60"))
 """How long a worker keeps a job that it does not finish: more than the longest step of a task takes."""
-JOB_TASKS = {"clear-sessions": "compliance.ops.tasks.clear_sessions"}
+JOB_TASKS = {
+    "clear-sessions": "compliance.ops.tasks.clear_sessions",
+    "verify": "compliance.ops.tasks.verify",
+}
 """Which function does which task: `(payload, *, now)` reads, and returns what to write (chemicals/jobs/registry.py)."""
-JOB_SCHEDULES = {"clear-sessions": 24 * 3600}
+JOB_SCHEDULES = {"clear-sessions": 24 * 3600, "verify": 24 * 3600}
 """Tasks that repeat, and after how many seconds."""
 
 LOGGING = {

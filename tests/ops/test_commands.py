@@ -34,6 +34,14 @@ def environment(**values: str) -> dict[str, str]:
     return {name: value for name, value in os.environ.items() if name not in ours} | values
 
 
+def succeed(*command: str, **values: str) -> str:
+    """Run a command of manage.py to its good end, return what it printed."""
+    program = [sys.executable, "manage.py", *command]
+    return subprocess.run(
+        program, check=True, cwd=ROOT, env=environment(**values), stdout=subprocess.PIPE, text=True, timeout=60
+    ).stdout
+
+
 def refusal(command: str, **values: str) -> str:
     """Start, expect a refusal, return its sentence."""
     program = [sys.executable, "manage.py", command]
@@ -92,8 +100,7 @@ def test_the_demo_is_loaded_once_and_its_people_are_kept_for_its_user_only(tmp_p
 def migrated(tmp_path_factory: pytest.TempPathFactory) -> Path:
     """Return a database file of this version."""
     data = tmp_path_factory.mktemp("migrated")
-    command = [sys.executable, "manage.py", "migrate", "--verbosity", "0"]
-    subprocess.run(command, check=True, cwd=ROOT, env=environment(GRAMLEDGER_DATA=str(data)))
+    succeed("migrate", "--verbosity", "0", GRAMLEDGER_DATA=str(data))
     return data / "gramledger.sqlite3"
 
 
@@ -115,6 +122,22 @@ def test_serve_refuses_a_database_that_is_not_as_this_version_needs_it(
     with closing(sqlite3.connect(tmp_path / migrated.name)) as database, database:
         database.execute(change)
     assert sentence in refusal("serve", GRAMLEDGER_DATA=str(tmp_path), BIND=free_address())
+
+
+def test_upgrade_backs_up_then_migrates_then_verifies(migrated: Path, tmp_path: Path) -> None:
+    shutil.copy(migrated, tmp_path / migrated.name)
+    succeed("migrate", "jobs", "zero", GRAMLEDGER_DATA=str(tmp_path))
+    output = succeed("upgrade", GRAMLEDGER_DATA=str(tmp_path))
+    backup, migrations, *_, proof = output.splitlines()
+    (written,) = (tmp_path / "backups").iterdir()
+    assert backup == f"Backup: {written}"
+    assert migrations == "Migrations: jobs.0001_initial"
+    assert proof == "0 workshops, 0 entries, 0 files: all is as it was recorded."
+
+
+def test_upgrade_of_nothing_is_refused(tmp_path: Path) -> None:
+    assert "There is no database" in refusal("upgrade", GRAMLEDGER_DATA=str(tmp_path))
+    assert not (tmp_path / "backups").exists()
 
 
 class Service:

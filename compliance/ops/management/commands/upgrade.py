@@ -8,6 +8,7 @@ from django.core.management.base import BaseCommand, CommandError
 from django.utils import timezone
 
 from compliance.ops import start
+from compliance.ops.archive import BackupError
 from compliance.ops.backup import write_backup
 
 
@@ -20,7 +21,7 @@ class Command(BaseCommand):
         try:
             with start.hold_folder(settings.DATA):
                 self.upgrade()
-        except start.StartError as error:
+        except (BackupError, start.StartError) as error:
             raise CommandError(str(error)) from error
 
     def upgrade(self) -> None:
@@ -36,4 +37,4 @@ class Command(BaseCommand):
         self.stdout.write(f"Backup: {backup}")
         call_command("migrate", interactive=False, verbosity=0)
         self.stdout.write(f"Migrations: {', '.join(pending) or 'none were pending'}")
-        call_command("verify")
+        call_command("verify", stdout=self.stdout)
