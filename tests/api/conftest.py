@@ -1,12 +1,13 @@
 """A small workshop, and people who ask the API with a token."""
 
-from collections.abc import Callable, Mapping
+from collections.abc import Callable, Iterator, Mapping
 from dataclasses import dataclass
 from datetime import datetime
 from typing import Any
 from uuid import UUID, uuid4
 
 import pytest
+import time_machine
 from rest_framework.test import APIClient
 
 from chemicals.ledger.models import Vessel, VesselKind
@@ -61,6 +62,13 @@ def errors_of(response: Any, status: int) -> dict[str, str]:
     assert all(set(row) == {"field", "message"} and row["message"] for row in said["errors"])
     assert said["errors"]
     return {row["field"]: row["message"] for row in said["errors"]}
+
+
+@pytest.fixture(autouse=True)
+def _clock(now: datetime) -> Iterator[None]:
+    """Let the API read the moment that tests agree on, and go on from there."""
+    with time_machine.travel(now, tick=True):
+        yield
 
 
 @pytest.fixture

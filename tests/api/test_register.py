@@ -1,0 +1,126 @@
+"""Substances, products and their revisions, vessels, tanks, rack types, routes, places."""
+
+from uuid import uuid4
+
+import pytest
+
+from tests.api.conftest import Caller, Shop, errors_of
+
+
+def test_a_workshop_tells_the_end_of_its_journal(api: Caller, shop: Shop) -> None:
+    before = api.get("").json()
+    assert (before["name"], before["time_zone"], before["role"]) == ("Alder Court", "Europe/Berlin", "owner")
+    assert before["head"] == {"sequence": 0, "hash": "0" * 64}
+    entry = api.record("opening", vessel=str(shop.bath.uuid), volume="20 L").json()
+    assert api.get("").json()["head"] == {"sequence": 1, "hash": entry["hash"]}
+
+
+def test_a_substance_is_created_with_its_cas_number_checked(api: Caller) -> None:
+    made = api.post("substances/", {"name": "Nickel sulfate", "cas_number": "10101-97-0", "formula": "NiSO4.6H2O"})
+    assert made.status_code == 201
+    assert api.get(f"substances/{made.json()['uuid']}/").json() == made.json()
+    wrong = api.post("substances/", {"name": "Nickel sulfate", "cas_number": "10101-97-1", "formula": "NiSO4.6Q"})
+    assert set(errors_of(wrong, 400)) == {"name", "cas_number", "formula"}
+
+
+def test_a_product_and_its_next_revision(api: Caller, shop: Shop) -> None:
+    said = {
+        "name": "Acid copper, ready made", "supplier": "Invented Supply", "form": "liquid", "density": "1.2 g/mL",
+        "lines": [{"substance": str(shop.sulfate.uuid), "content": "200 g/L"}], "complete": False,
+        "reactivity": ["acid"], "signal_word": "Danger", "pictograms": ["GHS05"], "statements": ["H314 Burns skin"],
+        "sheet_date": "2025-05-01",
+    }  # fmt: skip
+    made = api.post("products/", said)
+    first = made.json()
+    assert made.status_code == 201
+    assert (first["revision"], first["density"]["text"], first["complete"]) == (1, "1.2 g/cm³", False)
+    line = {"substance": str(shop.sulfate.uuid), "name": shop.sulfate.name, "cas_number": "7758-99-8"}
+    line |= {"formula": "CuSO4.5H2O", "content": "200 g/L", "per": "L"}
+    assert first["lines"] == [{**line, "amount": 200_000_000}]
+    assert (first["safety_data_sheet"], first["sheet_date"]) == (None, "2025-05-01")
+    address = f"products/{first['uuid']}/"
+    second = api.post(address + "revisions/", {"form": "liquid"}).json()
+    assert (second["revision"], second["lines"], second["complete"]) == (2, [], True)
+    assert api.get(address).json() == second
+    assert [row["revision"] for row in api.get(address + "revisions/").json()["results"]] == [2, 1]
+    assert api.get(address + "revisions/").json()["results"][1] == first
+
+
+def test_everything_wrong_with_a_product_is_named(api: Caller, shop: Shop) -> None:
+    shape = api.post("products/", {"form": "gas", "pictograms": ["GHS10"], "reactivity": ["lava"], "density": 1.2})
+    assert set(errors_of(shape, 400)) == {"name", "form", "pictograms.0", "reactivity.0", "density"}
+    lines = [{"substance": str(uuid4()), "content": "98 %"}, {"substance": str(shop.sulfate.uuid), "content": "98 %"}]
+    absent = api.post("products/", {"name": "Salt", "form": "solid", "lines": lines, "safety_data_sheet": "ab" * 32})
+    assert set(errors_of(absent, 400)) == {"lines.0.substance", "safety_data_sheet"}
+    many = api.post("products/", {"name": "Salt", "form": "solid", "lines": [lines[1]], "density": "1,5 g/mL",
+                                  "statements": ["burns"]})  # fmt: skip
+    assert set(errors_of(many, 400)) == {"density", "statements"}
+    more = api.post("products/", {"name": "Salt", "form": "solid", "lines": [{**lines[1], "content": "1,5 g/L"}]})
+    assert set(errors_of(more, 400)) == {"lines.0.content"}
+
+
+def test_the_same_product_of_the_same_supplier_is_revised_not_repeated(api: Caller, shop: Shop) -> None:
+    again = api.post("products/", {"name": "Blue salt", "supplier": "Invented Supply", "form": "solid"})
+    assert "Revise it" in errors_of(again, 400)["name"]
+
+
+def test_a_stock_container_is_set_up_for_a_product(api: Caller, shop: Shop) -> None:
+    said = {"kind": "stock", "name": "Jar 2", "product": str(shop.product.uuid), "place": str(shop.place.uuid)}
+    made = api.post("vessels/", {**said, "capacity": "1 gal"}).json()
+    assert made["capacity"] == {"base": 3_785_411_784, "sd": 0, "unit": "nL", "text": "3.785 L"}
+    assert (made["place"]["name"], made["product"]["name"], len(made["code"])) == ("Plating bench", "Blue salt", 6)
+    contents = api.get(f"vessels/{made['uuid']}/").json()["contents"]
+    assert contents == {"volume": None, "mass": None, "metals": [], "incomplete": False}
+    tank = api.post("vessels/", {"kind": "bath", "name": "Bath"})
+    assert set(errors_of(tank, 400)) == {"kind"}
+    absent = api.post("vessels/", {**said, "name": "Jar 3", "product": str(uuid4()), "place": str(uuid4())})
+    assert set(errors_of(absent, 400)) == {"product", "place"}
+
+
+def test_a_bath_is_set_up_with_the_figures_of_its_runs(api: Caller, shop: Shop) -> None:
+    anode = api.post("vessels/", {"kind": "anode", "name": "Copper anodes", "product": str(shop.product.uuid)}).json()
+    said = {
+        "kind": "bath", "name": "Second bath", "capacity": "25 L", "mark": "20 L", "bath_type": "bright acid copper",
+        "metal": "Cu", "valence": 2, "efficiency": "97.5 %", "efficiency_sd": "2 %", "anode_kind": "soluble",
+        "anode": anode["uuid"],
+    }  # fmt: skip
+    made = api.post("tanks/", said)
+    tank = made.json()
+    assert made.status_code == 201
+    assert (tank["efficiency"]["base"], tank["efficiency"]["text"]) == (975_000, "97.5 %")
+    assert (tank["mark"]["text"], tank["metal"], tank["valence"]) == ("20 L", "Cu", 2)
+    assert tank["anode"] == {"uuid": anode["uuid"], "name": "Copper anodes"}
+    assert api.get(f"tanks/{tank['vessel']['uuid']}/").json() == tank
+
+
+def test_what_a_tank_lacks_is_named(api: Caller, shop: Shop) -> None:
+    wrong = api.post("tanks/", {"kind": "bath", "name": "Bath", "metal": "Cu", "capacity": "5 L", "mark": "6 L",
+                                "anode_kind": "soluble"})  # fmt: skip
+    assert set(errors_of(wrong, 400)) == {"valence", "mark", "anode"}
+    assert "neither a bath nor a rinse" in errors_of(api.get(f"tanks/{shop.stock.uuid}/"), 404)[""]
+
+
+def test_rack_types_and_routes(api: Caller, shop: Shop) -> None:
+    rack = api.post("rack-types/", {"name": "Rings", "drag_out": "15 mL", "drag_out_sd": "20 %", "area": "0.44 dm2"})
+    assert rack.status_code == 201
+    assert (rack.json()["drag_out"]["text"], rack.json()["area"]["base"]) == ("15 mL", 4400)
+    assert api.get(f"rack-types/{rack.json()['uuid']}/").json() == rack.json()
+    vessels = [str(shop.bath.uuid), str(shop.rinse.uuid)]
+    route = api.post("routes/", {"name": "Rings, copper", "rack": rack.json()["uuid"], "vessels": vessels})
+    assert [step["vessel"]["name"] for step in route.json()["steps"]] == ["Copper bath", "Drag-out rinse"]
+    assert api.get(f"routes/{route.json()['uuid']}/").json() == route.json()
+    absent = {"name": "Nowhere", "rack": str(uuid4()), "vessels": [vessels[0], str(uuid4())]}
+    assert set(errors_of(api.post("routes/", absent), 400)) == {"rack", "vessels.1"}
+    twice = {"name": "Twice", "rack": rack.json()["uuid"], "vessels": [vessels[0], vessels[0]]}
+    assert set(errors_of(api.post("routes/", twice), 400)) == {"vessels"}
+
+
+def test_a_place_is_created_once(api: Caller) -> None:
+    made = api.post("places/", {"name": "Cupboard", "bund": "south", "exhaust_duct": "1"})
+    assert api.get(f"places/{made.json()['uuid']}/").json() == made.json()
+    assert "name" in errors_of(api.post("places/", {"name": "Cupboard"}), 400)
+
+
+@pytest.mark.parametrize("address", ["places", "substances", "products", "tanks", "rack-types", "routes", "receivers"])
+def test_a_thing_that_is_not_there_is_404(api: Caller, address: str) -> None:
+    assert errors_of(api.get(f"{address}/{uuid4()}/"), 404)
