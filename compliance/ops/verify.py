@@ -4,7 +4,7 @@ from collections.abc import Callable, Iterator, Mapping
 from dataclasses import dataclass
 
 from django.apps import apps
-from django.db import IntegrityError, connection
+from django.db import IntegrityError, connection, transaction
 from django.db.models import F, Model, Q
 from django_scopes import scope
 
@@ -14,6 +14,7 @@ from chemicals.journal.verify import Problem
 from chemicals.ledger import verify as ledger
 from chemicals.workshop.models import Workshop
 from compliance.documents.verify import verify_papers
+from compliance.ops.start import OUR_PACKAGES
 
 
 @dataclass(frozen=True)
@@ -60,7 +61,8 @@ def find_loose_rows() -> list[str]:
     crossing = {name: count for name, count in count_crossings().items() if count}
     found = [f"{name} points into another workshop in {count} rows." for name, count in crossing.items()]
     try:
-        connection.check_constraints()  # foreign keys: SQLite does not look at rows that another program wrote
+        with transaction.atomic():  # PostgreSQL would refuse every later look in the caller's transaction
+            connection.check_constraints()  # foreign keys: SQLite does not look at rows that another program wrote
     except IntegrityError as error:
         found.append(f"A row points nowhere: {error}")
     return found
@@ -68,7 +70,7 @@ def find_loose_rows() -> list[str]:
 
 def our_models() -> list[type[Model]]:
     """Return the tables of this program, those of its libraries left out."""
-    return [model for model in apps.get_models() if model.__module__.startswith(("chemicals.", "compliance."))]
+    return [model for model in apps.get_models() if model.__module__.startswith(OUR_PACKAGES)]
 
 
 def count_crossings() -> dict[str, int]:
