@@ -9,6 +9,7 @@ from django_scopes import scope
 
 from chemicals.books.clearance import ALLOWED, INCIDENT, Clearance
 from chemicals.books.occurred import Occurred
+from chemicals.journal.selectors import list_entries_for
 from chemicals.journal.services import Appended, lock_chain
 from chemicals.process.build import build
 from chemicals.process.inputs import Input
@@ -43,7 +44,7 @@ def record(
         lock_chain(actor)  # nothing is poured in between the answer and the record
         built = build(actor, now, data, occurred)
         reasons = tuple(find_reasons(actor.workshop, built.event))
-        if reasons and not already_happened:
+        if reasons and not already_happened and not _is_retry(actor, key):
             raise RefusedError(reasons)
         clearance = Clearance(INCIDENT, reasons + FIRST_STEPS) if reasons else Clearance(ALLOWED)
         return record_matter(
@@ -54,3 +55,8 @@ def record(
             clearance=clearance,
             attachments=attachments,
         )
+
+
+def _is_retry(actor: Membership, key: UUID) -> bool:
+    """Say whether an entry of this key is there: what was allowed then is answered with it, whatever holds by now."""
+    return list_entries_for(actor).filter(uuid=key).exists()

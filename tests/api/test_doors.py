@@ -224,3 +224,16 @@ def test_an_analysis_is_accepted(api: Caller, shop: Shop) -> None:
     assert accepted.status_code == 201
     metals = api.get(f"vessels/{shop.bath.uuid}/").json()["contents"]["metals"]
     assert metals[0]["concentration"]["text"] == "50.9 g/L"
+
+
+def test_a_retry_gets_its_entry_even_if_the_same_would_be_refused_by_now(api: Caller, shop: Shop) -> None:
+    open_bath(api, shop)
+    key, pour = uuid4(), {"source": str(shop.rinse.uuid), "target": str(shop.drum.vessel.uuid), "volume": "1 L"}
+    first = api.record("drum-off", key, **pour)
+    assert first.status_code == 201
+    api.record("receipt", vessel=str(shop.acid_stock.uuid), amount="5 L")
+    sour = api.record("top-up", tank=str(shop.rinse.uuid), source=str(shop.acid_stock.uuid), volume="1 L")
+    assert sour.status_code == 201
+    assert api.record("drum-off", **pour).status_code == 409
+    again = api.record("drum-off", key, **pour)
+    assert (again.status_code, again.json()["uuid"]) == (200, str(key))
