@@ -279,8 +279,8 @@ class LevelReading(Event):
 class Analysis(Event):
     """A sample was analysed. Nothing is posted until the result is accepted.
 
-    The entry's time is the time of sampling. ``concentration`` is the component's own, in ug/L, whatever the result
-    was expressed as.
+    The entry's time is the time of sampling; ``reported_at`` None is when it was recorded. ``concentration`` is the
+    component's own, in ug/L, whatever the result was expressed as.
     """
 
     KIND = "analysis"
@@ -288,7 +288,7 @@ class Analysis(Event):
     component: str
     result: Measured
     expressed_as: str
-    reported_at: datetime
+    reported_at: datetime | None
     concentration: Used[Figure]
 
     def vessels(self) -> tuple[str, ...]:

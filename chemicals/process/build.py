@@ -179,8 +179,7 @@ def _build_analysis(draft: Draft, now: datetime, data: inputs.AnalysisInput) -> 
         return None
     if not fraction:
         draft.refuse("expressed_as", f"{salt} holds no {data.metal}. Write the formula of the salt, or leave it empty.")
-    reported_at = data.reported_at or now
-    if reported_at > now:
+    if data.reported_at is not None and data.reported_at > now:
         draft.refuse("reported_at", "This lies in the future. Write when the result came.")
     result = measured(data.result, data.sd)
     if draft.errors or vessel is None or result is None:
@@ -192,7 +191,7 @@ def _build_analysis(draft: Draft, now: datetime, data: inputs.AnalysisInput) -> 
         component=data.metal,
         result=result,
         expressed_as=salt or data.metal,
-        reported_at=reported_at,
+        reported_at=data.reported_at,
         concentration=Figure(base, sd, source),
     )
 

@@ -49,7 +49,7 @@ class Caller:
         headers = {} if key is None else {"Idempotency-Key": str(key)}
         return self.client.post(self.path(address), {} if said is None else said, format="json", headers=headers)
 
-    def record(self, verb: str, key: UUID | None = None, **said: Json) -> Any:
+    def record(self, verb: str, key: UUID | None = None, /, **said: Json) -> Any:
         """Record with a fresh key, unless one is given."""
         return self.post(f"record/{verb}", said, key=key or uuid4())
 

@@ -1,9 +1,10 @@
 """The two doors: preview writes nothing, record writes once; amounts are echoed, nothing is guessed."""
 
-from datetime import UTC, datetime
+from datetime import UTC, datetime, timedelta
 from uuid import uuid4
 
 import pytest
+import time_machine
 from django_scopes import scopes_disabled
 
 from chemicals.journal.models import Entry
@@ -237,3 +238,24 @@ def test_a_retry_gets_its_entry_even_if_the_same_would_be_refused_by_now(api: Ca
     assert api.record("drum-off", **pour).status_code == 409
     again = api.record("drum-off", key, **pour)
     assert (again.status_code, again.json()["uuid"]) == (200, str(key))
+
+
+@pytest.mark.parametrize("verb", ["opening", "level-reading", "analysis", "run", "top-up", "drum-off", "move"])
+def test_every_verb_can_be_retried_later(api: Caller, shop: Shop, now: datetime, verb: str) -> None:
+    open_bath(api, shop)
+    bath, rinse = str(shop.bath.uuid), str(shop.rinse.uuid)
+    said = {
+        "opening": {"vessel": str(shop.stock.uuid), "mass": "1 kg", "product": str(shop.product.uuid)},
+        "level-reading": {"vessel": bath, "volume": "19 L"},
+        "analysis": {"vessel": bath, "metal": "Cu", "result": "51 g/L"},
+        "run": {"route": str(shop.route.uuid), "current_density": "1 A/dm2", "time": "1 h"},
+        "top-up": {"tank": bath},
+        "drum-off": {"source": rinse, "target": str(shop.drum.vessel.uuid)},
+        "move": {"source": rinse, "target": bath, "volume": "1 L"},
+    }[verb]
+    key = uuid4()
+    first = api.record(verb, key, **said)
+    with time_machine.travel(now + timedelta(hours=3)):
+        again = api.record(verb, key, **said)
+    assert (first.status_code, again.status_code) == (201, 200)
+    assert again.json() == first.json()
