@@ -35,6 +35,10 @@ drill: .venv/dev-stamp  ## back the demo up while somebody records, restore it t
 	.ci/services.sh
 	$(PY) -m pytest -n 0 tests/ops/test_drill.py
 
+drill: .venv/dev-stamp  ## rehearse: back up while somebody records, restore to SQLite and PostgreSQL, prove, compare
+	.ci/services.sh
+	$(PY) -m pytest tests/ops/test_drill.py
+
 lint: .venv/dev-stamp  ## style, format, types, import order
 	.venv/bin/ruff check .
 	.venv/bin/ruff format --check .
