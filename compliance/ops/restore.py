@@ -14,7 +14,7 @@ from django.db.models import Model
 from chemicals.journal import files
 from compliance.ops import archive as layout
 from compliance.ops.archive import BackupError, Manifest, open_checked
-from compliance.ops.verify import find_loose_rows, our_models, verify_workshops
+from compliance.ops.verify import find_loose_ends, our_models, verify_workshops
 
 BATCH = 1000
 
@@ -119,7 +119,7 @@ def _reset_sequences() -> None:
 
 
 def _require_sound() -> None:
-    wrong = find_loose_rows()
+    wrong = find_loose_ends()
     for verdict in verify_workshops():
         wrong += [f"{verdict.workshop.name}: {problem.message}" for problem in verdict.problems]
     if wrong:

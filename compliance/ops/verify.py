@@ -4,12 +4,13 @@ from collections.abc import Callable, Iterator, Mapping
 from dataclasses import dataclass
 
 from django.apps import apps
-from django.db import IntegrityError, connection, transaction
+from django.db import DEFAULT_DB_ALIAS, IntegrityError, connection, transaction
 from django.db.models import F, Model, Q
 from django_scopes import scope
 
 from chemicals.journal import verify as journal
 from chemicals.journal.models import Attachment, Entry
+from chemicals.journal.triggers import check_triggers
 from chemicals.journal.verify import Problem
 from chemicals.ledger import verify as ledger
 from chemicals.workshop.models import Workshop
@@ -56,8 +57,8 @@ def _look(name: str, check: Callable[[Workshop], list[Problem]], workshop: Works
         return [Problem(None, f"The {name} cannot be compared: an entry cannot be read. {error}")]
 
 
-def find_loose_rows() -> list[str]:
-    """Return a sentence for each relation whose rows point nowhere, or into another workshop."""
+def find_loose_ends() -> list[str]:
+    """Return a sentence for each relation whose rows point nowhere or into another workshop, and for lost triggers."""
     crossing = {name: count for name, count in count_crossings().items() if count}
     found = [f"{name} points into another workshop in {count} rows." for name, count in crossing.items()]
     try:
@@ -65,7 +66,7 @@ def find_loose_rows() -> list[str]:
             connection.check_constraints()  # foreign keys: SQLite does not look at rows that another program wrote
     except IntegrityError as error:
         found.append(f"A row points nowhere: {error}")
-    return found
+    return found + [problem.msg for problem in check_triggers(databases=[DEFAULT_DB_ALIAS])]
 
 
 def our_models() -> list[type[Model]]:

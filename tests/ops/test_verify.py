@@ -12,7 +12,7 @@ from django.db import connection
 from pytest_django import Settings
 
 from chemicals.books import canonical
-from chemicals.journal import files
+from chemicals.journal import files, triggers
 from chemicals.workshop.models import Membership, Role
 from compliance.ops import verify
 from compliance.ops.verify import count_crossings, our_models
@@ -357,6 +357,15 @@ def test_rows_that_point_nowhere(books: Books) -> None:
     else:
         with pytest.raises(Exception, match="violates foreign key"), intruder() as execute:
             execute("DELETE FROM waste_wastestream")
+
+
+def test_lost_triggers(books: Books) -> None:
+    """Nothing is wrong with the entries yet, but nothing would stop anybody either."""
+    triggers.remove(connection)
+    try:
+        expect_wrong("The journal of database default lacks the triggers", "Nothing is wrong.")
+    finally:
+        triggers.install(connection)
 
 
 def test_only_the_broken_workshop_is_called_broken(books: Books, stranger: Membership) -> None:

@@ -4,7 +4,7 @@ from typing import Any
 
 from django.core.management.base import BaseCommand, CommandError
 
-from compliance.ops.verify import Verdict, describe_entry, find_loose_rows, verify_workshops
+from compliance.ops.verify import Verdict, describe_entry, find_loose_ends, verify_workshops
 
 SHOWN = 20
 """How many problems of a workshop are printed."""
@@ -19,7 +19,7 @@ class Command(BaseCommand):
         verdicts = list(verify_workshops())
         for verdict in verdicts:
             self.report(verdict)
-        loose = find_loose_rows()
+        loose = find_loose_ends()
         for sentence in loose:
             self.stdout.write(sentence)
         wrong = len(loose) + sum(len(verdict.problems) for verdict in verdicts)
