@@ -1,13 +1,12 @@
 """`check --deploy` says what a real installation lacks, and is silent about one that lacks nothing."""
 
 import os
-import sqlite3
 import subprocess
 import sys
 from pathlib import Path
 
 import pytest
-from django.db import connection, connections
+from django.db import connection
 from pytest_django import Settings
 
 from chemicals.journal import triggers
@@ -100,19 +99,13 @@ def test_a_database_that_does_not_answer_is_named(tmp_path: Path) -> None:
 @pytest.mark.django_db
 def test_another_journal_mode_is_named(tmp_path: Path) -> None:
     """A database on a folder that cannot share memory stays in the mode of old."""
-    path = tmp_path / "old.sqlite3"
-    sqlite3.connect(path).close()
-    connections.databases["old"] = {
-        **connections.databases["default"],
-        "ENGINE": "django.db.backends.sqlite3",
-        "NAME": str(path),
-        "OPTIONS": {},
-    }
+    from django.db.backends.sqlite3.base import DatabaseWrapper
+
+    options = connection.settings_dict | {"NAME": str(tmp_path / "old.sqlite3"), "OPTIONS": {}}
+    old = DatabaseWrapper(options)
     try:
-        (problem,) = checks._check_journal_mode(connections["old"])
-        assert problem.id == "ops.E004"
-        assert "in mode delete" in problem.msg
+        (problem,) = checks._check_journal_mode(old)
     finally:
-        connections["old"].close()
-        del connections["old"]
-        del connections.databases["old"]
+        old.close()
+    assert problem.id == "ops.E004"
+    assert "in mode delete" in problem.msg
