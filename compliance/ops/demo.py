@@ -74,7 +74,7 @@ class Demo:
             for table, create in self.creators().items():
                 self.things[table] = {row["name"]: create(row) for row in self.scenario[table]}
             self.things["entries"] = {}
-            for row in self.scenario["history"]:
+            for row in sorted(self.scenario["history"], key=lambda row: self.moment(row.get("recorded", row["when"]))):
                 self.happen(row)
         return users
 

@@ -1,0 +1,240 @@
+"""The demo: an invented workshop whose weeks show the whole path, in books that close."""
+
+import io
+from datetime import UTC, datetime, timedelta
+from pathlib import Path
+
+import pytest
+from django.core.management import call_command
+from django.core.management.base import CommandError
+from django_scopes import scope, scopes_disabled
+from pytest_django import Settings
+
+from chemicals.balance.selectors import BookBalance, get_book_balance, list_metals_for
+from chemicals.books import events
+from chemicals.books.fold.state import FINDINGS
+from chemicals.journal import files
+from chemicals.journal.models import Entry
+from chemicals.journal.selectors import is_cancelled, read_event
+from chemicals.ledger.models import VesselKind
+from chemicals.ledger.selectors import list_findings_for, list_held, list_vessels_for
+from chemicals.process.inputs import INPUTS
+from chemicals.register.selectors import list_current_revisions_for
+from chemicals.workshop.models import Membership, Role, User, Workshop
+from compliance.documents.models import Paper, PaperKind
+from compliance.documents.selectors import read_data, read_pdf
+from compliance.dropoffs import services as dropoffs
+from compliance.dropoffs.models import DropOff, State
+from compliance.ops.demo import DemoUser, NotEmptyError, load_demo
+from compliance.ops.demo_reader import read_amount, read_input
+from compliance.ops.verify import find_loose_ends, verify_workshops
+
+G = 10**6
+
+
+@pytest.fixture(autouse=True)
+def attachments_folder(tmp_path: Path, settings: Settings) -> None:
+    settings.ATTACHMENTS = tmp_path
+
+
+@pytest.fixture
+def people(db: None, now: datetime) -> list[DemoUser]:
+    return load_demo(now=now)
+
+
+@pytest.fixture
+def member(people: list[DemoUser]) -> Membership:
+    return Membership.objects.select_related("workshop", "user").get(role=Role.OWNER)
+
+
+def entries(member: Membership, kind: str = "") -> list[Entry]:
+    with scope(workshop=member.workshop):
+        rows = Entry.objects.order_by("sequence")
+        return list(rows.filter(kind=kind) if kind else rows)
+
+
+def balance(member: Membership, metal: str, now: datetime) -> BookBalance:
+    return get_book_balance(member, metal, now - timedelta(days=90), now)
+
+
+def test_three_people_can_sign_in_with_fresh_passwords(people: list[DemoUser]) -> None:
+    assert [role for _, _, role in people] == ["owner", "worker", "observer"]
+    for email, password, role in people:
+        assert len(password) >= 16
+        assert User.objects.get(email=email).check_password(password)
+        assert Membership.objects.get(user__email=email).role == role
+    assert len({password for _, password, _ in people}) == 3
+
+
+def test_everything_says_that_it_is_invented(member: Membership) -> None:
+    workshop = member.workshop
+    assert workshop.invented
+    assert "invented" in workshop.name
+    with scope(workshop=workshop):
+        revisions = list(list_current_revisions_for(member))
+    for revision in revisions:
+        assert revision.product.supplier.startswith("Invented")
+        assert all("invented" in text for text in revision.statements)
+        if revision.statements:
+            assert revision.safety_data_sheet is not None
+            assert b"%PDF" in files.read(revision.safety_data_sheet.sha256)
+
+
+def test_every_kind_of_the_path_happened(member: Membership) -> None:
+    kinds = {entry.kind for entry in entries(member)}
+    assert kinds == {kind.KIND for kind in events.EVENTS} - {events.Move.KIND}
+    assert kinds >= {verb.replace("-", " ") for verb in ("level-reading", "drum-off")}
+    assert len(INPUTS) == len(events.EVENTS) - 1  # papers have no form
+
+
+def test_its_history_is_of_the_weeks_before_and_in_order(member: Membership, now: datetime) -> None:
+    written = entries(member)
+    recorded = [entry.recorded_at for entry in written]
+    assert recorded == sorted(recorded)
+    assert now - timedelta(days=36) < recorded[0] < now - timedelta(days=28)
+    assert recorded[-1] < now
+    assert member.workshop.created_at <= recorded[0]
+
+
+@pytest.mark.django_db
+@pytest.mark.parametrize("hour", [0, 23])
+def test_nothing_lies_in_the_future_at_any_hour(hour: int) -> None:
+    midnight = datetime(2026, 3, 29, hour, 30, tzinfo=UTC)  # summer time begins on this day in Berlin
+    load_demo(now=midnight)
+    with scopes_disabled():
+        assert not Entry.objects.filter(recorded_at__gt=midnight).exists()
+        assert not Entry.objects.filter(occurred_at__gt=midnight).exists()
+
+
+def test_one_mistake_was_cancelled_and_one_entry_came_late(member: Membership) -> None:
+    (cancellation,) = entries(member, "cancellation")
+    assert cancellation.about is not None
+    assert is_cancelled(cancellation.about)
+    event = read_event(cancellation)
+    assert isinstance(event, events.Cancellation)
+    assert event.reason
+    runs = entries(member, "run")
+    assert [run for run in runs if run.recorded_at - run.occurred_at > timedelta(days=1)]
+
+
+def test_one_analysis_is_accepted_and_one_is_left_to_accept(member: Membership) -> None:
+    accepted, waiting = entries(member, "analysis")
+    assert [entry.about for entry in entries(member, "acceptance")] == [accepted]
+    assert accepted.occurred_at < accepted.recorded_at
+    assert waiting.sequence > accepted.sequence
+
+
+def test_the_first_drum_is_handed_over_and_the_second_half_full(member: Membership) -> None:
+    held = {
+        vessel.name: {row.component: row.amount for row in list_held(vessel)}
+        for vessel in list_vessels_for(member, VesselKind.WASTE)
+    }
+    assert set(held["Canister 1"].values()) == {0}
+    assert held["Canister 2"]["volume"] == 6 * 10**9
+    assert (held["Canister 2"]["Cu"] or 0) > 0
+    with scope(workshop=member.workshop):
+        drop_off = DropOff.objects.get()
+        papers = list(Paper.objects.order_by("number", "kind"))
+    assert drop_off.state == State.HANDED_OVER
+    assert {paper.kind for paper in papers} == {PaperKind.WASTE_LABEL, PaperKind.MANIFEST}
+    for paper in papers:
+        assert read_pdf(paper).startswith(b"%PDF")
+        assert "invented" in read_data(paper)["workshop"]["name"]
+
+
+def test_the_weight_of_the_drum_is_what_the_books_say(member: Membership) -> None:
+    """Scale minus tare against the books' own mass of the liquid, as a receiver would compare."""
+    (handed,) = entries(member, "hand-over")
+    with scope(workshop=member.workshop):
+        booked = handed.postings.get(component__code="gross mass", boundary="receiver").amount
+    event = read_event(handed)
+    assert isinstance(event, events.HandOver)
+    assert event.gross is not None
+    assert abs(event.gross.base - 550 * G - booked) < 30 * G
+
+
+def test_the_copper_balance_closes_nearly(member: Membership, now: datetime) -> None:
+    copper = balance(member, "Cu", now)
+    outside = sum(amount.value or 0 for amount in copper.boundaries.values())
+    assert (copper.opening.value or 0) + outside == copper.closing.value
+    unaccounted, received = copper.unaccounted.value or 0, copper.boundaries["supplier"].value or 0
+    assert 0 < abs(unaccounted) < received // 100
+    assert copper.smallest_visible is not None
+    assert abs(unaccounted) < copper.smallest_visible
+    assert -230 * G < (copper.boundaries["parts"].value or 0) < -200 * G
+    assert -10 * G < (copper.boundaries["receiver"].value or 0) < -3 * G
+
+
+def test_the_gold_balance_closes(member: Membership, now: datetime) -> None:
+    gold = balance(member, "Au", now)
+    outside = sum(amount.value or 0 for amount in gold.boundaries.values())
+    assert outside == gold.closing.value
+    assert -G < (gold.boundaries["parts"].value or 0) < -G // 10
+    assert list_metals_for(member) == ["Au", "Cu"]
+
+
+def test_a_plater_finds_the_figures_sensible(member: Membership) -> None:
+    """Acid copper: about 50 g/L of copper (common practice); no gold in copper nor copper in gold."""
+    held = {
+        vessel.name: {row.component: row.amount or 0 for row in list_held(vessel)}
+        for vessel in list_vessels_for(member)
+    }
+    copper = held["Acid copper"]
+    assert 45 < copper["Cu"] * 10**9 // copper["volume"] // G < 55
+    rinse = held["Copper drag-out rinse"]
+    assert rinse["Cu"] * 10**9 // rinse["volume"] < G  # under 1 g/L
+    assert held["Copper second rinse"]["Cu"] * 20 < rinse["Cu"]
+    assert "Cu" not in held["Gold sulfite"]
+    assert "Au" not in copper
+
+
+def test_its_books_are_proved_and_without_a_finding(member: Membership) -> None:
+    (verdict,) = verify_workshops()
+    assert verdict.problems == ()
+    assert find_loose_ends() == []
+    assert [finding.code for finding in list_findings_for(member)] == []
+    assert FINDINGS
+
+
+def test_a_database_in_use_is_left_alone(owner: Membership, now: datetime) -> None:
+    with pytest.raises(NotEmptyError, match="Name an empty folder in GRAMLEDGER_DATA"):
+        load_demo(now=now)
+    assert list(Workshop.objects.all()) == [owner.workshop]
+    with pytest.raises(CommandError, match="Name an empty folder"):
+        call_command("demo")
+
+
+@pytest.mark.django_db
+def test_a_failure_on_the_way_leaves_nothing(now: datetime, monkeypatch: pytest.MonkeyPatch) -> None:
+    def fail(*args: object, **kwargs: object) -> None:
+        raise RuntimeError("the light went out")
+
+    monkeypatch.setattr(dropoffs, "hand_over", fail)
+    with pytest.raises(RuntimeError, match="light"):
+        load_demo(now=now)
+    assert not User.objects.exists()
+    assert not Workshop.objects.exists()
+
+
+@pytest.mark.django_db
+def test_the_command_prints_who_can_sign_in() -> None:
+    out = io.StringIO()
+    call_command("demo", stdout=out)
+    rows = [line.split("\t") for line in out.getvalue().splitlines()]
+    assert [(email, role) for email, _, role in rows] == [
+        ("ada@demo.example", "owner"),
+        ("ben@demo.example", "worker"),
+        ("cleo@demo.example", "observer"),
+    ]
+
+
+def test_an_amount_is_read_in_the_dimension_that_fits() -> None:
+    assert read_amount("1 kg", ("mass", "volume")).dimension == "mass"
+    assert read_amount("1 L", ("mass", "volume")).dimension == "volume"
+    with pytest.raises(ValueError, match="volume"):
+        read_amount("1 A", ("mass", "volume"))
+
+
+def test_a_word_that_no_form_asks_for_is_an_error_of_the_scenario() -> None:
+    with pytest.raises(KeyError, match="colour"):
+        read_input(INPUTS["top-up"], {"colour": "blue"}, lambda table, name: pytest.fail(table))
