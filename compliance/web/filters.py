@@ -28,7 +28,7 @@ class EntryFilter(django_filters.FilterSet):  # type: ignore[misc]  # the librar
     kind = django_filters.ChoiceFilter(choices=list(KINDS.items()), label=_("Kind"), empty_label=_("all kinds"))
     vessel = django_filters.Filter(label=_("Vessel"), method="naming")
     since = django_filters.DateFilter(label=_("From"), method="not_before")
-    until = django_filters.DateFilter(label=_("Until"), method="not_after")
+    until = django_filters.DateFilter(label=_("Through"), method="not_after")
 
     class Meta:
         model = Entry
@@ -42,7 +42,7 @@ class EntryFilter(django_filters.FilterSet):  # type: ignore[misc]  # the librar
         fields = self.form.fields
         fields["vessel"] = ThingField(vessels, label=_("Vessel"), required=False, empty=_("all vessels"))
         fields["since"] = DayField(label=_("From"), required=False)
-        fields["until"] = DayField(label=_("Until"), required=False)
+        fields["until"] = DayField(label=_("Through"), required=False)
 
     def naming(self, entries: QuerySet[Entry], _name: str, value: Any) -> QuerySet[Entry]:
         """Keep the entries that name the vessel."""
@@ -67,7 +67,7 @@ class PeriodForm(Shown):
 
     metal = forms.ChoiceField(label=_("Metal"))
     since = DayField(label=_("From"))
-    until = DayField(label=_("Until and with"))
+    until = DayField(label=_("Through"))
 
     def __init__(self, metals: list[tuple[str, str]], data: Any) -> None:
         super().__init__(data)

@@ -15,7 +15,7 @@ COLUMN = {VesselKind.STOCK: 1, VesselKind.ANODE: 1, VesselKind.BATH: 2, VesselKi
 LAST_COLUMN = 5
 BOX_WIDTH, BOX_HEIGHT, GAP, ROW = 150, 40, 70, 64
 LIST_WIDTH, LIST_BOX, LIST_ROW = 350, 170, 52
-THICKEST, THINNEST = 26.0, 1.5
+THICKEST, THINNEST, LANE = 26.0, 1.5, 8.0
 LONGEST_NAME = 20
 
 
@@ -80,7 +80,10 @@ Pairs = list[tuple[Node, Node, Flow]]
 
 
 def draw_wide(balance: BookBalance) -> Drawing:
-    """Return the picture in columns: sources, stock, baths, rinses, waste, where it went."""
+    """Return the picture in columns: sources, stock, baths, rinses, waste, where it went.
+
+    A flow that skips a column runs below all boxes, in a lane of its own: it must not seem to pass through a vessel.
+    """
     pairs = _pairs(balance)
     columns: dict[int, list[Node]] = defaultdict(list)
     for node in _nodes(pairs):
@@ -91,8 +94,19 @@ def draw_wide(balance: BookBalance) -> Drawing:
         top = (high - len(columns[key]) * ROW) // 2 + (ROW - BOX_HEIGHT) // 2
         for row, node in enumerate(columns[key]):
             boxes[node] = Box(node, number * (BOX_WIDTH + GAP), top + row * ROW, BOX_WIDTH, BOX_HEIGHT)
-    lines = [_across(boxes[one], boxes[other], flow, _thickness(flow, pairs)) for one, other, flow in pairs]
-    return Drawing(max(0, len(columns) * (BOX_WIDTH + GAP) - GAP), high, tuple(boxes.values()), tuple(lines))
+    lines, lane = [], float(high)
+    for one, other, flow in pairs:
+        width, start, end = _thickness(flow, pairs), boxes[one], boxes[other]
+        if start.x == end.x:
+            lines.append(_arc(start, end, flow, width, GAP * 0.8))
+        elif end.x - start.x == BOX_WIDTH + GAP:
+            lines.append(_across(start, end, flow, width))
+        else:
+            lane += width / 2 + LANE
+            lines.append(_below(start, end, flow, width, lane))
+            lane += width / 2
+    wide = max(0, len(columns) * (BOX_WIDTH + GAP) - GAP)
+    return Drawing(wide, int(lane + LANE), tuple(boxes.values()), tuple(lines))
 
 
 def draw_narrow(balance: BookBalance) -> Drawing:
@@ -100,7 +114,7 @@ def draw_narrow(balance: BookBalance) -> Drawing:
     pairs = _pairs(balance)
     nodes = _nodes(pairs)
     boxes = {node: Box(node, 0, row * LIST_ROW + 6, LIST_BOX, BOX_HEIGHT) for row, node in enumerate(nodes)}
-    lines = [_arc(boxes[one], boxes[other], flow, _thickness(flow, pairs) / 2) for one, other, flow in pairs]
+    lines = [_list_arc(boxes[one], boxes[other], flow, _thickness(flow, pairs) / 2) for one, other, flow in pairs]
     return Drawing(LIST_WIDTH, len(nodes) * LIST_ROW, tuple(boxes.values()), tuple(lines))
 
 
@@ -134,24 +148,47 @@ def _thickness(flow: Flow, pairs: Pairs) -> float:
 
 
 def _across(one: Box, other: Box, flow: Flow, width: float) -> Line:
-    """Draw from the right side of a box to the left side of another; backwards it bends out and in."""
-    head = max(7.0, width / 2 + 3)
-    x1, y1 = one.x + one.width, one.y + one.height / 2
-    x2, y2 = other.x - head, other.y + other.height / 2
-    bend = max(GAP / 2, (x2 - x1) / 2) if x2 > x1 else GAP
+    """Draw from the right side of a box to the left side of one in the next column."""
+    x1, y1, x2, y2, head = _ends(one, other, width)
+    bend = (x2 - x1) / 2
     path = f"M{x1} {y1:.1f}C{x1 + bend:.1f} {y1:.1f} {x2 - bend:.1f} {y2:.1f} {x2:.1f} {y2:.1f}"
-    return _line(path, f"M{other.x} {y2:.1f}L{x2:.1f} {y2 - head:.1f}V{y2 + head:.1f}Z", flow, width)
+    return _line(path, _head(other.x, x2, y2, head), flow, width)
 
 
-def _arc(one: Box, other: Box, flow: Flow, width: float) -> Line:
-    """Draw from the right side of a box to the right side of another, the farther the wider."""
+def _below(one: Box, other: Box, flow: Flow, width: float, lane: float) -> Line:
+    """Draw down beside the first box, along a lane below all boxes, and up before the second."""
+    x1, y1, x2, y2, head = _ends(one, other, width)
+    turn = GAP / 2
+    path = (
+        f"M{x1} {y1:.1f}C{x1 + turn:.1f} {y1:.1f} {x1 + turn / 2:.1f} {lane:.1f} {x1 + turn:.1f} {lane:.1f}"
+        f"L{x2 - turn:.1f} {lane:.1f}C{x2 - turn / 2:.1f} {lane:.1f} {x2 - turn:.1f} {y2:.1f} {x2:.1f} {y2:.1f}"
+    )
+    return _line(path, _head(other.x, x2, y2, head), flow, width)
+
+
+def _ends(one: Box, other: Box, width: float) -> tuple[int, float, float, float, float]:
+    head = max(7.0, width / 2 + 3)
+    return one.x + one.width, one.y + one.height / 2, other.x - head, other.y + other.height / 2, head
+
+
+def _list_arc(one: Box, other: Box, flow: Flow, width: float) -> Line:
+    reach = min(LIST_WIDTH - LIST_BOX - width, 40 + abs(other.y - one.y) * 0.45)
+    return _arc(one, other, flow, width, reach)
+
+
+def _arc(one: Box, other: Box, flow: Flow, width: float, reach: float) -> Line:
+    """Draw from the right side of a box to the right side of another one above or below."""
     head = max(6.0, width / 2 + 3)
     down = other.y > one.y
     x, y1 = one.x + one.width, one.y + one.height * (0.7 if down else 0.3)
     y2 = other.y + other.height * (0.3 if down else 0.7)
-    reach = min(LIST_WIDTH - LIST_BOX - width, 40 + abs(y2 - y1) * 0.45) * 4 / 3
-    path = f"M{x} {y1:.1f}C{x + reach:.1f} {y1:.1f} {x + reach:.1f} {y2:.1f} {x + head:.1f} {y2:.1f}"
-    return _line(path, f"M{x} {y2:.1f}L{x + head:.1f} {y2 - head:.1f}V{y2 + head:.1f}Z", flow, width)
+    bend = x + reach * 4 / 3  # a curve reaches three quarters of the way to its handles
+    path = f"M{x} {y1:.1f}C{bend:.1f} {y1:.1f} {bend:.1f} {y2:.1f} {x + head:.1f} {y2:.1f}"
+    return _line(path, _head(x, x + head, y2, head), flow, width)
+
+
+def _head(tip: int, base: float, y: float, size: float) -> str:
+    return f"M{tip} {y:.1f}L{base:.1f} {y - size:.1f}V{y + size:.1f}Z"
 
 
 def _line(path: str, head: str, flow: Flow, width: float) -> Line:

@@ -13,10 +13,9 @@ from chemicals.books.events import Event, Measured
 from chemicals.journal.models import Entry
 from chemicals.journal.selectors import find_cancelled, read_event
 from chemicals.ledger.selectors import list_vessels_for
-from chemicals.science.quantity import show
 from chemicals.science.units import find_elsewhere
 from chemicals.workshop.models import Membership
-from compliance.web.words import Ends
+from compliance.web.words import Ends, in_one_unit
 
 LABELS = {
     "vessel": gettext_lazy("vessel"),
@@ -88,7 +87,8 @@ def summarise(entry: Entry, event: Event, ends: Ends) -> str:
             "number": entry.about.sequence if entry.about else "",
             "reason": event.reason,
         }
-    places = list(dict.fromkeys(ends.name(vessel) for vessel in event.vessels()))
+    vessels = [step.tank for step in event.route] if isinstance(event, events.Run) else event.vessels()
+    places = list(dict.fromkeys(ends.name(vessel) for vessel in vessels))
     joint = " → " if isinstance(event, events.Move | events.Run) else ", "
     figures = [value.typed for name in _names(event) if isinstance(value := getattr(event, name), Measured)]
     return ": ".join(filter(None, (joint.join(places), ", ".join(figures))))
@@ -109,10 +109,18 @@ def _tell(name: str, value: Any, ends: Ends) -> Iterator[tuple[str, str]]:
         for inner, part in value.items():
             yield from _tell(inner, part, ends)
     elif isinstance(value, list):
-        for part in value:
-            yield from _tell(name, part, ends)
+        for number, part in enumerate(value, 1):
+            yield f"{label} {number}", _tell_one(name, part, ends)
     elif value not in (None, ""):
         yield label, _figure(name, value) if isinstance(value, dict) else _word(value, ends)
+
+
+def _tell_one(name: str, part: Any, ends: Ends) -> str:
+    """Return one of several in one line, the words before the figures: "Copper sulfate tub, 4 kg"."""
+    if not isinstance(part, dict) or _is_figure(part):
+        return ", ".join(text for _label, text in _tell(name, part, ends))
+    ordered = sorted(part.items(), key=lambda item: isinstance(item[1], dict))
+    return ", ".join(text for inner, value in ordered for _label, text in _tell(inner, value, ends))
 
 
 def _is_figure(value: Mapping[str, Any]) -> bool:
@@ -130,7 +138,7 @@ def _figure(name: str, value: Mapping[str, Any]) -> str:
 
 
 def _shown(base: int, sd: int | None, dimension: str) -> str:
-    return f"{show(base, dimension)} ± {show(sd, dimension, digits=2)}" if sd else show(base, dimension)
+    return in_one_unit(base, sd or 0, dimension)
 
 
 def _word(value: Any, ends: Ends) -> str:

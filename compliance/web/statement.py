@@ -59,7 +59,9 @@ def verdict_of(balance: BookBalance) -> str:
     net, visible = balance.unaccounted, balance.smallest_visible
     metal = balance.component
     if net.value is None or visible is None:
-        return _("Unknown: something in this balance is unknown, so nothing can be said about losses.")
+        places = ", ".join(row.vessel.name for row in balance.vessels if None in (row.opening.value, row.closing.value))
+        text = _("Unknown, so nothing can be said about losses: %(places)s. An accepted analysis settles it.")
+        return text % {"places": places or _("an unknown amount went out")}
     if events.UNACCOUNTED not in balance.boundaries:
         return _("Nothing was measured against the books in this period, so no loss could have shown.")
     if abs(net.value) > 1.96 * net.sd and net.value:

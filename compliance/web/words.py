@@ -3,6 +3,7 @@
 from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
 from datetime import datetime
+from decimal import ROUND_UP, Context, Decimal
 from uuid import UUID
 
 from django.utils import timezone
@@ -16,6 +17,7 @@ from chemicals.ledger.models import Finding as FoundBefore
 from chemicals.process.inputs import INPUTS
 from chemicals.science.formula import element_name
 from chemicals.science.quantity import show
+from chemicals.science.units import find, to_base
 
 BOUNDARIES = {
     events.OPENING: gettext_lazy("opening"),
@@ -68,24 +70,28 @@ def amount(base: int | None, component: str) -> str:
     return str(UNKNOWN) if base is None else show(base, dimension_of(component))
 
 
-def uncertainty(sd: int, component: str) -> str:
-    """Return "± 0.02 g", or nothing where none is known."""
-    return f"± {show(sd, dimension_of(component), digits=2)}" if sd else ""
-
-
 def with_uncertainty(base: int | None, sd: int, component: str) -> str:
-    """Return an amount and its standard uncertainty in one."""
-    return (
-        amount(base, component) if base is None else f"{amount(base, component)} {uncertainty(sd, component)}".strip()
-    )
+    """Return an amount and its standard uncertainty: "0.83 ± 0.02 g"."""
+    return str(UNKNOWN) if base is None else in_one_unit(base, sd, dimension_of(component))
 
 
-def signed(base: int | None, component: str) -> str:
+def in_one_unit(base: int, sd: int, dimension: str) -> str:
+    """Return base units of any dimension with their standard uncertainty, both in the unit that suits the amount."""
+    shown = show(base, dimension)
+    number, _space, word = shown.partition(" ")
+    unit = find(word, dimension)
+    if not sd or unit is None:
+        return shown
+    doubt = Context(prec=2, rounding=ROUND_UP).plus(Decimal(sd) / to_base(Decimal(1), unit, dimension))
+    return f"{number} ± {doubt:f} {word}"
+
+
+def signed(base: int | None, sd: int, component: str) -> str:
     """Return an amount with its sign, for what came (+) and what left (−)."""
     if base is None:
         return str(UNKNOWN)
     sign = "+" if base > 0 else "−" if base < 0 else ""
-    return f"{sign}{show(abs(base), dimension_of(component))}"
+    return f"{sign}{with_uncertainty(abs(base), sd, component)}"
 
 
 def dimension_of(component: str) -> str:
@@ -136,7 +142,7 @@ class Ends:
 
 def movement(transfer: Transfer, ends: Ends) -> str:
     """Return a movement as a sentence."""
-    return _("%(amount)s %(what)s: from %(source)s to %(target)s, %(basis)s.") % {
+    return _("%(amount)s %(what)s goes from %(source)s to %(target)s, %(basis)s.") % {
         "amount": with_uncertainty(transfer.amount, transfer.sd, transfer.component),
         "what": component_name(transfer.component),
         "source": ends.name(transfer.source),
@@ -145,17 +151,23 @@ def movement(transfer: Transfer, ends: Ends) -> str:
     }
 
 
-def movements(transfers: Iterable[Transfer], ends: Ends) -> list[str]:
-    """Return movements as sentences: metals first, then liquid, then weight."""
-    return [movement(transfer, ends) for transfer in sorted(transfers, key=lambda each: order(each.component))]
+@dataclass(frozen=True)
+class Follows:
+    """What follows from an entry as sentences: of metals, and of liquid and weight, which go along."""
+
+    metals: list[str]
+    others: list[str]
+
+    @classmethod
+    def of(cls, transfers: Sequence[Transfer], ends: Ends) -> "Follows":
+        """Return movements as sentences."""
+        others = {events.VOLUME: 0, events.GROSS_MASS: 1}
+        along = sorted((t for t in transfers if t.component in others), key=lambda t: others[t.component])
+        metals = [movement(t, ends) for t in transfers if t.component not in others]
+        return cls(metals, [movement(t, ends) for t in along])
 
 
 def finding(found: Finding | FoundBefore, ends: Ends) -> str:
     """Return a finding as a sentence that says where and of what."""
     places = list(dict.fromkeys(ends.name(end) for end in (found.source, found.target) if end))
     return f"{' → '.join(places)}, {component_name(found.component)}: {_(FINDINGS[found.code])}"
-
-
-def order(component: str) -> tuple[int, str]:
-    """Return the place of a component in a list: metals first, then liquid, then weight."""
-    return {events.VOLUME: 1, events.GROSS_MASS: 2}.get(component, 0), component

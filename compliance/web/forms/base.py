@@ -80,7 +80,7 @@ class Shown(Quiet):
     order: Sequence[str] = ()
 
     @property
-    def parts(self) -> Iterator[BoundField | Rows]:
+    def all_parts(self) -> Iterator[BoundField | Rows]:
         """Yield visible fields and rows in the order in which they were added."""
         names = [*self.order, *(name for name in self.fields if name not in self.order)]
         for name in names:
@@ -90,14 +90,14 @@ class Shown(Quiet):
                 yield self[name]
 
     @property
-    def problems(self) -> list[Problem]:
+    def all_problems(self) -> list[Problem]:
         """Return every error with the field to jump to."""
         if not self.is_bound:
             return []
         found = [Problem("main", "", str(message)) for message in self.non_field_errors()]
         for bound in self.hidden_fields():
             found += [Problem("main", bound.label, str(message)) for message in bound.errors]
-        for part in self.parts:
+        for part in self.all_parts:
             if isinstance(part, Rows):
                 for number, form in enumerate(part.forms, 1):
                     found += _problems(form, f"{part.label} {number}: ")

@@ -20,6 +20,11 @@ class SignInForm(Shown, AuthenticationForm):
         "inactive": _("This person is no longer active. Ask an owner of the workshop."),
     }
 
+    def __init__(self, *args: Any, **kwargs: Any) -> None:
+        super().__init__(*args, **kwargs)
+        for field in self.fields.values():
+            field.error_messages["required"] = REQUIRED
+
 
 class NewPasswordForm(Shown, SetPasswordForm):  # type: ignore[type-arg]  # generic in its stubs only
     """A new password, twice."""

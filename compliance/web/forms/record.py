@@ -90,7 +90,7 @@ class RecordForm(WebForm):
     def understood(self) -> list[tuple[str, str]]:
         """Return what was written as it was understood, in the order of the form."""
         said = []
-        for part in self.parts:
+        for part in self.all_parts:
             if isinstance(part, Rows):
                 for form in part.filled:
                     texts = [_understood(form, name) for name in form.fields]

@@ -6,11 +6,13 @@ from django import template
 from django.utils.html import format_html
 from django.utils.safestring import SafeString
 
+from chemicals.balance.selectors import Amount
 from chemicals.journal.models import Entry
 from chemicals.ledger.selectors import Held, HeldMetal
 from chemicals.science.quantity import show
 from compliance.documents.twin import symbol
 from compliance.web import words
+from compliance.web.statement import Line
 
 register = template.Library()
 
@@ -54,8 +56,7 @@ def per_litre(row: HeldMetal) -> str:
     """Show a concentration with its uncertainty; nothing where there is none."""
     if row.concentration is None:
         return ""
-    text = show(row.concentration, "concentration")
-    return f"{text} ± {show(row.concentration_sd, 'concentration', digits=2)}" if row.concentration_sd else text
+    return words.in_one_unit(row.concentration, row.concentration_sd, "concentration")
 
 
 @register.filter
@@ -86,15 +87,15 @@ register.filter("pictogram", symbol)
 
 
 @register.filter
-def signed_mass(micrograms: int | None) -> str:
-    """Show a mass with its sign."""
-    return words.signed(micrograms, "gross mass")
+def figures(row: Amount | Line) -> str:
+    """Show a mass with its uncertainty."""
+    return words.with_uncertainty(row.value, row.sd, "gross mass")
 
 
 @register.filter
-def doubt(micrograms: int) -> str:
-    """Show a standard uncertainty of a mass."""
-    return show(micrograms, "mass", digits=2)
+def signed(row: Line) -> str:
+    """Show a mass with its sign and uncertainty."""
+    return words.signed(row.value, row.sd, "gross mass")
 
 
 @register.filter

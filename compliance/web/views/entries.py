@@ -68,7 +68,7 @@ def entry(request: HttpRequest, member: Membership, uuid: UUID) -> HttpResponse:
         "used": tell(body.payload["used"], ends),
         "clearance": body.clearance,
         "attachments": body.attachments,
-        "follows": words.movements(list_transfers_of(found), ends),
+        "follows": words.Follows.of(list_transfers_of(found), ends),
         "findings": [words.finding(each, ends) for each in findings],
         "mentions": mentions,
         "cancelled_by": cancelled_by,

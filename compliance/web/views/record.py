@@ -79,7 +79,7 @@ def _preview(request: HttpRequest, form: RecordForm, status: int = 200) -> HttpR
         "form": form,
         "verdict": verdict,
         "first_steps": FIRST_STEPS,
-        "follows": words.movements(folded.transfers, ends),
+        "follows": words.Follows.of(folded.transfers, ends),
         "findings": [words.finding(each, ends) for each in folded.findings],
         "pairs": hidden_pairs(request.POST, without=("csrfmiddlewaretoken", "step", "more")),
     }
