@@ -1,14 +1,13 @@
 """The demo: an invented workshop whose weeks show the whole path, in books that close."""
 
-import io
+from collections.abc import Iterator
 from datetime import UTC, datetime, timedelta
-from pathlib import Path
 
 import pytest
-from django.core.management import call_command
-from django.core.management.base import CommandError
-from django_scopes import scope, scopes_disabled
-from pytest_django import Settings
+from django.db import transaction
+from django.test import override_settings
+from django_scopes import scope
+from pytest_django import DjangoDbBlocker
 
 from chemicals.balance.selectors import BookBalance, get_book_balance, list_metals_for
 from chemicals.books import events
@@ -20,26 +19,29 @@ from chemicals.ledger.models import VesselKind
 from chemicals.ledger.selectors import list_findings_for, list_held, list_vessels_for
 from chemicals.process.inputs import INPUTS
 from chemicals.register.selectors import list_current_revisions_for
-from chemicals.workshop.models import Membership, Role, User, Workshop
+from chemicals.workshop.models import Membership, Role, User
 from compliance.documents.models import Paper, PaperKind
 from compliance.documents.selectors import read_data, read_pdf
-from compliance.dropoffs import services as dropoffs
 from compliance.dropoffs.models import DropOff, State
-from compliance.ops.demo import DemoUser, NotEmptyError, load_demo
+from compliance.ops.demo import DemoUser, load_demo
 from compliance.ops.demo_reader import read_amount, read_input
 from compliance.ops.verify import find_loose_ends, verify_workshops
 
 G = 10**6
 
 
-@pytest.fixture(autouse=True)
-def attachments_folder(tmp_path: Path, settings: Settings) -> None:
-    settings.ATTACHMENTS = tmp_path
+NOW = datetime(2026, 3, 2, 15, 0, tzinfo=UTC)
 
 
-@pytest.fixture
-def people(db: None, now: datetime) -> list[DemoUser]:
-    return load_demo(now=now)
+@pytest.fixture(scope="module")
+def people(
+    django_db_setup: None, django_db_blocker: DjangoDbBlocker, tmp_path_factory: pytest.TempPathFactory
+) -> Iterator[list[DemoUser]]:
+    """Load once: these tests only read."""
+    folder = tmp_path_factory.mktemp("attachments")
+    with django_db_blocker.unblock(), override_settings(ATTACHMENTS=folder), transaction.atomic():
+        yield load_demo(now=NOW)
+        transaction.set_rollback(True)
 
 
 @pytest.fixture
@@ -53,8 +55,8 @@ def entries(member: Membership, kind: str = "") -> list[Entry]:
         return list(rows.filter(kind=kind) if kind else rows)
 
 
-def balance(member: Membership, metal: str, now: datetime) -> BookBalance:
-    return get_book_balance(member, metal, now - timedelta(days=90), now)
+def balance(member: Membership, metal: str) -> BookBalance:
+    return get_book_balance(member, metal, NOW - timedelta(days=90), NOW)
 
 
 def test_three_people_can_sign_in_with_fresh_passwords(people: list[DemoUser]) -> None:
@@ -87,23 +89,13 @@ def test_every_kind_of_the_path_happened(member: Membership) -> None:
     assert len(INPUTS) == len(events.EVENTS) - 1  # papers have no form
 
 
-def test_its_history_is_of_the_weeks_before_and_in_order(member: Membership, now: datetime) -> None:
+def test_its_history_is_of_the_weeks_before_and_in_order(member: Membership) -> None:
     written = entries(member)
     recorded = [entry.recorded_at for entry in written]
     assert recorded == sorted(recorded)
-    assert now - timedelta(days=36) < recorded[0] < now - timedelta(days=28)
-    assert recorded[-1] < now
+    assert NOW - timedelta(days=36) < recorded[0] < NOW - timedelta(days=28)
+    assert recorded[-1] < NOW
     assert member.workshop.created_at <= recorded[0]
-
-
-@pytest.mark.django_db
-@pytest.mark.parametrize("hour", [0, 23])
-def test_nothing_lies_in_the_future_at_any_hour(hour: int) -> None:
-    midnight = datetime(2026, 3, 29, hour, 30, tzinfo=UTC)  # summer time begins on this day in Berlin
-    load_demo(now=midnight)
-    with scopes_disabled():
-        assert not Entry.objects.filter(recorded_at__gt=midnight).exists()
-        assert not Entry.objects.filter(occurred_at__gt=midnight).exists()
 
 
 def test_one_mistake_was_cancelled_and_one_entry_came_late(member: Membership) -> None:
@@ -153,8 +145,8 @@ def test_the_weight_of_the_drum_is_what_the_books_say(member: Membership) -> Non
     assert abs(event.gross.base - 550 * G - booked) < 30 * G
 
 
-def test_the_copper_balance_closes_nearly(member: Membership, now: datetime) -> None:
-    copper = balance(member, "Cu", now)
+def test_the_copper_balance_closes_nearly(member: Membership) -> None:
+    copper = balance(member, "Cu")
     outside = sum(amount.value or 0 for amount in copper.boundaries.values())
     assert (copper.opening.value or 0) + outside == copper.closing.value
     unaccounted, received = copper.unaccounted.value or 0, copper.boundaries["supplier"].value or 0
@@ -165,8 +157,8 @@ def test_the_copper_balance_closes_nearly(member: Membership, now: datetime) -> 
     assert -10 * G < (copper.boundaries["receiver"].value or 0) < -3 * G
 
 
-def test_the_gold_balance_closes(member: Membership, now: datetime) -> None:
-    gold = balance(member, "Au", now)
+def test_the_gold_balance_closes(member: Membership) -> None:
+    gold = balance(member, "Au")
     outside = sum(amount.value or 0 for amount in gold.boundaries.values())
     assert outside == gold.closing.value
     assert -G < (gold.boundaries["parts"].value or 0) < -G // 10
@@ -194,38 +186,6 @@ def test_its_books_are_proved_and_without_a_finding(member: Membership) -> None:
     assert find_loose_ends() == []
     assert [finding.code for finding in list_findings_for(member)] == []
     assert FINDINGS
-
-
-def test_a_database_in_use_is_left_alone(owner: Membership, now: datetime) -> None:
-    with pytest.raises(NotEmptyError, match="Name an empty folder in GRAMLEDGER_DATA"):
-        load_demo(now=now)
-    assert list(Workshop.objects.all()) == [owner.workshop]
-    with pytest.raises(CommandError, match="Name an empty folder"):
-        call_command("demo")
-
-
-@pytest.mark.django_db
-def test_a_failure_on_the_way_leaves_nothing(now: datetime, monkeypatch: pytest.MonkeyPatch) -> None:
-    def fail(*args: object, **kwargs: object) -> None:
-        raise RuntimeError("the light went out")
-
-    monkeypatch.setattr(dropoffs, "hand_over", fail)
-    with pytest.raises(RuntimeError, match="light"):
-        load_demo(now=now)
-    assert not User.objects.exists()
-    assert not Workshop.objects.exists()
-
-
-@pytest.mark.django_db
-def test_the_command_prints_who_can_sign_in() -> None:
-    out = io.StringIO()
-    call_command("demo", stdout=out)
-    rows = [line.split("\t") for line in out.getvalue().splitlines()]
-    assert [(email, role) for email, _, role in rows] == [
-        ("ada@demo.example", "owner"),
-        ("ben@demo.example", "worker"),
-        ("cleo@demo.example", "observer"),
-    ]
 
 
 def test_an_amount_is_read_in_the_dimension_that_fits() -> None:
