@@ -1,9 +1,26 @@
 """The addresses of the API. Lists and things end in a slash; verbs and files do not."""
 
-from django.urls import URLPattern, include, path
+from django.urls import URLPattern, include, path, register_converter
 
 from compliance.api.views import calculations, doors, entries, papers, register, vessels, waste, workshop
 from compliance.api.views.description import SchemaView
+
+
+class Anything:
+    """The rest of an address, line breaks included: nothing under the API is answered with a page."""
+
+    regex = r"[\s\S]+"
+
+    def to_python(self, value: str) -> str:
+        """Return it as it is."""
+        return value
+
+    def to_url(self, value: str) -> str:
+        """Return it as it is."""
+        return value
+
+
+register_converter(Anything, "anything")
 
 WORKSHOP: list[URLPattern] = [
     path("", workshop.WorkshopDetailView.as_view(), name="api-workshop"),
@@ -57,5 +74,5 @@ urlpatterns = [
         for name, view in calculations.VIEWS.items()
     ),
     path("", workshop.NowhereView.as_view(), name="api-root"),
-    path("<path:rest>", workshop.NowhereView.as_view(), name="api-nowhere"),
+    path("<anything:rest>", workshop.NowhereView.as_view(), name="api-nowhere"),
 ]

@@ -61,6 +61,7 @@ def test_what_is_not_there_is_said_in_the_same_shape(api: Caller) -> None:
     assert "slash" in errors_of(api.get("vessels"), 404)[""]
     assert "slash" in errors_of(api.get("/nowhere/at/all"), 404)[""]
     assert "slash" in errors_of(api.get("/"), 404)[""]
+    assert "slash" in errors_of(api.get("vessels/line%0Abreak/"), 404)[""]
 
 
 def test_every_answer_is_json_whatever_is_accepted(api: Caller) -> None:

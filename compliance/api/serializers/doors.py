@@ -22,6 +22,16 @@ from compliance.api.serializers.entries import FindingShape, PayloadShape
 MOST_ROWS = 100
 
 
+REFERENCES = {
+    "product": _("a product"),
+    "rack type": _("a rack type"),
+    "route": _("a route"),
+    "analysis": _("the entry of an analysis"),
+    "entry": _("an entry"),
+}
+"""What a reference may name, in words."""
+
+
 class Door(Strict):
     """What may be said of every verb, besides its own fields."""
 
@@ -57,9 +67,21 @@ def _build_rows(row: type[Any]) -> type[Strict]:
 
 def _build_field(kind: kinds.FieldKind) -> Any:
     """Return the field that takes what a description asks for."""
-    text = format_lazy("{}. {}", kind.label, kind.help) if kind.help else kind.label
-    options: dict[str, Any] = {"required": kind.required, "allow_null": not kind.required, "help_text": text}
+    options: dict[str, Any] = {"required": kind.required, "allow_null": not kind.required}
+    options["help_text"] = format_lazy("{} {}", _name(kind), kind.help) if kind.help else _name(kind)
     return BUILDERS[type(kind)](kind, options)
+
+
+def _name(kind: kinds.FieldKind) -> kinds.Text:
+    """Return what a field takes: its label, and of vessels, things and amounts also which."""
+    if isinstance(kind, kinds.VesselField):
+        which = format_lazy(", ".join(["{}"] * len(kind.kinds)), *(each.label for each in kind.kinds))
+        return format_lazy("{}: {} ({}).", kind.label, _("a vessel"), which)
+    if isinstance(kind, kinds.ReferenceField):
+        return format_lazy("{}: {}.", kind.label, REFERENCES[kind.to])
+    if isinstance(kind, kinds.AmountField):
+        return format_lazy('{}, {} "{}".', kind.label, _("such as"), kind.example)
+    return format_lazy("{}.", kind.label)
 
 
 BUILDERS: Mapping[type[kinds.FieldKind], Callable[[Any, dict[str, Any]], Any]] = {
