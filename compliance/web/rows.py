@@ -91,7 +91,9 @@ def summarise(entry: Entry, event: Event, ends: Ends) -> str:
     places = list(dict.fromkeys(ends.name(vessel) for vessel in vessels))
     joint = " → " if isinstance(event, events.Move | events.Run) else ", "
     figures = [value.typed for name in _names(event) if isinstance(value := getattr(event, name), Measured)]
-    return ": ".join(filter(None, (joint.join(places), ", ".join(figures))))
+    told = [event.parts] if isinstance(event, events.Run) and event.parts else []
+    told += [event.component] if isinstance(event, events.Analysis | events.Acceptance) else []
+    return ": ".join(filter(None, (joint.join(places), ", ".join([*told, *figures]))))
 
 
 def _names(event: Event) -> list[str]:

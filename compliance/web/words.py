@@ -3,7 +3,7 @@
 from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
 from datetime import datetime
-from decimal import ROUND_UP, Context, Decimal
+from decimal import Context, Decimal
 from uuid import UUID
 
 from django.utils import timezone
@@ -82,7 +82,7 @@ def in_one_unit(base: int, sd: int, dimension: str) -> str:
     unit = find(word, dimension)
     if not sd or unit is None:
         return shown
-    doubt = Context(prec=2, rounding=ROUND_UP).plus(Decimal(sd) / to_base(Decimal(1), unit, dimension))
+    doubt = Context(prec=2).plus(Decimal(sd) / to_base(Decimal(1), unit, dimension))
     return f"{number} ± {doubt:f} {word}"
 
 
