@@ -26,6 +26,8 @@ SEWER, SAMPLE, SPILL, RECEIVER, REACTION, UNACCOUNTED = (
 BOUNDARIES = frozenset(
     {OPENING, SUPPLIER, WATER_SUPPLY, PARTS, AIR, SEWER, SAMPLE, SPILL, RECEIVER, REACTION, UNACCOUNTED}
 )
+UNKNOWN_LIQUID = "unknown/"
+"""Begins the key by which a vessel remembers liquid that nobody can name; the vessel it was first met in follows."""
 VOLUME, GROSS_MASS = "volume", "gross mass"
 """The two components that are not substances: nanolitres and micrograms."""
 

@@ -15,7 +15,7 @@ from chemicals.process import inputs
 from chemicals.process.build_run import build_run
 from chemicals.process.draft import WATER, Draft, by_dimension, measured
 from chemicals.process.models import Tank
-from chemicals.register.models import Product
+from chemicals.register.models import Product, ProductRevision
 from chemicals.register.selectors import build_recipe, get_current_revision, recipe_key
 from chemicals.science.formula import FormulaError, metal_fraction
 from chemicals.science.quantity import Quantity
@@ -67,8 +67,16 @@ def _build_opening(draft: Draft, now: datetime, data: inputs.OpeningInput) -> Ev
         mass=measured(data.mass),
         held=tuple(row for row in held if row is not None),
         density=None if data.volume is None else ASSUMED_DENSITY,
-        poured=() if revision is None else (recipe_key(revision),),
+        poured=_poured(data, vessel, revision),
     )
+
+
+def _poured(data: inputs.OpeningInput, vessel: Vessel, revision: ProductRevision | None) -> tuple[str, ...]:
+    """Return what the vessel shall remember: the product, nothing for mere water, else that nobody can name it."""
+    if revision is not None:
+        return (recipe_key(revision),)
+    water = data.complete and not data.held
+    return () if water else (events.UNKNOWN_LIQUID + str(vessel.uuid),)
 
 
 def _held(draft: Draft, number: int, row: inputs.HeldRow, volume: Quantity | None) -> events.Held | None:

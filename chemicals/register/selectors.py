@@ -6,7 +6,7 @@ from uuid import UUID
 from django.db.models import OuterRef, Prefetch, QuerySet, Subquery
 from django_scopes import scope, scopes_disabled
 
-from chemicals.books.events import Figure, Recipe, Share
+from chemicals.books.events import UNKNOWN_LIQUID, Figure, Recipe, Share
 from chemicals.register.models import CompositionLine, Form, Product, ProductRevision, Substance
 from chemicals.science.formula import METALS, mass_fractions
 from chemicals.workshop.errors import NotFoundError
@@ -107,6 +107,7 @@ def list_reactivity(workshop: Workshop, keys: frozenset[str]) -> dict[str, list[
     """Return what each poured-in product revision reacts as, by recipe key. One query."""
     with scopes_disabled():
         revisions = ProductRevision.objects.filter(
-            product__workshop=workshop, product__uuid__in={UUID(key.partition("/")[0]) for key in keys}
+            product__workshop=workshop,
+            product__uuid__in={UUID(key.partition("/")[0]) for key in keys if not key.startswith(UNKNOWN_LIQUID)},
         ).select_related("product")
         return {recipe_key(row): list(row.reactivity) for row in revisions if recipe_key(row) in keys}

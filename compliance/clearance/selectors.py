@@ -3,6 +3,7 @@
 from collections.abc import Iterator
 from dataclasses import dataclass
 from datetime import datetime
+from itertools import pairwise
 
 from django_scopes import scope
 
@@ -14,7 +15,7 @@ from chemicals.ledger.selectors import read_memory
 from chemicals.process.inputs import Input
 from chemicals.process.selectors import Trial, try_out
 from chemicals.register.selectors import list_reactivity
-from chemicals.science.reactivity import UNKNOWN, find_dangers
+from chemicals.science.reactivity import DANGERS, UNKNOWN, Danger, find_dangers
 from chemicals.workshop.models import Membership, Workshop
 from compliance.waste.selectors import get_declared_reactivity
 
@@ -49,7 +50,7 @@ def find_reasons(workshop: Workshop, event: events.Event) -> Iterator[str]:
         vessels = {str(vessel.uuid): vessel for vessel in rows}
     for one, other in _meetings(event):
         if one not in BOUNDARIES:
-            for danger in find_dangers(react_as(vessels[one]), react_as(vessels[other])):
+            for danger in find_dangers_between(vessels[one], vessels[other]):
                 yield (
                     f"{vessels[one].name} ({danger.first}) and {vessels[other].name} ({danger.second}) must never "
                     f"meet, either way round: {danger.danger}."
@@ -62,6 +63,8 @@ def _meetings(event: events.Event) -> Iterator[tuple[str, str]]:
         yield event.source, event.target
     elif isinstance(event, events.TopUp):
         yield event.source, event.tank
+    elif isinstance(event, events.Run):
+        yield from pairwise(step.tank for step in event.route)  # a load drags out of one tank into the next
     elif isinstance(event, events.MakeUp):
         stocks = [item.stock for item in event.ingredients]
         for number, stock in enumerate(stocks):
@@ -69,14 +72,33 @@ def _meetings(event: events.Event) -> Iterator[tuple[str, str]]:
             yield from ((stock, other) for other in stocks[:number] if other != stock)
 
 
-def react_as(vessel: Vessel) -> frozenset[str]:
-    """Return what a vessel may react as: everything poured in since last empty, not today's balance.
+def find_dangers_between(one: Vessel, other: Vessel) -> list[Danger]:
+    """Return every danger of bringing the contents of two vessels together, each once.
 
-    A vessel with an incomplete list into which nothing known was poured may hold anything.
+    A liquid that nobody can name counts as an acid and as a cyanide, but not against the rinse that holds nothing
+    else than it does.
     """
-    incomplete, poured = read_memory(vessel)
+    left, right = read_marks(one), read_marks(other)
+    own_rinse = left.keys() <= right.keys() or right.keys() <= left.keys()
+    found = {
+        danger
+        for key, kinds in left.items()
+        for other_key, other_kinds in right.items()
+        if key != other_key and not (own_rinse and UNKNOWN in kinds | other_kinds)
+        for danger in find_dangers(kinds, other_kinds)
+    }
+    return sorted(found, key=DANGERS.index)
+
+
+def react_as(vessel: Vessel) -> frozenset[str]:
+    """Return what a vessel may react as: everything poured in since last empty, not today's balance."""
+    return frozenset().union(*read_marks(vessel).values())
+
+
+def read_marks(vessel: Vessel) -> dict[str, frozenset[str]]:
+    """Return what each thing poured in reacts as, and what the stream of a waste container may react as."""
+    _, poured = read_memory(vessel)
     known = list_reactivity(vessel.workshop, poured)
-    kinds = {kind for key in poured for kind in known.get(key, [UNKNOWN])}
-    if incomplete and not poured:
-        kinds.add(UNKNOWN)
-    return frozenset(kinds | get_declared_reactivity(vessel))
+    marks = {key: frozenset(known.get(key, [UNKNOWN])) for key in poured}
+    declared = get_declared_reactivity(vessel)
+    return {**marks, f"stream/{vessel.uuid}": declared} if declared else marks

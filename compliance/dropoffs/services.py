@@ -1,6 +1,7 @@
 """Writes about receivers and drop-offs: draft, packed with a manifest, handed over."""
 
 from datetime import date, datetime
+from itertools import combinations
 from uuid import uuid5
 
 from django.db import transaction
@@ -9,11 +10,10 @@ from django_scopes import scope
 from chemicals.books.occurred import Occurred
 from chemicals.process.inputs import HandOverInput
 from chemicals.science.quantity import Quantity, parse, show
-from chemicals.science.reactivity import find_dangers
 from chemicals.workshop.errors import ConflictError, FieldError, InvalidInputError
 from chemicals.workshop.models import Membership
 from chemicals.workshop.permissions import require_same_workshop, require_writer
-from compliance.clearance.selectors import react_as
+from compliance.clearance.selectors import find_dangers_between
 from compliance.clearance.services import RefusedError, record
 from compliance.documents.models import Paper, PaperKind
 from compliance.documents.services import issue_paper
@@ -81,15 +81,11 @@ def create_drop_off(
 
 def find_load_dangers(containers: list[WasteContainer]) -> tuple[str, ...]:
     """Return every pair of containers that must not share a vehicle or a bund, with the danger named."""
-    found = []
-    kinds = [react_as(container.vessel) for container in containers]
-    for number, container in enumerate(containers):
-        for other in range(number):
-            found += [
-                f"{containers[other].vessel.name} and {container.vessel.name} must not go in one load: {danger.danger}."
-                for danger in find_dangers(kinds[number], kinds[other])
-            ]
-    return tuple(found)
+    return tuple(
+        f"{one.vessel.name} and {other.vessel.name} must not go in one load: {danger.danger}."
+        for one, other in combinations(containers, 2)
+        for danger in find_dangers_between(one.vessel, other.vessel)
+    )
 
 
 def pack_drop_off(*, actor: Membership, now: datetime, drop_off: DropOff) -> DropOff:

@@ -114,7 +114,7 @@ def test_into_a_bath_of_unknown_level_the_past_comes_along_all_the_same() -> Non
         opening("drag-out", litres(5), Cu=grams(10), poured=("cyanide/1",)),
     )
     folded = books.record(topped_up("drag-out", level=litres(10)))
-    assert books.remembers("bath") == {"cyanide/1"}
+    assert books.remembers("bath") == {"unknown/bath", "cyanide/1"}
     assert books.holds("bath", "Cu") is None
     assert books.holds("drag-out", VOLUME) is None  # how much left it is unknown too
     assert books.holds("bath", VOLUME) == 10 * L

@@ -2,7 +2,17 @@
 
 from collections.abc import Iterable
 
-from chemicals.books.events import ASSUMED, BOUNDARIES, COMPUTED, GROSS_MASS, OBSERVED, UNACCOUNTED, VOLUME, Figure
+from chemicals.books.events import (
+    ASSUMED,
+    BOUNDARIES,
+    COMPUTED,
+    GROSS_MASS,
+    OBSERVED,
+    UNACCOUNTED,
+    UNKNOWN_LIQUID,
+    VOLUME,
+    Figure,
+)
 from chemicals.books.fold.arithmetic import portion, product, root
 from chemicals.books.fold.state import (
     EVERY,
@@ -141,7 +151,7 @@ class Folding:
         if contradicted:
             self.note(UNKNOWN_CONTENTS, EVERY, source, target)
             for end in {source, target} - BOUNDARIES:
-                self.remember(end, (), incomplete=True, listed=[by])
+                self.remember(end, [UNKNOWN_LIQUID + source], incomplete=True, listed=[by])
 
     def _move_all(self, component: str, source: str, target: str) -> None:
         held = self.state.holding(source, component)

@@ -6,6 +6,7 @@ from chemicals.books.events import (
     COMPUTED,
     GROSS_MASS,
     UNACCOUNTED,
+    UNKNOWN_LIQUID,
     VOLUME,
     Figure,
     LevelReading,
@@ -35,6 +36,9 @@ def read_level(folding: Folding, vessel: str, level: Measured, lost_to: str, wat
         else:
             folding.pour(vessel, lost_to, lost, doubt, COMPUTED)
     folding.set_content(vessel, VOLUME, level.base, level.stated_sd, against, COMPUTED)
+    if held.amount is not None and held.amount <= 0 < level.base:
+        # there is liquid where the books have none: nobody can name it
+        folding.remember(vessel, [UNKNOWN_LIQUID + vessel], incomplete=True, listed=[VOLUME])
 
 
 def _gain_mass(folding: Folding, vessel: str, gained: int, doubt: int, volume: int) -> None:

@@ -1,6 +1,16 @@
 """Openings: what a vessel holds is set as found."""
 
-from chemicals.books.events import ASSUMED, GROSS_MASS, OBSERVED, OPENING, UNACCOUNTED, VOLUME, Measured, Opening
+from chemicals.books.events import (
+    ASSUMED,
+    GROSS_MASS,
+    OBSERVED,
+    OPENING,
+    UNACCOUNTED,
+    UNKNOWN_LIQUID,
+    VOLUME,
+    Measured,
+    Opening,
+)
 from chemicals.books.fold.arithmetic import product
 from chemicals.books.fold.folding import Folding
 from chemicals.books.fold.state import Vessel
@@ -13,10 +23,13 @@ def fold_opening(folding: Folding, event: Opening) -> None:
     """``opening`` -> vessel. What is not listed is absent if the list is complete, else unknown.
 
     A vessel that the books know is opened anew: what they held of it is not opened twice, the difference is
-    unaccounted.
+    unaccounted. To open is not to empty: what was poured in before stays remembered.
     """
     state, vessel = folding.state, event.vessel
     found = _found(event)
+    poured = state.vessel(vessel).poured | frozenset(event.poured)
+    if not event.complete and not event.poured:
+        poured |= {UNKNOWN_LIQUID + vessel}
     state.put_vessel(vessel, Vessel())
     for component in sorted({*found, *state.components(vessel)}):
         amount = found.get(component, (0, 0, OBSERVED) if event.complete else None)
@@ -26,7 +39,7 @@ def fold_opening(folding: Folding, event: Opening) -> None:
         else:
             base, sd, basis = amount
             folding.set_content(vessel, component, base, sd, UNACCOUNTED if held.booked else OPENING, basis)
-    state.put_vessel(vessel, Vessel(not event.complete, frozenset(event.poured)))
+    state.put_vessel(vessel, Vessel(not event.complete, poured))
 
 
 def _found(event: Opening) -> dict[str, Found | None]:
