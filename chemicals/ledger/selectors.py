@@ -5,7 +5,7 @@ from dataclasses import dataclass
 from datetime import datetime
 from uuid import UUID
 
-from django.db.models import Max, QuerySet, Sum
+from django.db.models import Max, Q, QuerySet, Sum
 from django_scopes import scope, scopes_disabled
 
 from chemicals.books import fold
@@ -132,6 +132,13 @@ def list_findings_for(member: Membership) -> QuerySet[Finding]:
     """Return the findings of the member's workshop, newest first. One query."""
     with scope(workshop=member.workshop):
         return Finding.objects.select_related("entry").order_by("-occurred_at", "-pk")
+
+
+def list_findings_of(vessel: Vessel) -> QuerySet[Finding]:
+    """Return the findings that concern a vessel, newest first. One query."""
+    with scope(workshop=vessel.workshop):
+        mine = Finding.objects.filter(Q(source=str(vessel.uuid)) | Q(target=str(vessel.uuid)))
+        return mine.select_related("entry").order_by("-occurred_at", "-pk")
 
 
 def list_postings_of(entry: Entry) -> QuerySet[Posting]:

@@ -40,6 +40,7 @@ def test_a_token_opens_its_own_workshop(api: Caller, owner: Membership) -> None:
     assert [(row["name"], row["role"]) for row in said["results"]] == [("Alder Court", "owner")]
     assert (said["next"], said["previous"]) == (None, None)
     assert said["results"][0]["uuid"] == str(owner.workshop.uuid)
+    assert api.get("/workshops/").headers["Cache-Control"] == "private, no-cache"
 
 
 def test_a_revoked_token_is_refused(api: Caller, owner: Membership, now: datetime) -> None:

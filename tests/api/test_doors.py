@@ -58,6 +58,15 @@ def test_a_preview_tells_findings_by_code_and_in_words(api: Caller, shop: Shop) 
     assert all(row["message"].endswith(".") for row in findings)
 
 
+def test_a_vessel_shows_its_findings_with_their_entries(api: Caller, shop: Shop) -> None:
+    moved = api.record("move", source=str(shop.bath.uuid), target=str(shop.rinse.uuid), volume="5 L").json()
+    findings = api.get(f"vessels/{shop.rinse.uuid}/").json()["findings"]
+    assert {row["code"] for row in findings} >= {"unknown-level"}
+    assert {row["entry"] for row in findings} == {moved["uuid"]}
+    assert {row["source"]["name"] for row in findings} == {"Copper bath"}
+    assert api.get(f"vessels/{shop.stock.uuid}/").json()["findings"] == []
+
+
 def test_a_record_answers_with_the_entry(api: Caller, shop: Shop) -> None:
     open_bath(api, shop)
     key = uuid4()
@@ -83,6 +92,7 @@ def test_a_bath_holds_what_was_recorded(api: Caller, shop: Shop) -> None:
     assert contents["incomplete"] is False
     with_no_list = api.record("opening", vessel=str(shop.stock.uuid), mass="1 kg")
     assert with_no_list.status_code == 201
+    assert api.get(f"vessels/{shop.bath.uuid}/").json()["findings"] == []
     assert api.get(f"vessels/{shop.stock.uuid}/").json()["contents"]["incomplete"] is True
 
 

@@ -89,6 +89,13 @@ class FindingShape(Shape):
     target = End(help_text=_("Where it went."))
 
 
+class DatedFinding(FindingShape):
+    """A finding with the entry that it belongs to."""
+
+    entry = serializers.UUIDField(source="entry.uuid", help_text=_("The entry that it belongs to."))
+    occurred_at = serializers.DateTimeField(help_text=_("When that happened, in UTC."))
+
+
 class PayloadShape(Shape):
     """What an entry says, in the journal's own words; its fields follow from its kind."""
 

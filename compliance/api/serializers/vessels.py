@@ -10,6 +10,7 @@ from chemicals.process.setup import HOLDERS
 from chemicals.science.formula import METALS
 from compliance.api.fields import BaseUnits, Choice, Identifier, Strict, Text, Whole, Words
 from compliance.api.serializers.base import Estimate, Figure, Named, Shape, choices_of, dimension_of
+from compliance.api.serializers.entries import DatedFinding
 from compliance.api.serializers.query import PageQuery
 
 CAPACITY_HELP = _('What it can hold, such as "25 L" or "6.5 gal".')
@@ -85,6 +86,7 @@ class VesselDetail(VesselShape):
     """A vessel with what it holds."""
 
     contents = ContentsShape(help_text=_("What it holds now."))
+    findings = DatedFinding(many=True, help_text=_("What a person should know about it, the latest 50."))
 
 
 class TankShape(Shape):

@@ -10,6 +10,7 @@ from django.db.models import QuerySet
 from django.http import HttpRequest
 from django.http.response import HttpResponseBase
 from django.utils import timezone
+from django.utils.cache import patch_cache_control
 from django.utils.translation import gettext as _
 from django_scopes import scope
 from rest_framework.generics import GenericAPIView
@@ -89,6 +90,12 @@ class ApiView(GenericAPIView[Any]):
         """Return what the body says, or raise ValidationError with everything that is wrong."""
         assert self.input_class is not None  # noqa: S101  (a view's mistake, not a request's)
         return read(self.input_class, request.data)
+
+    def finalize_response(self, request: Request, response: Any, *args: Any, **kwargs: Any) -> Any:
+        """Let nobody between the service and its client keep an answer."""
+        found = super().finalize_response(request, response, *args, **kwargs)
+        patch_cache_control(found, private=True, no_cache=True)
+        return found
 
     def get_serializer_class(self) -> type[BaseSerializer[Any]]:
         """Return what a row of a list looks like."""

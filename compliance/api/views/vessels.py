@@ -9,7 +9,7 @@ from rest_framework.response import Response
 
 from chemicals.ledger.codes import tidy_code
 from chemicals.ledger.models import Vessel
-from chemicals.ledger.selectors import get_vessel_for, list_vessels_for, read_contents
+from chemicals.ledger.selectors import get_vessel_for, list_findings_of, list_vessels_for, read_contents
 from chemicals.process.models import RackType, Route, Tank
 from chemicals.process.selectors import (
     get_rack_type_for,
@@ -26,6 +26,10 @@ from chemicals.workshop.selectors import get_place_for
 from compliance.api.serializers import vessels as shapes
 from compliance.api.serializers.base import With
 from compliance.api.views.base import ListCreateView, Lookup, WorkshopView
+from compliance.api.views.entries import name_vessels
+
+LATEST = 50
+"""How many findings a vessel shows."""
 
 
 class VesselsView(ListCreateView):
@@ -59,7 +63,8 @@ class VesselView(WorkshopView):
     def get(self, request: Request, **kwargs: Any) -> Response:
         """Return the vessel."""
         vessel = get_vessel_for(self.member, kwargs["uuid"])
-        return self.respond(With(vessel, contents=read_contents(vessel)))
+        found = With(vessel, contents=read_contents(vessel), findings=list_findings_of(vessel)[:LATEST])
+        return self.respond(found, vessels=name_vessels(self.member))
 
 
 class TanksView(ListCreateView):
