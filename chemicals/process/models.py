@@ -39,7 +39,8 @@ class Tank(models.Model):
     class Meta:
         constraints = [
             models.CheckConstraint(
-                condition=models.Q(metal="", valence=None) | (~models.Q(metal="") & models.Q(valence__gte=1)),
+                condition=models.Q(metal="", valence=None)
+                | (~models.Q(metal="") & models.Q(valence__isnull=False, valence__gte=1)),
                 name="tank_metal_with_valence",
             ),
             models.CheckConstraint(

@@ -1,13 +1,9 @@
 """The demo: an invented workshop whose weeks show the whole path, in books that close."""
 
-from collections.abc import Iterator
-from datetime import UTC, datetime, timedelta
+from datetime import timedelta
 
 import pytest
-from django.db import transaction
-from django.test import override_settings
 from django_scopes import scope
-from pytest_django import DjangoDbBlocker
 
 from chemicals.balance.selectors import BookBalance, get_book_balance, list_metals_for
 from chemicals.books import events
@@ -23,25 +19,13 @@ from chemicals.workshop.models import Membership, Role, User
 from compliance.documents.models import Paper, PaperKind
 from compliance.documents.selectors import read_data, read_pdf
 from compliance.dropoffs.models import DropOff, State
-from compliance.ops.demo import DemoUser, load_demo
+from compliance.ops.demo import DemoUser
 from compliance.ops.demo_reader import read_amount, read_input
 from compliance.ops.verify import find_loose_ends, verify_workshops
+from tests.ops.conftest import LOADED_AT
 
 G = 10**6
-
-
-NOW = datetime(2026, 3, 2, 15, 0, tzinfo=UTC)
-
-
-@pytest.fixture(scope="module")
-def people(
-    django_db_setup: None, django_db_blocker: DjangoDbBlocker, tmp_path_factory: pytest.TempPathFactory
-) -> Iterator[list[DemoUser]]:
-    """Load once: these tests only read."""
-    folder = tmp_path_factory.mktemp("attachments")
-    with django_db_blocker.unblock(), override_settings(ATTACHMENTS=folder), transaction.atomic():
-        yield load_demo(now=NOW)
-        transaction.set_rollback(True)
+pytestmark = pytest.mark.django_db
 
 
 @pytest.fixture
@@ -56,7 +40,7 @@ def entries(member: Membership, kind: str = "") -> list[Entry]:
 
 
 def balance(member: Membership, metal: str) -> BookBalance:
-    return get_book_balance(member, metal, NOW - timedelta(days=90), NOW)
+    return get_book_balance(member, metal, LOADED_AT - timedelta(days=90), LOADED_AT)
 
 
 def test_three_people_can_sign_in_with_fresh_passwords(people: list[DemoUser]) -> None:
@@ -93,8 +77,8 @@ def test_its_history_is_of_the_weeks_before_and_in_order(member: Membership) -> 
     written = entries(member)
     recorded = [entry.recorded_at for entry in written]
     assert recorded == sorted(recorded)
-    assert NOW - timedelta(days=36) < recorded[0] < NOW - timedelta(days=28)
-    assert recorded[-1] < NOW
+    assert LOADED_AT - timedelta(days=36) < recorded[0] < LOADED_AT - timedelta(days=28)
+    assert recorded[-1] < LOADED_AT
     assert member.workshop.created_at <= recorded[0]
 
 

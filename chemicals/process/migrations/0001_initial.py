@@ -83,7 +83,7 @@ class Migration(migrations.Migration):
         ),
         migrations.AddConstraint(
             model_name='tank',
-            constraint=models.CheckConstraint(condition=models.Q(models.Q(('metal', ''), ('valence', None)), models.Q(models.Q(('metal', ''), _negated=True), ('valence__gte', 1)), _connector='OR'), name='tank_metal_with_valence'),
+            constraint=models.CheckConstraint(condition=models.Q(models.Q(('metal', ''), ('valence', None)), models.Q(models.Q(('metal', ''), _negated=True), ('valence__gte', 1), ('valence__isnull', False)), _connector='OR'), name='tank_metal_with_valence'),
         ),
         migrations.AddConstraint(
             model_name='tank',
