@@ -1,0 +1,51 @@
+"""Every page: axe finds nothing, nothing scrolls sideways, the browser complains of nothing."""
+
+import re
+from collections.abc import Callable
+from pathlib import Path
+
+import pytest
+from django_scopes import scopes_disabled
+
+from chemicals.journal.models import Attachment
+from chemicals.workshop.models import Membership, Role
+from tests.house.walk import addresses
+from tests.journeys.conftest import DESK, PHONE, Visitor
+from tests.journeys.test_bench import People
+
+NO_PAGE = ("api/", "c", "sign-out", "w/<uuid:workshop>/files")
+"""Addresses that answer with data, a file or another address."""
+
+
+def pages_of_the_demo() -> list[tuple[str, str]]:
+    """Return (name for a picture, path) of one address of each route that shows a page."""
+    owner = Membership.objects.get(role=Role.OWNER)
+    with scopes_disabled():
+        sha256 = Attachment.objects.values_list("sha256", flat=True)[0]
+        found = {
+            (address.route, address.path.rsplit("/", 2)[-2] if "slug" in address.route else ""): address.path
+            for address in addresses(owner, sha256)
+            if not address.route.startswith(NO_PAGE) and not address.route.endswith(".pdf")
+        }
+    return [("-".join(re.findall("[a-z]+", route + " " + name)), path) for (route, name), path in found.items()]
+
+
+@pytest.mark.parametrize("size", [PHONE, DESK], ids=["phone", "desk"])
+@pytest.mark.parametrize("scheme", ["light", "dark"])
+def test_every_page_is_accessible(
+    demo: People, visit: Callable[..., Visitor], pictures: Path | None, size: dict[str, int], scheme: str
+) -> None:
+    visitor, seen = visit(size, scheme), 0
+    visitor.go("/sign-in")
+    visitor.check_page()
+    visitor.sign_in(*demo["owner"])
+    for name, path in pages_of_the_demo():
+        response = visitor.page.goto(visitor.url + path)
+        assert response is not None
+        if response.status != 200 or "text/html" not in response.headers["content-type"]:
+            continue
+        seen += 1
+        visitor.check_page()
+        if pictures is not None:
+            visitor.page.screenshot(path=pictures / f"{name}-{size['width']}-{scheme}.png", full_page=True)
+    assert seen > 40
