@@ -61,7 +61,7 @@ class ApiView(GenericAPIView[Any]):
     """
 
     schema: ApiSchema | None = ApiSchema()  # None keeps a view out of the description
-    metadata_class = None
+    http_method_names = ("get", "head", "post")
     parser_classes: Sequence[type[BaseParser]] = (StrictJSONParser,)
     content_negotiation_class = OneKind
     shape: ClassVar[Any] = Shape
