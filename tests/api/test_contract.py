@@ -23,6 +23,8 @@ ANSWERS: Sequence[CheckFunction] = (
     not_a_server_error, status_code_conformance, content_type_conformance, response_schema_conformance,
 )  # fmt: skip
 Case = Any
+FEW = {schemathesis.GenerationMode.POSITIVE: 4, schemathesis.GenerationMode.NEGATIVE: 2}
+"""How many requests each operation gets."""
 Known = dict[str, list[str]]
 
 
@@ -96,20 +98,20 @@ def try_all(
     with one_connection():
         for operation in schema.get_all_operations():
             assert isinstance(operation, Ok)
-            run(operation.ok().as_strategy(generation_mode=mode), send)
+            run(operation.ok().as_strategy(generation_mode=mode), send, FEW[mode])
     return statuses
 
 
-def run(strategy: Any, send: Callable[[Case], None]) -> None:
+def run(strategy: Any, send: Callable[[Case], None], few: int) -> None:
     """Send a few cases of an operation."""
-    few = settings(
-        max_examples=5,
+    sparing = settings(
+        max_examples=few,
         phases=[Phase.generate],
         suppress_health_check=list(HealthCheck),
         derandomize=True,
         database=None,
     )
-    few(given(case=strategy)(send))()
+    sparing(given(case=strategy)(send))()
 
 
 def test_answers_are_as_described(api: Caller, shop: Shop) -> None:
@@ -121,4 +123,4 @@ def test_answers_are_as_described(api: Caller, shop: Shop) -> None:
 def test_what_is_not_described_is_refused(api: Caller, shop: Shop) -> None:
     checks = [*ANSWERS, negative_data_rejection]
     statuses = try_all(describe_shop(api, shop), api, schemathesis.GenerationMode.NEGATIVE, checks)
-    assert statuses.count(400) > 50
+    assert statuses.count(400) > 30
