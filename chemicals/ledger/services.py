@@ -3,7 +3,6 @@
 from datetime import datetime
 from uuid import UUID
 
-from django.core.exceptions import ValidationError
 from django.db import IntegrityError, transaction
 from django_scopes import scope, scopes_disabled
 
@@ -17,6 +16,7 @@ from chemicals.register.models import Product
 from chemicals.workshop.errors import FieldError, InvalidInputError
 from chemicals.workshop.models import Membership, Place, Workshop
 from chemicals.workshop.permissions import require_same_workshop, require_writer
+from chemicals.workshop.rows import check_row
 
 
 def create_vessel(
@@ -36,7 +36,7 @@ def create_vessel(
         workshop=actor.workshop,
         code=_free_code(),
         kind=kind,
-        name=name.strip(),
+        name=name,
         place=place,
         product=product,
         capacity=capacity,
@@ -44,16 +44,13 @@ def create_vessel(
         created_by=actor,
     )
     with scope(workshop=actor.workshop):
-        try:
-            vessel.full_clean(exclude=["code"])
-        except ValidationError as error:
-            raise InvalidInputError(
-                [
-                    FieldError("name" if field == "__all__" else field, message)
-                    for field, messages in error.message_dict.items()
-                    for message in messages
-                ]
-            ) from error
+        errors = check_row(vessel, leave_out=["code"], unique=True)
+        if capacity is not None and capacity <= 0:
+            errors.append(
+                FieldError("capacity", "A vessel holds more than nothing. Write its capacity, or leave it out.")
+            )
+        if errors:
+            raise InvalidInputError(errors)
         with transaction.atomic():
             vessel.save()
     return vessel

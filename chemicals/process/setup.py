@@ -1,10 +1,10 @@
 """Writes of the set-up: tanks, rack types, routes. Plain settings: figures go into each entry as used."""
 
+from collections.abc import Iterator
 from dataclasses import dataclass
 from datetime import datetime
 
-from django.core.exceptions import ValidationError
-from django.db import models, transaction
+from django.db import transaction
 from django_scopes import scope
 
 from chemicals.ledger.models import Vessel, VesselKind
@@ -15,6 +15,7 @@ from chemicals.science.formula import METALS
 from chemicals.workshop.errors import FieldError, InvalidInputError
 from chemicals.workshop.models import Membership, Place
 from chemicals.workshop.permissions import require_same_workshop, require_writer
+from chemicals.workshop.rows import check_row
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -35,11 +36,35 @@ class TankInput:
     anode: Vessel | None = None
 
 
+TANKS = (VesselKind.BATH, VesselKind.RINSE)
+
+
 def create_tank(*, actor: Membership, now: datetime, tank: TankInput) -> Tank:
     """Create a bath or a rinse with its vessel."""
     require_writer(actor)
-    _check_tank(actor, tank)
+    require_same_workshop(actor, *(thing for thing in (tank.place, tank.anode) if thing is not None))
+    if tank.kind not in TANKS:
+        raise InvalidInputError.of("kind", "A tank is a bath or a rinse.")
+    row = Tank(
+        mark=tank.mark,
+        bath_type=tank.bath_type,
+        metal=tank.metal,
+        valence=tank.valence,
+        efficiency=tank.efficiency,
+        efficiency_sd=tank.efficiency_sd,
+        anode_kind=tank.anode_kind,
+        anode=tank.anode,
+    )
+    errors = [*_check_figures(tank), *_check_anode(tank), *check_row(row, leave_out=["vessel"])]
     with transaction.atomic(), scope(workshop=actor.workshop):
+        row.vessel = _create_tank_vessel(actor, now, tank, errors)
+        row.save()
+    return row
+
+
+def _create_tank_vessel(actor: Membership, now: datetime, tank: TankInput, errors: list[FieldError]) -> Vessel:
+    """Create the vessel, or raise what is wrong with it together with the tank's own errors."""
+    try:
         vessel = create_vessel(
             actor=actor,
             now=now,
@@ -48,39 +73,35 @@ def create_tank(*, actor: Membership, now: datetime, tank: TankInput) -> Tank:
             place=tank.place,
             capacity=tank.capacity,
         )
-        return Tank.objects.create(
-            vessel=vessel,
-            mark=tank.mark,
-            bath_type=tank.bath_type.strip(),
-            metal=tank.metal,
-            valence=tank.valence,
-            efficiency=tank.efficiency,
-            efficiency_sd=tank.efficiency_sd,
-            anode_kind=tank.anode_kind,
-            anode=tank.anode,
-        )
-
-
-def _check_tank(actor: Membership, tank: TankInput) -> None:
-    errors = []
-    if tank.kind not in (VesselKind.BATH, VesselKind.RINSE):
-        errors.append(FieldError("kind", "A tank is a bath or a rinse."))
-    if tank.metal and tank.metal not in METALS:
-        errors.append(FieldError("metal", "Choose a metal from the list."))
-    if bool(tank.metal) != (tank.valence is not None):
-        errors.append(FieldError("valence", "A metal and its valence go together. Write both, or neither."))
-    if tank.valence is not None and not 1 <= tank.valence <= 8:
-        errors.append(FieldError("valence", "A valence lies between 1 and 8."))
-    if tank.mark is not None and tank.capacity is not None and tank.mark > tank.capacity:
-        errors.append(FieldError("mark", "The mark lies above what the tank can hold."))
-    if not 0 < tank.efficiency <= 1_100_000:
-        errors.append(FieldError("efficiency", "A current efficiency lies between 0 and 110 %."))
-    if tank.anode_kind == AnodeKind.SOLUBLE and tank.anode is None:
-        errors.append(FieldError("anode", "A soluble anode loses metal: choose its anode set, so that it is counted."))
+    except InvalidInputError as error:
+        raise InvalidInputError([*error.errors, *errors]) from error
     if errors:
         raise InvalidInputError(errors)
-    if tank.anode is not None:
-        require_same_workshop(actor, tank.anode)
+    return vessel
+
+
+def _check_figures(tank: TankInput) -> Iterator[FieldError]:
+    if tank.metal and tank.metal not in METALS:
+        yield FieldError("metal", "Choose a metal from the list.")
+    if tank.metal and tank.kind == VesselKind.RINSE:
+        yield FieldError("metal", "A rinse plates no metal. Leave the metal out, or choose a bath.")
+    if bool(tank.metal) != (tank.valence is not None):
+        yield FieldError("valence", "A metal and its valence go together. Write both, or neither.")
+    if tank.valence is not None and not 1 <= tank.valence <= 8:
+        yield FieldError("valence", "A valence lies between 1 and 8.")
+    if tank.mark is not None and tank.mark <= 0:
+        yield FieldError("mark", "The mark lies above the bottom. Write the volume at the mark, or leave it out.")
+    if tank.mark is not None and tank.capacity is not None and tank.mark > tank.capacity:
+        yield FieldError("mark", "The mark lies above what the tank can hold.")
+    if not 0 < tank.efficiency <= 1_100_000:
+        yield FieldError("efficiency", "A current efficiency lies between 0 and 110 %.")
+
+
+def _check_anode(tank: TankInput) -> Iterator[FieldError]:
+    if tank.anode_kind == AnodeKind.SOLUBLE and tank.anode is None:
+        yield FieldError("anode", "A soluble anode loses metal: choose its anode set, so that it is counted.")
+    if tank.anode is not None and tank.anode.kind != VesselKind.ANODE:
+        yield FieldError("anode", "This is no anode set. Choose one, or set one up first.")
 
 
 HOLDERS = (VesselKind.STOCK, VesselKind.ANODE)
@@ -115,9 +136,13 @@ def create_rack_type(
 ) -> RackType:
     """Create a rack type: drag-out per load in nanolitres, its relative uncertainty in ppm, area in mm2."""
     require_writer(actor)
-    rack = RackType(workshop=actor.workshop, name=name.strip(), area=area, drag_out=drag_out, drag_out_sd=drag_out_sd)
+    rack = RackType(workshop=actor.workshop, name=name, area=area, drag_out=drag_out, drag_out_sd=drag_out_sd)
     with transaction.atomic(), scope(workshop=actor.workshop):
-        _clean(rack)
+        errors = check_row(rack, unique=True)
+        if area is not None and area <= 0:
+            errors.append(FieldError("area", "An area is more than nothing. Write it, or leave it out."))
+        if errors:
+            raise InvalidInputError(errors)
         rack.save()
     return rack
 
@@ -126,13 +151,12 @@ def create_route(*, actor: Membership, name: str, rack: RackType, vessels: list[
     """Create a route through tanks in order; the first one plates."""
     require_writer(actor)
     require_same_workshop(actor, rack, *vessels)
-    if not vessels:
-        raise InvalidInputError.of("vessels", "A route goes through at least one tank. Choose the tanks in order.")
-    if len(set(vessels)) < len(vessels):
-        raise InvalidInputError.of("vessels", "A tank stands twice in the route. Choose each tank once.")
-    route = Route(workshop=actor.workshop, name=name.strip(), rack=rack)
+    errors = list(_check_steps(vessels))
+    route = Route(workshop=actor.workshop, name=name, rack=rack)
     with transaction.atomic(), scope(workshop=actor.workshop):
-        _clean(route)
+        errors = [*check_row(route, unique=True), *errors]
+        if errors:
+            raise InvalidInputError(errors)
         route.save()
         RouteStep.objects.bulk_create(
             RouteStep(route=route, position=position, vessel=vessel) for position, vessel in enumerate(vessels)
@@ -140,15 +164,11 @@ def create_route(*, actor: Membership, name: str, rack: RackType, vessels: list[
     return route
 
 
-def _clean(row: models.Model) -> None:
-    """Turn Django's validation errors into ours, all at once."""
-    try:
-        row.full_clean()
-    except ValidationError as error:
-        raise InvalidInputError(
-            [
-                FieldError("name" if field == "__all__" else field, message)
-                for field, messages in error.message_dict.items()
-                for message in messages
-            ]
-        ) from error
+def _check_steps(vessels: list[Vessel]) -> Iterator[FieldError]:
+    if not vessels:
+        yield FieldError("vessels", "A route goes through at least one tank. Choose the tanks in order.")
+    if len(set(vessels)) < len(vessels):
+        yield FieldError("vessels", "A tank stands twice in the route. Choose each tank once.")
+    for vessel in vessels:
+        if vessel.kind not in TANKS:
+            yield FieldError("vessels", f"{vessel.name} is neither bath nor rinse. Choose the tanks in order.")

@@ -100,7 +100,7 @@ class CompositionLine(models.Model):
 
     revision = models.ForeignKey(ProductRevision, on_delete=models.PROTECT, related_name="lines")
     substance = models.ForeignKey(Substance, on_delete=models.PROTECT, related_name="+")
-    typed = models.CharField(max_length=40)
+    typed = models.CharField(max_length=80)
     amount = models.BigIntegerField()
     sd = models.BigIntegerField(default=0)
     per = models.CharField(max_length=2, choices=Per.choices)

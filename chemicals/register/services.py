@@ -1,6 +1,7 @@
 """Writes of the catalogue: substances, products, revisions."""
 
 import re
+from collections.abc import Iterator
 from dataclasses import dataclass
 from datetime import date, datetime
 
@@ -9,17 +10,16 @@ from django_scopes import scope
 
 from chemicals.journal import services as journal
 from chemicals.journal.models import Attachment
+from chemicals.register.hazards import check_hazards
 from chemicals.register.models import CompositionLine, Form, Per, Product, ProductRevision, Substance
 from chemicals.science.formula import FormulaError, parse_formula
 from chemicals.science.quantity import QuantityError, parse
-from chemicals.science.reactivity import REACTS_AS
 from chemicals.workshop.errors import FieldError, InvalidInputError
 from chemicals.workshop.models import Membership
 from chemicals.workshop.permissions import require_same_workshop, require_writer
+from chemicals.workshop.rows import check_row
+from chemicals.workshop.texts import tidy
 
-SIGNAL_WORDS = ("", "Warning", "Danger")
-PICTOGRAMS = tuple(f"GHS0{number}" for number in range(1, 10))
-STATEMENT = re.compile(r"(EUH|H|P)\d{3}[A-Za-z]{0,2}(\s*\+\s*[HP]\d{3}[A-Za-z]{0,2})*")
 CAS_NUMBER = re.compile(r"(\d{2,7})-(\d{2})-(\d)")
 
 
@@ -36,26 +36,25 @@ def check_cas_number(text: str) -> None:
 def create_substance(*, actor: Membership, name: str, cas_number: str = "", formula: str = "") -> Substance:
     """Create a substance; its CAS number and formula are checked if given."""
     require_writer(actor)
-    errors = []
-    name, cas_number, formula = name.strip(), cas_number.strip(), formula.strip()
-    if not name:
-        errors.append(FieldError("name", "Write the name of the substance."))
-    if cas_number:
+    substance = Substance(workshop=actor.workshop, name=name, cas_number=cas_number, formula=formula)
+    errors = check_row(substance)
+    if substance.cas_number:
         try:
-            check_cas_number(cas_number)
+            check_cas_number(substance.cas_number)
         except InvalidInputError as error:
             errors.extend(error.errors)
-    if formula:
+    if substance.formula:
         try:
-            parse_formula(formula)
+            parse_formula(substance.formula)
         except FormulaError as error:
             errors.append(FieldError("formula", str(error)))
     with transaction.atomic(), scope(workshop=actor.workshop):
-        if Substance.objects.filter(name=name).exists():
+        if Substance.objects.filter(name=substance.name).exists():
             errors.append(FieldError("name", "This substance is in the register already."))
         if errors:
             raise InvalidInputError(errors)
-        return Substance.objects.create(workshop=actor.workshop, name=name, cas_number=cas_number, formula=formula)
+        substance.save()
+        return substance
 
 
 @dataclass(frozen=True)
@@ -94,16 +93,15 @@ def create_product(
 ) -> ProductRevision:
     """Create a product with its first revision."""
     require_writer(actor)
-    checked, errors = _check_revision(actor, revision)
-    name, supplier = name.strip(), supplier.strip()
-    if not name:
-        errors.insert(0, FieldError("name", "Write the name as it stands on the label."))
+    product = Product(workshop=actor.workshop, name=name, supplier=supplier)
+    errors = check_row(product)
+    checked, more = _check_revision(actor, revision)
     with transaction.atomic(), scope(workshop=actor.workshop):
-        if Product.objects.filter(name=name, supplier=supplier).exists():
-            errors.insert(0, FieldError("name", "This product of this supplier is in the register. Revise it instead."))
-        if errors:
-            raise InvalidInputError(errors)
-        product = Product.objects.create(workshop=actor.workshop, name=name, supplier=supplier)
+        if Product.objects.filter(name=product.name, supplier=product.supplier).exists():
+            errors.append(FieldError("name", "This product of this supplier is in the register. Revise it instead."))
+        if errors or more:
+            raise InvalidInputError([*errors, *more])
+        product.save()
         return _write_revision(actor, now, product, 1, checked)
 
 
@@ -131,7 +129,7 @@ def _check_revision(actor: Membership, said: RevisionInput) -> tuple[_Checked, l
     require_same_workshop(actor, *(line.substance for line in said.lines))
     if said.safety_data_sheet is not None:
         require_same_workshop(actor, said.safety_data_sheet)
-    errors = _check_hazards(said)
+    errors = list(_check_sheet(said))
     density, lines = None, []
     if said.density.strip():
         try:
@@ -145,6 +143,12 @@ def _check_revision(actor: Membership, said: RevisionInput) -> tuple[_Checked, l
             lines.append((line, *read_content(line.content)))
         except QuantityError as error:
             errors.append(FieldError(f"lines.{number}.content", error.message))
+    if said.form == Form.SOLID:
+        errors += [
+            FieldError(f"lines.{said.lines.index(line)}.content", "A solid has no litres. Write % of its mass.")
+            for line, _, per in lines
+            if per == Per.LITRE
+        ]
     if len({line.substance.pk for line in said.lines}) < len(said.lines):
         errors.append(FieldError("lines", "A substance stands twice in the list. Add the two together."))
     if sum(amount for _, amount, per in lines if per == Per.KILOGRAM) > 10**9:
@@ -152,26 +156,17 @@ def _check_revision(actor: Membership, said: RevisionInput) -> tuple[_Checked, l
     return _Checked(said, density, tuple(lines)), errors
 
 
-def _check_hazards(said: RevisionInput) -> list[FieldError]:
-    errors = []
+def _check_sheet(said: RevisionInput) -> Iterator[FieldError]:
     if said.form not in Form.values:
-        errors.append(FieldError("form", "Choose solid or liquid."))
-    for field, values, allowed in (
-        ("signal_word", (said.signal_word,), SIGNAL_WORDS),
-        ("pictograms", said.pictograms, PICTOGRAMS),
-        ("reactivity", said.reactivity, tuple(REACTS_AS)),
-    ):
-        unknown = sorted(set(values) - set(allowed))
-        if unknown:
-            errors.append(FieldError(field, f"Unknown: {', '.join(unknown)}. Choose from the list."))
-    errors.extend(
-        FieldError("statements", f'"{text}" does not begin with a code such as H302 or EUH071.')
-        for text in said.statements
-        if not STATEMENT.match(text)
+        yield FieldError("form", "Choose solid or liquid.")
+    yield from check_hazards(
+        signal_word=said.signal_word,
+        pictograms=said.pictograms,
+        statements=said.statements,
+        reactivity=said.reactivity,
     )
     if said.safety_data_sheet is not None and said.safety_data_sheet.media_type != "application/pdf":
-        errors.append(FieldError("safety_data_sheet", "A safety data sheet is a PDF file. Choose the PDF."))
-    return errors
+        yield FieldError("safety_data_sheet", "A safety data sheet is a PDF file. Choose the PDF.")
 
 
 def read_content(text: str) -> tuple[int, str]:
@@ -194,14 +189,14 @@ def _write_revision(
         reactivity=sorted(said.reactivity),
         signal_word=said.signal_word,
         pictograms=sorted(said.pictograms),
-        statements=list(said.statements),
+        statements=[tidy(text) for text in said.statements],
         safety_data_sheet=said.safety_data_sheet,
         sheet_date=said.sheet_date,
         created_at=now,
         created_by=actor,
     )
     CompositionLine.objects.bulk_create(
-        CompositionLine(revision=revision, substance=line.substance, typed=line.content.strip(), amount=amount, per=per)
+        CompositionLine(revision=revision, substance=line.substance, typed=tidy(line.content), amount=amount, per=per)
         for line, amount, per in checked.lines
     )
     return revision

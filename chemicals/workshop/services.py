@@ -8,10 +8,12 @@ from uuid import UUID
 from django.contrib.auth.password_validation import validate_password
 from django.core.exceptions import ValidationError
 from django.db import transaction
+from django_scopes import scope
 
 from chemicals.workshop.errors import FieldError, InvalidInputError, NotFoundError
 from chemicals.workshop.models import ApiToken, Membership, Place, Role, User, Workshop
 from chemicals.workshop.permissions import require_owner, require_writer
+from chemicals.workshop.rows import check_row
 
 
 def create_workshop(
@@ -28,7 +30,7 @@ def create_workshop(
     workshop = Workshop(
         name=name.strip(), time_zone=time_zone, address=address, telephone=telephone, invented=invented, created_at=now
     )
-    _clean(workshop)
+    _check(workshop)
     with transaction.atomic():
         workshop.save()
         return Membership.objects.create(workshop=workshop, user=owner, role=Role.OWNER)
@@ -41,7 +43,7 @@ def change_workshop(*, actor: Membership, name: str, address: str, telephone: st
     workshop = Workshop.objects.select_for_update().get(pk=actor.workshop_id)
     workshop.name, workshop.time_zone = name.strip(), time_zone
     workshop.address, workshop.telephone = address.strip(), telephone.strip()
-    _clean(workshop)
+    _check(workshop)
     workshop.save(update_fields=["name", "address", "telephone", "time_zone"])
     return workshop
 
@@ -56,10 +58,7 @@ def create_user(*, email: str, password: str | None, name: str) -> User:
         except ValidationError as error:
             errors = [FieldError("password", message) for message in error.messages]
     user.set_password(password)
-    try:
-        user.full_clean()
-    except ValidationError as error:
-        errors += [FieldError(field, m) for field, messages in error.message_dict.items() for m in messages]
+    errors += check_row(user, unique=True)
     if errors:
         raise InvalidInputError(errors)
     user.save()
@@ -100,7 +99,7 @@ def create_place(*, actor: Membership, name: str, bund: str = "", exhaust_duct: 
     """Create a place in the actor's workshop."""
     require_writer(actor)
     place = Place(workshop=actor.workshop, name=name.strip(), bund=bund.strip(), exhaust_duct=exhaust_duct.strip())
-    _clean(place)
+    _check(place)
     with transaction.atomic():
         place.save()
     return place
@@ -125,19 +124,9 @@ def revoke_token(*, actor: Membership, now: datetime, token_uuid: UUID) -> None:
         raise NotFoundError("There is no such token, or it is revoked already.")
 
 
-def _clean(row: Workshop | Place) -> None:
-    """Turn Django's validation errors into ours, all at once."""
-    from django_scopes import scope
-
+def _check(row: Workshop | Place) -> None:
     workshop = row if isinstance(row, Workshop) else row.workshop
-    try:
-        with scope(workshop=workshop):
-            row.full_clean()
-    except ValidationError as error:
-        raise InvalidInputError(
-            [
-                FieldError("name" if field == "__all__" else field, message)
-                for field, messages in error.message_dict.items()
-                for message in messages
-            ]
-        ) from error
+    with scope(workshop=workshop):
+        errors = check_row(row, unique=True)
+    if errors:
+        raise InvalidInputError(errors)

@@ -13,6 +13,7 @@ from chemicals.science.quantity import Quantity, parse, show
 from chemicals.workshop.errors import ConflictError, FieldError, InvalidInputError
 from chemicals.workshop.models import Membership
 from chemicals.workshop.permissions import require_same_workshop, require_writer
+from chemicals.workshop.rows import check_row
 from compliance.clearance.selectors import find_dangers_between
 from compliance.clearance.services import RefusedError, record
 from compliance.documents.models import Paper, PaperKind
@@ -25,14 +26,15 @@ from compliance.waste.models import WasteContainer
 def create_receiver(*, actor: Membership, name: str, address: str = "", reference: str = "") -> Receiver:
     """Create a receiver."""
     require_writer(actor)
+    receiver = Receiver(workshop=actor.workshop, name=name, address=address, reference=reference)
+    errors = check_row(receiver)
     with transaction.atomic(), scope(workshop=actor.workshop):
-        if not name.strip():
-            raise InvalidInputError.of("name", "Write who takes the waste.")
-        if Receiver.objects.filter(name=name.strip()).exists():
-            raise InvalidInputError.of("name", "There is a receiver of this name. Choose it from the list.")
-        return Receiver.objects.create(
-            workshop=actor.workshop, name=name.strip(), address=address.strip(), reference=reference.strip()
-        )
+        if Receiver.objects.filter(name=receiver.name).exists():
+            errors.append(FieldError("name", "There is a receiver of this name. Choose it from the list."))
+        if errors:
+            raise InvalidInputError(errors)
+        receiver.save()
+        return receiver
 
 
 def create_drop_off(

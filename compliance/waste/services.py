@@ -9,10 +9,12 @@ from django_scopes import scope
 
 from chemicals.ledger.models import VesselKind
 from chemicals.ledger.services import create_vessel
-from chemicals.science.reactivity import REACTS_AS
+from chemicals.register.hazards import check_hazards
 from chemicals.workshop.errors import ConflictError, FieldError, InvalidInputError
 from chemicals.workshop.models import Membership, Place
 from chemicals.workshop.permissions import require_same_workshop, require_writer
+from chemicals.workshop.rows import check_row
+from chemicals.workshop.texts import tidy
 from compliance.documents.models import Paper, PaperKind
 from compliance.documents.services import issue_paper
 from compliance.waste.label import build_label
@@ -36,30 +38,31 @@ class StreamInput:
 def create_stream(*, actor: Membership, stream: StreamInput) -> WasteStream:
     """Create a waste stream."""
     require_writer(actor)
-    errors = []
-    if not stream.name.strip():
-        errors.append(FieldError("name", "Name the stream, for example: spent copper rinse."))
-    if not stream.origin.strip():
-        errors.append(FieldError("origin", "Write the process that this waste comes from."))
-    unknown = sorted(set(stream.reactivity) - set(REACTS_AS))
-    if unknown:
-        errors.append(FieldError("reactivity", f"Unknown: {', '.join(unknown)}. Choose from the list."))
+    row = WasteStream(
+        workshop=actor.workshop,
+        name=stream.name,
+        origin=stream.origin,
+        profile_number=stream.profile_number,
+        code=stream.code,
+        reactivity=sorted(stream.reactivity),
+        signal_word=stream.signal_word,
+        pictograms=sorted(stream.pictograms),
+        statements=[tidy(text) for text in stream.statements],
+    )
+    errors = check_row(row)
+    errors += check_hazards(
+        signal_word=stream.signal_word,
+        pictograms=stream.pictograms,
+        statements=stream.statements,
+        reactivity=stream.reactivity,
+    )
     with transaction.atomic(), scope(workshop=actor.workshop):
-        if WasteStream.objects.filter(name=stream.name.strip()).exists():
+        if WasteStream.objects.filter(name=row.name).exists():
             errors.append(FieldError("name", "There is a stream of this name. Choose another name."))
         if errors:
             raise InvalidInputError(errors)
-        return WasteStream.objects.create(
-            workshop=actor.workshop,
-            name=stream.name.strip(),
-            origin=stream.origin.strip(),
-            profile_number=stream.profile_number.strip(),
-            code=stream.code.strip(),
-            reactivity=sorted(stream.reactivity),
-            signal_word=stream.signal_word,
-            pictograms=sorted(stream.pictograms),
-            statements=list(stream.statements),
-        )
+        row.save()
+        return row
 
 
 def create_container(
@@ -78,7 +81,14 @@ def create_container(
     require_same_workshop(actor, stream)
     with transaction.atomic(), scope(workshop=actor.workshop):
         vessel = create_vessel(actor=actor, now=now, kind=VesselKind.WASTE, name=name, place=place, capacity=capacity)
-        return WasteContainer.objects.create(vessel=vessel, stream=stream, material=material.strip(), tare=tare)
+        container = WasteContainer(vessel=vessel, stream=stream, material=material, tare=tare)
+        errors = check_row(container)
+        if tare is not None and tare < 0:
+            errors.append(FieldError("tare", "Nothing weighs less than nothing. Weigh the empty container."))
+        if errors:
+            raise InvalidInputError(errors)
+        container.save()
+        return container
 
 
 def close_container(*, actor: Membership, now: datetime, container: WasteContainer, gross: int) -> WasteContainer:

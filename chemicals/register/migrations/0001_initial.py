@@ -59,7 +59,7 @@ class Migration(migrations.Migration):
             name='CompositionLine',
             fields=[
                 ('id', models.BigAutoField(auto_created=True, primary_key=True, serialize=False, verbose_name='ID')),
-                ('typed', models.CharField(max_length=40)),
+                ('typed', models.CharField(max_length=80)),
                 ('amount', models.BigIntegerField()),
                 ('sd', models.BigIntegerField(default=0)),
                 ('per', models.CharField(choices=[('kg', 'of the mass'), ('L', 'per litre')], max_length=2)),
