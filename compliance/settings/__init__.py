@@ -149,6 +149,7 @@ LOGOUT_REDIRECT_URL = "sign-in"
 AXES_FAILURE_LIMIT = 10
 AXES_COOLOFF_TIME = 0.25  # hours
 AXES_LOCKOUT_PARAMETERS = [["username", "ip_address"]]
+AXES_USERNAME_FORM_FIELD = "username"  # what the sign-in form calls the e-mail address
 AXES_LOCKOUT_CALLABLE = "compliance.web.views.sign.locked_out"
 AXES_VERBOSE = False
 

@@ -40,11 +40,11 @@ class Visitor:
         """Return the address of a page of the workshop."""
         return reverse(name, args=[self.member.workshop.uuid, *args])
 
-    def get(self, name: str, *args: object, query: str = "") -> Any:
+    def get(self, name: str, /, *args: object, query: str = "") -> Any:
         """Open a page."""
         return self.client.get(self.address(name, *args) + query)
 
-    def post(self, name: str, *args: object, **said: object) -> Any:
+    def post(self, name: str, /, *args: object, **said: object) -> Any:
         """Send a form."""
         return self.client.post(self.address(name, *args), said)
 

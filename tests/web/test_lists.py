@@ -1,0 +1,125 @@
+"""Lists: as many queries for three rows as for one, and every list as CSV."""
+
+import csv
+import io
+from collections.abc import Callable
+from datetime import datetime
+from typing import Any
+from uuid import uuid4
+
+import pytest
+
+from chemicals.ledger.models import VesselKind
+from chemicals.process.inputs import AnalysisInput, LevelInput
+from chemicals.process.setup import TankInput, create_holder, create_rack_type, create_route, create_tank
+from chemicals.register.services import LineInput, RevisionInput, create_product, create_substance
+from chemicals.science.quantity import parse
+from chemicals.workshop.models import Membership, Role
+from chemicals.workshop.services import create_place, create_token
+from compliance.dropoffs.services import create_drop_off, create_receiver
+from compliance.waste.services import StreamInput, close_container, create_container, create_stream
+from tests.conftest import make_member
+from tests.web.conftest import LITRE, Line, Say, Visitor
+
+COUNTS = {
+    "today": 14,
+    "register": 8,
+    "substances": 4,
+    "tanks": 9,
+    "entries": 9,
+    "balance": 12,
+    "waste": 6,
+    "drop-offs": 6,
+    "workshop": 7,
+}
+"""Queries of each list page: two for the session and the person, one for the membership, the rest for the list."""
+
+
+@pytest.fixture
+def grow(owner: Membership, now: datetime, filled: Line, say: Say) -> Callable[[str], None]:
+    """Return a function that adds one more row to every list."""
+
+    def add(name: str) -> None:
+        make: dict[str, Any] = {"actor": owner, "now": now}
+        place = create_place(actor=owner, name=f"Place {name}")
+        substance = create_substance(actor=owner, name=f"Substance {name}")
+        revision = RevisionInput(form="solid", lines=(LineInput(substance, "50 %"),), pictograms=("GHS07",))
+        product = create_product(**make, name=f"Product {name}", supplier="", revision=revision).product
+        create_holder(**make, kind=VesselKind.STOCK, name=f"Tub {name}", product=product, place=place)
+        tank = TankInput(kind="rinse", name=f"Rinse {name}", place=place)
+        rinse = create_tank(**make, tank=tank).vessel
+        rack = create_rack_type(actor=owner, name=f"Rack {name}", drag_out=10**7)
+        create_route(actor=owner, name=f"Route {name}", rack=rack, vessels=[filled.bath, rinse])
+        stream = create_stream(actor=owner, stream=StreamInput(name=f"Stream {name}", origin="rinsing"))
+        create_container(**make, name=f"Open {name}", stream=stream, place=place, capacity=LITRE)
+        drum = create_container(**make, name=f"Drum {name}", stream=stream, place=place, capacity=LITRE)
+        closed = close_container(**make, container=drum, gross=10**9)
+        receiver = create_receiver(actor=owner, name=f"Receiver {name}")
+        create_drop_off(**make, receiver=receiver, mode="brought", planned_for=now.date(), containers=[closed])
+        make_member(owner.workshop, Role.WORKER, f"{name}@alder.example")
+        create_token(**make, name=f"Token {name}")
+        say(LevelInput(vessel=filled.bath.uuid, volume=parse("14 L", "volume")))
+        say(AnalysisInput(vessel=filled.bath.uuid, metal="Cu", result=parse("50 g/L", "concentration")))
+
+    return add
+
+
+@pytest.mark.parametrize("name", COUNTS)
+def test_a_list_asks_as_often_for_three_rows_as_for_one(
+    name: str, visit: Visitor, grow: Callable[[str], None], django_assert_num_queries: Any
+) -> None:
+    grow("one")
+    with django_assert_num_queries(COUNTS[name]):
+        visit.get(name)
+    grow("two")
+    grow("three")
+    with django_assert_num_queries(COUNTS[name]):
+        page = visit.get(name)
+    assert page.status_code == 200
+
+
+def rows_of(response: Any) -> list[dict[str, str]]:
+    text = response.content.decode("utf-8-sig")
+    return list(csv.DictReader(io.StringIO(text)))
+
+
+@pytest.mark.parametrize("name", [name for name in COUNTS if name != "today"])
+def test_every_list_is_a_file_too(name: str, visit: Visitor, grow: Callable[[str], None]) -> None:
+    grow("one")
+    linked = visit.get(name).content.decode()
+    assert "as=csv" in linked
+    response = visit.get(name, query="?as=csv")
+    assert response.headers["Content-Type"] == "text/csv; charset=utf-8"
+    assert response.headers["Content-Disposition"].startswith("attachment; ")
+    assert rows_of(response)
+
+
+def test_the_file_of_tanks_has_one_line_for_each_content_in_plain_units(visit: Visitor, filled: Line) -> None:
+    rows = [row for row in rows_of(visit.get("tanks", query="?as=csv")) if row["tank"] == "Copper bath"]
+    assert [(row["component"], row["amount"], row["unit"]) for row in rows if row["component"] != "gross mass"] == [
+        ("volume", "15", "L"),
+        ("Cu", "763.53849", "g"),
+    ]
+
+
+def test_the_file_of_entries_is_what_the_filter_shows(visit: Visitor, filled: Line) -> None:
+    rows = rows_of(visit.get("entries", query="?kind=make-up&as=csv"))
+    assert [row["kind"] for row in rows] == ["make-up", "make-up"]
+    assert len(rows_of(visit.get("entries", query=f"?vessel={filled.drum.vessel.uuid}&as=csv"))) == 1
+    assert rows_of(visit.get("entries", query="?since=2026-03-03&as=csv")) == []
+    assert len(rows_of(visit.get("entries", query="?since=2026-03-02&until=2026-03-02&as=csv"))) == 4
+
+
+def test_a_filter_that_cannot_be_read_says_so(visit: Visitor, filled: Line) -> None:
+    page = visit.get("entries", query="?since=yesterday").content.decode()
+    assert "Write the date like 2026-03-02." in page
+
+
+def test_fifty_entries_to_a_page(visit: Visitor, filled: Line, say: Say) -> None:
+    for number in range(48):
+        say(LevelInput(vessel=filled.bath.uuid, volume=parse(f"{15_000 - number} mL", "volume")))
+    first = visit.get("entries").content.decode()
+    assert "52 entries" in first
+    assert "page=2" in first
+    assert visit.get("entries", query="?page=2").content.decode().count('<a class="line"') == 2
+    assert str(uuid4()) not in first

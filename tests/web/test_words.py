@@ -1,0 +1,72 @@
+"""Words and figures of the pages, and the exporter."""
+
+from datetime import UTC, datetime
+from decimal import Decimal
+
+import pytest
+from django.utils import timezone
+
+from chemicals.books.fold.state import Finding, Transfer
+from compliance.web import words
+from compliance.web.export import Column, grams, to_csv
+from compliance.web.words import Ends, Follows
+
+ENDS = Ends({"a": "Copper bath", "b": "Rinse"})
+
+
+@pytest.mark.parametrize(
+    ("base", "sd", "component", "text"),
+    [
+        (None, 5, "Cu", "unknown"),
+        (0, 0, "Cu", "0 g"),
+        (830_000_000, 0, "Cu", "830 g"),
+        (604_800, 190_000, "Cu", "604.8 ± 190 mg"),
+        (20 * 10**9, 16 * 10**6, "volume", "20 ± 0.016 L"),
+    ],
+)
+def test_an_amount_and_its_uncertainty_share_a_unit(base: int | None, sd: int, component: str, text: str) -> None:
+    assert words.with_uncertainty(base, sd, component) == text
+
+
+def test_what_came_and_what_left_carry_a_sign() -> None:
+    assert [words.signed(base, 0, "Cu") for base in (2_000_000, -2_000_000, 0, None)] == [
+        "+2 g",
+        "−2 g",
+        "0 g",
+        "unknown",
+    ]
+
+
+def test_movements_are_sentences_metals_first() -> None:
+    liquid = Transfer("volume", "a", "b", 10**7, 0, "assumed")
+    metal = Transfer("Cu", "a", "parts", 830_000, 20_000, "computed")
+    follows = Follows.of([liquid, metal], ENDS)
+    assert follows.metals == ["830 ± 20 mg copper goes from Copper bath to parts, computed."]
+    assert follows.others == ["10 mL liquid goes from Copper bath to Rinse, assumed."]
+
+
+def test_a_finding_says_where_and_of_what() -> None:
+    said = words.finding(Finding("negative-content", "Cu", "a", "a"), ENDS)
+    assert said.startswith("Copper bath, copper: The books hold less than nothing here")
+
+
+def test_a_day_is_shown_as_a_day() -> None:
+    noon = datetime(2026, 3, 2, 11, 0, tzinfo=UTC)
+    with timezone.override("Europe/Berlin"):
+        assert words.moment(noon) == "2026-03-02 12:00"
+        assert words.moment(noon, "day") == "2026-03-02"
+
+
+def test_a_file_keeps_text_text_and_unknown_empty() -> None:
+    rows = ['=HYPERLINK("x")', "-5", "plain, with comma", None, grams(-1_500_000), True]
+    response = to_csv("list", [Column("cell", lambda row: row)], rows)
+    assert response.content.decode("utf-8-sig").splitlines() == [
+        "cell",
+        '"\'=HYPERLINK(""x"")"',
+        "'-5",
+        '"plain, with comma"',
+        '""',
+        "-1.5",
+        "True",
+    ]
+    assert grams(1) == Decimal("0.000001")
