@@ -135,6 +135,7 @@ def test_a_code_opens_the_page_of_its_vessel(visit: Visitor, line: Line, strange
     address = f"/c/{line.bath.code}"
     assert visit.client.get(f"/c/{typed}").headers["Location"] == visit.address("vessel", line.bath.uuid)
     assert visit.client.get("/c", {"code": line.bath.code}).headers["Location"] == address
+    assert visit.client.get("/c", {"code": "../x y"}).headers["Location"] == "/c/XY"
     assert visit.client.get("/c/NOSUCH").status_code == 404
     assert Visitor(stranger).client.get(address).status_code == 404
 

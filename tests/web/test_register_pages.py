@@ -3,6 +3,7 @@
 import re
 from uuid import UUID
 
+import pytest
 from django.core.files.uploadedfile import SimpleUploadedFile
 from django.http import HttpResponse
 from django_scopes import scopes_disabled
@@ -12,6 +13,7 @@ from chemicals.process.models import RackType, Route, Tank
 from chemicals.register.models import Product, Substance
 from chemicals.register.selectors import get_current_revision
 from chemicals.workshop.models import Membership
+from compliance.web.forms import fields
 from tests.web.conftest import LITRE, Line, Visitor, text_of
 
 SHEET = b"%PDF-1.4\ninvented sheet\n"
@@ -150,3 +152,10 @@ def test_things_of_another_workshop_are_not_found(stranger: Membership, line: Li
     assert visitor.get("vessel", line.bath.uuid).status_code == 404
     assert visitor.get("waste-container", line.drum.vessel.uuid).status_code == 404
     assert visitor.post("add-stock", line.salt.uuid, name="Mine").status_code == 404
+
+
+def test_a_file_too_large_for_a_sheet_is_refused(visit: Visitor, monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.setattr(fields, "LARGEST_FILE", len(SHEET) - 1)
+    page = visit.post("add-product", **said(sulfate()))
+    assert page.status_code == 400
+    assert "larger than 20 MB" in text_of(page)

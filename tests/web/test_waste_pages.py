@@ -20,6 +20,7 @@ def ask(visit: Visitor, drum: WasteContainer, source: object, **headers: str) ->
 
 def test_may_this_go_in_here_answers_allowed(visit: Visitor, filled: Line) -> None:
     page = text_of(ask(visit, filled.drum, filled.bath.uuid))
+    assert "Copper bath into Drum 7" in page
     assert "allowed" in page
     assert f"?source={filled.bath.uuid}&amp;target={filled.drum.vessel.uuid}" in page
     assert "NEVER" not in page
@@ -37,6 +38,8 @@ def test_with_htmx_only_the_answer_comes(visit: Visitor, filled: Line) -> None:
     page = ask(visit, filled.cyanide_drum, filled.bath.uuid, **{"HX-Request": "true"})
     assert "NEVER" in text_of(page)
     assert "<html" not in text_of(page)
+    nothing = ask(visit, filled.cyanide_drum, "", **{"HX-Request": "true"})
+    assert (nothing.status_code, text_of(nothing)) == (200, "<p>Choose the tank that it comes from.</p>")
 
 
 def test_nothing_chosen_is_told(visit: Visitor, filled: Line) -> None:

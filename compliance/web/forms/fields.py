@@ -20,6 +20,8 @@ from compliance.web import moments
 
 Text = str | Promise
 REQUIRED = gettext_lazy("This is needed.")
+LARGEST_FILE = 20 * 1024 * 1024
+"""Bytes of the largest file that is taken."""
 NO_CHOICE = gettext_lazy("Choose one from the list.")
 
 
@@ -196,6 +198,20 @@ class FlagField(forms.BooleanField):
 
     def __init__(self, **kwargs: Any) -> None:
         super().__init__(required=False, **kwargs)
+
+
+class SheetField(forms.FileField):
+    """A PDF to keep, of a size that a sheet may have."""
+
+    def __init__(self, **kwargs: Any) -> None:
+        super().__init__(required=False, widget=forms.FileInput(attrs={"accept": "application/pdf"}), **kwargs)
+        self.validators.append(check_size)
+
+
+def check_size(upload: Any) -> None:
+    """Refuse a file that is too large to be a sheet."""
+    if (upload.size or 0) > LARGEST_FILE:
+        raise ValidationError(_("This file is larger than 20 MB. Ask the supplier for a smaller one."))
 
 
 class DayField(forms.DateField):

@@ -24,6 +24,7 @@ from compliance.web.forms.fields import (
     DayField,
     FlagField,
     LineField,
+    SheetField,
     ThingField,
     WordField,
     WordsField,
@@ -110,12 +111,7 @@ class RevisionForm(HazardForm):
             help_text=_("Without this, every metal not named is unknown wherever it is poured in."),
         )
         self.fields.update(hazards)
-        self.fields["sheet"] = forms.FileField(
-            label=_("Safety data sheet"),
-            required=False,
-            help_text=_("The PDF from the supplier."),
-            widget=forms.FileInput(attrs={"accept": "application/pdf"}),
-        )
+        self.fields["sheet"] = SheetField(label=_("Safety data sheet"), help_text=_("The PDF from the supplier."))
         self.fields["sheet_date"] = DayField(label=_("Revision date of the sheet"), required=False)
 
     def to_revision(self, sheet: Any) -> RevisionInput:

@@ -12,6 +12,7 @@ from django.utils.translation import gettext as _
 from django.views.decorators.cache import never_cache
 from django.views.decorators.http import require_http_methods
 
+from chemicals.ledger.codes import tidy_code
 from chemicals.ledger.selectors import find_workshop_of_code, get_vessel_by_code_for
 from chemicals.workshop.errors import NotFoundError
 from chemicals.workshop.links import link_tokens
@@ -29,7 +30,6 @@ class SignIn(LoginView):
     template_name = "web/sign-in.html"
     authentication_form = SignInForm
     redirect_authenticated_user = True
-    extra_context = {"heading": _("Sign in")}
 
 
 class SignOut(LogoutView):
@@ -105,4 +105,4 @@ def scan(request: HttpRequest, code: str) -> HttpResponseBase:
 @signed_in()
 def find_code(request: HttpRequest) -> HttpResponse:
     """Open the page of a typed code."""
-    return HttpResponseRedirect(reverse("scan", args=[request.GET.get("code", "").strip() or "-"]))
+    return HttpResponseRedirect(reverse("scan", args=[tidy_code(request.GET.get("code", "")) or "-"]))

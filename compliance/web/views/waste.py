@@ -10,7 +10,7 @@ from django.utils.translation import gettext as _
 
 from chemicals.journal.selectors import list_entries_naming
 from chemicals.ledger.models import VesselKind
-from chemicals.ledger.selectors import list_vessels_for, read_contents
+from chemicals.ledger.selectors import get_vessel_for, list_vessels_for, read_contents
 from chemicals.process.inputs import DrumOffInput
 from chemicals.science.reactivity import REACTS_AS
 from chemicals.workshop.errors import InvalidInputError
@@ -95,14 +95,15 @@ def may_go_in(request: HttpRequest, member: Membership, uuid: UUID) -> HttpRespo
     """Answer whether the contents of a tank may go into a waste container. Writes nothing."""
     found = get_container_for(member, uuid)
     form = MayForm(_tanks(member), request.GET)
-    if not form.is_valid():
-        return _container(request, member, found, may_form=form, status=400)
-    data = DrumOffInput(source=form.cleaned_data["source"], target=found.vessel.uuid)
-    verdict = preview(member, timezone.now(), data, None)
-    context = {"container": found, "may_form": form, "verdict": verdict, "source": form.cleaned_data["source"]}
-    if request.headers.get("HX-Request"):
-        return show(request, member, "web/_may.html", **context)
-    return _container(request, member, found, **context)
+    only_answer = bool(request.headers.get("HX-Request"))
+    context: dict[str, Any] = {"may_form": form}
+    if form.is_valid():
+        source = get_vessel_for(member, form.cleaned_data["source"])
+        data = DrumOffInput(source=source.uuid, target=found.vessel.uuid)
+        context |= {"source": source, "verdict": preview(member, timezone.now(), data, None)}
+    if only_answer:
+        return show(request, member, "web/_may.html", container=found, **context)
+    return _container(request, member, found, status=200 if form.is_valid() else 400, **context)
 
 
 @page("POST", need=require_writer)
