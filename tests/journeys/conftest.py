@@ -1,7 +1,6 @@
 """A real browser on a real server with the invented demo workshop in it."""
 
 import os
-import re
 from collections.abc import Callable, Iterator
 from dataclasses import dataclass
 from datetime import datetime
@@ -10,7 +9,7 @@ from typing import Any
 
 import pytest
 from axe_playwright_python.sync_playwright import Axe
-from playwright.sync_api import Browser, BrowserContext, ConsoleMessage, Page, sync_playwright
+from playwright.sync_api import Browser, BrowserContext, ConsoleMessage, Page, Response, sync_playwright
 from pytest_django.live_server_helper import LiveServer
 
 from compliance.ops.demo import load_demo
@@ -90,6 +89,7 @@ def visit(browser: Browser, live_server: LiveServer) -> Iterator[Callable[..., V
         complaints: list[str] = []
         page.on("pageerror", lambda error: complaints.append(str(error)))
         page.on("console", lambda message: complaints.append(message.text) if _is_complaint(message) else None)
+        page.on("response", lambda response: complaints.append(response.url) if _is_lost(response) else None)
         page.on("requestfailed", lambda request: complaints.append(f"failed: {request.url}"))
         return Visitor(page, live_server.url, complaints)
 
@@ -99,8 +99,13 @@ def visit(browser: Browser, live_server: LiveServer) -> Iterator[Callable[..., V
 
 
 def _is_complaint(message: ConsoleMessage) -> bool:
-    """Say whether the browser complains; that a refused form was answered with 400 or 409 is meant."""
-    return message.type == "error" and re.search(r"status of (400|409) ", message.text) is None
+    """Say whether the browser complains; answers are judged one by one, not by what the console says of them."""
+    return message.type == "error" and not message.text.startswith("Failed to load resource")
+
+
+def _is_lost(response: Response) -> bool:
+    """Say whether something that a page needs is not there; that a refused form is answered with 400 is meant."""
+    return response.status >= 400 and response.request.resource_type != "document"
 
 
 @pytest.fixture(scope="session")

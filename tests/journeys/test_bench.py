@@ -11,10 +11,10 @@ from tests.journeys.conftest import PHONE, Visitor
 People = dict[str, tuple[str, str]]
 
 
-def code_of(name: str) -> str:
-    """Return the code on a vessel of the demo."""
+def vessel_of(name: str) -> Vessel:
+    """Return a vessel of the demo."""
     with scopes_disabled():
-        return Vessel.objects.get(name=name).code
+        return Vessel.objects.get(name=name)
 
 
 def count_entries() -> int:
@@ -25,7 +25,7 @@ def count_entries() -> int:
 
 def scan_and_sign_in(visitor: Visitor, name: str, person: tuple[str, str]) -> None:
     """Scan the code on a vessel while signed out; sign in; stand on the vessel's page."""
-    visitor.go(f"/c/{code_of(name)}")
+    visitor.go(f"/c/{vessel_of(name).code}")
     visitor.page.get_by_label("E-mail").fill(person[0])
     visitor.page.get_by_label("Password").fill(person[1])
     visitor.page.get_by_role("button", name="Sign in").click()

@@ -1,5 +1,6 @@
 """At the desk: drum off, close, label, pack with a manifest, hand over."""
 
+import re
 from collections.abc import Callable
 from io import BytesIO
 from urllib.parse import urljoin
@@ -9,7 +10,7 @@ from pypdf import PdfReader
 from chemicals.journal.selectors import get_head
 from chemicals.workshop.models import Workshop
 from tests.journeys.conftest import DESK, Visitor
-from tests.journeys.test_bench import People, code_of
+from tests.journeys.test_bench import People, vessel_of
 
 
 def pdf_text(visitor: Visitor) -> str:
@@ -28,8 +29,8 @@ def test_from_the_rinse_to_the_collection_point(demo: People, visit: Callable[..
 
     page.get_by_role("navigation").get_by_role("link", name="Waste").click()
     page.get_by_role("link", name="Drum off").click()
-    page.get_by_label("From", exact=True).select_option(label="Copper second rinse")
-    page.get_by_label("Into", exact=True).select_option(label="Canister 2")
+    page.get_by_label(re.compile("^From")).select_option(str(vessel_of("Copper second rinse").uuid))
+    page.get_by_label(re.compile("^Into")).select_option(str(vessel_of("Canister 2").uuid))
     page.get_by_label("Amount").fill("3 L")
     visitor.check_page()
     page.get_by_role("button", name="See what follows").click()
@@ -43,7 +44,7 @@ def test_from_the_rinse_to_the_collection_point(demo: People, visit: Callable[..
     page.get_by_role("button", name="Issue a label").click()
     page.get_by_role("heading", level=1).wait_for()
     visitor.check_page()
-    assert code_of("Canister 2") in pdf_text(visitor)
+    assert vessel_of("Canister 2").code in pdf_text(visitor)
 
     workshop = Workshop.objects.get()
     visitor.go(f"/w/{workshop.uuid}/drop-offs/new/")
@@ -59,11 +60,11 @@ def test_from_the_rinse_to_the_collection_point(demo: People, visit: Callable[..
     page.get_by_role("heading", level=1).wait_for()
     visitor.check_page()
     paper = pdf_text(visitor)
-    assert code_of("Canister 2") in paper
+    assert vessel_of("Canister 2").code in paper
     assert "9.610" in paper
     assert head[1][:8] in paper.replace(" ", "").lower()
 
     page.go_back()
-    page.get_by_role("button", name="Hand over").click()
+    page.get_by_role("button", name="It was handed over").click()
     page.get_by_text("handed over").first.wait_for()
     visitor.check_page()

@@ -40,10 +40,10 @@ def test_every_page_is_accessible(
     visitor.check_page()
     visitor.sign_in(*demo["owner"])
     for name, path in pages_of_the_demo():
-        response = visitor.page.goto(visitor.url + path)
-        assert response is not None
-        if response.status != 200 or "text/html" not in response.headers["content-type"]:
-            continue
+        answer = visitor.page.request.get(visitor.url + path)
+        if answer.status == 405 or "text/html" not in answer.headers["content-type"]:
+            continue  # an address that only takes what a form sends
+        visitor.page.goto(visitor.url + path)
         seen += 1
         visitor.check_page()
         if pictures is not None:
