@@ -17,7 +17,7 @@ from chemicals.process.draft import WATER, Draft, by_dimension, measured
 from chemicals.process.models import Tank
 from chemicals.register.models import Product, ProductRevision
 from chemicals.register.selectors import build_recipe, get_current_revision, recipe_key
-from chemicals.science.formula import FormulaError, metal_fraction
+from chemicals.science.formula import METALS, FormulaError, metal_fraction
 from chemicals.science.quantity import Quantity
 from chemicals.workshop.models import Membership
 
@@ -81,6 +81,9 @@ def _poured(data: inputs.OpeningInput, vessel: Vessel, revision: ProductRevision
 
 def _held(draft: Draft, number: int, row: inputs.HeldRow, volume: Quantity | None) -> events.Held | None:
     amount = row.amount
+    if row.metal not in METALS:
+        draft.refuse(f"held.{number}.metal", "This is not balanced here. Choose a metal from the list.")
+        return None
     if amount.dimension == "mass":
         return events.Held(row.metal, Measured(amount.typed, amount.unit, amount.base))
     if volume is None:
@@ -180,6 +183,9 @@ def _build_level(draft: Draft, now: datetime, data: inputs.LevelInput) -> Event 
 def _build_analysis(draft: Draft, now: datetime, data: inputs.AnalysisInput) -> Event | None:
     vessel = draft.vessel(data, "vessel")
     salt = data.expressed_as.strip()
+    if data.metal not in METALS:
+        draft.refuse("metal", "This is not balanced here. Choose a metal from the list.")
+        return None
     try:
         fraction = metal_fraction(salt or data.metal, data.metal)
     except FormulaError as error:
