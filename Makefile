@@ -31,10 +31,6 @@ test-all: .venv/dev-stamp  ## the whole suite on SQLite, then on PostgreSQL, wit
 	DATABASE_URL= $(PY) -m pytest -n 2
 	DATABASE_URL=$(POSTGRES) $(PY) -m pytest -n 2
 
-drill: .venv/dev-stamp  ## back the demo up while somebody records, restore it to both databases, verify, compare
-	.ci/services.sh
-	$(PY) -m pytest -n 0 tests/ops/test_drill.py
-
 drill: .venv/dev-stamp  ## rehearse: back up while somebody records, restore to SQLite and PostgreSQL, prove, compare
 	.ci/services.sh
 	$(PY) -m pytest tests/ops/test_drill.py
