@@ -132,7 +132,7 @@ TEMPLATES = [
     }
 ]
 
-DATABASES = {"default": _database(os.environ.get("DATABASE_URL", f"sqlite://{DATA / 'gramledger.sqlite3'}"))}
+DATABASES = {"default": _database(os.environ.get("DATABASE_URL") or f"sqlite://{DATA / 'gramledger.sqlite3'}")}
 DEFAULT_AUTO_FIELD = "django.db.models.BigAutoField"
 ATTACHMENTS = DATA / "attachments"
 """Files by their SHA-256, outside the database."""

@@ -51,6 +51,17 @@ def refusal(command: str, **values: str) -> str:
     return result.stderr
 
 
+@pytest.mark.parametrize(
+    ("url", "vendor"),
+    [({}, "sqlite"), ({"DATABASE_URL": ""}, "sqlite"), ({"DATABASE_URL": "postgres://"}, "postgresql")],
+)
+def test_an_empty_variable_counts_as_not_set(tmp_path: Path, url: dict[str, str], vendor: str) -> None:
+    program = "import django; django.setup(); from django.db import connection; print(connection.vendor)"
+    variables = environment(DJANGO_SETTINGS_MODULE="compliance.settings", GRAMLEDGER_DATA=str(tmp_path), **url)
+    output = subprocess.check_output([sys.executable, "-c", program], cwd=ROOT, env=variables, text=True)
+    assert output.split() == [vendor]
+
+
 def test_serve_asks_for_a_data_folder() -> None:
     assert "Set GRAMLEDGER_DATA to the folder" in refusal("serve")
 
