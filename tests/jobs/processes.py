@@ -22,7 +22,7 @@ def database_url() -> str:
     """Return the address of the test's database, for other processes."""
     values = connection.settings_dict
     if connection.vendor == "sqlite":
-        return f"sqlite:///{values['NAME']}"
+        return f"sqlite://{values['NAME']}"
     account = f"{values['USER']}:{values['PASSWORD']}@{values['HOST']}:{values['PORT']}"
     return f"postgres://{account}/{values['NAME']}"
 
