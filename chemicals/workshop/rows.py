@@ -48,5 +48,3 @@ def _check_texts(row: models.Model) -> Iterator[FieldError]:
             setattr(row, field.attname, tidy(value))
             many_lines = isinstance(field, models.TextField)
             yield from find_unwritable(value, field.attname) if many_lines else find_bad_lines(**{field.attname: value})
-        elif isinstance(field, models.JSONField):
-            yield from find_unwritable(value, field.attname)

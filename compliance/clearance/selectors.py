@@ -1,6 +1,6 @@
-"""May this be done? Asks what was poured in, what the waste stream may hold, and what must never meet."""
+"""May this be done? Asks what was poured in, what the waste stream and its container may hold, what must never meet."""
 
-from collections.abc import Iterator
+from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 from datetime import datetime
 from itertools import pairwise
@@ -11,13 +11,13 @@ from chemicals.books import events
 from chemicals.books.events import BOUNDARIES
 from chemicals.books.occurred import Occurred
 from chemicals.ledger.models import Vessel
-from chemicals.ledger.selectors import read_memory
+from chemicals.ledger.selectors import list_held, read_memory
 from chemicals.process.inputs import Input
 from chemicals.process.selectors import Trial, try_out
 from chemicals.register.selectors import list_reactivity
 from chemicals.science.reactivity import DANGERS, UNKNOWN, Danger, find_dangers
 from chemicals.workshop.models import Membership, Workshop
-from compliance.waste.selectors import get_declared_reactivity
+from compliance.waste.selectors import find_obstacles, get_declared_reactivity
 
 FIRST_STEPS = (
     "Everyone out, and warn others. Shut off from outside only. Call the emergency number.",
@@ -28,26 +28,52 @@ FIRST_STEPS = (
 
 
 @dataclass(frozen=True)
+class Answer:
+    """Why something must not be done, and what to do first if it has happened. No reason: it may be done."""
+
+    reasons: tuple[str, ...]
+    first_steps: tuple[str, ...]
+
+
+@dataclass(frozen=True)
 class Preview:
     """The answer before anything is written: allowed or not, why, and what would be recorded."""
 
     allowed: bool
     reasons: tuple[str, ...]
+    first_steps: tuple[str, ...]
     trial: Trial
 
 
 def preview(member: Membership, now: datetime, data: Input, occurred: Occurred | None) -> Preview:
     """Return the verdict on an input and what would follow from it. Writes nothing."""
     trial = try_out(member, now, data, occurred)
-    reasons = tuple(find_reasons(member.workshop, trial.event))
-    return Preview(not reasons, reasons, trial)
+    answer = ask(member.workshop, trial.event, now if trial.occurred is None else trial.occurred.at)
+    return Preview(not answer.reasons, answer.reasons, answer.first_steps, trial)
 
 
-def find_reasons(workshop: Workshop, event: events.Event) -> Iterator[str]:
-    """Yield why this must not be done: every pair of liquids that would meet, with the danger named."""
+def ask(workshop: Workshop, event: events.Event, at: datetime) -> Answer:
+    """Return whether something may be done, or might have been done at that moment."""
     with scope(workshop=workshop):
         rows = Vessel.objects.filter(uuid__in=event.vessels()).select_related("workshop")
         vessels = {str(vessel.uuid): vessel for vessel in rows}
+    dangers = tuple(_find_dangers(vessels, event))
+    obstacles: tuple[str, ...] = ()
+    if isinstance(event, events.Move):
+        obstacles = tuple(find_obstacles(vessels[event.target], at, _poured(vessels, event)))
+    return Answer(dangers + obstacles, FIRST_STEPS if dangers else ())
+
+
+def _poured(vessels: Mapping[str, Vessel], event: events.Move) -> int | None:
+    """Return how much would be poured, as far as that is known."""
+    if event.volume is not None:
+        return event.volume.base
+    held = {row.component: row.amount for row in list_held(vessels[event.source])}
+    return held.get(events.VOLUME, 0)
+
+
+def _find_dangers(vessels: Mapping[str, Vessel], event: events.Event) -> Iterator[str]:
+    """Yield every pair of liquids that would meet and never must, with the danger named."""
     for one, other in _meetings(event):
         if one not in BOUNDARIES:
             for danger in find_dangers_between(vessels[one], vessels[other]):

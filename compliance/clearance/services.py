@@ -17,7 +17,7 @@ from chemicals.process.services import record_matter
 from chemicals.workshop.errors import ConflictError
 from chemicals.workshop.models import Membership
 from chemicals.workshop.permissions import require_writer
-from compliance.clearance.selectors import FIRST_STEPS, find_reasons
+from compliance.clearance.selectors import ask
 
 
 class RefusedError(ConflictError):
@@ -43,10 +43,11 @@ def record(
     with transaction.atomic(), scope(workshop=actor.workshop):
         lock_chain(actor)  # nothing is poured in between the answer and the record
         built = build(actor, now, data, occurred)
-        reasons = tuple(find_reasons(actor.workshop, built.event))
-        if reasons and not already_happened and not _is_retry(actor, key):
-            raise RefusedError(reasons)
-        clearance = Clearance(INCIDENT, reasons + FIRST_STEPS) if reasons else Clearance(ALLOWED)
+        answer = ask(actor.workshop, built.event, now if built.occurred is None else built.occurred.at)
+        if answer.reasons and not already_happened and not _is_retry(actor, key):
+            raise RefusedError(answer.reasons)
+        incident = Clearance(INCIDENT, answer.reasons + answer.first_steps)
+        clearance = incident if answer.reasons else Clearance(ALLOWED)
         return record_matter(
             actor=actor,
             now=now,

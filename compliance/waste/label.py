@@ -95,7 +95,8 @@ def never_with(container: WasteContainer) -> list[str]:
 def _first_drop(container: WasteContainer) -> str | None:
     """Return the day on which the first drop went in."""
     with scope(workshop=container.vessel.workshop):
-        first = Content.objects.filter(vessel=container.vessel).order_by("occurred_at", "sequence").first()
+        drops = Content.objects.filter(vessel=container.vessel).exclude(amount=0)
+        first = drops.order_by("occurred_at", "sequence").first()
     return None if first is None else _day(container, first.occurred_at)
 
 

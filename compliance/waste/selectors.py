@@ -1,6 +1,8 @@
 """Reads about waste: streams, containers, what a container may react as."""
 
+from collections.abc import Iterator
 from dataclasses import dataclass
+from datetime import datetime
 from uuid import UUID
 
 from django.db.models import Prefetch, QuerySet
@@ -8,6 +10,7 @@ from django_scopes import scope
 
 from chemicals.books.events import VOLUME
 from chemicals.ledger.models import Holding, Vessel, VesselKind
+from chemicals.science.quantity import show
 from chemicals.workshop.errors import NotFoundError
 from chemicals.workshop.models import Membership
 from compliance.waste.models import WasteContainer, WasteStream
@@ -94,6 +97,22 @@ def read_fill(container: WasteContainer) -> Fill:
     """Return how full a listed container is, without a query."""
     rows: list[Holding] = getattr(container.vessel, "volumes", [])
     return Fill(rows[0].amount if rows else 0, container.vessel.capacity)
+
+
+def find_obstacles(vessel: Vessel, at: datetime, volume: int | None) -> Iterator[str]:
+    """Yield why nothing more, or not so much, goes into a waste container at a moment; ``volume`` None is unknown."""
+    if vessel.kind != VesselKind.WASTE:
+        return
+    with scope(workshop=vessel.workshop):
+        container = WasteContainer.objects.filter(vessel=vessel).first()
+        held = Holding.objects.filter(vessel=vessel, component__code=VOLUME).values_list("amount", flat=True).first()
+    if container is not None and container.closed_at is not None and at >= container.closed_at:
+        yield f"{vessel.name} is closed and weighed: what goes in now stands on no paper. Use another container."
+    elif None not in (vessel.capacity, volume) and (held or 0) + (volume or 0) > (vessel.capacity or 0):
+        yield (
+            f"{vessel.name} holds {show(held or 0, 'volume')} of at most {show(vessel.capacity or 0, 'volume')}: "
+            f"{show(volume or 0, 'volume')} more would run over. Use another container, or read its level."
+        )
 
 
 def get_declared_reactivity(vessel: Vessel) -> frozenset[str]:

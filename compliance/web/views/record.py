@@ -12,7 +12,7 @@ from chemicals.process.inputs import INPUTS
 from chemicals.workshop.errors import ConflictError, InvalidInputError
 from chemicals.workshop.models import Membership
 from chemicals.workshop.permissions import require_writer
-from compliance.clearance.selectors import FIRST_STEPS, preview
+from compliance.clearance.selectors import preview
 from compliance.clearance.services import RefusedError, record
 from compliance.web import words
 from compliance.web.door import page, show
@@ -78,7 +78,6 @@ def _preview(request: HttpRequest, form: RecordForm, status: int = 200) -> HttpR
         "heading": form.input.title,
         "form": form,
         "verdict": verdict,
-        "first_steps": FIRST_STEPS,
         "follows": words.Follows.of(folded.transfers, ends),
         "findings": [words.finding(each, ends) for each in folded.findings],
         "pairs": hidden_pairs(request.POST, without=("csrfmiddlewaretoken", "step", "more")),
