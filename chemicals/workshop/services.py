@@ -108,12 +108,13 @@ def create_place(*, actor: Membership, name: str, bund: str = "", exhaust_duct: 
 def create_token(*, actor: Membership, now: datetime, name: str) -> tuple[ApiToken, str]:
     """Create a key for the API with the actor's rights; return the row and the key, which is shown once."""
     require_writer(actor)
-    if not name.strip():
-        raise InvalidInputError.of("name", "Name the token after the program that will use it.")
     key = "glt_" + secrets.token_urlsafe(32)
-    token = ApiToken.objects.create(
-        membership=actor, name=name.strip(), sha256=hashlib.sha256(key.encode()).hexdigest(), created_at=now
-    )
+    sha256 = hashlib.sha256(key.encode()).hexdigest()
+    token = ApiToken(membership=actor, name=name, sha256=sha256, created_at=now)
+    errors = check_row(token)
+    if errors:
+        raise InvalidInputError(errors)
+    token.save()
     return token, key
 
 
