@@ -1,5 +1,6 @@
 """Writes about receivers and drop-offs: draft, packed with a manifest, handed over."""
 
+from collections.abc import Iterable, Iterator
 from datetime import date, datetime
 from itertools import combinations
 from uuid import uuid5
@@ -49,22 +50,10 @@ def create_drop_off(
     """Draft a drop-off of closed containers."""
     require_writer(actor)
     require_same_workshop(actor, receiver, *(container.vessel for container in containers))
-    errors = []
-    if mode not in Mode.values:
-        errors.append(FieldError("mode", "Choose brought or picked up."))
-    if not containers:
-        errors.append(FieldError("containers", "Choose at least one closed container."))
-    errors.extend(
-        FieldError("containers", f"{container.vessel.name} is not closed. Weigh and close it first.")
-        for container in containers
-        if container.closed_at is None
-    )
     with transaction.atomic(), scope(workshop=actor.workshop):
-        taken = DropOffContainer.objects.filter(vessel__in=[container.vessel for container in containers])
-        errors.extend(
-            FieldError("containers", f"{row.vessel.name} goes along on another drop-off already.")
-            for row in taken.select_related("vessel")
-        )
+        locked = WasteContainer.objects.select_for_update().filter(pk__in=[container.pk for container in containers])
+        rows = {row.pk: row for row in locked.select_related("vessel").order_by("pk")}
+        errors = [*_check_draft(mode, [rows[container.pk] for container in containers]), *_check_free(rows.values())]
         if errors:
             raise InvalidInputError(errors)
         drop_off = DropOff.objects.create(
@@ -79,6 +68,24 @@ def create_drop_off(
             DropOffContainer(drop_off=drop_off, vessel=container.vessel) for container in containers
         )
         return drop_off
+
+
+def _check_draft(mode: str, containers: list[WasteContainer]) -> Iterator[FieldError]:
+    if mode not in Mode.values:
+        yield FieldError("mode", "Choose brought or picked up.")
+    if not containers:
+        yield FieldError("containers", "Choose at least one closed container.")
+    for number, container in enumerate(containers):
+        if container.closed_at is None:
+            yield FieldError("containers", f"{container.vessel.name} is not closed. Weigh and close it first.")
+        if container in containers[:number]:
+            yield FieldError("containers", f"{container.vessel.name} stands twice in the list. Choose it once.")
+
+
+def _check_free(containers: Iterable[WasteContainer]) -> Iterator[FieldError]:
+    taken = DropOffContainer.objects.filter(vessel__in=[container.vessel for container in containers])
+    for row in taken.select_related("vessel"):
+        yield FieldError("containers", f"{row.vessel.name} goes along on another drop-off already.")
 
 
 def find_load_dangers(containers: list[WasteContainer]) -> tuple[str, ...]:
