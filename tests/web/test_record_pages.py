@@ -126,6 +126,16 @@ def test_what_has_happened_already_is_recorded_as_an_incident(visit: Visitor, fi
     assert today.index("Incidents") < today.index("What happened last")
 
 
+def test_what_only_has_no_room_is_refused_without_alarm(visit: Visitor, filled: Line) -> None:
+    said = {"key": uuid4(), "source": filled.bath.uuid, "target": filled.drum.vessel.uuid, "volume": "24 L"}
+    page = visit.post("record", "drum-off", **said, step="preview")
+    text = text_of(page)
+    assert "Not this way" in text
+    assert "NEVER" not in text
+    assert "Everyone out" not in text
+    assert "It has already happened" in text
+
+
 def test_saying_it_has_happened_makes_no_incident_of_what_is_allowed(visit: Visitor, filled: Line) -> None:
     visit.post("record", "run", **run(filled), step="incident")
     assert Entry._base_manager.latest("sequence").verdict == "allowed"
