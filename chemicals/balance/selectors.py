@@ -90,7 +90,7 @@ def list_metals_for(member: Membership) -> list[str]:
 
 
 def get_book_balance(member: Membership, component: str, start: datetime, end: datetime) -> BookBalance:
-    """Return the balance of a component for start <= time < end. Seven queries, whatever the number of entries."""
+    """Return the balance of a component for start <= time < end. Eight queries, whatever the number of entries."""
     workshop = member.workshop
     with scope(workshop=workshop):
         row = Component.objects.filter(code=component).first()
@@ -206,9 +206,20 @@ def _vessel_rows(
 
 
 def _named_flows(vessels: Mapping[int, Vessel], flows: Flows, unknown: set[tuple[str, str]]) -> Iterable[Flow]:
+    """Yield the flows, the largest first, then those of which nothing is known but that there were some."""
+    by_uuid = {str(vessel.uuid): vessel for vessel in vessels.values()}
+
+    def key(end: End) -> str:
+        return str(vessels[end].uuid) if isinstance(end, int) else end
+
+    def named(source: str, target: str, amount: Amount) -> Flow:
+        names = [by_uuid[end].name if end in by_uuid else end for end in (source, target)]
+        return Flow(names[0], names[1], amount, source in by_uuid and target in by_uuid)
+
+    known = set()
     for (source, target), (amount, variance) in sorted(flows.items(), key=lambda item: -item[1][0]):
-        ends = [str(vessels[end].uuid) if isinstance(end, int) else end for end in (source, target)]
-        names = [vessels[end].name if isinstance(end, int) else end for end in (source, target)]
-        value = None if (ends[0], ends[1]) in unknown else amount
-        both = isinstance(source, int) and isinstance(target, int)
-        yield Flow(names[0], names[1], Amount(value, root(variance)), both)
+        pair = key(source), key(target)
+        known.add(pair)
+        yield named(*pair, Amount(None if pair in unknown else amount, root(variance)))
+    for pair in sorted(unknown - known):
+        yield named(*pair, Amount(None, 0))
