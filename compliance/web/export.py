@@ -8,7 +8,7 @@ from datetime import date, datetime
 from decimal import Decimal
 from typing import Any
 
-from django.http import HttpRequest, HttpResponse
+from django.http import Http404, HttpRequest, HttpResponse
 from django.utils import timezone
 
 FORMULA_SIGNS = ("=", "+", "-", "@", "\t", "\r")
@@ -23,9 +23,24 @@ class Column:
     read: Callable[[Any], object]
 
 
+Listed = tuple[Sequence[Column], Callable[[], Iterable[Any]]]
+"""Columns of a list, and how to get its rows."""
+
+
 def is_wanted(request: HttpRequest) -> bool:
-    """Say whether the address asks for the list as CSV."""
+    """Say whether the address asks for a list as CSV."""
     return request.GET.get("as") == "csv"
+
+
+def wanted_file(request: HttpRequest, **lists: Listed) -> HttpResponse | None:
+    """Return the list that the address asks for as CSV: the first, or the one named by ``list``. None: the page."""
+    if not is_wanted(request):
+        return None
+    name = request.GET.get("list", next(iter(lists)))
+    if name not in lists:
+        raise Http404("no such list")
+    columns, rows = lists[name]
+    return to_csv(name.replace("_", "-"), columns, rows())
 
 
 def to_csv(name: str, columns: Sequence[Column], rows: Iterable[Any]) -> HttpResponse:

@@ -2,6 +2,7 @@
 
 import csv
 import io
+import re
 from collections.abc import Callable
 from datetime import datetime
 from typing import Any
@@ -86,16 +87,25 @@ def rows_of(response: Any) -> list[dict[str, str]]:
 @pytest.mark.parametrize("name", [name for name in COUNTS if name != "today"])
 def test_every_list_is_a_file_too(name: str, visit: Visitor, grow: Callable[[str], None]) -> None:
     grow("one")
-    linked = visit.get(name).content.decode()
-    assert "as=csv" in linked
-    response = visit.get(name, query="?as=csv")
-    assert response.headers["Content-Type"] == "text/csv; charset=utf-8"
-    assert response.headers["Content-Disposition"].startswith("attachment; ")
-    assert rows_of(response)
+    linked = set(re.findall(r'href="(\?[^"]*as=csv)"', visit.get(name).content.decode()))
+    assert linked
+    for query in linked:
+        response = visit.get(name, query=query.replace("&amp;", "&"))
+        assert response.headers["Content-Type"] == "text/csv; charset=utf-8"
+        assert response.headers["Content-Disposition"].startswith("attachment; ")
+        assert rows_of(response), query
+
+
+def test_every_list_of_a_page_has_its_own_file(visit: Visitor, grow: Callable[[str], None]) -> None:
+    grow("one")
+    for name, first in (("stock", "vessel"), ("rack_types", "rack type"), ("routes", "route"), ("places", "place")):
+        page = {"stock": "register", "places": "workshop"}.get(name, "tanks")
+        assert first in rows_of(visit.get(page, query=f"?list={name}&as=csv"))[0]
+    assert visit.get("tanks", query="?list=secrets&as=csv").status_code == 404
 
 
 def test_the_file_of_tanks_has_one_line_for_each_content_in_plain_units(visit: Visitor, filled: Line) -> None:
-    rows = [row for row in rows_of(visit.get("tanks", query="?as=csv")) if row["tank"] == "Copper bath"]
+    rows = [row for row in rows_of(visit.get("tanks", query="?as=csv")) if row["vessel"] == "Copper bath"]
     assert [(row["component"], row["amount"], row["unit"]) for row in rows if row["component"] != "gross mass"] == [
         ("volume", "15", "L"),
         ("Cu", "763.53849", "g"),

@@ -19,7 +19,7 @@ from compliance.dropoffs.selectors import (
 )  # fmt: skip
 from compliance.dropoffs.services import create_drop_off, create_receiver, hand_over, pack_drop_off
 from compliance.web.door import page, show
-from compliance.web.export import Column, is_wanted, to_csv
+from compliance.web.export import Column, wanted_file
 from compliance.web.forms.waste import DropOffForm, HandOverForm, ReceiverForm
 from compliance.web.views.acts import address, fill_in, sent
 
@@ -31,16 +31,20 @@ COLUMNS = (
     Column("containers", lambda row: "; ".join(each.vessel.code for each in row.containers.all())),
     Column("manifest", lambda row: row.manifest.number if row.manifest else None),
 )
+RECEIVER_COLUMNS = (
+    Column("receiver", lambda row: row.name),
+    Column("address", lambda row: row.address),
+    Column("our number there", lambda row: row.reference),
+)
 
 
 @page()
 def index(request: HttpRequest, member: Membership) -> HttpResponse:
     """List drop-offs and receivers."""
     rows = list_drop_offs_for(member)
-    if is_wanted(request):
-        return to_csv("drop-offs", COLUMNS, rows)
     receivers = list_receivers_for(member)
-    return show(request, member, "web/drop-offs.html", here="drop-offs", drop_offs=rows, receivers=receivers)
+    file = wanted_file(request, drop_offs=(COLUMNS, lambda: rows), receivers=(RECEIVER_COLUMNS, lambda: receivers))
+    return file or show(request, member, "web/drop-offs.html", here="drop-offs", drop_offs=rows, receivers=receivers)
 
 
 @page("GET", "POST", need=require_writer)

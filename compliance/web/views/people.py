@@ -28,7 +28,7 @@ from chemicals.workshop.services import (
 )
 from compliance.documents.words import grouped
 from compliance.web.door import page, show
-from compliance.web.export import Column, is_wanted, to_csv
+from compliance.web.export import Column, wanted_file
 from compliance.web.forms.people import InviteForm, MemberForm, PlaceForm, TokenForm, WorkshopForm
 from compliance.web.views.acts import address, fill_in, sent
 
@@ -50,10 +50,9 @@ PLACE_COLUMNS = (
 def index(request: HttpRequest, member: Membership) -> HttpResponse:
     """Show the workshop: settings, people, places, the member's own keys, the end of the chain."""
     people, places = list_members_for(member), list_places_for(member)
-    if is_wanted(request):
-        return to_csv("places", PLACE_COLUMNS, places) if "places" in request.GET else to_csv("people", COLUMNS, people)
+    file = wanted_file(request, people=(COLUMNS, lambda: people), places=(PLACE_COLUMNS, lambda: places))
     sequence, head = get_head(member.workshop)
-    return show(
+    return file or show(
         request,
         member,
         "web/workshop.html",

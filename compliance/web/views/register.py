@@ -24,8 +24,9 @@ from chemicals.science.reactivity import REACTS_AS
 from chemicals.workshop.models import Membership
 from chemicals.workshop.permissions import require_writer
 from chemicals.workshop.selectors import get_place_for
+from compliance.web.contents import CONTENT_COLUMNS, parts_of
 from compliance.web.door import page, show
-from compliance.web.export import Column, is_wanted, to_csv
+from compliance.web.export import Column, wanted_file
 from compliance.web.forms.register import ProductForm, RevisionForm, StockForm, SubstanceForm, start_from
 from compliance.web.views.acts import address, fill_in, sent
 
@@ -55,21 +56,18 @@ SUBSTANCE_COLUMNS = (
 def index(request: HttpRequest, member: Membership) -> HttpResponse:
     """List the products as they are known now."""
     revisions = list_current_revisions_for(member)
-    if is_wanted(request):
-        return to_csv("register", COLUMNS, revisions)
-    stocks = list(list_vessels_for(member, VesselKind.STOCK))
     contents = list_contents_for(member)
-    held = [(vessel, contents.get(vessel.pk)) for vessel in stocks]
-    return show(request, member, "web/register.html", here="register", revisions=revisions, stocks=held)
+    held = [(vessel, contents.get(vessel.pk)) for vessel in list_vessels_for(member, VesselKind.STOCK)]
+    file = wanted_file(request, products=(COLUMNS, lambda: revisions), stock=(CONTENT_COLUMNS, lambda: parts_of(held)))
+    return file or show(request, member, "web/register.html", here="register", revisions=revisions, stocks=held)
 
 
 @page()
 def substances(request: HttpRequest, member: Membership) -> HttpResponse:
     """List the substances."""
     rows = list_substances_for(member)
-    if is_wanted(request):
-        return to_csv("substances", SUBSTANCE_COLUMNS, rows)
-    return show(request, member, "web/substances.html", here="register", substances=rows)
+    file = wanted_file(request, substances=(SUBSTANCE_COLUMNS, lambda: rows))
+    return file or show(request, member, "web/substances.html", here="register", substances=rows)
 
 
 @page("GET", "POST", need=require_writer)

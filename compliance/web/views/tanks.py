@@ -7,33 +7,31 @@ from django.utils import timezone
 from django.utils.translation import gettext as _
 
 from chemicals.ledger.models import Vessel, VesselKind
-from chemicals.ledger.selectors import Contents, Held, list_contents_for, list_vessels_for
+from chemicals.ledger.selectors import list_contents_for, list_vessels_for
 from chemicals.process.selectors import get_rack_type_for, list_rack_types_for, list_routes_for
 from chemicals.process.setup import create_holder, create_rack_type, create_route, create_tank
 from chemicals.register.selectors import get_product_for
 from chemicals.workshop.models import Membership
 from chemicals.workshop.permissions import require_writer
+from compliance.web.contents import CONTENT_COLUMNS, parts_of
 from compliance.web.door import page, show
-from compliance.web.export import Column, grams, is_wanted, litres, to_csv
+from compliance.web.export import Column, litres, wanted_file
 from compliance.web.forms.tanks import AnodeForm, BathForm, RackTypeForm, RinseForm, RouteForm
 from compliance.web.views.acts import address, fill_in, sent
 
 KINDS = (VesselKind.BATH, VesselKind.RINSE, VesselKind.ANODE)
 FORMS = {"bath": BathForm, "rinse": RinseForm}
-COLUMNS = (
-    Column("tank", lambda row: row[0].name),
-    Column("code", lambda row: row[0].code),
-    Column("kind", lambda row: row[0].kind),
-    Column("place", lambda row: row[0].place.name if row[0].place else ""),
-    Column("component", lambda row: row[1].component if row[1] else ""),
-    Column("unit", lambda row: "" if row[1] is None else "L" if row[1].component == "volume" else "g"),
-    Column("amount", lambda row: _number(row[1], row[1].amount) if row[1] else None),
-    Column("standard uncertainty", lambda row: _number(row[1], row[1].sd) if row[1] and row[1].amount else None),
+RACK_COLUMNS = (
+    Column("rack type", lambda row: row.name),
+    Column("area (mm2)", lambda row: row.area),
+    Column("drag-out per load (L)", lambda row: litres(row.drag_out)),
+    Column("its relative uncertainty (ppm)", lambda row: row.drag_out_sd),
 )
-
-
-def _number(held: Held, base: int | None) -> object:
-    return litres(base) if held.component == "volume" else grams(base)
+ROUTE_COLUMNS = (
+    Column("route", lambda row: row.name),
+    Column("rack type", lambda row: row.rack.name),
+    Column("tanks", lambda row: "; ".join(step.vessel.name for step in row.steps.all())),
+)
 
 
 @page()
@@ -41,25 +39,15 @@ def index(request: HttpRequest, member: Membership) -> HttpResponse:
     """List tanks and anode sets with what they hold, and the set-up of the line."""
     contents = list_contents_for(member)
     rows = [(vessel, contents.get(vessel.pk)) for vessel in list_vessels_for(member, *KINDS)]
-    if is_wanted(request):
-        return to_csv("tanks", COLUMNS, [(vessel, part) for vessel, held in rows for part in _parts(held)])
-    groups = [(kind.label, [row for row in rows if row[0].kind == kind]) for kind in KINDS]
-    return show(
+    racks, routes = list_rack_types_for(member), list_routes_for(member)
+    file = wanted_file(
         request,
-        member,
-        "web/tanks.html",
-        here="tanks",
-        groups=groups,
-        racks=list_rack_types_for(member),
-        routes=list_routes_for(member),
+        tanks=(CONTENT_COLUMNS, lambda: parts_of(rows)),
+        rack_types=(RACK_COLUMNS, lambda: racks),
+        routes=(ROUTE_COLUMNS, lambda: routes),
     )
-
-
-def _parts(held: Contents | None) -> list[Held | None]:
-    """Return what a vessel holds one by one; a line without a component if nothing was recorded."""
-    if held is None:
-        return [None]
-    return [part for part in (held.volume, held.mass, *held.metals) if part is not None] or [None]
+    groups = [(kind.label, [row for row in rows if row[0].kind == kind]) for kind in KINDS]
+    return file or show(request, member, "web/tanks.html", here="tanks", groups=groups, racks=racks, routes=routes)
 
 
 @page("GET", "POST", need=require_writer)

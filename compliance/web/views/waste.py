@@ -30,7 +30,7 @@ from compliance.waste.selectors import (
 )
 from compliance.waste.services import StreamInput, close_container, create_container, create_stream, issue_label
 from compliance.web.door import page, show
-from compliance.web.export import Column, grams, is_wanted, litres, to_csv
+from compliance.web.export import Column, grams, litres, wanted_file
 from compliance.web.forms.waste import CloseForm, ContainerForm, KeyForm, MayForm, StreamForm
 from compliance.web.rows import entry_rows
 from compliance.web.views.acts import address, fill_in, sent
@@ -48,16 +48,26 @@ COLUMNS = (
     Column("closed", lambda row: row.closed_at),
     Column("state", state_of),
 )
+STREAM_COLUMNS = (
+    Column("stream", lambda row: row.name),
+    Column("origin", lambda row: row.origin),
+    Column("profile number", lambda row: row.profile_number),
+    Column("code", lambda row: row.code),
+    Column("may react as", lambda row: "; ".join(row.reactivity)),
+    Column("signal word", lambda row: row.signal_word),
+    Column("pictograms", lambda row: " ".join(row.pictograms)),
+    Column("hazard statements", lambda row: "; ".join(row.statements)),
+)
 
 
 @page()
 def index(request: HttpRequest, member: Membership) -> HttpResponse:
     """List containers with their fill, and the streams."""
     containers = list_containers_for(member)
-    if is_wanted(request):
-        return to_csv("waste-containers", COLUMNS, containers)
+    streams = list_streams_for(member)
+    file = wanted_file(request, containers=(COLUMNS, lambda: containers), streams=(STREAM_COLUMNS, lambda: streams))
     rows = [(row, read_fill(row), state_of(row)) for row in containers]
-    return show(request, member, "web/waste.html", here="waste", rows=rows, streams=list_streams_for(member))
+    return file or show(request, member, "web/waste.html", here="waste", rows=rows, streams=streams)
 
 
 @page()
