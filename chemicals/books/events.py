@@ -30,7 +30,6 @@ UNKNOWN_LIQUID = "unknown/"
 """Begins the key by which a vessel remembers liquid that nobody can name; the vessel it was first met in follows."""
 VOLUME, GROSS_MASS = "volume", "gross mass"
 """The two components that are not substances: nanolitres and micrograms."""
-
 OBSERVED, COMPUTED, ASSUMED = "observed", "computed", "assumed"
 """The basis of a figure."""
 
