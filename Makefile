@@ -2,6 +2,7 @@
 # The stamps in .venv say what is installed; they make a second start quick.
 
 export PATH := $(if $(PATH),$(PATH),/usr/local/bin:/usr/bin:/bin)
+unexport PYTHONDONTWRITEBYTECODE  # many processes start: each module is compiled once
 PYTHON ?= python3
 PY := .venv/bin/python
 INSTALL := $(PY) -m pip install --quiet --quiet --no-input --disable-pip-version-check --no-deps --only-binary :all: --require-hashes -r
