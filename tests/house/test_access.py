@@ -1,20 +1,21 @@
 """Who sees what: every address and every method, as five kinds of people of two workshops."""
 
-from collections.abc import Callable
+from collections.abc import Callable, Iterator
 from datetime import datetime
 from typing import Any
 
 import pytest
 from django.apps import apps
-from django.db import models
+from django.db import models, transaction
 from django.test import Client
 from django_scopes import scopes_disabled
+from pytest_django.plugin import DjangoDbBlocker
 
 from chemicals.journal.models import Attachment
 from chemicals.workshop.models import Membership, Role, User, Workshop
 from chemicals.workshop.services import create_token
 from compliance.ops.demo import load_demo
-from tests.conftest import make_member
+from tests.conftest import NOW, make_member
 from tests.house.walk import METHODS, WRITING, Address, addresses, secrets_of
 
 PUBLIC = {"sign-in", "sign-out", "first-start", "set-password/<uidb64>/<token>"}
@@ -72,10 +73,18 @@ class Walk:
         return getattr(client, method)(address.path, headers=headers)
 
 
+@pytest.fixture(scope="module")
+def demo_walk(django_db_setup: None, django_db_blocker: DjangoDbBlocker) -> Iterator[Walk]:
+    """Load the demo once for all tests here; each of them runs in a savepoint of this transaction."""
+    with django_db_blocker.unblock(), transaction.atomic():
+        yield Walk(NOW)
+        transaction.set_rollback(True)
+
+
 @pytest.fixture
-def walk(db: None, now: datetime) -> Walk:
+def walk(demo_walk: Walk, db: None) -> Walk:
     """Return the walk through the demo workshop."""
-    return Walk(now)
+    return demo_walk
 
 
 def count_rows() -> dict[str, int]:
