@@ -34,25 +34,31 @@ class Danger:
 
     first: str
     second: str
-    danger: str
+    gives: str
+    harm: str = ""
+
+    @property
+    def danger(self) -> str:
+        """Return what happens, with the harm it does."""
+        return f"{self.gives}, {self.harm}" if self.harm else self.gives
 
 
 DANGERS = (
-    Danger(ACID, CYANIDE, "hydrogen cyanide, a gas that kills within minutes"),
-    Danger(NITRIC, CYANIDE, "hydrogen cyanide, a gas that kills within minutes"),
+    Danger(ACID, CYANIDE, "hydrogen cyanide", "a gas that kills within minutes"),
+    Danger(NITRIC, CYANIDE, "hydrogen cyanide", "a gas that kills within minutes"),
     Danger(OXIDISER, CYANIDE, "cyanogen chloride or a violent reaction"),
-    Danger(HYPOCHLORITE, CYANIDE, "cyanogen chloride, a poisonous gas"),
-    Danger(HYPOCHLORITE, ACID, "chlorine, a poisonous gas"),
-    Danger(HYPOCHLORITE, NITRIC, "chlorine, a poisonous gas"),
-    Danger(HYPOCHLORITE, AMMONIA, "chloramines, poisonous gases"),
-    Danger(SULFIDE, ACID, "hydrogen sulfide, a poisonous gas"),
-    Danger(SULFIDE, NITRIC, "hydrogen sulfide and nitrogen oxides, poisonous gases"),
-    Danger(SULFITE, ACID, "sulfur dioxide, a poisonous gas"),
-    Danger(SULFITE, NITRIC, "sulfur dioxide and nitrogen oxides, poisonous gases"),
-    Danger(FLUORIDE, ACID, "hydrogen fluoride, which burns deep and poisons"),
-    Danger(FLUORIDE, NITRIC, "hydrogen fluoride, which burns deep and poisons"),
-    Danger(NITRIC, ORGANIC, "fire, and nitrogen oxides that kill hours later"),
-    Danger(AMMONIA, PRECIOUS, "fulminating silver or gold, which explodes when it stands or dries"),
+    Danger(HYPOCHLORITE, CYANIDE, "cyanogen chloride", "a poisonous gas"),
+    Danger(HYPOCHLORITE, ACID, "chlorine", "a poisonous gas"),
+    Danger(HYPOCHLORITE, NITRIC, "chlorine", "a poisonous gas"),
+    Danger(HYPOCHLORITE, AMMONIA, "chloramines", "poisonous gases"),
+    Danger(SULFIDE, ACID, "hydrogen sulfide", "a poisonous gas"),
+    Danger(SULFIDE, NITRIC, "hydrogen sulfide and nitrogen oxides", "poisonous gases"),
+    Danger(SULFITE, ACID, "sulfur dioxide", "a poisonous gas"),
+    Danger(SULFITE, NITRIC, "sulfur dioxide and nitrogen oxides", "poisonous gases"),
+    Danger(FLUORIDE, ACID, "hydrogen fluoride", "which burns deep and poisons"),
+    Danger(FLUORIDE, NITRIC, "hydrogen fluoride", "which burns deep and poisons"),
+    Danger(NITRIC, ORGANIC, "fire", "and nitrogen oxides that kill hours later"),
+    Danger(AMMONIA, PRECIOUS, "fulminating silver or gold", "which explodes when it stands or dries"),
 )
 
 

@@ -5,7 +5,7 @@ from decimal import Decimal
 from typing import Any, Literal
 
 from django.utils.translation import gettext as _
-from django.utils.translation import gettext_lazy
+from django.utils.translation import gettext_lazy, ngettext
 
 from compliance.documents.shapes import HazardData, ManifestContainerData, Pictogram, SignalWord
 
@@ -105,7 +105,13 @@ def total_gross(containers: Sequence[ManifestContainerData]) -> str:
 def load(containers: Sequence[ManifestContainerData]) -> str:
     """The headline over the containers: how many, how heavy."""
     total = total_gross(containers)
-    return _("The load: %(count)d waste containers, gross %(total)s") % {"count": len(containers), "total": total}
+    count = len(containers)
+    text = ngettext(
+        "The load: %(count)d waste container, gross %(total)s",
+        "The load: %(count)d waste containers, gross %(total)s",
+        count,
+    )
+    return text % {"count": count, "total": total}
 
 
 def never_together(containers: Sequence[ManifestContainerData]) -> list[tuple[str, str]]:

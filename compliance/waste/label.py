@@ -12,7 +12,7 @@ from chemicals.ledger.models import Content
 from chemicals.ledger.selectors import Held, list_held
 from chemicals.science.formula import element_name
 from chemicals.science.quantity import show
-from chemicals.science.reactivity import DANGERS, REACTS_AS, UNKNOWN
+from chemicals.science.reactivity import DANGERS, UNKNOWN
 from compliance.waste.models import WasteContainer
 
 CAUTIONS = (
@@ -35,7 +35,7 @@ def build_label(container: WasteContainer) -> dict[str, Any]:
         "stream": stream.name,
         "origin": stream.origin,
         "contents": [
-            {"name": name_of(row.component), "amount": show_held(row), "note": show_sd(row) or ""}
+            {"name": name_of(row.component), "amount": show_held(row), "note": _doubt(row)}
             for row in held
             if row.component not in (VOLUME, GROSS_MASS)
         ],
@@ -59,7 +59,12 @@ def show_sd(row: Held) -> str | None:
     """Return the standard uncertainty as it is read, None where the amount is unknown."""
     if row.amount is None:
         return None
-    return "± " + show(row.sd, "volume" if row.component == VOLUME else "mass", digits=2)
+    return show(row.sd, "volume" if row.component == VOLUME else "mass", digits=2)
+
+
+def _doubt(row: Held) -> str:
+    sd = show_sd(row)
+    return "" if sd is None else f"± {sd}"
 
 
 def name_of(component: str) -> str:
@@ -80,12 +85,12 @@ def hazards_of(container: WasteContainer) -> dict[str, Any]:
 
 
 def never_with(container: WasteContainer) -> list[str]:
-    """Return what must never come together with this stream, with the danger named."""
+    """Return what must never come together with this stream, and what that would give."""
     kinds = set(container.stream.reactivity)
     if UNKNOWN in kinds or not kinds:
         return ["anything: nobody declared what it reacts as"]
     return [
-        f"{REACTS_AS[other]}: {danger.danger}"
+        f"{other} ({danger.gives})"
         for danger in DANGERS
         for one, other in ((danger.first, danger.second), (danger.second, danger.first))
         if one in kinds
