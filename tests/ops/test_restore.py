@@ -71,12 +71,21 @@ def empty(folder: Path) -> None:
             path.unlink()
 
 
+_saved: list[bytes] = []
+"""The backup that most tests start from, made by the first of them."""
+
+
 @pytest.fixture
-def saved(books: Books, now: datetime, tmp_path: Path) -> Path:
-    """Return a backup; database and folder are empty afterwards."""
+def saved(request: pytest.FixtureRequest, transactional_db: None, now: datetime, tmp_path: Path) -> Path:
+    """Return a backup of the books; database and folder are empty."""
     path = tmp_path / "saved.zip"
-    write_backup(path, now=now)
-    empty(tmp_path)
+    if _saved:
+        path.write_bytes(_saved[0])
+    else:
+        request.getfixturevalue("books")
+        write_backup(path, now=now)
+        _saved.append(path.read_bytes())
+        empty(tmp_path)
     return path
 
 

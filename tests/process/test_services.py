@@ -68,7 +68,7 @@ def test_a_late_entry_touches_only_what_follows_from_it(shop: Shop) -> None:
         assert set(early.values_list("pk", flat=True)) == before
 
 
-@pytest.mark.parametrize("number", range(len(WEEK)))
+@pytest.mark.parametrize("number", [0, 4, 6, 8])
 def test_a_cancelled_entry_is_as_if_it_had_not_been(shop: Shop, twin: Shop, number: int) -> None:
     for position, (verb, days_ago, said) in enumerate(WEEK):
         shop.record(verb, days_ago=days_ago, label="mistake" if position == number else "", **said)
