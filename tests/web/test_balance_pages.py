@@ -100,7 +100,7 @@ def test_the_page_shows_where_the_metal_went(visit: Visitor, filled: Line) -> No
     assert "received from suppliers" in text
     assert 'role="img"' in text
     assert "Copper bath → parts" in text
-    assert re.search(r"<td>Copper bath</td><td>parts</td><td class=\"number\">1\.18\d ± 0\.\d+ g</td>", text)
+    assert re.search(r"<td>Copper bath</td> <td>parts</td> <td class=\"number\">1\.18\d ± 0\.\d+ g</td>", text)
 
 
 def test_a_period_turned_round_is_refused(visit: Visitor, filled: Line) -> None:

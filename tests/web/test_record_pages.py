@@ -82,7 +82,7 @@ def test_errors_come_all_at_once_each_linked_to_its_field(visit: Visitor, filled
     assert page.status_code == 400
     assert "3 things are wrong" in text
     assert (
-        '<a href="#id_charge"><strong>Ampere-hours</strong>: &quot;1,500&quot; is ambiguous: write 1500 or 1.5.</a>'
+        '<a href="#id_charge"> <strong>Ampere-hours</strong>: &quot;1,500&quot; is ambiguous: write 1500 or 1.5. </a>'
         in text
     )
     assert 'aria-describedby="id_charge_helptext id_charge_error"' in text
@@ -92,7 +92,7 @@ def test_errors_come_all_at_once_each_linked_to_its_field(visit: Visitor, filled
 def test_what_only_the_domain_can_tell_stands_beside_its_field_too(visit: Visitor, filled: Line) -> None:
     page = visit.post("record", "level-reading", key=uuid4(), vessel=filled.bath.uuid, volume="31 L", step="preview")
     assert page.status_code == 400
-    assert '<a href="#id_volume"><strong>Volume now</strong>: This is more than the vessel can hold.' in text_of(page)
+    assert '<a href="#id_volume"> <strong>Volume now</strong>: This is more than the vessel can hold.' in text_of(page)
 
 
 def test_the_future_is_refused(visit: Visitor, filled: Line) -> None:
