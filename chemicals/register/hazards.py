@@ -3,7 +3,7 @@
 import re
 from collections.abc import Iterator, Sequence
 
-from chemicals.science.reactivity import REACTS_AS
+from chemicals.science.reactivity import NOTHING, REACTS_AS
 from chemicals.workshop.errors import FieldError
 from chemicals.workshop.texts import find_bad_lines
 
@@ -24,6 +24,8 @@ def check_hazards(
         unknown = sorted(set(values) - set(allowed))
         if unknown:
             yield FieldError(field, f"Unknown: {', '.join(unknown)}. Choose from the list.")
+    if NOTHING in reactivity and len(set(reactivity)) > 1:
+        yield FieldError("reactivity", "It reacts as nothing on the list, or as what you chose: not both.")
     for text in statements:
         yield from find_bad_lines(statements=text)
         if not STATEMENT.match(text.strip()):

@@ -1,15 +1,18 @@
 """What must never meet: the pairs of rule that is never soft, each with the gas or danger named.
 
 Facts of chemistry that any safety text on plating states; the names are those of the substances. What a product reacts
-as is declared by the user from the safety data sheet. "unknown" counts as both an acid and a cyanide.
+as is declared by the user from the safety data sheet. "unknown" counts as both an acid and a cyanide, and so does what
+nobody declared.
 """
 
 from collections.abc import Iterable, Iterator
 from dataclasses import dataclass
 
-ACID, CYANIDE, HYPOCHLORITE, AMMONIA, OXIDISER, SULFIDE, SULFITE, FLUORIDE, NITRIC, ORGANIC, PRECIOUS, UNKNOWN = (
-    "acid", "cyanide", "hypochlorite", "ammonia", "oxidiser", "sulfide", "sulfite", "fluoride",
-    "nitric or chromic acid", "organic", "silver or gold", "unknown",
+ACID, CYANIDE, HYPOCHLORITE, AMMONIA, OXIDISER, SULFIDE, SULFITE = (
+    "acid", "cyanide", "hypochlorite", "ammonia", "oxidiser", "sulfide", "sulfite",
+)  # fmt: skip
+FLUORIDE, NITRIC, ORGANIC, PRECIOUS, UNKNOWN, NOTHING = (
+    "fluoride", "nitric or chromic acid", "organic", "silver or gold", "unknown", "nothing",
 )  # fmt: skip
 REACTS_AS = {
     ACID: "an acid, or anything with a pH below 7",
@@ -24,6 +27,7 @@ REACTS_AS = {
     ORGANIC: "an organic liquid or solid that burns",
     PRECIOUS: "a silver or gold solution",
     UNKNOWN: "unknown: nobody knows what is in it",
+    NOTHING: "nothing on this list, as the sheet says",
 }
 """Every declared reactivity with its meaning."""
 
@@ -60,6 +64,11 @@ DANGERS = (
     Danger(NITRIC, ORGANIC, "fire", "and nitrogen oxides that kill hours later"),
     Danger(AMMONIA, PRECIOUS, "fulminating silver or gold", "which explodes when it stands or dries"),
 )
+
+
+def declared(kinds: Iterable[str]) -> frozenset[str]:
+    """Return what something reacts as: of what nobody declared, nobody knows."""
+    return frozenset(kinds) or frozenset({UNKNOWN})
 
 
 def find_dangers(one: Iterable[str], other: Iterable[str]) -> Iterator[Danger]:

@@ -10,12 +10,12 @@ from django_scopes import scope
 from chemicals.books import events
 from chemicals.books.events import BOUNDARIES
 from chemicals.books.occurred import Occurred
-from chemicals.ledger.models import Vessel
+from chemicals.ledger.models import Vessel, VesselKind
 from chemicals.ledger.selectors import list_held, read_memory
 from chemicals.process.inputs import Input
 from chemicals.process.selectors import Trial, try_out
 from chemicals.register.selectors import list_reactivity
-from chemicals.science.reactivity import DANGERS, UNKNOWN, Danger, find_dangers
+from chemicals.science.reactivity import DANGERS, UNKNOWN, Danger, declared, find_dangers
 from chemicals.workshop.models import Membership, Workshop
 from compliance.waste.selectors import find_obstacles, get_declared_reactivity
 
@@ -125,6 +125,7 @@ def read_marks(vessel: Vessel) -> dict[str, frozenset[str]]:
     """Return what each thing poured in reacts as, and what the stream of a waste container may react as."""
     _, poured = read_memory(vessel)
     known = list_reactivity(vessel.workshop, poured)
-    marks = {key: frozenset(known.get(key, [UNKNOWN])) for key in poured}
-    declared = get_declared_reactivity(vessel)
-    return {**marks, f"stream/{vessel.uuid}": declared} if declared else marks
+    marks = {key: declared(known.get(key, ())) for key in poured}
+    if vessel.kind == VesselKind.WASTE:
+        marks[f"stream/{vessel.uuid}"] = declared(get_declared_reactivity(vessel))
+    return marks

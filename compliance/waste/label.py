@@ -12,7 +12,7 @@ from chemicals.ledger.models import Content
 from chemicals.ledger.selectors import Held, list_held
 from chemicals.science.formula import element_name
 from chemicals.science.quantity import show
-from chemicals.science.reactivity import DANGERS, UNKNOWN
+from chemicals.science.reactivity import DANGERS, UNKNOWN, declared
 from compliance.waste.models import WasteContainer
 
 CAUTIONS = (
@@ -86,8 +86,8 @@ def hazards_of(container: WasteContainer) -> dict[str, Any]:
 
 def never_with(container: WasteContainer) -> list[str]:
     """Return what must never come together with this stream, and what that would give."""
-    kinds = set(container.stream.reactivity)
-    if UNKNOWN in kinds or not kinds:
+    kinds = declared(container.stream.reactivity)
+    if UNKNOWN in kinds:
         return ["anything: nobody declared what it reacts as"]
     return [
         f"{other} ({danger.gives})"

@@ -119,7 +119,12 @@ def shop(owner: Membership, now: datetime) -> Shop:
     sulfate = create_substance(
         actor=owner, name="Copper sulfate pentahydrate", cas_number="7758-99-8", formula="CuSO4.5H2O"
     )
-    salt = RevisionInput(form="solid", lines=(LineInput(sulfate, "98 %"),), statements=("H302 Harmful",))
+    salt = RevisionInput(
+        form="solid",
+        lines=(LineInput(sulfate, "98 %"),),
+        statements=("H302 Harmful",),
+        reactivity=("nothing",),
+    )
     product = create_product(**make, name="Blue salt", supplier="Invented Supply", revision=salt).product
     sour = RevisionInput(form="liquid", density="1.1 g/mL", reactivity=("acid",))
     acid = create_product(**make, name="Battery acid", supplier="", revision=sour).product

@@ -20,7 +20,8 @@ def upload(api: Caller, data: bytes, name: str = "sheet.pdf") -> Any:
 
 def fill_drum(api: Caller, shop: Shop) -> str:
     """Put up a drum for copper rinse, drum the rinse off into it, and return its uuid."""
-    said = {"name": "Copper rinse", "origin": "Copper line", "code": "11 01 11*", "statements": ["H412 Harms"]}
+    said = {"name": "Copper rinse", "origin": "Copper line", "code": "11 01 11*", "reactivity": ["nothing"]}
+    said |= {"statements": ["H412 Harms"]}
     stream = api.post("waste-streams/", said).json()
     drum = api.post(
         "waste-containers/",

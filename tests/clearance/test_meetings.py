@@ -23,6 +23,7 @@ from chemicals.process.inputs import (
 from chemicals.process.setup import TankInput, create_rack_type, create_route, create_tank
 from chemicals.register.services import RevisionInput, create_product
 from chemicals.science.quantity import parse
+from chemicals.workshop.errors import InvalidInputError
 from chemicals.workshop.models import Membership
 from compliance.clearance.selectors import preview
 from compliance.clearance.services import RefusedError, record
@@ -185,3 +186,21 @@ def test_what_has_happened_already_is_an_incident_with_first_steps(bench: Bench)
     assert bench.pour(wrong, already_happened=True) == "incident"
     with pytest.raises(RefusedError, match="hydrogen cyanide"):
         bench.pour(wrong)
+
+
+class TestUndeclaredProduct:
+    """Of what nobody declared, nobody knows what it reacts as; that a sheet says nothing has to be said."""
+
+    def test_counts_as_unknown(self, bench: Bench) -> None:
+        tank, plain = bench.made_from("Tank", bench.bottle("Acid", "acid")), bench.bottle("Plain")
+        with pytest.raises(RefusedError, match="hydrogen cyanide"):
+            bench.pour(TopUpInput(tank=tank.uuid, source=plain.uuid, volume=parse("1 mL", "volume")))
+
+    def test_declared_to_react_as_nothing_may_go_in(self, bench: Bench) -> None:
+        tank, harmless = bench.made_from("Tank", bench.bottle("Acid", "acid")), bench.bottle("Sugar", "nothing")
+        verdict = bench.pour(TopUpInput(tank=tank.uuid, source=harmless.uuid, volume=parse("1 mL", "volume")))
+        assert verdict == "allowed"
+
+    def test_nothing_and_something_are_not_declared_together(self, bench: Bench) -> None:
+        with pytest.raises(InvalidInputError, match="not both"):
+            bench.bottle("Both", "nothing", "acid")

@@ -20,7 +20,7 @@ from chemicals.register.selectors import (
     list_substances_for,
 )
 from chemicals.register.services import create_product, create_substance, keep_sheet, revise_product
-from chemicals.science.reactivity import REACTS_AS
+from chemicals.science.reactivity import REACTS_AS, declared
 from chemicals.workshop.models import Membership
 from chemicals.workshop.permissions import require_writer
 from chemicals.workshop.selectors import get_place_for
@@ -97,7 +97,7 @@ def product(request: HttpRequest, member: Membership, uuid: UUID) -> HttpRespons
         here="register",
         product=found,
         current=revisions[0],
-        reacts_as=[REACTS_AS[kind] for kind in revisions[0].reactivity],
+        reacts_as=[REACTS_AS[kind] for kind in sorted(declared(revisions[0].reactivity))],
         revisions=revisions,
         stocks=[(vessel, contents.get(vessel.pk)) for vessel in stocks],
     )
