@@ -1,24 +1,28 @@
-"""Lists: as many queries for three rows as for one, and every list as CSV."""
+"""Lists: as many queries for three rows as for one, and every list as a file."""
 
 import csv
 import io
 import re
 from collections.abc import Callable
 from datetime import datetime
+from decimal import Decimal
 from typing import Any
 from uuid import uuid4
 
 import pytest
+from django.test import RequestFactory
+from openpyxl import load_workbook
 
 from chemicals.ledger.models import VesselKind
 from chemicals.process.inputs import AnalysisInput, LevelInput
 from chemicals.process.setup import TankInput, create_holder, create_rack_type, create_route, create_tank
 from chemicals.register.services import LineInput, RevisionInput, create_product, create_substance
 from chemicals.science.quantity import parse
-from chemicals.workshop.models import Membership, Role
+from chemicals.workshop.models import Membership, Place, Role
 from chemicals.workshop.services import create_place, create_token
 from compliance.dropoffs.services import create_drop_off, create_receiver
 from compliance.waste.services import StreamInput, close_container, create_container, create_stream
+from compliance.web.export import Column, wanted_file
 from tests.conftest import make_member
 from tests.web.conftest import LITRE, Line, Say, Visitor
 
@@ -79,9 +83,19 @@ def test_a_list_asks_as_often_for_three_rows_as_for_one(
     assert page.status_code == 200
 
 
+XLSX = "application/vnd.openxmlformats-officedocument.spreadsheetml.sheet"
+
+
 def rows_of(response: Any) -> list[dict[str, str]]:
     text = response.content.decode("utf-8-sig")
     return list(csv.DictReader(io.StringIO(text)))
+
+
+def sheet_of(response: Any) -> list[dict[str, Any]]:
+    """Return the rows of an XLSX file, formulas as they would be stored."""
+    assert response.headers["Content-Type"] == XLSX
+    headings, *rows = load_workbook(io.BytesIO(response.content)).worksheets[0].iter_rows()
+    return [{str(head.value): cell for head, cell in zip(headings, row, strict=True)} for row in rows]
 
 
 @pytest.mark.parametrize("name", [name for name in COUNTS if name != "today"])
@@ -93,7 +107,46 @@ def test_every_list_is_a_file_too(name: str, visit: Visitor, grow: Callable[[str
         response = visit.get(name, query=query.replace("&amp;", "&"))
         assert response.headers["Content-Type"] == "text/csv; charset=utf-8"
         assert response.headers["Content-Disposition"].startswith("attachment; ")
-        assert rows_of(response), query
+        rows = rows_of(response)
+        assert rows, query
+        sheet = sheet_of(visit.get(name, query=query.replace("&amp;", "&").replace("as=csv", "as=xlsx")))
+        assert [[_as_text(cell.value) for cell in row.values()] for row in sheet] == [
+            list(row.values()) for row in rows
+        ]
+
+
+def _as_text(value: object) -> str:
+    """Return a cell of a sheet as CSV has it: numbers of a sheet are floats of at most 15 digits."""
+    if isinstance(value, float):
+        return f"{Decimal(repr(value)):f}"
+    return "" if value is None else str(value)
+
+
+def test_each_list_links_both_kinds_of_file(visit: Visitor, grow: Callable[[str], None]) -> None:
+    grow("one")
+    for name in [name for name in COUNTS if name != "today"]:
+        page = visit.get(name).content.decode()
+        as_csv, as_xlsx = (set(re.findall(rf'href="(\?[^"]*)as={kind}"', page)) for kind in ("csv", "xlsx"))
+        assert as_csv == as_xlsx
+
+
+def test_what_people_type_never_becomes_a_formula(visit: Visitor, owner: Membership) -> None:
+    typed = ['=HYPERLINK("http://x")', "+1", "-1", "@SUM(A1)", "\tTab"]
+    for name in typed:
+        Place.objects.create(workshop=owner.workshop, name=name)
+    guarded = {row["place"] for row in rows_of(visit.get("workshop", query="?list=places&as=csv"))}
+    assert guarded >= {f"'{name}" for name in typed}
+    cells = [row["place"] for row in sheet_of(visit.get("workshop", query="?list=places&as=xlsx"))]
+    assert {cell.value for cell in cells} >= set(typed)
+    assert {cell.data_type for cell in cells} == {"s"}
+
+
+def test_numbers_are_numbers_where_a_sheet_holds_them_exactly(rf: RequestFactory) -> None:
+    typed = [0, Decimal("-0.5"), Decimal("763.53849"), Decimal("123456789012.345678"), None, "bell\x07"]
+    column = Column("amount", lambda row: row)
+    file = wanted_file(rf.get("/?as=xlsx"), amounts=([column], lambda: typed))
+    assert [row["amount"].value for row in sheet_of(file)] == [0, -0.5, 763.53849, "123456789012.345678", None, "bell"]
+    assert wanted_file(rf.get("/?as=pdf"), amounts=([column], lambda: typed)) is None
 
 
 def test_every_list_of_a_page_has_its_own_file(visit: Visitor, grow: Callable[[str], None]) -> None:

@@ -4,11 +4,12 @@ from datetime import UTC, datetime
 from decimal import Decimal
 
 import pytest
+from django.test import RequestFactory
 from django.utils import timezone
 
 from chemicals.books.fold.state import Finding, Transfer
 from compliance.web import words
-from compliance.web.export import Column, grams, to_csv
+from compliance.web.export import Column, grams, wanted_file
 from compliance.web.words import Ends, Follows
 
 ENDS = Ends({"a": "Copper bath", "b": "Rinse"})
@@ -57,9 +58,13 @@ def test_a_day_is_shown_as_a_day() -> None:
         assert words.moment(noon, "day") == "2026-03-02"
 
 
-def test_a_file_keeps_text_text_and_unknown_empty() -> None:
+def test_a_file_keeps_text_text_and_unknown_empty(rf: RequestFactory) -> None:
     rows = ['=HYPERLINK("x")', "-5", "plain, with comma", None, grams(-1_500_000), True]
-    response = to_csv("list", [Column("cell", lambda row: row)], rows)
+    response = wanted_file(
+        rf.get("/?as=csv"), about="of-today", cells=([Column("cell", lambda row: row)], lambda: rows)
+    )
+    assert response is not None
+    assert response.headers["Content-Disposition"] == 'attachment; filename="cells-of-today.csv"'
     assert response.content.decode("utf-8-sig").splitlines() == [
         "cell",
         '"\'=HYPERLINK(""x"")"',

@@ -10,8 +10,9 @@ from django.utils import timezone
 from chemicals.balance.selectors import BookBalance, get_book_balance, list_metals_for
 from chemicals.science.formula import element_name
 from chemicals.workshop.models import Membership
+from compliance.web import words
 from compliance.web.door import page, show
-from compliance.web.export import Column, grams, is_wanted, to_csv
+from compliance.web.export import Column, grams, wanted_file
 from compliance.web.filters import PeriodForm, start_of
 from compliance.web.picture import draw_narrow, draw_wide
 from compliance.web.statement import lines_of, verdict_of
@@ -20,6 +21,22 @@ COLUMNS = (
     Column("what", lambda row: row.key),
     Column("amount (g)", lambda row: grams(row.value)),
     Column("standard uncertainty (g)", lambda row: grams(row.sd)),
+)
+FLOW_COLUMNS = (
+    Column("from", lambda flow: words.end_name(flow.source)),
+    Column("to", lambda flow: words.end_name(flow.target)),
+    Column("amount (g)", lambda flow: grams(flow.amount.value)),
+    Column("standard uncertainty (g)", lambda flow: grams(flow.amount.sd)),
+)
+VESSEL_COLUMNS = (
+    Column("vessel", lambda row: row.vessel.name),
+    Column("code", lambda row: row.vessel.code),
+    Column("at the beginning (g)", lambda row: grams(row.opening.value)),
+    Column("uncertainty at the beginning (g)", lambda row: grams(row.opening.sd)),
+    Column("came (g)", lambda row: grams(row.received)),
+    Column("went (g)", lambda row: grams(row.given)),
+    Column("at the end (g)", lambda row: grams(row.closing.value)),
+    Column("uncertainty at the end (g)", lambda row: grams(row.closing.sd)),
 )
 
 
@@ -37,9 +54,15 @@ def index(request: HttpRequest, member: Membership) -> HttpResponse:
     chosen = form.cleaned_data
     end = start_of(chosen["until"] + timedelta(days=1))
     balance = get_book_balance(member, chosen["metal"], start_of(chosen["since"]), end)
-    if is_wanted(request):
-        return to_csv(f"balance-{chosen['metal']}-{chosen['since']}-{chosen['until']}", COLUMNS, lines_of(balance))
-    return show(request, member, "web/balance.html", here="balance", form=form, **_context(balance), **_kept(form))
+    file = wanted_file(
+        request,
+        about=f"{chosen['metal']}-{chosen['since']}-{chosen['until']}",
+        balance=(COLUMNS, lambda: lines_of(balance)),
+        flows=(FLOW_COLUMNS, lambda: balance.flows),
+        vessels=(VESSEL_COLUMNS, lambda: balance.vessels),
+    )
+    more = {**_context(balance), **_kept(form)}
+    return file or show(request, member, "web/balance.html", here="balance", form=form, **more)
 
 
 def _context(balance: BookBalance) -> dict[str, Any]:

@@ -14,7 +14,7 @@ from chemicals.workshop.models import Membership
 from compliance.documents.words import grouped
 from compliance.web import words
 from compliance.web.door import page, show
-from compliance.web.export import Column, is_wanted, to_csv
+from compliance.web.export import Column, wanted_file
 from compliance.web.filters import EntryFilter
 from compliance.web.rows import ends_of, entry_rows, tell
 
@@ -39,8 +39,9 @@ RECORDABLE = [(verb, data.title) for verb, data in INPUTS.items()]
 def index(request: HttpRequest, member: Membership) -> HttpResponse:
     """List entries, newest record first."""
     chosen = EntryFilter(member, request.GET)
-    if is_wanted(request):
-        return to_csv("entries", COLUMNS, entry_rows(member, chosen.qs))
+    file = wanted_file(request, entries=(COLUMNS, lambda: entry_rows(member, chosen.qs)))
+    if file is not None:
+        return file
     listed = Paginator(chosen.qs, PER_PAGE).get_page(request.GET.get("page"))
     kept = request.GET.copy()
     kept.pop("page", None)

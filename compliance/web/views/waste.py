@@ -58,6 +58,12 @@ STREAM_COLUMNS = (
     Column("pictograms", lambda row: " ".join(row.pictograms)),
     Column("hazard statements", lambda row: "; ".join(row.statements)),
 )
+PAPER_COLUMNS = (
+    Column("kind", lambda row: row.kind),
+    Column("number", lambda row: row.number),
+    Column("issued", lambda row: row.issued_at),
+    Column("by", lambda row: str(row.issued_by.user)),
+)
 
 
 @page()
@@ -73,7 +79,9 @@ def index(request: HttpRequest, member: Membership) -> HttpResponse:
 @page()
 def container(request: HttpRequest, member: Membership, uuid: UUID) -> HttpResponse:
     """Show a waste container; the code on it opens this page."""
-    return _container(request, member, get_container_for(member, uuid))
+    found = get_container_for(member, uuid)
+    file = wanted_file(request, papers=(PAPER_COLUMNS, lambda: list_papers_naming(member, found.vessel.code)))
+    return file or _container(request, member, found)
 
 
 def _container(
