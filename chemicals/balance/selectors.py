@@ -37,14 +37,22 @@ class VesselRow:
     closing: Amount
 
 
+FlowEnd = Vessel | str
+"""Where a flow begins or ends: a vessel, or the name of a boundary (one of ``BOUNDARIES``)."""
+
+
 @dataclass(frozen=True)
 class Flow:
-    """What went from one end to another over the period. Ends are vessel names or boundaries."""
+    """What went from one end to another over the period."""
 
-    source: str
-    target: str
+    source: FlowEnd
+    target: FlowEnd
     amount: Amount
-    between_vessels: bool
+
+    @property
+    def between_vessels(self) -> bool:
+        """Say whether both ends are vessels: nothing entered or left."""
+        return isinstance(self.source, Vessel) and isinstance(self.target, Vessel)
 
 
 @dataclass(frozen=True)
@@ -213,8 +221,7 @@ def _named_flows(vessels: Mapping[int, Vessel], flows: Flows, unknown: set[tuple
         return str(vessels[end].uuid) if isinstance(end, int) else end
 
     def named(source: str, target: str, amount: Amount) -> Flow:
-        names = [by_uuid[end].name if end in by_uuid else end for end in (source, target)]
-        return Flow(names[0], names[1], amount, source in by_uuid and target in by_uuid)
+        return Flow(by_uuid.get(source, source), by_uuid.get(target, target), amount)
 
     known = set()
     for (source, target), (amount, variance) in sorted(flows.items(), key=lambda item: -item[1][0]):

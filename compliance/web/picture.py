@@ -7,9 +7,9 @@ plain geometry; a template writes it as SVG.
 from collections import defaultdict
 from dataclasses import dataclass
 
-from chemicals.balance.selectors import BookBalance, Flow
-from chemicals.ledger.models import VesselKind
-from compliance.web.words import BOUNDARIES, amount
+from chemicals.balance.selectors import BookBalance, Flow, FlowEnd
+from chemicals.ledger.models import Vessel, VesselKind
+from compliance.web.words import amount, end_name
 
 COLUMN = {VesselKind.STOCK: 1, VesselKind.ANODE: 1, VesselKind.BATH: 2, VesselKind.RINSE: 3, VesselKind.WASTE: 4}
 LAST_COLUMN = 5
@@ -119,17 +119,13 @@ def draw_narrow(balance: BookBalance) -> Drawing:
 
 
 def _pairs(balance: BookBalance) -> Pairs:
-    kinds = {row.vessel.name: VesselKind(row.vessel.kind) for row in balance.vessels}
+    return [(_node(flow.source, 0), _node(flow.target, LAST_COLUMN), flow) for flow in balance.flows]
 
-    def end(name: str, between_vessels: bool, column: int) -> Node:  # noqa: FBT001  (a fact of the flow)
-        if name in kinds and (between_vessels or name not in BOUNDARIES):
-            return Node(name, COLUMN[kinds[name]], is_boundary=False)
-        return Node(str(BOUNDARIES.get(name, name)), column, is_boundary=True)
 
-    return [
-        (end(flow.source, flow.between_vessels, 0), end(flow.target, flow.between_vessels, LAST_COLUMN), flow)
-        for flow in balance.flows
-    ]
+def _node(end: FlowEnd, edge: int) -> Node:
+    if isinstance(end, Vessel):
+        return Node(end.name, COLUMN[VesselKind(end.kind)], is_boundary=False)
+    return Node(end_name(end), edge, is_boundary=True)
 
 
 def _nodes(pairs: Pairs) -> list[Node]:
@@ -192,6 +188,5 @@ def _head(tip: int, base: float, y: float, size: float) -> str:
 
 
 def _line(path: str, head: str, flow: Flow, width: float) -> Line:
-    ends = (str(BOUNDARIES.get(end, end)) for end in (flow.source, flow.target))
-    says = f"{' → '.join(ends)}: {amount(flow.amount.value, 'mass')}"
+    says = f"{end_name(flow.source)} → {end_name(flow.target)}: {amount(flow.amount.value, 'mass')}"
     return Line(path, f"{width:.1f}", head, says, flow.amount.value is None)

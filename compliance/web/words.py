@@ -10,10 +10,12 @@ from django.utils import timezone
 from django.utils.translation import gettext as _
 from django.utils.translation import gettext_lazy, pgettext_lazy
 
+from chemicals.balance.selectors import FlowEnd
 from chemicals.books import clearance, events
 from chemicals.books.fold.state import EVERY, FINDINGS, Finding, Transfer
 from chemicals.books.occurred import DAY
 from chemicals.ledger.models import Finding as FoundBefore
+from chemicals.ledger.models import Vessel
 from chemicals.process.inputs import INPUTS
 from chemicals.science.formula import element_name
 from chemicals.science.quantity import show
@@ -106,6 +108,11 @@ def component_name(component: str) -> str:
     if component == events.GROSS_MASS:
         return str(WEIGHT)
     return _("anything else") if component == EVERY else element_name(component)
+
+
+def end_name(end: FlowEnd) -> str:
+    """Return the name of the end of a flow: a vessel or a boundary."""
+    return end.name if isinstance(end, Vessel) else str(BOUNDARIES[end])
 
 
 def verb_of(kind: str) -> str:

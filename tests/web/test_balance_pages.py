@@ -13,8 +13,11 @@ from tests.web.conftest import GRAM, Line, Visitor, text_of
 START, END = datetime(2026, 1, 1, tzinfo=UTC), datetime(2026, 4, 1, tzinfo=UTC)
 
 
-def row(name: str, kind: str, closing: Amount) -> VesselRow:
-    return VesselRow(Vessel(name=name, kind=kind), Amount(0, 0), 0, 0, closing)
+TUB, BATH = Vessel(name="Tub", kind=VesselKind.STOCK), Vessel(name="Bath", kind=VesselKind.BATH)
+
+
+def row(vessel: Vessel, closing: Amount) -> VesselRow:
+    return VesselRow(vessel, Amount(0, 0), 0, 0, closing)
 
 
 def balance(boundaries: dict[str, Amount], closing: Amount, *flows: Flow) -> BookBalance:
@@ -25,7 +28,7 @@ def balance(boundaries: dict[str, Amount], closing: Amount, *flows: Flow) -> Boo
         opening=Amount(0, 0),
         closing=closing,
         boundaries=boundaries,
-        vessels=(row("Tub", VesselKind.STOCK, closing), row("Bath", VesselKind.BATH, Amount(0, 0))),
+        vessels=(row(TUB, closing), row(BATH, Amount(0, 0))),
         flows=flows,
     )
 
@@ -69,10 +72,10 @@ def test_the_picture_draws_by_amount_and_unknown_as_a_broken_line() -> None:
     drawn = balance(
         {},
         grams(5),
-        Flow("supplier", "Tub", grams(10), between_vessels=False),
-        Flow("Tub", "Bath", grams(5), between_vessels=True),
-        Flow("Bath", "parts", Amount(None, 0), between_vessels=False),
-        Flow("Tub", "parts", grams(1), between_vessels=False),
+        Flow("supplier", TUB, grams(10)),
+        Flow(TUB, BATH, grams(5)),
+        Flow(BATH, "parts", Amount(None, 0)),
+        Flow(TUB, "parts", grams(1)),
     )
     for picture in (draw_wide(drawn), draw_narrow(drawn)):
         widths = [float(line.width) for line in picture.lines]
@@ -86,6 +89,14 @@ def test_the_picture_draws_by_amount_and_unknown_as_a_broken_line() -> None:
     assert wide.boxes[-1].node.column == LAST_COLUMN
     lowest_box = max(box.y + box.height for box in wide.boxes)
     assert max(float(y) for y in re.findall(r" ([\d.]+)", wide.lines[3].path)) > lowest_box
+
+
+def test_a_vessel_called_like_a_boundary_is_drawn_as_a_vessel() -> None:
+    trap = Vessel(name="parts", kind=VesselKind.RINSE)
+    drawn = draw_wide(balance({}, grams(5), Flow(TUB, trap, grams(2)), Flow(trap, "parts", grams(1))))
+    assert [(box.node.name, box.node.is_boundary) for box in drawn.boxes] == [
+        ("Tub", False), ("parts", False), ("parts", True),
+    ]  # fmt: skip
 
 
 def test_an_empty_period_draws_nothing() -> None:

@@ -6,7 +6,7 @@ from django import template
 from django.utils.html import format_html
 from django.utils.safestring import SafeString
 
-from chemicals.balance.selectors import Amount
+from chemicals.balance.selectors import Amount, FlowEnd
 from chemicals.journal.models import Entry
 from chemicals.ledger.selectors import Held, HeldMetal
 from chemicals.science.quantity import show
@@ -99,9 +99,9 @@ def signed(row: Line) -> str:
 
 
 @register.filter
-def end(name: str) -> str:
+def end(of_flow: FlowEnd) -> str:
     """Show the end of a flow: the name of a vessel, or of a boundary."""
-    return str(words.BOUNDARIES.get(name, name))
+    return words.end_name(of_flow)
 
 
 @register.filter
