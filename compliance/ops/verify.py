@@ -6,6 +6,7 @@ from dataclasses import dataclass
 from django.apps import apps
 from django.db import DEFAULT_DB_ALIAS, IntegrityError, connection, transaction
 from django.db.models import F, Model, Q
+from django.utils.translation import ngettext
 from django_scopes import scope
 
 from chemicals.journal import verify as journal
@@ -106,6 +107,17 @@ def _home(model: type[Model]) -> str | None:
         return None
     names = {field.name for field in model._meta.concrete_fields}
     return "workshop" if "workshop" in names else next(iter(_paths(model).values()), None)
+
+
+def count_up(workshops: int, entries: int, files: int) -> str:
+    """Return "1 workshop, 44 entries, 5 files"."""
+    return ", ".join(
+        (
+            ngettext("%d workshop", "%d workshops", workshops) % workshops,
+            ngettext("%d entry", "%d entries", entries) % entries,
+            ngettext("%d file", "%d files", files) % files,
+        )
+    )
 
 
 def describe_entry(workshop: Workshop, sequence: int) -> str:

@@ -184,6 +184,6 @@ def test_an_older_database_is_backed_up_in_its_own_shape(books: Books, now: date
 def test_the_command_says_what_it_wrote(books: Books, tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
     path = tmp_path / "today.zip"
     call_command("backup", str(path))
-    assert "1 workshops, 6 entries, 2 files. Keep a copy away" in capsys.readouterr().out
+    assert "1 workshop, 6 entries, 2 files. Keep a copy away" in capsys.readouterr().out
     with pytest.raises(CommandError, match="exists already"):
         call_command("backup", str(path))

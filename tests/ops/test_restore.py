@@ -275,7 +275,8 @@ def test_the_command_restores_verifies_and_refuses_a_second_time(
 ) -> None:
     call_command("restore", str(saved))
     printed = capsys.readouterr().out
-    assert "Restored 6 entries of 1 workshops" in printed
+    assert "Restored as of 2026-03-02T15:00:00+00:00." in printed
+    assert "1 workshop, 6 entries, 2 files: all is as it was recorded." in printed
     with pytest.raises(CommandError, match="is in use"):
         call_command("restore", str(saved))
 

@@ -64,8 +64,8 @@ def test_sound_books_are_counted(books: Books, stranger: Membership) -> None:
     printed, error = run_verify()
     assert error is None
     assert printed.splitlines() == [
-        "Alder Court: 6 entries, 2 files. Nothing is wrong.",
-        "Birch Yard: 0 entries, 0 files. Nothing is wrong.",
+        "Alder Court: nothing is wrong.",
+        "Birch Yard: nothing is wrong.",
         "2 workshops, 6 entries, 2 files: all is as it was recorded.",
     ]
 
@@ -363,7 +363,7 @@ def test_lost_triggers(books: Books) -> None:
     """Nothing is wrong with the entries yet, but nothing would stop anybody either."""
     triggers.remove(connection)
     try:
-        expect_wrong("The journal of database default lacks the triggers", "Nothing is wrong.")
+        expect_wrong("The journal of database default lacks the triggers", "nothing is wrong.")
     finally:
         triggers.install(connection)
 
@@ -371,7 +371,7 @@ def test_lost_triggers(books: Books) -> None:
 def test_only_the_broken_workshop_is_called_broken(books: Books, stranger: Membership) -> None:
     with intruder() as execute:
         execute("UPDATE journal_entry SET verdict = 'overridden' WHERE sequence = 4")
-    expect_broken(4, "Birch Yard: 0 entries, 0 files. Nothing is wrong.", "Alder Court: 1 things are wrong.")
+    expect_broken(4, "Birch Yard: nothing is wrong.", "Alder Court: wrong in 1 points.")
 
 
 def test_a_long_list_is_cut(books: Books) -> None:

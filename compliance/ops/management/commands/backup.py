@@ -9,6 +9,7 @@ from django.utils import timezone
 
 from compliance.ops.archive import BackupError
 from compliance.ops.backup import write_backup
+from compliance.ops.verify import count_up
 
 
 class Command(BaseCommand):
@@ -26,7 +27,7 @@ class Command(BaseCommand):
         except BackupError as error:
             raise CommandError(str(error)) from error
         files = sum(1 for member in manifest.members if member.rows is None)
+        counted = count_up(manifest.rows["workshop.workshop"], manifest.rows["journal.entry"], files)
         self.stdout.write(
-            f"Backup: {path} ({path.stat().st_size} bytes): {manifest.rows['workshop.workshop']} workshops, "
-            f"{manifest.rows['journal.entry']} entries, {files} files. Keep a copy away from this machine."
+            f"Backup: {path} ({path.stat().st_size} bytes): {counted}. Keep a copy away from this machine."
         )

@@ -30,10 +30,7 @@ class Command(BaseCommand):
                 manifest = restore_backup(path)
         except (BackupError, start.StartError) as error:
             raise CommandError(str(error)) from error
-        self.stdout.write(
-            f"Restored {manifest.rows['journal.entry']} entries of {manifest.rows['workshop.workshop']} workshops, "
-            f"as of {manifest.made_at.isoformat()}. Everybody signs in again."
-        )
+        self.stdout.write(f"Restored as of {manifest.made_at.isoformat(timespec='seconds')}. Everybody signs in again.")
         call_command("verify", stdout=self.stdout)
 
     def prepare(self) -> None:

@@ -4,7 +4,7 @@ from typing import Any
 
 from django.core.management.base import BaseCommand, CommandError
 
-from compliance.ops.verify import Verdict, describe_entry, find_loose_ends, verify_workshops
+from compliance.ops.verify import Verdict, count_up, describe_entry, find_loose_ends, verify_workshops
 
 SHOWN = 20
 """How many problems of a workshop are printed."""
@@ -24,10 +24,10 @@ class Command(BaseCommand):
             self.stdout.write(sentence)
         wrong = len(loose) + sum(len(verdict.problems) for verdict in verdicts)
         entries, files = sum(v.entries for v in verdicts), sum(v.files for v in verdicts)
-        counted = f"{len(verdicts)} workshops, {entries} entries, {files} files"
+        counted = count_up(len(verdicts), entries, files)
         if wrong:
             raise CommandError(
-                f"{counted}: {wrong} things are wrong. Stop recording, keep a copy of the data folder as it is, and "
+                f"{counted}. What is wrong: {wrong}. Stop recording, keep a copy of the data folder as it is, and "
                 "restore the last backup that verifies."
             )
         self.stdout.write(f"{counted}: all is as it was recorded.")
@@ -36,7 +36,7 @@ class Command(BaseCommand):
         """Print what was found in one workshop."""
         name = verdict.workshop.name
         if not verdict.problems:
-            self.stdout.write(f"{name}: {verdict.entries} entries, {verdict.files} files. Nothing is wrong.")
+            self.stdout.write(f"{name}: nothing is wrong.")
             return
         first = verdict.first_broken
         head = (
@@ -44,7 +44,7 @@ class Command(BaseCommand):
             if first is None
             else f"First broken entry: {describe_entry(verdict.workshop, first)}."
         )
-        self.stdout.write(f"{name}: {len(verdict.problems)} things are wrong. {head}")
+        self.stdout.write(f"{name}: wrong in {len(verdict.problems)} points. {head}")
         for problem in verdict.problems[:SHOWN]:
             where = "" if problem.sequence is None else f"entry {problem.sequence}: "
             self.stdout.write(f"  {where}{problem.message}")
