@@ -30,11 +30,15 @@ def keep(data: bytes) -> str:
         return sha256
     path.parent.mkdir(parents=True, exist_ok=True)
     handle, fresh = tempfile.mkstemp(dir=path.parent)
-    with os.fdopen(handle, "wb") as file:
-        file.write(data)
-        file.flush()
-        os.fsync(file.fileno())
-    Path(fresh).replace(path)  # readers see the whole file or none
+    try:
+        with os.fdopen(handle, "wb") as file:
+            file.write(data)
+            file.flush()
+            os.fsync(file.fileno())
+        Path(fresh).replace(path)  # readers see the whole file or none
+    except BaseException:
+        Path(fresh).unlink()
+        raise
     _sync_folder(path.parent)
     return sha256
 

@@ -31,6 +31,18 @@ def write_backup(path: Path, *, now: datetime) -> Manifest:
         raise BackupError(f"{path} exists already. Choose another name.")
     if not path.parent.is_dir():
         raise BackupError(f"There is no folder {path.parent}. Make it, or choose another one.")
+    try:
+        return _write_whole(path, now)
+    except FileExistsError as error:
+        raise BackupError(f"{path} exists already. Choose another name.") from error
+    except OSError as error:
+        raise BackupError(
+            f"The backup cannot be written to {path.parent}: {error.strerror}. Choose another folder."
+        ) from error
+
+
+def _write_whole(path: Path, now: datetime) -> Manifest:
+    """Write under another name first, so that the backup is whole from its first moment."""
     handle, fresh = tempfile.mkstemp(dir=path.parent, prefix=f".{path.name}.")
     try:
         with os.fdopen(handle, "w+b") as file:
@@ -41,8 +53,6 @@ def write_backup(path: Path, *, now: datetime) -> Manifest:
             file.flush()
             os.fsync(file.fileno())
         os.link(fresh, path)  # fails if somebody else has taken the name meanwhile
-    except FileExistsError as error:
-        raise BackupError(f"{path} exists already. Choose another name.") from error
     finally:
         Path(fresh).unlink()
     return manifest

@@ -40,9 +40,11 @@ def restore_backup(path: Path) -> Manifest:
                     _restore_table(archive, model)
                 _reset_sequences()
                 _require_sound()
-        except BaseException:
+        except BaseException as error:
             for new in kept:
-                new.unlink()
+                new.unlink(missing_ok=True)
+            if isinstance(error, OSError):
+                raise BackupError(f"Nothing was restored: {error}. Make room, or name another folder.") from error
             raise
         return manifest
 

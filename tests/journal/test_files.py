@@ -1,6 +1,7 @@
 """Files by their hash: complete, found changed, mended."""
 
 import hashlib
+import os
 from pathlib import Path
 
 import pytest
@@ -35,3 +36,13 @@ def test_a_changed_file_is_named_and_mended_by_keeping_it_again(attachments_fold
         files.read(SHA256)
     files.keep(DATA)
     assert files.read(SHA256) == DATA
+
+
+def test_a_full_disk_leaves_no_half_file(attachments_folder: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    def fail(handle: int) -> None:
+        raise OSError("No space left on device")
+
+    monkeypatch.setattr(os, "fsync", fail)
+    with pytest.raises(OSError, match="No space"):
+        files.keep(DATA)
+    assert [path for path in attachments_folder.rglob("*") if path.is_file()] == []

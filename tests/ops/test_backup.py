@@ -1,7 +1,9 @@
 """`manage.py backup`: one private file, consistent while people write, or none."""
 
+import errno
 import hashlib
 import json
+import os
 import threading
 from datetime import datetime
 from pathlib import Path
@@ -122,6 +124,20 @@ def test_a_damaged_file_stops_the_backup_and_leaves_nothing(
     folder = tmp_path / "backups"
     folder.mkdir()
     with pytest.raises(BackupError, match=f"{books.photo} .*upload the same file again"):
+        write_backup(folder / "today.zip", now=now)
+    assert list(folder.iterdir()) == []
+
+
+def test_a_full_disk_leaves_nothing(
+    books: Books, now: datetime, tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    def fail(handle: int) -> None:
+        raise OSError(errno.ENOSPC, os.strerror(errno.ENOSPC))
+
+    monkeypatch.setattr(os, "fsync", fail)
+    folder = tmp_path / "backups"
+    folder.mkdir()
+    with pytest.raises(BackupError, match=r"No space left on device\. Choose another folder"):
         write_backup(folder / "today.zip", now=now)
     assert list(folder.iterdir()) == []
 

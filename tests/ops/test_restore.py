@@ -1,6 +1,8 @@
 """`manage.py restore`: all or nothing, and every refusal says what to do."""
 
+import errno
 import json
+import os
 from collections import Counter
 from collections.abc import Callable
 from datetime import datetime
@@ -268,6 +270,17 @@ def test_a_file_that_was_there_before_stays_after_a_refusal(saved: Path, tmp_pat
     with pytest.raises(BackupError):
         restore_backup(forge(saved, replace("journal.head", b'"sequence":6', b'"sequence":7')))
     assert list(kept_files(tmp_path).values()) == [PHOTO]
+
+
+def test_a_full_disk_leaves_nothing(saved: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    def fail(handle: int) -> None:
+        raise OSError(errno.ENOSPC, os.strerror(errno.ENOSPC))
+
+    monkeypatch.setattr(os, "fsync", fail)
+    with pytest.raises(BackupError, match=r"Nothing was restored: .*No space left.*Make room"):
+        restore_backup(saved)
+    assert {name for name, found in rows().items() if found} == set()
+    assert kept_files(saved.parent) == {}
 
 
 def test_the_command_restores_verifies_and_refuses_a_second_time(
