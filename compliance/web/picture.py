@@ -6,6 +6,7 @@ plain geometry; a template writes it as SVG.
 
 from collections import defaultdict
 from dataclasses import dataclass
+from textwrap import wrap
 
 from chemicals.balance.selectors import BookBalance, Flow, FlowEnd
 from chemicals.ledger.models import Vessel, VesselKind
@@ -16,7 +17,7 @@ LAST_COLUMN = 5
 BOX_WIDTH, BOX_HEIGHT, GAP, ROW = 150, 40, 70, 64
 LIST_WIDTH, LIST_BOX, LIST_ROW = 350, 170, 52
 THICKEST, THINNEST, LANE = 26.0, 1.5, 8.0
-LONGEST_NAME = 20
+LONGEST_LINE, TEXT_LINE = 20, 16
 
 
 @dataclass(frozen=True)
@@ -30,7 +31,7 @@ class Node:
 
 @dataclass(frozen=True)
 class Box:
-    """A drawn place; texts stand at ``text_x``."""
+    """A drawn place; texts stand in its middle."""
 
     node: Node
     x: int
@@ -39,15 +40,11 @@ class Box:
     height: int
 
     @property
-    def middle(self) -> int:
-        """Return the height of the text's base line."""
-        return self.y + self.height // 2 + 5
-
-    @property
-    def label(self) -> str:
-        """Return the name, cut if it is long."""
-        name = self.node.name
-        return name if len(name) <= LONGEST_NAME else name[: LONGEST_NAME - 1] + "…"
+    def label(self) -> list[tuple[int, str]]:
+        """Return the name as lines, (height of the base line, text); what does not fit in two is cut."""
+        texts = wrap(self.node.name, LONGEST_LINE, max_lines=2, placeholder="…")
+        first = self.y + self.height // 2 + 5 - TEXT_LINE * (len(texts) - 1) // 2
+        return [(first + number * TEXT_LINE, text) for number, text in enumerate(texts)]
 
     @property
     def centre(self) -> int:

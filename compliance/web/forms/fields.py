@@ -149,10 +149,17 @@ class MomentField(forms.MultiValueField):
 
 
 class ThingField(forms.TypedChoiceField):
-    """One thing of the workshop, chosen by its uuid. Cleans to the UUID, or None."""
+    """One thing of the workshop, chosen by its uuid. Cleans to the UUID, or None.
 
-    def __init__(self, things: Iterable[tuple[UUID, Text]], *, empty: Text = "", **kwargs: Any) -> None:
+    ``missing`` says what to do first where there is nothing to choose from.
+    """
+
+    def __init__(
+        self, things: Iterable[tuple[UUID, Text]], *, empty: Text = "", missing: Text = "", **kwargs: Any
+    ) -> None:
         listed = [(str(uuid), label) for uuid, label in things]
+        if missing and not listed:
+            kwargs["help_text"] = missing
         required = kwargs.get("required", True)
         if required and len(listed) == 1:
             kwargs.setdefault("initial", listed[0][0])

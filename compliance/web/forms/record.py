@@ -8,6 +8,7 @@ from uuid import UUID, uuid4
 
 from django import forms
 from django.utils.translation import gettext as _
+from django.utils.translation import gettext_lazy
 
 from chemicals.books.events import Analysis
 from chemicals.books.occurred import Occurred
@@ -30,6 +31,22 @@ from compliance.web.forms.fields import AmountField, FlagField, LineField, Momen
 
 UNDATED = ("acceptance", "cancellation")
 """Verbs whose time is given: an acceptance has that of its analysis, a cancellation that of its recording."""
+
+MISSING: Mapping[str, Any] = {
+    "product": gettext_lazy("No product yet. Add one on the page Register first."),
+    "rack type": gettext_lazy("No rack type yet. Add one on the page Tanks first."),
+    "route": gettext_lazy("No route yet. Add a bath, a rack type and a route on the page Tanks first."),
+    "analysis": gettext_lazy("No analysis waits. Enter one on the page of its tank first."),
+    "entry": gettext_lazy("Nothing is recorded yet, so there is nothing to cancel."),
+}
+"""What to do first where there is none to choose."""
+
+MISSING_VESSELS = (
+    ({VesselKind.BATH, VesselKind.RINSE}, gettext_lazy("No tank yet. Set one up on the page Tanks first.")),
+    ({VesselKind.STOCK}, gettext_lazy("No container yet. Set one up on the page of its product first.")),
+    ({VesselKind.WASTE}, gettext_lazy("No open container. Put one up on the page Waste first.")),
+)
+"""The same for vessels, by the kinds that would do."""
 
 RECENT = 60
 """How many entries a list to choose from offers."""
@@ -146,12 +163,14 @@ def _build_vessel(form: RecordForm, name: str, kind: kinds.VesselField) -> forms
         for vessel in form.vessels
         if vessel.kind in kind.kinds and not (fills and vessel.uuid in form.closed)
     ]
-    return ThingField(things, label=kind.label, help_text=kind.help, required=kind.required)
+    missing = next(text for some, text in MISSING_VESSELS if some & set(kind.kinds)) if kind.required else ""
+    return ThingField(things, missing=missing, label=kind.label, help_text=kind.help, required=kind.required)
 
 
 def _build_reference(form: RecordForm, name: str, kind: kinds.ReferenceField) -> forms.Field:
     things = REFERENCES[kind.to](form, str(form.initial.get(name, "") or form.data.get(name, "")))
-    return ThingField(things, label=kind.label, help_text=kind.help, required=kind.required)
+    missing = MISSING[kind.to] if kind.required else ""
+    return ThingField(things, missing=missing, label=kind.label, help_text=kind.help, required=kind.required)
 
 
 def _build_choice(form: RecordForm, name: str, kind: kinds.ChoiceField) -> forms.Field:

@@ -85,7 +85,12 @@ class LineRow(Row):
 
     def __init__(self, things: list[tuple[Any, str]], **kwargs: Any) -> None:
         super().__init__(**kwargs)
-        self.fields["substance"] = ThingField(things, label=_("Substance"), initial="")
+        self.fields["substance"] = ThingField(
+            things,
+            label=_("Substance"),
+            initial="",
+            missing=_("No substance yet. Add one on the page Substances."),
+        )
         self.fields["content"] = LineField(
             label=_("Content"), max_length=40, help_text=_("Of the mass, or per litre: 98 % or 250 g/L.")
         )

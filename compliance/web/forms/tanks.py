@@ -162,7 +162,9 @@ class StepRow(Row):
 
     def __init__(self, things: list[tuple[UUID, str]], **kwargs: Any) -> None:
         super().__init__(**kwargs)
-        self.fields["tank"] = ThingField(things, label=_("Tank"), initial="")
+        self.fields["tank"] = ThingField(
+            things, label=_("Tank"), initial="", missing=_("No tank yet. Set up a bath or a rinse first.")
+        )
 
 
 class RouteForm(WebForm):
@@ -172,7 +174,9 @@ class RouteForm(WebForm):
         super().__init__(data)
         self.fields["name"] = LineField(label=_("Name"), max_length=80, help_text=_("For example copper line."))
         racks = [(rack.uuid, rack.name) for rack in list_rack_types_for(member)]
-        self.fields["rack"] = ThingField(racks, label=_("Usual rack type"))
+        self.fields["rack"] = ThingField(
+            racks, label=_("Usual rack type"), missing=_("No rack type yet. Add one on the page Tanks first.")
+        )
         self.tanks = {v.uuid: v for v in list_vessels_for(member, VesselKind.BATH, VesselKind.RINSE)}
         things = [(vessel.uuid, vessel.name) for vessel in self.tanks.values()]
         text = _("In order: the first one plates, the others rinse.")

@@ -42,7 +42,9 @@ class ContainerForm(WebForm):
         streams = [(stream.uuid, stream.name) for stream in list_streams_for(member)]
         fields: dict[str, forms.Field] = {
             "name": LineField(label=_("Name"), max_length=80, help_text=_("As written on it.")),
-            "stream": ThingField(streams, label=_("Waste stream")),
+            "stream": ThingField(
+                streams, label=_("Waste stream"), missing=_("No stream yet. Add one on the page Waste first.")
+            ),
             "place": place_field(member),
             "capacity": AmountField(["volume"], example="25 L", label=_("Holds at most"), required=False),
             "material": LineField(label=_("Material"), required=False, max_length=60, help_text=_("For example HDPE.")),
@@ -64,7 +66,9 @@ class MayForm(WebForm):
 
     def __init__(self, tanks: list[tuple[Any, str]], data: Any) -> None:
         super().__init__(data)
-        self.fields["source"] = ThingField(tanks, label=_("From"))
+        self.fields["source"] = ThingField(
+            tanks, label=_("From"), missing=_("No tank yet. Set one up on the page Tanks first.")
+        )
 
 
 class KeyForm(WebForm):
@@ -92,7 +96,9 @@ class DropOffForm(WebForm):
         self.ready = {str(row.vessel.uuid): row for row in list_ready_containers_for(member)}
         labels = [(key, f"{row.vessel.name} ({row.vessel.code}), {row.stream}") for key, row in self.ready.items()]
         fields: dict[str, forms.Field] = {
-            "receiver": ThingField(receivers, label=_("Receiver")),
+            "receiver": ThingField(
+                receivers, label=_("Receiver"), missing=_("No receiver yet. Add one on the page Drop-offs first.")
+            ),
             "mode": WordField(Mode.choices, label=_("Brought or picked up"), initial=Mode.BROUGHT),
             "planned_for": DayField(label=_("Planned for"), initial=today),
             "containers": WordsField(labels, label=_("Closed containers"), required=True),

@@ -1,5 +1,6 @@
 """Tanks: baths and rinses with what they hold, anode sets, rack types, routes."""
 
+from typing import Any
 from uuid import UUID
 
 from django.http import Http404, HttpRequest, HttpResponse
@@ -47,7 +48,8 @@ def index(request: HttpRequest, member: Membership) -> HttpResponse:
         routes=(ROUTE_COLUMNS, lambda: routes),
     )
     groups = [(kind.label, [row for row in rows if row[0].kind == kind]) for kind in KINDS]
-    return file or show(request, member, "web/tanks.html", here="tanks", groups=groups, racks=racks, routes=routes)
+    more: dict[str, Any] = {"groups": groups, "any_tank": bool(rows), "racks": racks, "routes": routes}
+    return file or show(request, member, "web/tanks.html", here="tanks", **more)
 
 
 @page("GET", "POST", need=require_writer)
