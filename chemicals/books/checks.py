@@ -31,6 +31,13 @@ def one_of(where: str, allowed: Collection[str], **words: str) -> None:
             raise CanonicalError(f"{where}.{name}: {word!r} is none of {', '.join(allowed)}.")
 
 
+def as_many(where: str, things: Sequence[object], **lists: Sequence[object]) -> None:
+    """Refuse lists that are not as long as the things they speak of."""
+    for name, values in lists.items():
+        if len(values) != len(things):
+            raise CanonicalError(f"{where}.{name}: {len(values)} stand there, {len(things)} are needed.")
+
+
 def once(where: str, **lists: Sequence[str]) -> None:
     """Refuse lists that name something more than once."""
     for name, words in lists.items():

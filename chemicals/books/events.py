@@ -194,14 +194,6 @@ class TopUp(Event):
 
 
 @dataclass(frozen=True)
-class Step:
-    """One tank of a route and what a load drags out of it, in nanolitres."""
-
-    tank: str
-    drag_out: Used[Figure]
-
-
-@dataclass(frozen=True)
 class Deposit:
     """The figures of Faraday's law for a bath: charge per mole, efficiency in ppm."""
 
@@ -220,12 +212,12 @@ class Run(Event):
     """A load went through a route of tanks; the first one plated it. Weights, where taken, tell the mass.
 
     ``deposit`` is None for a load that is only dipped. ``anode`` names the anode set of a soluble anode; an inert
-    anode gives nothing to the bath.
+    anode gives nothing to the bath. ``drag_out`` is what the load drags out of each tank of the route, in nanolitres.
     """
 
     KIND = "run"
     parts: str
-    route: tuple[Step, ...]
+    route: tuple[str, ...]
     charge: Measured | None
     current: Measured | None
     time: Measured | None
@@ -234,9 +226,13 @@ class Run(Event):
     deposit: Used[Deposit | None]
     anode: Used[str | None]
     rack: Used[str]
+    drag_out: Used[tuple[Figure, ...]]
+
+    def __post_init__(self) -> None:
+        checks.as_many("Run", self.route, drag_out=self.drag_out)
 
     def vessels(self) -> tuple[str, ...]:
-        return (*(step.tank for step in self.route), *((self.anode,) if self.anode else ()))
+        return (*self.route, *((self.anode,) if self.anode else ()))
 
 
 @dataclass(frozen=True)

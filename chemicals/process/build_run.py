@@ -3,7 +3,7 @@
 from datetime import datetime
 
 from chemicals.books import events
-from chemicals.books.events import Deposit, Figure, Measured, Step
+from chemicals.books.events import Deposit, Figure, Measured
 from chemicals.process.draft import Draft, measured
 from chemicals.process.inputs import RunInput
 from chemicals.process.models import AnodeKind, RackType, Route, RouteStep, Tank
@@ -32,7 +32,7 @@ def build_run(draft: Draft, now: datetime, data: RunInput) -> events.Run | None:
     soluble = bath is not None and bath.anode_kind == AnodeKind.SOLUBLE and bath.anode is not None
     return events.Run(
         parts=data.parts.strip(),
-        route=tuple(Step(str(vessel.uuid), drag_out) for vessel in vessels),
+        route=tuple(str(vessel.uuid) for vessel in vessels),
         charge=measured(data.charge),
         current=current,
         time=measured(data.time),
@@ -41,6 +41,7 @@ def build_run(draft: Draft, now: datetime, data: RunInput) -> events.Run | None:
         deposit=deposit,
         anode=str(bath.anode.uuid) if soluble and bath is not None and bath.anode is not None else None,
         rack=rack.name,
+        drag_out=(drag_out,) * len(vessels),
     )
 
 

@@ -90,7 +90,7 @@ def _meetings(event: events.Event) -> Iterator[tuple[str, str]]:
     elif isinstance(event, events.TopUp):
         yield event.source, event.tank
     elif isinstance(event, events.Run):
-        yield from pairwise(step.tank for step in event.route)  # a load drags out of one tank into the next
+        yield from pairwise(event.route)  # a load drags out of one tank into the next
     elif isinstance(event, events.MakeUp):
         stocks = [item.stock for item in event.ingredients]
         for number, stock in enumerate(stocks):

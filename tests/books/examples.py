@@ -35,7 +35,6 @@ from chemicals.books.events import (
     Recipe,
     Run,
     Share,
-    Step,
     TopUp,
     encode,
 )
@@ -79,7 +78,7 @@ EXAMPLES: Mapping[str, Event] = {
         TopUp(BATH, "water supply", None, Measured("10", "L", 10_000_000_000, 50_000_000), WATER),
         Run(
             "12 knobs, Ø 8 mm",
-            (Step(BATH, Figure(5_000_000, 1_500_000, "rack type 2")), Step(RINSE, Figure(5_000_000, 1_500_000, "r2"))),
+            (BATH, RINSE),
             None,
             Measured("0.44", "A", 440_000, 4_000),
             Measured("4", "h", 14_400_000, 60_000),
@@ -88,6 +87,7 @@ EXAMPLES: Mapping[str, Event] = {
             Deposit("Cu", "63.546", 2, "96485.33212", Figure(980_000, 20_000, "as entered")),
             ANODES,
             "rack type 2",
+            (Figure(5_000_000, 1_500_000, "rack type 2"), Figure(5_000_000, 1_500_000, "r2")),
         ),
         Move(BATH, RINSE, Measured("1", "L", 1_000_000_000)),
         DrumOff(RINSE, DRUM, None),

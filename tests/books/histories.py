@@ -1,6 +1,7 @@
 """Random histories of a small workshop: all kinds of entries, late ones, cancelled ones, absurd amounts."""
 
 from datetime import UTC, datetime, timedelta
+from typing import Any
 from uuid import UUID
 
 from hypothesis import strategies as st
@@ -28,7 +29,6 @@ from chemicals.books.events import (
     Recipe,
     Run,
     Share,
-    Step,
     TopUp,
 )
 from chemicals.books.fold import Entry
@@ -69,13 +69,21 @@ recipes = st.builds(
     st.lists(shares, max_size=2).map(tuple),
     st.none() | figures,
 )
-steps = st.builds(Step, vessels, st.builds(Figure, st.integers(0, L), st.integers(0, L), st.just("entered")))
+drags = st.builds(Figure, st.integers(0, L), st.integers(0, L), st.just("entered"))
+steps = st.lists(st.tuples(vessels, drags), max_size=3)
 ingredients = st.builds(Ingredient, vessels, st.none() | masses, st.none() | volumes)
 held_lists = st.lists(
     st.builds(Held, st.sampled_from(METALS), masses), max_size=2, unique_by=lambda held: held.component
 ).map(tuple)
 names = st.integers(1, 20).map(lambda number: UUID(int=number))
 concentrations = st.builds(Figure, st.integers(0, 300 * G) | st.integers(0, 10**15), st.just(G), st.just("titration"))
+
+
+def run_through(steps: list[tuple[str, Figure]], **figures: Any) -> Run:
+    """Return a run through the tanks, dragging out of each what stands beside it."""
+    tanks, drag_out = tuple(tank for tank, _ in steps), tuple(drags for _, drags in steps)
+    return Run(parts="parts", route=tanks, drag_out=drag_out, rack="rack", **figures)
+
 
 EVENTS: dict[type[Event], st.SearchStrategy[Event]] = {
     Opening: st.builds(
@@ -96,17 +104,15 @@ EVENTS: dict[type[Event], st.SearchStrategy[Event]] = {
         TopUp, vessels, vessels | st.just(WATER_SUPPLY), st.none() | volumes, st.none() | volumes, st.just(WATER)
     ),
     Run: st.builds(
-        Run,
-        st.just("parts"),
-        st.lists(steps, max_size=3).map(tuple),
-        st.none() | charges,
-        st.none() | charges,
-        st.none() | charges,
-        st.none() | masses,
-        st.none() | masses,
-        st.none() | st.just(copper_deposit(980_000, 10_000)),
-        st.none() | vessels,
-        st.just("rack"),
+        run_through,
+        steps,
+        charge=st.none() | charges,
+        current=st.none() | charges,
+        time=st.none() | charges,
+        weight_before=st.none() | masses,
+        weight_after=st.none() | masses,
+        deposit=st.none() | st.just(copper_deposit(980_000, 10_000)),
+        anode=st.none() | vessels,
     ),
     Move: st.builds(Move, vessels, vessels, st.none() | volumes),
     DrumOff: st.builds(DrumOff, vessels, vessels, st.none() | volumes),

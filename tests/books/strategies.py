@@ -23,6 +23,7 @@ from chemicals.books.events import (
     LevelReading,
     Measured,
     Opening,
+    Run,
     Share,
 )
 
@@ -84,4 +85,11 @@ def _names(kind: type) -> set[str]:
     return {field.name for field in dataclasses.fields(kind)}
 
 
+def _a_run_through(steps: list[tuple[str, Figure]]) -> Values:
+    free = {name: values_of(hint) for name, hint in type_hints(Run).items() if name in _names(Run)}
+    tanks, drag_out = tuple(tank for tank, _ in steps), tuple(drags for _, drags in steps)
+    return st.builds(Run, **free | {"route": st.just(tanks), "drag_out": st.just(drag_out)})
+
+
 EVENTS_OF: dict[type[Event], Values] = {kind: values_of(kind) for kind in EVENTS}
+EVENTS_OF[Run] = st.lists(st.tuples(texts, values_of(Figure)), max_size=3).flatmap(_a_run_through)

@@ -13,7 +13,19 @@ from hypothesis import strategies as st
 
 from chemicals.books import canonical, events
 from chemicals.books.canonical import GENESIS, CanonicalError, chain_hash, decode_body, encode_body
-from chemicals.books.events import CURRENT, EVENTS, Event, Figure, Held, LevelReading, Measured, Share, decode, encode
+from chemicals.books.events import (
+    CURRENT,
+    EVENTS,
+    Event,
+    Figure,
+    Held,
+    LevelReading,
+    Measured,
+    Run,
+    Share,
+    decode,
+    encode,
+)
 from chemicals.books.fold import FOLDS
 from tests.books.examples import EXAMPLES, GOLDEN, body_of, golden_file
 from tests.books.strategies import EVENTS_OF
@@ -192,3 +204,8 @@ def test_bytes_are_the_same_whatever_the_order_of_fields() -> None:
     payload = encode(EXAMPLES["run"])
     turned = {part: dict(reversed(values.items())) for part, values in reversed(payload.items())}
     assert canonical.dump(turned) == canonical.dump(payload)
+
+
+def test_a_run_says_what_it_drags_out_of_each_tank() -> None:
+    with pytest.raises(CanonicalError, match=r"Run\.drag_out: 0 stand there, 1 are needed"):
+        Run("knobs", ("bath",), None, None, None, None, None, None, None, "rack", ())

@@ -148,7 +148,8 @@ def test_from_a_vessel_of_unknown_level_the_volume_is_known_and_its_content_is_n
 def with_copper_unknown() -> Books:
     """Return the two tanks after a load took nobody knows how much copper out of the first."""
     books = two_tanks()
-    books.record(Run("knobs", (step("a", 0),), None, None, None, None, None, copper_deposit(), None, "rack"))
+    drags = (step("a", 0).drag_out,)
+    books.record(Run("knobs", ("a",), None, None, None, None, None, copper_deposit(), None, "rack", drags))
     return books
 
 

@@ -14,7 +14,6 @@ from chemicals.books.events import (
     Deposit,
     Measured,
     Run,
-    Step,
 )
 from chemicals.books.fold.state import NEGATIVE_CONTENT, UNKNOWN_AMOUNT, UNKNOWN_LEVEL, WEIGHT_LOST, Finding
 from tests.books.words import (
@@ -23,6 +22,7 @@ from tests.books.words import (
     Books,
     G,
     L,
+    Step,
     amperes,
     bases,
     codes,
@@ -48,7 +48,9 @@ def load(
     after: Measured | None = None,
 ) -> Run:
     """Return a run; by default one step in the bath without drag-out."""
-    return Run("brass knobs", route or (step("bath", 0),), charge, current, time, before, after, deposit, anode, "rack")
+    steps = route or (step("bath", 0),)
+    tanks, drags = tuple(one.tank for one in steps), tuple(one.drag_out for one in steps)
+    return Run("brass knobs", tanks, charge, current, time, before, after, deposit, anode, "rack", drags)
 
 
 def a_bath() -> Books:
@@ -287,5 +289,5 @@ def test_a_bath_that_is_its_own_anode_gives_itself_nothing() -> None:
 
 
 def test_a_run_through_no_tank_is_nothing() -> None:
-    run = Run("knobs", (), coulombs(3600), None, None, None, None, copper_deposit(), None, "rack")
+    run = Run("knobs", (), coulombs(3600), None, None, None, None, copper_deposit(), None, "rack", ())
     assert a_line().record(run).transfers == ()

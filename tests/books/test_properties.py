@@ -5,6 +5,7 @@ from collections import Counter
 from collections.abc import Iterator
 from dataclasses import dataclass, replace
 from fractions import Fraction
+from itertools import pairwise
 from uuid import UUID
 
 import pytest
@@ -253,9 +254,8 @@ def poured(event: Event) -> list[tuple[str, str]]:
                 for item, amount in zip(ingredients, amounts, strict=True)
                 if amount is None or amount.base
             ]
-        case Run(route=route):
-            ends = [step.tank for step in route[1:]]
-            return [(step.tank, end) for step, end in zip(route, ends, strict=False) if step.drag_out.base]
+        case Run(route=route, drag_out=drag_out):
+            return [ends for ends, drags in zip(pairwise(route), drag_out, strict=False) if drags.base]
         case _:
             return []
 

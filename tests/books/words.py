@@ -1,6 +1,7 @@
 """The trade's words for the books' tests: amounts as one says them, and books that check themselves at each record."""
 
 from decimal import Decimal
+from typing import NamedTuple
 from uuid import UUID
 
 from chemicals.books.events import (
@@ -13,7 +14,6 @@ from chemicals.books.events import (
     Opening,
     Recipe,
     Share,
-    Step,
 )
 from chemicals.books.fold import Folded, fold_event
 from chemicals.books.fold.state import Holding, State
@@ -57,6 +57,13 @@ def amperes(amount: Number, sd: Number | None = None) -> Measured:
 
 def seconds(amount: Number, sd: Number | None = None) -> Measured:
     return _measured(amount, "s", 1000, sd)
+
+
+class Step(NamedTuple):
+    """One tank of a route and what a load drags out of it."""
+
+    tank: str
+    drag_out: Figure
 
 
 def step(tank: str, millilitres: Number, sd: Number = 0) -> Step:

@@ -1,6 +1,7 @@
 """Runs: metal onto parts, metal from soluble anodes, drag-out along the route."""
 
 from decimal import ROUND_HALF_EVEN, Decimal, localcontext
+from itertools import pairwise
 
 from chemicals.books.events import ASSUMED, COMPUTED, GROSS_MASS, OBSERVED, PARTS, Deposit, Figure, Run
 from chemicals.books.fold.arithmetic import product, quotient, root
@@ -16,16 +17,15 @@ Amount = tuple[int, int, str]
 def fold_run(folding: Folding, event: Run) -> None:
     """bath -> parts, anode set -> bath, then each step drags out to the next and drags in."""
     if event.deposit is not None and event.route:
-        bath = event.route[0].tank
+        bath = event.route[0]
         plated = _weighed(event) or _by_faraday(event, event.deposit, event.deposit.efficiency)
         _plate(folding, event.deposit.metal, bath, PARTS, plated)
         if plated is not None and plated[0] < 0:
             folding.note(WEIGHT_LOST, event.deposit.metal, bath, PARTS)
         if event.anode is not None:
             _plate(folding, event.deposit.metal, event.anode, bath, _dissolved(event, event.deposit))
-    ends = [step.tank for step in event.route[1:]] + [PARTS]
-    for step, end in zip(event.route, ends, strict=False):  # a route of no tanks drags nothing out
-        folding.pour(step.tank, end, step.drag_out.base, step.drag_out.sd, ASSUMED)
+    for (tank, end), drag_out in zip(pairwise((*event.route, PARTS)), event.drag_out, strict=True):
+        folding.pour(tank, end, drag_out.base, drag_out.sd, ASSUMED)
 
 
 def _plate(folding: Folding, metal: str, source: str, target: str, amount: Amount | None) -> None:

@@ -43,12 +43,12 @@ def _from_entry(member: Membership, verb: str, uuid: UUID) -> dict[str, Any]:
     event = read_event(get_entry_for(member, uuid))
     if INPUTS[verb] is not RunInput or not isinstance(event, Run):
         return {}
-    steps = [step.tank for step in event.route]
+    tanks = list(event.route)
     route = next(
         (
             str(route.uuid)
             for route in list_routes_for(member)
-            if [str(step.vessel.uuid) for step in route.steps.all()] == steps
+            if [str(step.vessel.uuid) for step in route.steps.all()] == tanks
         ),
         "",
     )
