@@ -15,7 +15,7 @@ from chemicals.journal.selectors import find_cancelled, read_event
 from chemicals.ledger.selectors import list_vessels_for
 from chemicals.science.units import find_elsewhere
 from chemicals.workshop.models import Membership
-from compliance.web.words import Ends, in_one_unit
+from compliance.web.words import Ends, component_name, in_one_unit
 
 LABELS = {
     "vessel": gettext_lazy("vessel"),
@@ -81,18 +81,18 @@ def ends_of(member: Membership) -> Ends:
 def summarise(entry: Entry, event: Event, ends: Ends) -> str:
     """Return one line: where, and what was measured."""
     if isinstance(event, events.Paper):
-        return f"{event.paper} {event.number}"
+        return f"{event.paper.replace('-', ' ')} {event.number}"
     if isinstance(event, events.Cancellation):
         return _("of entry %(number)s: %(reason)s") % {
             "number": entry.about.sequence if entry.about else "",
             "reason": event.reason,
         }
-    vessels = [step.tank for step in event.route] if isinstance(event, events.Run) else event.vessels()
+    vessels = event.route if isinstance(event, events.Run) else event.vessels()
     places = list(dict.fromkeys(ends.name(vessel) for vessel in vessels))
     joint = " → " if isinstance(event, events.Move | events.Run) else ", "
     figures = [value.typed for name in _names(event) if isinstance(value := getattr(event, name), Measured)]
     told = [event.parts] if isinstance(event, events.Run) and event.parts else []
-    told += [event.component] if isinstance(event, events.Analysis | events.Acceptance) else []
+    told += [component_name(event.component)] if isinstance(event, events.Analysis | events.Acceptance) else []
     return ": ".join(filter(None, (joint.join(places), ", ".join([*told, *figures]))))
 
 
