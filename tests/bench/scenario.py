@@ -44,7 +44,7 @@ def make_bench(name: str) -> Bench:
     member = create_workshop(now=START, name=name, time_zone="UTC", owner=user)
     bath = create_tank(actor=member, now=START, tank=TankInput(kind="bath", name="bath", metal="Cu", valence=2))
     rinse = create_tank(actor=member, now=START, tank=TankInput(kind="rinse", name="rinse"))
-    rack = create_rack_type(actor=member, name="rack", drag_out=2_000_000)
+    rack = create_rack_type(actor=member, name="rack", drag_out=100_000)
     route = create_route(actor=member, name="route", rack=rack, vessels=[bath.vessel, rinse.vessel])
     bench = Bench(member, bath, rinse, route)
     copper = HeldRow(metal="Cu", amount=parse("50 g/L", "concentration"))
