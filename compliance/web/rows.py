@@ -13,6 +13,7 @@ from chemicals.books.events import Event, Measured
 from chemicals.journal.models import Entry
 from chemicals.journal.selectors import find_cancelled, read_event
 from chemicals.ledger.selectors import list_vessels_for
+from chemicals.register.selectors import list_products_for
 from chemicals.science.units import find_elsewhere
 from chemicals.workshop.models import Membership
 from compliance.web.words import Ends, component_name, in_one_unit
@@ -41,7 +42,7 @@ LABELS = {
     "reported_at": gettext_lazy("reported"),
     "molar_mass": gettext_lazy("molar mass (g/mol)"),
     "faraday": gettext_lazy("Faraday constant (C/mol)"),
-    "poured": gettext_lazy("poured in (product and revision)"),
+    "poured": gettext_lazy("poured in"),
     "entry": gettext_lazy("entry"),
     "gross": gettext_lazy("gross weight"),
 }
@@ -78,6 +79,12 @@ def ends_of(member: Membership) -> Ends:
     return Ends.of(list_vessels_for(member).values_list("uuid", "name"))
 
 
+def names_of(member: Membership) -> Ends:
+    """Return the names of all vessels and products of the workshop: what an entry may speak of. Two queries."""
+    vessels, products = list_vessels_for(member), list_products_for(member)
+    return Ends.of([*vessels.values_list("uuid", "name"), *products.values_list("uuid", "name")])
+
+
 def summarise(entry: Entry, event: Event, ends: Ends) -> str:
     """Return one line: where, and what was measured."""
     if isinstance(event, events.Paper):
@@ -109,7 +116,8 @@ def _tell(name: str, value: Any, ends: Ends) -> Iterator[tuple[str, str]]:
     label = str(LABELS.get(name, name.replace("_", " ")))
     if isinstance(value, dict) and not _is_figure(value):
         for inner, part in value.items():
-            yield from _tell(inner, part, ends)
+            if inner != "product" or "name" not in value:  # a product goes by the name that it had then
+                yield from _tell(inner, part, ends)
     elif isinstance(value, list):
         for number, part in enumerate(value, 1):
             yield f"{label} {number}", _tell_one(name, part, ends)
@@ -146,4 +154,10 @@ def _shown(base: int, sd: int | None, dimension: str) -> str:
 def _word(value: Any, ends: Ends) -> str:
     if isinstance(value, bool):
         return _("yes") if value else _("no")
-    return ends.name(str(value))
+    text = str(value)
+    if text.startswith(events.UNKNOWN_LIQUID):
+        return _("unknown")
+    thing, slash, number = text.partition("/")
+    if slash and thing in ends.vessels:  # a recipe: a product and its revision
+        return _("%(product)s, revision %(number)s") % {"product": ends.name(thing), "number": number}
+    return ends.name(text)

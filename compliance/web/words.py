@@ -129,7 +129,7 @@ def moment(at: datetime, precision: str = "") -> str:
 
 @dataclass(frozen=True)
 class Ends:
-    """Names of the ends of movements: vessels by their uuid as text, and the boundaries."""
+    """Names of the ends of movements: things by their uuid as text, most of them vessels, and the boundaries."""
 
     vessels: Mapping[str, str]
 

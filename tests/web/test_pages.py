@@ -128,6 +128,18 @@ def test_unknown_is_a_word_and_never_zero(visit: Visitor, line: Line) -> None:
     page = text_of(visit.get("vessel", line.bath.uuid))
     assert "not all listed" in page
     assert "every metal not named is unknown" in page
+    assert "<dt>metals</dt> <dd>unknown</dd>" in page
+    assert "metals unknown" in text_of(visit.get("tanks"))
+
+
+def test_an_entry_names_what_was_poured_in(visit: Visitor, line: Line) -> None:
+    for vessel, more in ((line.bath, {"product": line.salt.uuid}), (line.rinse, {})):
+        visit.post("record", "opening", key=uuid4(), vessel=vessel.uuid, volume="9 L", step="save", **more)
+    known, unknown = (
+        text_of(visit.get("entry", entry.uuid)) for entry in Entry._base_manager.filter(kind="opening").order_by("pk")
+    )
+    assert "<dt>poured in 1</dt> <dd>Blue salt, revision 1</dd>" in known
+    assert "<dt>poured in 1</dt> <dd>unknown</dd>" in unknown
 
 
 def test_a_code_opens_the_page_of_its_vessel(visit: Visitor, line: Line, stranger: Membership) -> None:

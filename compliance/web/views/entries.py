@@ -16,7 +16,7 @@ from compliance.web import words
 from compliance.web.door import page, show
 from compliance.web.export import Column, wanted_file
 from compliance.web.filters import EntryFilter
-from compliance.web.rows import ends_of, entry_rows, tell
+from compliance.web.rows import entry_rows, names_of, tell
 
 PER_PAGE = 50
 COLUMNS = (
@@ -59,7 +59,7 @@ def index(request: HttpRequest, member: Membership) -> HttpResponse:
 def entry(request: HttpRequest, member: Membership, uuid: UUID) -> HttpResponse:
     """Show an entry: as recorded, what followed, its place in the chain."""
     found = get_entry_for(member, uuid)
-    body, ends = read_body(found), ends_of(member)
+    body, ends = read_body(found), names_of(member)
     mentions = list(list_mentions_of(found))
     cancelled_by = next((row for row in mentions if row.kind == events.Cancellation.KIND), None)
     findings = list_findings_for(member).filter(entry=found)
