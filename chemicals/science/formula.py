@@ -14,6 +14,7 @@ from decimal import ROUND_HALF_EVEN, Context, Decimal
 from functools import cache
 from typing import Any, Final
 
+from chemicals.science.errors import TextError
 from chemicals.science.tables import read_table
 
 BASIS: Final = "IUPAC abridged standard atomic weights 2021 (Pure Appl. Chem. 94, 2022)"
@@ -33,14 +34,10 @@ MESSAGES: Final = {
 }
 
 
-class FormulaError(ValueError):
-    """The text is no formula. `code` and `params` name the reason, `message` says it in English."""
+class FormulaError(TextError):
+    """The text is no formula."""
 
-    def __init__(self, code: str, **params: str) -> None:
-        self.code = code
-        self.params = params
-        self.message = MESSAGES[code] % params
-        super().__init__(self.message)
+    messages = MESSAGES
 
 
 @dataclass(frozen=True)

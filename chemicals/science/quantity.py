@@ -14,6 +14,7 @@ from decimal import ROUND_HALF_EVEN, Context, Decimal, localcontext
 from typing import Final
 
 from chemicals.science import units
+from chemicals.science.errors import TextError
 
 LIMIT: Final = 10**15  # base units; the database checks the same bound
 LONGEST: Final = 80  # characters
@@ -35,14 +36,10 @@ MESSAGES: Final = {
 }
 
 
-class QuantityError(ValueError):
-    """The text is no amount of the needed kind. `code` and `params` name the reason, `message` says it in English."""
+class QuantityError(TextError):
+    """The text is no amount of the needed kind."""
 
-    def __init__(self, code: str, **params: str) -> None:
-        self.code = code
-        self.params = params
-        self.message = MESSAGES[code] % params
-        super().__init__(self.message)
+    messages = MESSAGES
 
 
 @dataclass(frozen=True)
