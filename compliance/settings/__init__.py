@@ -203,7 +203,7 @@ SPECTACULAR_SETTINGS = {
 
 REDIS_URL = os.environ.get("REDIS_URL", "")
 """Set it to let Celery carry jobs; left empty, `manage.py work` claims them."""
-JOB_LEASE_SECONDS = int(os.environ.get("JOB_LEASE_SECONDS", "60"))
+JOB_LEASE_SECONDS = int(os.environ.get("JOB_LEASE_SECONDS", "300"))
 """How long a worker keeps a job that it does not finish: more than the longest step of a task takes."""
 JOB_TASKS = {
     "clear-sessions": "compliance.ops.tasks.clear_sessions",
