@@ -21,3 +21,4 @@ STATIC_ROOT.mkdir()
 PASSWORD_HASHERS = ["django.contrib.auth.hashers.MD5PasswordHasher"]
 STORAGES["staticfiles"] = {"BACKEND": "django.contrib.staticfiles.storage.StaticFilesStorage"}
 AXES_ENABLED = False
+JOB_LEASE_SECONDS = 60
