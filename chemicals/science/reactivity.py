@@ -6,7 +6,7 @@ nobody declared.
 """
 
 from collections.abc import Iterable, Iterator
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 ACID, CYANIDE, HYPOCHLORITE, AMMONIA, OXIDISER, SULFIDE, SULFITE = (
     "acid", "cyanide", "hypochlorite", "ammonia", "oxidiser", "sulfide", "sulfite",
@@ -72,12 +72,13 @@ def declared(kinds: Iterable[str]) -> frozenset[str]:
 
 
 def find_dangers(one: Iterable[str], other: Iterable[str]) -> Iterator[Danger]:
-    """Yield every danger of pouring one liquid into the other, each given as what it reacts as."""
+    """Yield every danger of bringing two liquids together; ``first`` is of the one, ``second`` of the other."""
     left, right = _widen(one), _widen(other)
     for danger in DANGERS:
-        meet = danger.first in left and danger.second in right
-        if meet or (danger.second in left and danger.first in right):
+        if danger.first in left and danger.second in right:
             yield danger
+        elif danger.second in left and danger.first in right:
+            yield replace(danger, first=danger.second, second=danger.first)
 
 
 def _widen(kinds: Iterable[str]) -> set[str]:

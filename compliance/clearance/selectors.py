@@ -15,7 +15,7 @@ from chemicals.ledger.selectors import list_held, read_memory
 from chemicals.process.inputs import Input
 from chemicals.process.selectors import Trial, try_out
 from chemicals.register.selectors import list_reactivity
-from chemicals.science.reactivity import DANGERS, UNKNOWN, Danger, declared, find_dangers
+from chemicals.science.reactivity import UNKNOWN, Danger, declared, find_dangers
 from chemicals.workshop.models import Membership, Workshop
 from compliance.waste.selectors import find_obstacles, get_declared_reactivity
 
@@ -99,21 +99,22 @@ def _meetings(event: events.Event) -> Iterator[tuple[str, str]]:
 
 
 def find_dangers_between(one: Vessel, other: Vessel) -> list[Danger]:
-    """Return every danger of bringing the contents of two vessels together, each once.
+    """Return every danger of bringing the contents of two vessels together, each once; ``first`` is of the one.
 
-    A liquid that nobody can name counts as an acid and as a cyanide, but not against the rinse that holds nothing
-    else than it does.
+    A liquid that nobody can name counts as an acid and as a cyanide, but not between a tank and its own rinse, of
+    which one holds nothing else than the other.
     """
     left, right = read_marks(one), read_marks(other)
-    own_rinse = left.keys() <= right.keys() or right.keys() <= left.keys()
+    nested = left.keys() <= right.keys() or right.keys() <= left.keys()
+    own_rinse = nested and {one.kind, other.kind} <= {VesselKind.BATH, VesselKind.RINSE}
     found = {
-        danger
-        for key, kinds in left.items()
-        for other_key, other_kinds in right.items()
+        (danger.gives, danger.harm): danger
+        for key, kinds in sorted(left.items())
+        for other_key, other_kinds in sorted(right.items())
         if key != other_key and not (own_rinse and UNKNOWN in kinds | other_kinds)
         for danger in find_dangers(kinds, other_kinds)
     }
-    return sorted(found, key=DANGERS.index)
+    return list(found.values())
 
 
 def react_as(vessel: Vessel) -> frozenset[str]:

@@ -204,3 +204,18 @@ class TestUndeclaredProduct:
     def test_nothing_and_something_are_not_declared_together(self, bench: Bench) -> None:
         with pytest.raises(InvalidInputError, match="not both"):
             bench.bottle("Both", "nothing", "acid")
+
+
+@pytest.mark.parametrize(("poured", "held"), [("acid", "sulfite"), ("sulfite", "acid")])
+def test_the_reason_says_which_vessel_holds_what(bench: Bench, poured: str, held: str) -> None:
+    stock, tank = bench.bottle("Stock", poured), bench.made_from("Tank", bench.bottle("Other", held))
+    with pytest.raises(RefusedError, match=rf"Stock bottle \({poured}\) and Tank \({held}\) must never meet"):
+        bench.pour(TopUpInput(tank=tank.uuid, source=stock.uuid, volume=parse("1 mL", "volume")))
+
+
+def test_an_undeclared_bottle_stays_refused_after_an_incident(bench: Bench) -> None:
+    tank, plain = bench.made_from("Tank", bench.bottle("Acid", "acid")), bench.bottle("Plain")
+    wrong = TopUpInput(tank=tank.uuid, source=plain.uuid, volume=parse("1 mL", "volume"))
+    assert bench.pour(wrong, already_happened=True) == "incident"
+    with pytest.raises(RefusedError, match="hydrogen cyanide"):
+        bench.pour(wrong)
