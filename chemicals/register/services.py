@@ -97,7 +97,7 @@ def create_product(
     errors = check_row(product)
     checked, more = _check_revision(actor, revision)
     with transaction.atomic(), scope(workshop=actor.workshop):
-        if Product.objects.filter(name=product.name, supplier=product.supplier).exists():
+        if not errors and Product.objects.filter(name=product.name, supplier=product.supplier).exists():
             errors.append(FieldError("name", "This product of this supplier is in the register. Revise it instead."))
         if errors or more:
             raise InvalidInputError([*errors, *more])

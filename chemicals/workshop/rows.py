@@ -27,6 +27,7 @@ def check_row(row: models.Model, *, leave_out: Collection[str] = (), unique: boo
     ``unique`` asks the database as well, inside the workshop's scope, whether there is one of this name.
     """
     errors = list(_check_texts(row))
+    unique = unique and not errors  # PostgreSQL cannot even look for a text with a NUL
     try:
         row.full_clean(exclude=leave_out, validate_unique=unique, validate_constraints=unique)
     except ValidationError as error:
