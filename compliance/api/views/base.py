@@ -1,5 +1,6 @@
 """What all views share: who asks, in which workshop, what may stand in the request, and one domain call."""
 
+from abc import ABC, abstractmethod
 from collections.abc import Callable, Iterable, Sequence
 from contextlib import ExitStack
 from datetime import datetime
@@ -135,15 +136,15 @@ class WorkshopView(ApiView):
         self.scopes.enter_context(scope(workshop=member.workshop))
 
 
-class ListView(ListModelMixin, WorkshopView):
+class ListView(ListModelMixin, WorkshopView, ABC):
     """A list in pages."""
 
     query_class = PageQuery
     pagination_class = StableCursor
 
+    @abstractmethod
     def rows(self) -> QuerySet[Any]:
         """Return everything that the list shows."""
-        raise NotImplementedError
 
     def get_queryset(self) -> QuerySet[Any]:
         """Return the rows; none while the description is drawn, when nobody asks."""
@@ -159,9 +160,9 @@ class ListView(ListModelMixin, WorkshopView):
 class ListCreateView(ListView):
     """A list in pages, to which a POST adds."""
 
+    @abstractmethod
     def create(self, said: dict[str, Any]) -> object:
         """Create the thing that the body describes: one domain call."""
-        raise NotImplementedError
 
     def post(self, request: Request, **kwargs: Any) -> Response:
         """Create one."""
