@@ -35,7 +35,7 @@ class Bench:
 
     def run(self) -> Appended:
         """Record one run: plated by ampere-hours, rinsed."""
-        return self.record(RunInput(route=self.route.uuid, charge=parse("2 Ah", "charge")))
+        return self.record(RunInput(route=self.route.uuid, charge=parse("2 mAh", "charge")))
 
 
 def make_bench(name: str) -> Bench:
