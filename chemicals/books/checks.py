@@ -1,7 +1,9 @@
 """What the figures of an event may be. Each check refuses by the name of the field."""
 
 from collections.abc import Collection, Sequence
+from datetime import datetime
 from decimal import Decimal, InvalidOperation
+from itertools import pairwise
 
 from chemicals.books.canonical import CanonicalError
 
@@ -44,3 +46,52 @@ def once(where: str, **lists: Sequence[str]) -> None:
         twice = sorted({word for word in words if words.count(word) > 1})
         if twice:
             raise CanonicalError(f"{where}.{name}: {', '.join(twice)} stands there more than once.")
+
+
+def none_of(where: str, refused: Collection[str], **words: str) -> None:
+    """Refuse words that are among the refused ones."""
+    for name, word in words.items():
+        if word in refused:
+            raise CanonicalError(f"{where}.{name}: {word!r} cannot stand here.")
+
+
+def between(where: str, least: int, most: int, **numbers: int) -> None:
+    """Refuse numbers outside the two ends."""
+    for name, number in numbers.items():
+        if not least <= number <= most:
+            raise CanonicalError(f"{where}.{name}: {number} is not between {least} and {most}.")
+
+
+def at_most_one(where: str, **values: object) -> None:
+    """Refuse more than one value that is not None."""
+    given = [name for name, value in values.items() if value is not None]
+    if len(given) > 1:
+        raise CanonicalError(f"{where}: only one of {', '.join(given)} can be said.")
+
+
+def exactly_one(where: str, **values: object) -> None:
+    """Refuse none, or more than one, that is not None."""
+    at_most_one(where, **values)
+    needed(where, **{" or ".join(values): next((value for value in values.values() if value is not None), None)})
+
+
+def both_or_neither(where: str, **values: object) -> None:
+    """Refuse some values with others missing."""
+    missing = [name for name, value in values.items() if value is None]
+    if missing and len(missing) < len(values):
+        raise CanonicalError(f"{where}.{missing[0]}: it goes with {', '.join(set(values) - set(missing))}.")
+
+
+def needed(where: str, **values: object) -> None:
+    """Refuse None."""
+    for name, value in values.items():
+        if value is None:
+            raise CanonicalError(f"{where}.{name}: this is needed.")
+
+
+def in_order(where: str, **moments: datetime | None) -> None:
+    """Refuse moments that do not follow each other; None stands for no moment."""
+    known = [(name, moment) for name, moment in moments.items() if moment is not None]
+    for (_, earlier), (name, later) in pairwise(known):
+        if earlier >= later:
+            raise CanonicalError(f"{where}.{name}: {later} does not come after {earlier}.")

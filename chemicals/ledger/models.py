@@ -26,6 +26,12 @@ class VesselKind(models.TextChoices):
     BATH = "bath", _("bath")
     RINSE = "rinse", _("rinse")
     ANODE = "anode", _("anode set")
+    FILTER = "filter", _("filter")
+    CARBON = "carbon", _("carbon")
+    RESIN = "resin", _("resin")
+    RECOVERY_CELL = "recovery cell", _("recovery cell")
+    RACKS = "racks", _("rack build-up")
+    SLUDGE = "sludge", _("sludge")
     WASTE = "waste", _("waste container")
 
 
@@ -35,7 +41,7 @@ class Vessel(models.Model):
     uuid = models.UUIDField(default=uuid.uuid4, unique=True, editable=False)
     workshop = models.ForeignKey(Workshop, on_delete=models.PROTECT, related_name="vessels")
     code = models.CharField(_("code"), max_length=8, unique=True)
-    kind = models.CharField(_("kind"), max_length=8, choices=VesselKind.choices)
+    kind = models.CharField(_("kind"), max_length=16, choices=VesselKind.choices)
     name = models.CharField(_("name"), max_length=80)
     place = models.ForeignKey(Place, null=True, blank=True, on_delete=models.PROTECT, related_name="vessels")
     product = models.ForeignKey(Product, null=True, blank=True, on_delete=models.PROTECT, related_name="vessels")
@@ -56,19 +62,28 @@ class Vessel(models.Model):
 
 
 class ComponentKind(models.TextChoices):
-    """What is balanced. ``everything`` stands for all components that an incomplete list does not name."""
+    """What is balanced; only metals and solutes are conserved.
+
+    A solute was declared inert; a species reacts away. ``everything`` stands for all components that an incomplete
+    list does not name.
+    """
 
     METAL = "metal", _("metal")
+    SOLUTE = "solute", _("solute")
+    SPECIES = "species", _("species with reactions")
     VOLUME = "volume", _("volume")
     GROSS_MASS = "gross mass", _("gross mass")
     EVERYTHING = "everything", _("everything else")
 
 
 class Component(models.Model):
-    """What is balanced in a workshop; the code is the element's symbol, ``volume`` or ``gross mass``."""
+    """What is balanced in a workshop.
+
+    The code is the element's symbol, the solute's formula, the name of a species, ``volume`` or ``gross mass``.
+    """
 
     workshop = models.ForeignKey(Workshop, on_delete=models.PROTECT, related_name="components")
-    code = models.CharField(max_length=16, blank=True)
+    code = models.CharField(max_length=40, blank=True)
     kind = models.CharField(max_length=12, choices=ComponentKind.choices)
 
     objects: "models.Manager[Component]" = ScopedManager(workshop="workshop")
@@ -173,7 +188,11 @@ class Memory(models.Model):
 
 
 class Content(models.Model):
-    """What a vessel held of a component just after an entry: the running content with its variance."""
+    """What a vessel held of a component just after an entry: the running content with its variance.
+
+    ``known_part`` as in Holding. ``poured``, on the row of everything else, is what the vessel remembered then: the
+    last rows before a moment are the fold's whole state at that moment.
+    """
 
     workshop = models.ForeignKey(Workshop, on_delete=models.PROTECT, related_name="contents")
     entry = models.ForeignKey(Entry, on_delete=models.PROTECT, related_name="contents")
@@ -183,6 +202,8 @@ class Content(models.Model):
     sequence = models.BigIntegerField()
     amount = models.BigIntegerField(null=True)
     variance = ExactIntegerField()
+    known_part = models.BigIntegerField(default=0)
+    poured = models.JSONField(null=True)
 
     objects: "models.Manager[Content]" = ScopedManager(workshop="workshop")
 
@@ -203,7 +224,7 @@ class Finding(models.Model):
     workshop = models.ForeignKey(Workshop, on_delete=models.PROTECT, related_name="findings")
     entry = models.ForeignKey(Entry, on_delete=models.PROTECT, related_name="findings")
     code = models.CharField(max_length=24)
-    component = models.CharField(max_length=16, blank=True)
+    component = models.CharField(max_length=40, blank=True)
     source = models.CharField(max_length=36, blank=True)
     target = models.CharField(max_length=36, blank=True)
     occurred_at = models.DateTimeField()

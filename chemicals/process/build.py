@@ -21,6 +21,7 @@ from chemicals.science.formula import METALS, FormulaError, metal_fraction
 from chemicals.science.quantity import Quantity
 from chemicals.workshop.models import Membership
 
+NO_ROOM = Figure(0, 0, "what dissolves is taken to need no room")
 ASSUMED_DENSITY = Figure(1_100_000, 100_000, "assumed for a plating solution: 1.1 g/mL, uncertain by 0.1 g/mL")
 
 
@@ -126,6 +127,7 @@ def _build_make_up(draft: Draft, now: datetime, data: inputs.MakeUpInput) -> Eve
         ),
         level=measured(data.level),
         water_density=WATER,
+        dissolved=(NO_ROOM,) * len(rows),
     )
 
 

@@ -3,7 +3,7 @@
 from datetime import datetime
 
 from chemicals.books import events
-from chemicals.books.events import Deposit, Figure, Measured
+from chemicals.books.events import Deposit, Figure, Measured, Plating
 from chemicals.process.draft import Draft, measured
 from chemicals.process.inputs import RunInput
 from chemicals.process.models import AnodeKind, RackType, Route, RouteStep, Tank
@@ -25,11 +25,10 @@ def build_run(draft: Draft, now: datetime, data: RunInput) -> events.Run | None:
         return None
     bath = Tank.objects.filter(vessel=vessels[0]).select_related("vessel", "anode").first()
     drag_out = Figure(rack.drag_out, rack.drag_out * rack.drag_out_sd // 10**6, f"rack type {rack.name}")
-    deposit = None if bath is None or not bath.metal else _deposit(bath)
-    if deposit is not None and data.charge is None and (current is None or data.time is None) and not _weighed(data):
+    plating = None if bath is None or not bath.metal else _plating(bath)
+    if plating is not None and data.charge is None and (current is None or data.time is None) and not _weighed(data):
         draft.refuse("charge", "Write the ampere-hours, or current and time, or both weights.")
         return None
-    soluble = bath is not None and bath.anode_kind == AnodeKind.SOLUBLE and bath.anode is not None
     return events.Run(
         parts=data.parts.strip(),
         route=tuple(str(vessel.uuid) for vessel in vessels),
@@ -38,8 +37,7 @@ def build_run(draft: Draft, now: datetime, data: RunInput) -> events.Run | None:
         time=measured(data.time),
         weight_before=measured(data.weight_before, data.weight_sd),
         weight_after=measured(data.weight_after, data.weight_sd),
-        deposit=deposit,
-        anode=str(bath.anode.uuid) if soluble and bath is not None and bath.anode is not None else None,
+        plating=plating,
         rack=rack.name,
         drag_out=(drag_out,) * len(vessels),
     )
@@ -80,6 +78,12 @@ def _check_charge(draft: Draft, data: RunInput) -> None:
 
 def _weighed(data: RunInput) -> bool:
     return data.weight_before is not None and data.weight_after is not None
+
+
+def _plating(bath: Tank) -> Plating:
+    soluble = bath.anode_kind == AnodeKind.SOLUBLE and bath.anode is not None
+    anode = str(bath.anode.uuid) if soluble and bath.anode is not None else None
+    return Plating(_deposit(bath), anode, racks=None, rack_share=None, conversions=())
 
 
 def _deposit(bath: Tank) -> Deposit:

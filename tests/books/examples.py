@@ -17,11 +17,24 @@ from chemicals.books.events import (
     AIR,
     Acceptance,
     Analysis,
+    BathCharge,
     Cancellation,
+    Carbon,
+    Change,
+    CleanOut,
+    Conversion,
+    Correction,
+    Count,
+    DaySheet,
+    DensityReading,
     Deposit,
+    Discharge,
+    Dissolved,
     DrumOff,
+    Dummy,
     Event,
     Figure,
+    Filter,
     HandOver,
     Held,
     Ingredient,
@@ -31,18 +44,32 @@ from chemicals.books.events import (
     Move,
     Opening,
     Paper,
+    PeriodClosing,
+    PeriodReopening,
+    Plating,
+    Racks,
     Receipt,
     Recipe,
+    Resin,
     Run,
+    Sample,
     Share,
+    Sludge,
+    Spill,
+    Strip,
     TopUp,
+    Treatment,
+    WeightReading,
     encode,
 )
 
 GOLDEN = Path(__file__).parent / "golden"
 WORKSHOP = UUID("0b6f7c1e-3f57-4c1d-9d0a-7f5b2f3c9a10")
 WATER = Figure(998_200, 100, "water at 20 °C")
-BATH, RINSE, STOCK, ANODES, DRUM = (str(uuid5(WORKSHOP, name)) for name in ("bath", "rinse", "stock", "anodes", "drum"))
+BATH, RINSE, STOCK, ANODES, DRUM, RACKS, SLUDGE = (
+    str(uuid5(WORKSHOP, name)) for name in ("bath", "rinse", "stock", "anodes", "drum", "racks", "sludge")
+)
+SPENT = (Held("Cu", Measured("3.1", "g", 3_100_000, 400_000)),)
 RECIPE = Recipe(
     uuid5(WORKSHOP, "copper sulfate"),
     3,
@@ -51,6 +78,14 @@ RECIPE = Recipe(
     complete=False,
     shares=(Share("Cu", 254_500_000, 500_000, "kg"), Share("Fe", 0, 1_000, "kg")),
     density=None,
+)
+
+PLATING = Plating(
+    Deposit("Cu", "63.546", 2, "96485.33212", Figure(980_000, 20_000, "as entered")),
+    ANODES,
+    RACKS,
+    Figure(30_000, 15_000, "assumed for uncoated tips"),
+    (Conversion("acid", Figure(10_364_270, 100_000, "oxygen at an inert anode"), made=True),),
 )
 
 EXAMPLES: Mapping[str, Event] = {
@@ -74,6 +109,7 @@ EXAMPLES: Mapping[str, Event] = {
             ),
             Measured("10", "L", 10_000_000_000, 50_000_000),
             WATER,
+            (Figure(400_000_000, 200_000_000, "assumed"), Figure(0, 0, "a liquid")),
         ),
         TopUp(BATH, "water supply", None, Measured("10", "L", 10_000_000_000, 50_000_000), WATER),
         Run(
@@ -84,13 +120,57 @@ EXAMPLES: Mapping[str, Event] = {
             Measured("4", "h", 14_400_000, 60_000),
             Measured("5.6", "g", 5_600_000, 50_000),
             Measured("7.7", "g", 7_700_000, 50_000),
-            Deposit("Cu", "63.546", 2, "96485.33212", Figure(980_000, 20_000, "as entered")),
-            ANODES,
+            PLATING,
             "rack type 2",
             (Figure(5_000_000, 1_500_000, "rack type 2"), Figure(5_000_000, 1_500_000, "r2")),
         ),
+        Count(STOCK, None, Measured("17.25", "kg", 17_250_000_000, 10_000_000)),
+        DaySheet(
+            (Racks((BATH, RINSE), "rack type 2", 14),),
+            (BathCharge(BATH, Measured("31.5", "Ah", 113_400_000_000, 1_000_000_000)),),
+            ((Figure(5_000_000, 1_500_000, "rack type 2"), Figure(5_000_000, 1_500_000, "r2")),),
+            (PLATING,),
+        ),
+        Dummy(BATH, RACKS, Measured("2", "Ah", 7_200_000_000), None, None, None, None, PLATING),
+        Strip(RACKS, RINSE, "Cu", Measured("85.0", "g", 85_000_000), Measured("80.2", "g", 80_200_000)),
         Move(BATH, RINSE, Measured("1", "L", 1_000_000_000)),
-        DrumOff(RINSE, DRUM, None),
+        DrumOff(RINSE, DRUM, mass=Measured("2.2", "kg", 2_200_000_000, 50_000_000)),
+        Sample(BATH, "sample", Measured("20", "mL", 20_000_000)),
+        Spill(RINSE, DRUM, Measured("0.5", "L", 500_000_000, 200_000_000)),
+        Discharge(RINSE, "sewer", Measured("3", "L", 3_000_000_000)),
+        WeightReading(DRUM, Measured("39.9", "kg", 39_900_000_000, 50_000_000)),
+        DensityReading(BATH, Measured("1.182", "g/mL", 1_182_000, 1_000)),
+        Filter(BATH, DRUM, None, None, (), Figure(250_000_000, 125_000_000, "assumed"), Figure(0, 0, "assumed")),
+        Carbon(
+            BATH,
+            DRUM,
+            Measured("60", "g", 60_000_000),
+            None,
+            SPENT,
+            Figure(120_000_000, 60_000_000, "2 L for each kilogram, assumed"),
+            Figure(0, 0, "assumed"),
+        ),
+        Resin(
+            RINSE,
+            DRUM,
+            None,
+            Measured("40", "L", 40_000_000_000),
+            (),
+            Figure(0, 0, "drained"),
+            Figure(990_000, 10_000, "as the supplier says"),
+        ),
+        Sludge(RINSE, SLUDGE, Measured("1.5", "kg", 1_500_000_000), SPENT),
+        CleanOut(RINSE, DRUM, Measured("2", "L", 2_000_000_000), WATER),
+        Treatment(
+            DRUM,
+            (Ingredient(STOCK, Measured("200", "g", 200_000_000), None),),
+            RINSE,
+            SLUDGE,
+            Measured("18", "L", 18_000_000_000, 200_000_000),
+            Measured("3", "kg", 3_000_000_000),
+            (Dissolved("Cu", Measured("1.8", "mg/L", 1_800, 300)),),
+            ("free cyanide",),
+        ),
         LevelReading(BATH, Measured("9.2", "L", 9_200_000_000, 50_000_000), AIR, WATER),
         Analysis(
             BATH,
@@ -103,6 +183,14 @@ EXAMPLES: Mapping[str, Event] = {
         Acceptance(uuid5(WORKSHOP, "analysis"), BATH, "Cu", Figure(49_882_000, 509_000, "titration")),
         HandOver(DRUM, "collection point, gate 3", Measured("41.5", "kg", 41_500_000_000)),
         Cancellation(uuid5(WORKSHOP, "a mistake"), "the wrong tank"),
+        Correction(
+            uuid5(WORKSHOP, "an old mistake"),
+            BATH,
+            (Change("Cu", Measured("12", "g", 12_000_000, 500_000), found=False),),
+            "a receipt was written twice",
+        ),
+        PeriodClosing(None, datetime(2026, 4, 1, tzinfo=UTC), 41, 2, "1a" * 32, "2b" * 32),
+        PeriodReopening(uuid5(WORKSHOP, "March"), "the meter was read wrongly"),
         Paper("manifest", 17, "ab" * 32, "cd" * 32),
     )
 }

@@ -32,7 +32,21 @@ from chemicals.books.events import (
     TopUp,
 )
 from chemicals.books.fold import Entry
-from tests.books.words import DENSE, SALT, WATER, G, L, acid, copper_deposit, grams, litres, opening, salt
+from tests.books.words import (
+    DENSE,
+    NO_ROOM,
+    SALT,
+    WATER,
+    G,
+    L,
+    acid,
+    copper_deposit,
+    grams,
+    litres,
+    opening,
+    plating,
+    salt,
+)
 
 METALS = ("Ag", "Cu")
 VESSELS = ("anodes", "bag", "bath", "can", "drum", "first", "second")
@@ -85,6 +99,11 @@ def run_through(steps: list[tuple[str, Figure]], **figures: Any) -> Run:
     return Run(parts="parts", route=tanks, drag_out=drag_out, rack="rack", **figures)
 
 
+def made_up(tank: str, ingredients: list[Ingredient], level: Measured | None) -> MakeUp:
+    """Return a make-up in which what dissolves needs no room."""
+    return MakeUp(tank, tuple(ingredients), level, WATER, (NO_ROOM,) * len(ingredients))
+
+
 EVENTS: dict[type[Event], st.SearchStrategy[Event]] = {
     Opening: st.builds(
         Opening,
@@ -97,9 +116,7 @@ EVENTS: dict[type[Event], st.SearchStrategy[Event]] = {
         st.lists(st.sampled_from(["old/1", "old/2"]), max_size=2).map(tuple),
     ),
     Receipt: st.builds(Receipt, vessels, st.none() | masses, st.none() | volumes, st.just("lot"), recipes),
-    MakeUp: st.builds(
-        MakeUp, vessels, st.lists(ingredients, max_size=2).map(tuple), st.none() | volumes, st.just(WATER)
-    ),
+    MakeUp: st.builds(made_up, vessels, st.lists(ingredients, max_size=2), st.none() | volumes),
     TopUp: st.builds(
         TopUp, vessels, vessels | st.just(WATER_SUPPLY), st.none() | volumes, st.none() | volumes, st.just(WATER)
     ),
@@ -111,8 +128,7 @@ EVENTS: dict[type[Event], st.SearchStrategy[Event]] = {
         time=st.none() | charges,
         weight_before=st.none() | masses,
         weight_after=st.none() | masses,
-        deposit=st.none() | st.just(copper_deposit(980_000, 10_000)),
-        anode=st.none() | vessels,
+        plating=st.none() | st.builds(plating, st.just(copper_deposit(980_000, 10_000)), st.none() | vessels),
     ),
     Move: st.builds(Move, vessels, vessels, st.none() | volumes),
     DrumOff: st.builds(DrumOff, vessels, vessels, st.none() | volumes),

@@ -14,17 +14,39 @@ from chemicals.books.events import (
     AIR,
     EVENTS,
     GROSS_MASS,
+    SAMPLE,
+    SEWER,
     SPILL,
     VOLUME,
+    BathCharge,
+    Carbon,
+    Correction,
+    Count,
+    DaySheet,
     Deposit,
+    Discharge,
+    DrumOff,
     Event,
     Figure,
+    Filter,
     Held,
+    Ingredient,
     LevelReading,
+    MakeUp,
     Measured,
+    Move,
     Opening,
+    PeriodClosing,
+    Plating,
+    Racks,
+    Resin,
     Run,
+    Sample,
     Share,
+    Sludge,
+    Spill,
+    Strip,
+    Treatment,
 )
 
 texts = st.text(st.characters(exclude_categories=("Cc", "Cs"), include_characters="\n"), max_size=12).map(
@@ -59,6 +81,22 @@ FIELDS: dict[type, dict[str, Values]] = {
         "valence": st.integers(1, 8),
     },
     Opening: {"held": held_lists},
+    Count: {"volume": st.none(), "mass": st.deferred(lambda: values_of(Measured))},
+    Plating: {"racks": st.none(), "rack_share": st.none()},
+    Racks: {"loads": st.integers(1, 1000)},
+    Strip: {"weight_before": st.none(), "weight_after": st.none()},
+    Move: {"mass": st.none()},
+    DrumOff: {"volume": st.none()},
+    Sample: {"mass": st.none(), "target": st.just(SAMPLE)},
+    Spill: {"mass": st.none()},
+    Discharge: {"mass": st.none(), "target": st.just(SEWER)},
+    Filter: {"taken": held_lists},
+    Carbon: {"taken": held_lists},
+    Resin: {"taken": held_lists},
+    Sludge: {"held": held_lists},
+    Treatment: {"sludge": st.none(), "dissolved": st.just(()), "consumed": st.lists(texts, unique=True).map(tuple)},
+    Correction: {"changes": st.just(())},
+    PeriodClosing: {"after": st.none()},
     LevelReading: {"lost_to": st.sampled_from([AIR, SPILL])},
 }
 """Fields that may not hold everything their type allows."""
@@ -85,6 +123,28 @@ def _names(kind: type) -> set[str]:
     return {field.name for field in dataclasses.fields(kind)}
 
 
+def _with_as_many(kind: type[Event], **lists: Values) -> Values:
+    """Return a strategy for a kind of which some lists go together."""
+    free = {name: values_of(hint) for name, hint in type_hints(kind).items() if name in _names(kind) - set(lists)}
+    return st.builds(kind, **free, **lists)
+
+
+def _a_day_sheet(rows: int) -> Values:
+    charges = [f"bath {number}" for number in range(rows)]
+    return _with_as_many(
+        DaySheet,
+        racks=st.tuples(*[st.builds(Racks, route=st.tuples(texts), rack=texts, loads=st.integers(1, 1000))] * rows),
+        drag_out=st.tuples(*[st.tuples(values_of(Figure))] * rows),
+        charges=st.tuples(*(st.builds(BathCharge, bath=st.just(bath), charge=values_of(Measured)) for bath in charges)),
+        platings=st.tuples(*[values_of(Plating)] * rows),
+    )
+
+
+def _a_make_up(rows: int) -> Values:
+    ingredients, figures = values_of(Ingredient), values_of(Figure)
+    return _with_as_many(MakeUp, ingredients=st.tuples(*[ingredients] * rows), dissolved=st.tuples(*[figures] * rows))
+
+
 def _a_run_through(steps: list[tuple[str, Figure]]) -> Values:
     free = {name: values_of(hint) for name, hint in type_hints(Run).items() if name in _names(Run)}
     tanks, drag_out = tuple(tank for tank, _ in steps), tuple(drags for _, drags in steps)
@@ -92,4 +152,6 @@ def _a_run_through(steps: list[tuple[str, Figure]]) -> Values:
 
 
 EVENTS_OF: dict[type[Event], Values] = {kind: values_of(kind) for kind in EVENTS}
+EVENTS_OF[DaySheet] = st.integers(0, 2).flatmap(_a_day_sheet)
+EVENTS_OF[MakeUp] = st.integers(0, 2).flatmap(_a_make_up)
 EVENTS_OF[Run] = st.lists(st.tuples(texts, values_of(Figure)), max_size=3).flatmap(_a_run_through)

@@ -3,6 +3,7 @@
 import json
 from collections.abc import Mapping
 from dataclasses import dataclass, fields, replace
+from datetime import UTC, datetime
 from pathlib import Path
 from typing import Any, ClassVar
 from uuid import UUID
@@ -16,20 +17,28 @@ from chemicals.books.canonical import GENESIS, CanonicalError, chain_hash, decod
 from chemicals.books.events import (
     CURRENT,
     EVENTS,
+    Count,
+    Discharge,
     Event,
     Figure,
     Held,
     LevelReading,
     Measured,
+    Move,
+    Plating,
+    Racks,
     Run,
+    Sample,
     Share,
+    Spill,
+    Strip,
     decode,
     encode,
 )
 from chemicals.books.fold import FOLDS
-from tests.books.examples import EXAMPLES, GOLDEN, body_of, golden_file
+from tests.books.examples import DRUM, EXAMPLES, GOLDEN, body_of, golden_file
 from tests.books.strategies import EVENTS_OF
-from tests.books.words import WATER, copper_deposit, grams, opening
+from tests.books.words import WATER, copper_deposit, grams, litres, opening
 
 KINDS = sorted(CURRENT)
 
@@ -86,11 +95,11 @@ def test_a_missing_or_surplus_field_is_refused_by_name(kind: str) -> None:
             payload = encode(EXAMPLES[kind])
             del payload[part][name]
             with pytest.raises(CanonicalError, match=f"missing \\['{name}'\\]"):
-                decode(kind, 1, payload)
+                decode(kind, CURRENT[kind].VERSION, payload)
         payload = encode(EXAMPLES[kind])
         payload[part]["colour"] = "blue"
         with pytest.raises(CanonicalError, match=r"surplus \['colour'\]"):
-            decode(kind, 1, payload)
+            decode(kind, CURRENT[kind].VERSION, payload)
 
 
 @pytest.mark.parametrize("kind", KINDS)
@@ -100,7 +109,7 @@ def test_a_field_in_the_wrong_part_is_refused_by_name(kind: str) -> None:
             payload = encode(EXAMPLES[kind])
             payload[other][name] = payload[part].pop(name)
             with pytest.raises(CanonicalError, match=f"{kind}: {name} does not belong to what was {other}"):
-                decode(kind, 1, payload)
+                decode(kind, CURRENT[kind].VERSION, payload)
 
 
 @pytest.mark.parametrize(
@@ -108,10 +117,10 @@ def test_a_field_in_the_wrong_part_is_refused_by_name(kind: str) -> None:
 )
 def test_a_payload_has_two_parts(payload: dict[str, Any]) -> None:
     with pytest.raises(CanonicalError, match="the parts observed and used"):
-        decode("move", 1, payload)
+        decode("move", 2, payload)
 
 
-@pytest.mark.parametrize(("kind", "version"), [("teleport", 1), ("move", 2), ("move", 0), ("move", -1)])
+@pytest.mark.parametrize(("kind", "version"), [("teleport", 1), ("move", 3), ("move", 0), ("move", -1)])
 def test_an_unknown_kind_or_version_is_refused(kind: str, version: int) -> None:
     with pytest.raises(CanonicalError, match=f"does not know {kind} version {version}"):
         decode(kind, version, encode(EXAMPLES["move"]))
@@ -162,7 +171,16 @@ def test_an_event_names_the_vessels_it_may_change(kind: str) -> None:
 
 def test_an_event_names_the_entry_it_speaks_of() -> None:
     about = {kind for kind in KINDS if EXAMPLES[kind].about() is not None}
-    assert about == {"acceptance", "cancellation"}
+    assert about == {"acceptance", "cancellation", "correction", "period reopening"}
+
+
+def changed(kind: str, **others: Any) -> Event:
+    """Return the example of a kind with other fields."""
+    example: Any = EXAMPLES[kind]
+    return type(example)(**{field.name: getattr(example, field.name) for field in fields(example)} | others)
+
+
+NEW_YEAR = datetime(2027, 1, 1, tzinfo=UTC)
 
 
 @pytest.mark.parametrize(
@@ -185,6 +203,22 @@ def test_an_event_names_the_entry_it_speaks_of() -> None:
         ),
         (lambda: replace(opening("bath"), held=(Held("volume", grams(1)),)), r"Opening\.held: volume"),
         (lambda: LevelReading("bath", grams(1), "the moon", WATER), r"LevelReading\.lost_to"),
+        (lambda: Count("can", None, None), r"Count\.volume or mass: this is needed"),
+        (lambda: Count("can", litres(1), grams(1)), r"Count: only one of volume, mass"),
+        (lambda: Move("bath", "rinse", litres(1), grams(1)), r"Move: only one of volume, mass"),
+        (lambda: Sample("bath", "parts"), r"Sample\.target: 'parts'"),
+        (lambda: Spill("bath", "sewer"), r"Spill\.target: 'sewer' cannot stand here"),
+        (lambda: Discharge("bath", "drum"), r"Discharge\.target: 'drum'"),
+        (lambda: Strip("parts", "bath", "Cu", None, None), r"Strip\.weight_before: this is needed"),
+        (lambda: Strip("racks", "bath", "Cu", grams(1), None), r"Strip\.weight_after: it goes with weight_before"),
+        (lambda: Racks(("bath",), "large", 0), r"Racks\.loads: 0 is not between 1 and 1000"),
+        (lambda: Plating(copper_deposit(), None, "racks", None, ()), r"Plating\.rack_share: it goes with racks"),
+        (lambda: changed("make-up", dissolved=()), r"MakeUp\.dissolved: 0 stand there, 2 are needed"),
+        (lambda: changed("day sheet", platings=()), r"DaySheet\.platings: 0 stand there, 1 are needed"),
+        (lambda: changed("day sheet", drag_out=((),)), r"DaySheet\.drag_out: 0 stand there, 2 are needed"),
+        (lambda: changed("treatment", sludge=DRUM), r"Treatment\.sludge"),
+        (lambda: changed("treatment", consumed=("acid", "acid")), r"Treatment\.consumed: acid"),
+        (lambda: changed("period closing", after=NEW_YEAR), r"PeriodClosing\.until"),
     ],
 )
 def test_figures_that_cannot_be_are_refused_by_name(build: Any, field: str) -> None:
@@ -208,4 +242,4 @@ def test_bytes_are_the_same_whatever_the_order_of_fields() -> None:
 
 def test_a_run_says_what_it_drags_out_of_each_tank() -> None:
     with pytest.raises(CanonicalError, match=r"Run\.drag_out: 0 stand there, 1 are needed"):
-        Run("knobs", ("bath",), None, None, None, None, None, None, None, "rack", ())
+        Run("knobs", ("bath",), None, None, None, None, None, None, "rack", ())

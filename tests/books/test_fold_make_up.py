@@ -23,6 +23,7 @@ from chemicals.books.fold.state import (
 )
 from tests.books.words import (
     KG,
+    NO_ROOM,
     WATER,
     Books,
     G,
@@ -48,7 +49,7 @@ def a_workshop_with_stock(*, complete: bool = True) -> Books:
 
 
 def made_up(*ingredients: Ingredient, level: Measured | None = None, tank: str = "bath") -> MakeUp:
-    return MakeUp(tank, ingredients, level, WATER)
+    return MakeUp(tank, ingredients, level, WATER, (NO_ROOM,) * len(ingredients))
 
 
 TWO_KILOGRAMS = Ingredient("bag", kilograms(2), None)

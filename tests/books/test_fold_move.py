@@ -27,6 +27,7 @@ from tests.books.words import (
     litres,
     moved,
     opening,
+    plating,
     step,
 )
 
@@ -149,7 +150,7 @@ def with_copper_unknown() -> Books:
     """Return the two tanks after a load took nobody knows how much copper out of the first."""
     books = two_tanks()
     drags = (step("a", 0).drag_out,)
-    books.record(Run("knobs", ("a",), None, None, None, None, None, copper_deposit(), None, "rack", drags))
+    books.record(Run("knobs", ("a",), None, None, None, None, None, plating(copper_deposit()), "rack", drags))
     return books
 
 

@@ -32,6 +32,7 @@ from tests.books.words import (
     litres,
     moved,
     opening,
+    plating,
     seconds,
     step,
 )
@@ -50,7 +51,8 @@ def load(
     """Return a run; by default one step in the bath without drag-out."""
     steps = route or (step("bath", 0),)
     tanks, drags = tuple(one.tank for one in steps), tuple(one.drag_out for one in steps)
-    return Run("brass knobs", tanks, charge, current, time, before, after, deposit, anode, "rack", drags)
+    figures = None if deposit is None else plating(deposit, anode)
+    return Run("brass knobs", tanks, charge, current, time, before, after, figures, "rack", drags)
 
 
 def a_bath() -> Books:
@@ -289,5 +291,5 @@ def test_a_bath_that_is_its_own_anode_gives_itself_nothing() -> None:
 
 
 def test_a_run_through_no_tank_is_nothing() -> None:
-    run = Run("knobs", (), coulombs(3600), None, None, None, None, copper_deposit(), None, "rack", ())
+    run = Run("knobs", (), coulombs(3600), None, None, None, None, plating(copper_deposit()), "rack", ())
     assert a_line().record(run).transfers == ()

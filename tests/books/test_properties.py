@@ -243,11 +243,11 @@ def test_an_unknown_source_makes_the_target_unknown(history: list[Entry], move: 
 def poured(event: Event) -> list[tuple[str, str]]:
     """Return (from, to) of all liquids and salts that an entry says were poured, in order."""
     match event:
-        case Move(source, target, volume):
+        case Move(source=source, target=target, volume=volume):
             return [(source, target)] if volume is None or volume.base else []
         case TopUp(tank, source, volume, _):
             return [(source, tank)] if volume is not None and volume.base else []
-        case MakeUp(tank, ingredients):
+        case MakeUp(tank=tank, ingredients=ingredients):
             amounts = [item.volume or item.mass for item in ingredients]
             return [
                 (item.stock, tank)

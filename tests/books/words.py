@@ -12,6 +12,7 @@ from chemicals.books.events import (
     Held,
     Measured,
     Opening,
+    Plating,
     Recipe,
     Share,
 )
@@ -21,6 +22,7 @@ from chemicals.books.fold.state import Holding, State
 G, KG, ML, L = 10**6, 10**9, 10**6, 10**9
 """Micrograms in a gram and a kilogram, nanolitres in a millilitre and a litre."""
 
+NO_ROOM = Figure(0, 0, "what dissolves needs no room, for easy sums")
 WATER = Figure(1_000_000, 0, "1 g/mL, for easy sums")
 DENSE = Figure(1_200_000, 0, "1.2 g/mL, for easy sums")
 SALT = UUID("00000000-0000-4000-8000-000000000001")
@@ -73,6 +75,11 @@ def step(tank: str, millilitres: Number, sd: Number = 0) -> Step:
 
 def copper_deposit(efficiency_ppm: int = 1_000_000, sd: int = 0) -> Deposit:
     return Deposit("Cu", "63.546", 2, "96485.33212", Figure(efficiency_ppm, sd, "as entered"))
+
+
+def plating(deposit: Deposit, anode: str | None = None) -> Plating:
+    """Return the figures of a bath: nothing grows on racks, the current makes nothing but the deposit."""
+    return Plating(deposit, anode, racks=None, rack_share=None, conversions=())
 
 
 def salt(*, complete: bool = True) -> Recipe:

@@ -16,14 +16,14 @@ Amount = tuple[int, int, str]
 
 def fold_run(folding: Folding, event: Run) -> None:
     """bath -> parts, anode set -> bath, then each step drags out to the next and drags in."""
-    if event.deposit is not None and event.route:
-        bath = event.route[0]
-        plated = _weighed(event) or _by_faraday(event, event.deposit, event.deposit.efficiency)
-        _plate(folding, event.deposit.metal, bath, PARTS, plated)
+    if event.plating is not None and event.route:
+        bath, deposit, anode = event.route[0], event.plating.deposit, event.plating.anode
+        plated = _weighed(event) or _by_faraday(event, deposit, deposit.efficiency)
+        _plate(folding, deposit.metal, bath, PARTS, plated)
         if plated is not None and plated[0] < 0:
-            folding.note(WEIGHT_LOST, event.deposit.metal, bath, PARTS)
-        if event.anode is not None:
-            _plate(folding, event.deposit.metal, event.anode, bath, _dissolved(event, event.deposit))
+            folding.note(WEIGHT_LOST, deposit.metal, bath, PARTS)
+        if anode is not None:
+            _plate(folding, deposit.metal, anode, bath, _dissolved(event, deposit))
     for (tank, end), drag_out in zip(pairwise((*event.route, PARTS)), event.drag_out, strict=True):
         folding.pour(tank, end, drag_out.base, drag_out.sd, ASSUMED)
 
