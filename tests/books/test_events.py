@@ -174,7 +174,7 @@ def test_an_event_names_the_entry_it_speaks_of() -> None:
     assert about == {"acceptance", "cancellation", "correction", "period reopening"}
 
 
-def changed(kind: str, **others: Any) -> Event:
+def changed(kind: str, **others: Any) -> Any:
     """Return the example of a kind with other fields."""
     example: Any = EXAMPLES[kind]
     return type(example)(**{field.name: getattr(example, field.name) for field in fields(example)} | others)
