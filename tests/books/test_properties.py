@@ -150,14 +150,15 @@ def test_folding_on_the_touched_vessels_is_folding_everything(history: list[Entr
             for component in kept.components(vessel):
                 part.put(vessel, component, kept.holding(vessel, component))
         followed[entry.uuid] = folded = fold_event(part, entry.event)
-        for vessel, component, holding in folded.contents:
-            assert vessel in entry.event.vessels()
+        assert {vessel for vessel, component, _ in folded.contents if component == EVERY} == set(dict(folded.vessels))
+        for name, vessel in folded.vessels:
+            kept.put_vessel(name, vessel)
+        for name, component, holding in folded.contents:
+            assert name in entry.event.vessels()
             if component == EVERY:
-                assert (holding.amount is None) is part.vessel(vessel).incomplete
-                kept.put_vessel(vessel, part.vessel(vessel))
+                assert (holding.amount is None) is kept.vessel(name).incomplete
             else:
-                assert holding == part.holding(vessel, component)
-                kept.put(vessel, component, holding)
+                kept.put(name, component, holding)
     assert (kept, followed) == rebuild(history)
 
 

@@ -12,7 +12,7 @@ from uuid import UUID
 from chemicals.books import events
 from chemicals.books.fold import analysis, level, making, opening, run, waste
 from chemicals.books.fold.folding import Folding
-from chemicals.books.fold.state import EVERY, Finding, Holding, State, Transfer
+from chemicals.books.fold.state import EVERY, Finding, Holding, State, Transfer, Vessel
 
 VERSION = 1
 """Version of the projection; a change of meaning raises it."""
@@ -55,6 +55,8 @@ class Folded:
     findings: tuple[Finding, ...]
     contents: tuple[tuple[str, str, Holding], ...]
     """(vessel, component, holding after the entry) for all that changed; component EVERY: is the list complete?"""
+    vessels: tuple[tuple[str, Vessel], ...] = ()
+    """(vessel, what is known of it after the entry) for every vessel that ``contents`` names with EVERY."""
 
 
 def fold_event(state: State, event: events.Event) -> Folded:
@@ -65,7 +67,8 @@ def fold_event(state: State, event: events.Event) -> Folded:
     folding = Folding(state)
     state.touched.clear()
     fold(folding, event)
-    return Folded(tuple(folding.transfers), tuple(folding.findings), tuple(_contents(state)))
+    vessels = tuple((vessel, state.vessel(vessel)) for vessel, component in sorted(state.touched) if component == EVERY)
+    return Folded(tuple(folding.transfers), tuple(folding.findings), tuple(_contents(state)), vessels)
 
 
 def _contents(state: State) -> Iterator[tuple[str, str, Holding]]:
