@@ -97,6 +97,8 @@ _TOKEN: Final = re.compile(
     r"(?P<open>[(\[{])|(?P<close>[)\]}])(?P<times>[0-9]*)|(?P<symbol>[A-Z][a-z]?)(?P<count>[0-9]*)"
 )
 _PART: Final = re.compile(r"(?P<factor>[0-9]*)(?P<rest>.+)")
+_DOT: Final = re.compile(r"[.·⋅∙•*]")
+_WATER: Final = re.compile(r"(?P<count>[0-9]*)H2O")
 _CHARGE: Final = re.compile(r"\^|[0-9]*[+-][0-9]*$|[+-]\)?$")
 
 
@@ -110,7 +112,7 @@ def parse_formula(text: str) -> Formula:
     if _CHARGE.search(typed):
         raise FormulaError("charge", typed=typed)
     atoms: Counter[str] = Counter()
-    for number, part in enumerate(re.split(r"[.·⋅∙•*]", typed)):
+    for number, part in enumerate(_DOT.split(typed)):
         found = _PART.fullmatch(part)
         if not found or (number == 0 and found["factor"]):
             raise FormulaError("syntax", found=part or ".", typed=typed)
@@ -168,6 +170,18 @@ def molar_mass(text: str) -> Decimal:
 def mass_fractions(text: str) -> dict[str, Decimal]:
     """Grams of each element per gram of the substance, eight significant digits. Raises FormulaError."""
     return parse_formula(text).mass_fractions
+
+
+def split_water(text: str) -> tuple[Formula, int]:
+    """The formula without its crystal water, and how many molecules of water go with it. Raises FormulaError.
+
+    `CuSO4.5H2O` is CuSO4 with five; `CuSO4` has none, and so has water itself.
+    """
+    first, *rest = _DOT.split(parse_formula(text).typed)
+    counts = [_WATER.fullmatch(part) for part in rest]
+    if not all(counts):
+        return parse_formula(text), 0
+    return parse_formula(first), sum(int(found["count"] or 1) for found in counts if found)
 
 
 def metal_fraction(text: str, element: str) -> Decimal:

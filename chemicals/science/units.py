@@ -67,6 +67,14 @@ _ALL: Final = (
         "60 g/L",
         (("g/L", 10**6), ("mg/L", 10**3), ("ug/L", 0)),
     ),
+    Dimension(
+        "molar_concentration",
+        "a concentration (amount of substance per volume)",
+        "nmol/L",
+        "nmol/L",
+        "0.2 mol/L",
+        (("mol/L", 10**9), ("mmol/L", 10**6), ("umol/L", 10**3), ("nmol/L", 0)),
+    ),
     Dimension("area", "an area", "mm2", "mm**2", "1.2 dm2", (("dm2", 10**4), ("cm2", 100), ("mm2", 0))),
     Dimension(
         "current_density",

@@ -31,6 +31,7 @@ from chemicals.science.quantity import LIMIT, MESSAGES, QuantityError, echo, mea
         ("10 mA/cm2", "current_density", 1_000_000, "10 mA/cm² = 1 A/dm²"),
         ("270 g/L", "concentration", 270_000_000, "270 g/L"),
         ("270 g/l", "concentration", 270_000_000, "270 g/L"),
+        ("0.2 mol/L", "molar_concentration", 200_000_000, "0.2 mol/L = 200 mmol/L"),
         ("36 oz/gal", "concentration", 269_609_461, "36 oz/gal = 269.6 g/L"),
         ("1 oz", "mass", 28_349_523, "1 oz = 28.35 g"),
         ("1 troy oz", "mass", 31_103_477, "1 ozt = 31.1 g"),
