@@ -10,7 +10,7 @@ from typing import Any
 from uuid import UUID
 
 from chemicals.books import events
-from chemicals.books.fold import analysis, level, making, opening, run, waste
+from chemicals.books.fold import analysis, day_sheet, dummy, level, making, opening, run, waste
 from chemicals.books.fold.folding import Folding
 from chemicals.books.fold.state import EVERY, Finding, Holding, State, Transfer, Vessel
 
@@ -25,6 +25,9 @@ FOLDS: Mapping[type[events.Event], Callable[[Folding, Any], None]] = {
     events.TopUp: making.fold_top_up,
     events.Move: making.fold_move,
     events.Run: run.fold_run,
+    events.DaySheet: day_sheet.fold_day_sheet,
+    events.Dummy: dummy.fold_dummy,
+    events.Strip: dummy.fold_strip,
     events.Acceptance: analysis.fold_acceptance,
     events.DrumOff: waste.fold_drum_off,
     events.HandOver: waste.fold_hand_over,

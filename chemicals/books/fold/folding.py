@@ -82,9 +82,26 @@ class Folding:
         if source == target:
             return
         for component in self.state.components(source):
-            self._move_all(component, source, target)
+            self.move_all(component, source, target)
         self._remember_from(source, target)
         self.state.put_vessel(source, Vessel())
+
+    def move_all(self, component: str, source: str, target: str) -> None:
+        """Move all of one component, as the books have it: none is left."""
+        if source == target:
+            return
+        held = self.state.holding(source, component)
+        basis = COMPUTED if held.amount is not None else ASSUMED
+        if held.amount is None:
+            self.move_unknown(component, source, target)
+        if held.booked > 0:
+            self._shift(component, source, target, held.booked, held.variance, 0, basis)
+        left = self.state.holding(source, component)
+        if left.amount is not None and left.amount < 0:
+            self.note(NEGATIVE_CONTENT, component, source, source)
+        # less than nothing cannot be carried away: that the vessel is empty shows how wrong the books were
+        self._post(component, source, UNACCOUNTED, left.booked, left.variance, COMPUTED)
+        self.state.put(source, component, Holding(0))
 
     def pour_unknown(self, source: str, target: str, *, but: str = "") -> None:
         """Move nobody knows how much of everything there is in the source, ``but`` of one component."""
@@ -152,20 +169,6 @@ class Folding:
             self.note(UNKNOWN_CONTENTS, EVERY, source, target)
             for end in {source, target} - BOUNDARIES:
                 self.remember(end, [UNKNOWN_LIQUID + source], incomplete=True, listed=[by])
-
-    def _move_all(self, component: str, source: str, target: str) -> None:
-        held = self.state.holding(source, component)
-        basis = COMPUTED if held.amount is not None else ASSUMED
-        if held.amount is None:
-            self.move_unknown(component, source, target)
-        if held.booked > 0:
-            self._shift(component, source, target, held.booked, held.variance, 0, basis)
-        left = self.state.holding(source, component)
-        if left.amount is not None and left.amount < 0:
-            self.note(NEGATIVE_CONTENT, component, source, source)
-        # less than nothing cannot be carried away: that the vessel is empty shows how wrong the books were
-        self._post(component, source, UNACCOUNTED, left.booked, left.variance, COMPUTED)
-        self.state.put(source, component, Holding(0))
 
     def _remember_from(self, source: str, target: str, *, known: str = "") -> None:
         """Carry what the source remembers to the target."""

@@ -119,10 +119,10 @@ class Finding:
     target: str
 
 
-UNKNOWN_AMOUNT, UNKNOWN_CONTENTS, NEGATIVE_CONTENT, WAS_UNKNOWN, UNKNOWN_LEVEL, UNKNOWN_MASS, WEIGHT_LOST, TOO_MUCH = (
+UNKNOWN_AMOUNT, UNKNOWN_CONTENTS, NEGATIVE_CONTENT, WAS_UNKNOWN, UNKNOWN_LEVEL, UNKNOWN_MASS = (
     "unknown-amount", "unknown-contents", "negative-content", "was-unknown", "unknown-level", "unknown-mass",
-    "weight-lost", "too-much",
 )  # fmt: skip
+WEIGHT_LOST, WEIGHT_GAINED, TOO_MUCH = "weight-lost", "weight-gained", "too-much"
 FINDINGS = {
     UNKNOWN_AMOUNT: "An unknown amount moved; what both ends hold is unknown until an accepted analysis.",
     UNKNOWN_CONTENTS: "What the source holds is not all listed: anything may have come along.",
@@ -131,6 +131,7 @@ FINDINGS = {
     UNKNOWN_LEVEL: "The volume was unknown, or nothing, when it was needed: read the level.",
     UNKNOWN_MASS: "The mass was unknown, or nothing, when it was needed: weigh the container.",
     WEIGHT_LOST: "The load weighs less than before: a part dissolved, or a weighing is wrong.",
+    WEIGHT_GAINED: "What was stripped weighs more than before: a weighing is wrong.",
     TOO_MUCH: "More than the books can hold: a figure or its unit is wrong. The content is unknown from here on.",
 }
 """Every finding code with its meaning."""
