@@ -6,6 +6,7 @@ from uuid import UUID
 
 from chemicals.books.events import (
     BOUNDARIES,
+    Conversion,
     Deposit,
     Event,
     Figure,
@@ -77,9 +78,26 @@ def copper_deposit(efficiency_ppm: int = 1_000_000, sd: int = 0) -> Deposit:
     return Deposit("Cu", "63.546", 2, "96485.33212", Figure(efficiency_ppm, sd, "as entered"))
 
 
-def plating(deposit: Deposit, anode: str | None = None) -> Plating:
-    """Return the figures of a bath: nothing grows on racks, the current makes nothing but the deposit."""
-    return Plating(deposit, anode, racks=None, rack_share=None, conversions=())
+def plating(
+    deposit: Deposit,
+    anode: str | None = None,
+    *,
+    on_racks: tuple[int, int] | None = None,
+    conversions: tuple[Conversion, ...] = (),
+) -> Plating:
+    """Return the figures of a bath; ``on_racks`` is the share of the deposit that grows there, in ppm, with its sd."""
+    share = None if on_racks is None else Figure(*on_racks, "uncoated tips")
+    return Plating(deposit, anode, None if share is None else "racks", share, conversions)
+
+
+def made(species: str, per_kilocoulomb: int, sd: int = 0) -> Conversion:
+    """Return how many nanomoles of a species a kilocoulomb makes."""
+    return Conversion(species, Figure(per_kilocoulomb, sd, "Faraday's law"), made=True)
+
+
+def used_up(species: str, per_kilocoulomb: int, sd: int = 0) -> Conversion:
+    """Return how many nanomoles of a species a kilocoulomb uses up."""
+    return Conversion(species, Figure(per_kilocoulomb, sd, "as the supplier says"), made=False)
 
 
 def salt(*, complete: bool = True) -> Recipe:
