@@ -7,6 +7,7 @@ import pytest
 from django.test import RequestFactory
 from django.utils import timezone
 
+from chemicals.books.events import CURRENT
 from chemicals.books.fold.state import Finding, Transfer
 from compliance.web import words
 from compliance.web.export import Column, grams, wanted_file
@@ -21,12 +22,36 @@ ENDS = Ends({"a": "Copper bath", "b": "Rinse"})
         (None, 5, "Cu", "unknown"),
         (0, 0, "Cu", "0 g"),
         (830_000_000, 0, "Cu", "830 g"),
-        (604_800, 190_000, "Cu", "604.8 ± 190 mg"),
-        (20 * 10**9, 16 * 10**6, "volume", "20 ± 0.016 L"),
+        (604_800, 0, "Cu", "0.6048 g"),
+        (60_480, 0, "Cu", "60.48 mg"),
+        (604_800, 190_000, "Cu", "0.60 ± 0.19 g"),
+        (830_000, 20_000, "Cu", "0.830 ± 0.020 g"),
+        (763_538_490, 4_100_000, "Cu", "763.5 ± 4.1 g"),
+        (0, 30_000, "Cu", "0 ± 30 mg"),
+        (20 * 10**9, 16 * 10**6, "volume", "20.000 ± 0.016 L"),
+        (10**7, 3 * 10**6, "volume", "10.0 ± 3.0 mL"),
+        (2_500_000_000, 50_000_000, "acid", "2500 ± 50 mmol"),
+        (1_200, 0, "free cyanide", "0.0012 mmol"),
+        (1_500_000, 0, "Na2SO4", "1.5 g"),
     ],
 )
-def test_an_amount_and_its_uncertainty_share_a_unit(base: int | None, sd: int, component: str, text: str) -> None:
+def test_an_amount_ends_where_its_uncertainty_ends_both_in_one_unit(
+    base: int | None, sd: int, component: str, text: str
+) -> None:
     assert words.with_uncertainty(base, sd, component) == text
+
+
+def test_one_digit_is_left_of_what_its_uncertainty_drowns() -> None:
+    assert words.with_uncertainty(500, 120_000, "Cu") == "0.0005 ± 0.12 g"
+
+
+def test_components_go_by_the_names_that_people_use() -> None:
+    named = [words.component_name(code) for code in ("Cu", "volume", "gross mass", "", "acid", "Na2SO4")]
+    assert named == ["copper", "liquid", "weight in all", "anything else", "acid", "Na2SO4"]
+
+
+def test_every_kind_of_entry_has_a_name() -> None:
+    assert set(words.KINDS) == set(CURRENT)
 
 
 def test_what_came_and_what_left_carry_a_sign() -> None:
@@ -42,7 +67,7 @@ def test_movements_are_sentences_metals_first() -> None:
     liquid = Transfer("volume", "a", "b", 10**7, 0, "assumed")
     metal = Transfer("Cu", "a", "parts", 830_000, 20_000, "computed")
     follows = Follows.of([liquid, metal], ENDS)
-    assert follows.metals == ["830 ± 20 mg copper goes from Copper bath to parts, computed."]
+    assert follows.metals == ["0.830 ± 0.020 g copper goes from Copper bath to parts, computed."]
     assert follows.others == ["10 mL liquid goes from Copper bath to Rinse, assumed."]
 
 
