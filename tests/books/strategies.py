@@ -16,10 +16,12 @@ from chemicals.books.events import (
     GROSS_MASS,
     SAMPLE,
     SEWER,
+    SPECIES,
     SPILL,
     VOLUME,
     BathCharge,
     Carbon,
+    Conversion,
     Correction,
     Count,
     DaySheet,
@@ -53,6 +55,7 @@ texts = st.text(st.characters(exclude_categories=("Cc", "Cs"), include_character
     lambda text: unicodedata.normalize("NFC", text)
 )
 amounts = st.integers(0, 10**15)
+species = st.sampled_from(SPECIES)
 held_lists = st.lists(
     st.builds(
         Held,
@@ -81,6 +84,7 @@ FIELDS: dict[type, dict[str, Values]] = {
         "valence": st.integers(1, 8),
     },
     Opening: {"held": held_lists},
+    Conversion: {"species": species},
     Count: {"volume": st.none(), "mass": st.deferred(lambda: values_of(Measured))},
     Plating: {"racks": st.none(), "rack_share": st.none()},
     Racks: {"loads": st.integers(1, 1000)},
@@ -94,7 +98,11 @@ FIELDS: dict[type, dict[str, Values]] = {
     Carbon: {"taken": held_lists},
     Resin: {"taken": held_lists},
     Sludge: {"held": held_lists},
-    Treatment: {"sludge": st.none(), "dissolved": st.just(()), "consumed": st.lists(texts, unique=True).map(tuple)},
+    Treatment: {
+        "sludge": st.none(),
+        "dissolved": st.just(()),
+        "consumed": st.lists(species, unique=True).map(tuple),
+    },
     Correction: {"changes": st.just(())},
     PeriodClosing: {"after": st.none()},
     LevelReading: {"lost_to": st.sampled_from([AIR, SPILL])},

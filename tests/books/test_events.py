@@ -17,8 +17,10 @@ from chemicals.books.canonical import GENESIS, CanonicalError, chain_hash, decod
 from chemicals.books.events import (
     CURRENT,
     EVENTS,
+    Conversion,
     Count,
     Discharge,
+    Dissolved,
     Event,
     Figure,
     Held,
@@ -218,6 +220,11 @@ NEW_YEAR = datetime(2027, 1, 1, tzinfo=UTC)
         (lambda: changed("day sheet", drag_out=((),)), r"DaySheet\.drag_out: 0 stand there, 2 are needed"),
         (lambda: changed("treatment", sludge=DRUM), r"Treatment\.sludge"),
         (lambda: changed("treatment", consumed=("acid", "acid")), r"Treatment\.consumed: acid"),
+        (lambda: changed("treatment", consumed=("Cu",)), r"Treatment\.consumed: 'Cu' is none of free cyanide"),
+        (lambda: changed("treatment", dissolved=(Dissolved("volume", litres(1)),)), r"Treatment\.dissolved: volume"),
+        (lambda: changed("carbon", taken=(Held("gross mass", grams(1)),)), r"Carbon\.taken: gross mass"),
+        (lambda: changed("sludge", held=(Held("gross mass", grams(1)),)), r"Sludge\.held: gross mass"),
+        (lambda: Conversion("Cr", WATER, made=True), r"Conversion\.species: 'Cr'"),
         (lambda: changed("period closing", after=NEW_YEAR), r"PeriodClosing\.until"),
     ],
 )

@@ -46,6 +46,7 @@ from chemicals.books.events.base import (
     Recipe,
     Share,
     Used,
+    is_metal,
 )
 from chemicals.books.events.books import (
     Cancellation,
@@ -153,6 +154,7 @@ __all__ = [
     "WeightReading",
     "decode",
     "encode",
+    "is_metal",
 ]
 
 EVENTS: tuple[type[Event], ...] = (

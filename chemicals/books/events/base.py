@@ -1,5 +1,6 @@
 """What all events share: names of ends and components, figures, the base class."""
 
+import re
 from dataclasses import dataclass
 from typing import Annotated, ClassVar, TypeVar
 from uuid import UUID
@@ -26,6 +27,8 @@ FREE_CYANIDE, CHROMIUM_VI, ACID, ALKALI, AMMONIA, SULFITE = (
 )  # fmt: skip
 SPECIES = (FREE_CYANIDE, CHROMIUM_VI, ACID, ALKALI, AMMONIA, SULFITE)
 """Species that react away: nanomoles (acid and alkali of H+ and OH-). What is missing of them goes to ``reaction``."""
+SYMBOL = re.compile("[A-Z][a-z]?")
+"""What names a metal: an element's symbol. A solute's name is a formula of several elements."""
 OBSERVED, COMPUTED, ASSUMED = "observed", "computed", "assumed"
 """The basis of a figure."""
 
@@ -122,6 +125,11 @@ class Event:
     def about(self) -> UUID | None:
         """Return the entry that this event speaks of, if any."""
         return None
+
+
+def is_metal(component: str) -> bool:
+    """Return whether a component is a metal, by its name."""
+    return SYMBOL.fullmatch(component) is not None
 
 
 def only_vessels(*ends: str | None) -> tuple[str, ...]:

@@ -4,7 +4,7 @@ from dataclasses import dataclass
 from typing import Any
 
 from chemicals.books import checks
-from chemicals.books.events.base import PARTS, Event, Figure, Measured, Used, only_vessels
+from chemicals.books.events.base import PARTS, SPECIES, Event, Figure, Measured, Used, only_vessels
 
 
 @dataclass(frozen=True)
@@ -28,6 +28,9 @@ class Conversion:
     species: str
     per_kilocoulomb: Figure
     made: bool
+
+    def __post_init__(self) -> None:
+        checks.one_of("Conversion", SPECIES, species=self.species)
 
 
 @dataclass(frozen=True)

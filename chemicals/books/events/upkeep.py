@@ -3,7 +3,21 @@
 from dataclasses import dataclass
 
 from chemicals.books import checks
-from chemicals.books.events.base import Event, Figure, Held, Ingredient, Measured, Used, only_vessels
+from chemicals.books.events.base import (
+    GROSS_MASS,
+    SPECIES,
+    VOLUME,
+    Event,
+    Figure,
+    Held,
+    Ingredient,
+    Measured,
+    Used,
+    only_vessels,
+)
+
+OF_THEIR_OWN = (VOLUME, GROSS_MASS)
+"""What is told by fields of its own, and cannot stand in a list of what was found."""
 
 
 @dataclass(frozen=True)
@@ -25,7 +39,7 @@ class Uptake(Event):
     uptake: Used[Figure]
 
     def __post_init__(self) -> None:
-        checks.once(type(self).__name__, taken=[row.component for row in self.taken])
+        checks.once(type(self).__name__, taken=[*OF_THEIR_OWN, *(row.component for row in self.taken)])
 
     def vessels(self) -> tuple[str, ...]:
         return only_vessels(self.tank, self.target)
@@ -66,7 +80,7 @@ class Sludge(Event):
     held: tuple[Held, ...]
 
     def __post_init__(self) -> None:
-        checks.once("Sludge", held=[row.component for row in self.held])
+        checks.once("Sludge", held=[*OF_THEIR_OWN, *(row.component for row in self.held)])
 
     def vessels(self) -> tuple[str, ...]:
         return only_vessels(self.source, self.target)
@@ -114,7 +128,10 @@ class Treatment(Event):
     consumed: tuple[str, ...]
 
     def __post_init__(self) -> None:
-        checks.once("Treatment", dissolved=[row.component for row in self.dissolved], consumed=self.consumed)
+        found = [*OF_THEIR_OWN, *(row.component for row in self.dissolved)]
+        checks.once("Treatment", dissolved=found, consumed=self.consumed)
+        for species in self.consumed:  # a metal never reacts away
+            checks.one_of("Treatment", SPECIES, consumed=species)
         if self.sludge is not None:
             checks.none_of("Treatment", (self.vessel, self.filtrate), sludge=self.sludge)
 

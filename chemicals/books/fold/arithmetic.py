@@ -34,16 +34,24 @@ def quotient(amount: int, sd: int, divisor: int, divisor_sd: int, times: int) ->
     return amount * times // divisor, root(ceiling(variance, divisor**4))
 
 
+def scaled(
+    amount: int, variance: int, part: int, part_sd: int, whole: int, whole_variance: int
+) -> tuple[int, int, int]:
+    """Return amount x part // whole, its variance, and the variance of the difference to the amount.
+
+    Both share the doubt about the fraction, which is never larger than everything.
+    """
+    doubt = min(part_sd, max(part, whole)) ** 2 * whole**2 + part**2 * min(whole_variance, whole**2)
+    now = variance * part**2 * whole**2 + amount**2 * doubt
+    difference = variance * (whole - part) ** 2 * whole**2 + amount**2 * doubt
+    return ratio(amount, part, whole), ceiling(now, whole**4), ceiling(difference, whole**4)
+
+
 def portion(
     amount: int, variance: int, part: int, part_sd: int, whole: int, whole_variance: int
 ) -> tuple[int, int, int]:
     """Return what goes along with a part of a liquid: amount, its variance, and the variance of what is left.
 
-    ``part`` of ``whole`` was taken; no more than everything goes along, and less than nothing does not. Both sides
-    share the doubt about the fraction, which is never larger than everything.
+    ``part`` of ``whole`` was taken; no more than everything goes along, and less than nothing does not.
     """
-    fraction, held = min(part, whole), max(amount, 0)
-    doubt = held**2 * (min(part_sd, whole) ** 2 * whole**2 + fraction**2 * min(whole_variance, whole**2))
-    gone = variance * fraction**2 * whole**2 + doubt
-    left = variance * (whole - fraction) ** 2 * whole**2 + doubt
-    return ratio(held, fraction, whole), ceiling(gone, whole**4), ceiling(left, whole**4)
+    return scaled(max(amount, 0), variance, min(part, whole), part_sd, whole, whole_variance)
