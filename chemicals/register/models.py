@@ -11,13 +11,17 @@ from chemicals.workshop.models import Membership, Workshop
 
 
 class Substance(models.Model):
-    """A chemical species: CAS number, formula, molar mass follows from the formula."""
+    """A chemical species: CAS number, formula, molar mass follows from the formula.
+
+    One that is declared ``inert`` reacts with nothing here: it is balanced by its formula, like a metal.
+    """
 
     uuid = models.UUIDField(default=uuid.uuid4, unique=True, editable=False)
     workshop = models.ForeignKey(Workshop, on_delete=models.PROTECT, related_name="substances")
     name = models.CharField(_("name"), max_length=120)
     cas_number = models.CharField(_("CAS number"), max_length=12, blank=True)
     formula = models.CharField(_("formula"), max_length=80, blank=True)
+    inert = models.BooleanField(_("reacts with nothing here"), default=False)
 
     objects: "models.Manager[Substance]" = ScopedManager(workshop="workshop")
 

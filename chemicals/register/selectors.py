@@ -1,5 +1,7 @@
 """Reads of the catalogue."""
 
+import re
+import unicodedata
 from decimal import ROUND_HALF_EVEN, Decimal
 from uuid import UUID
 
@@ -9,6 +11,7 @@ from django_scopes import scope, scopes_disabled
 from chemicals.books.events import UNKNOWN_LIQUID, Figure, Recipe, Share
 from chemicals.register.models import CompositionLine, Form, Product, ProductRevision, Substance
 from chemicals.science.formula import METALS, mass_fractions
+from chemicals.science.species import nanomoles_per_microgram
 from chemicals.workshop.errors import NotFoundError
 from chemicals.workshop.models import Membership, Workshop
 
@@ -70,7 +73,10 @@ def _with_parts(revisions: QuerySet[ProductRevision]) -> QuerySet[ProductRevisio
 
 
 def build_recipe(revision: ProductRevision) -> Recipe:
-    """Return the revision as an entry relies on it: micrograms of each metal per kilogram or litre."""
+    """Return the revision as an entry relies on it, per kilogram or litre.
+
+    Micrograms of each metal and of each solute declared inert, nanomoles of each species that reacts.
+    """
     shares = [share for line in revision.lines.all() for share in _shares(line)]
     density = None if revision.density is None else Figure(revision.density, 0, f"{revision}")
     return Recipe(
@@ -87,15 +93,28 @@ def build_recipe(revision: ProductRevision) -> Recipe:
 def _shares(line: CompositionLine) -> list[Share]:
     if not line.substance.formula:
         return []
-    fractions = mass_fractions(line.substance.formula)
+    formula = line.substance.formula
+    metals = {metal: part for metal, part in mass_fractions(formula).items() if metal in METALS}
+    solute = {solute_code(formula): Decimal(1)} if line.substance.inert else {}
     return [
-        Share(metal, _part(line.amount, fractions[metal]), _part(line.sd, fractions[metal]), line.per)
-        for metal in sorted(set(METALS) & set(fractions))
+        Share(component, _part(line.amount, part), _part(line.sd, part), line.per)
+        for component, part in sorted({**metals, **nanomoles_per_microgram(formula), **solute}.items())
     ]
 
 
 def _part(amount: int, fraction: Decimal) -> int:
     return int((amount * fraction).to_integral_value(ROUND_HALF_EVEN))
+
+
+def solute_code(formula: str) -> str:
+    """Return the formula by which a solute that was declared inert is balanced: no blanks, a plain dot before water."""
+    return re.sub("[·⋅∙•*]", ".", "".join(unicodedata.normalize("NFKC", formula).split()))
+
+
+def list_solutes(workshop: Workshop) -> frozenset[str]:
+    """Return the formulas of everything that was declared inert in a workshop. One query."""
+    with scope(workshop=workshop):
+        return frozenset(map(solute_code, Substance.objects.filter(inert=True).values_list("formula", flat=True)))
 
 
 def recipe_key(revision: ProductRevision) -> str:

@@ -12,8 +12,10 @@ from chemicals.journal import services as journal
 from chemicals.journal.models import Attachment
 from chemicals.register.hazards import check_hazards
 from chemicals.register.models import CompositionLine, Form, Per, Product, ProductRevision, Substance
-from chemicals.science.formula import FormulaError, parse_formula
+from chemicals.register.selectors import solute_code
+from chemicals.science.formula import METALS, FormulaError, parse_formula
 from chemicals.science.quantity import QuantityError, parse
+from chemicals.science.species import moles_of
 from chemicals.workshop.errors import FieldError, InvalidInputError
 from chemicals.workshop.models import Membership
 from chemicals.workshop.permissions import require_same_workshop, require_writer
@@ -21,6 +23,8 @@ from chemicals.workshop.rows import check_row
 from chemicals.workshop.texts import tidy
 
 CAS_NUMBER = re.compile(r"(\d{2,7})-(\d{2})-(\d)")
+LONGEST_CODE = 40
+"""Characters of a component's code in the ledger."""
 
 
 def check_cas_number(text: str) -> None:
@@ -33,21 +37,19 @@ def check_cas_number(text: str) -> None:
         raise InvalidInputError.of("cas_number", f"The check digit of {text} does not fit: read it again.")
 
 
-def create_substance(*, actor: Membership, name: str, cas_number: str = "", formula: str = "") -> Substance:
-    """Create a substance; its CAS number and formula are checked if given."""
+def create_substance(
+    *, actor: Membership, name: str, cas_number: str = "", formula: str = "", inert: bool = False
+) -> Substance:
+    """Create a substance; its CAS number and formula are checked if given. An inert one is balanced by its formula."""
     require_writer(actor)
-    substance = Substance(workshop=actor.workshop, name=name, cas_number=cas_number, formula=formula)
+    substance = Substance(workshop=actor.workshop, name=name, cas_number=cas_number, formula=formula, inert=inert)
     errors = check_row(substance)
     if substance.cas_number:
         try:
             check_cas_number(substance.cas_number)
         except InvalidInputError as error:
             errors.extend(error.errors)
-    if substance.formula:
-        try:
-            parse_formula(substance.formula)
-        except FormulaError as error:
-            errors.append(FieldError("formula", str(error)))
+    errors.extend(_check_formula(substance))
     with transaction.atomic(), scope(workshop=actor.workshop):
         if Substance.objects.filter(name=substance.name).exists():
             errors.append(FieldError("name", "This substance is in the register already."))
@@ -55,6 +57,27 @@ def create_substance(*, actor: Membership, name: str, cas_number: str = "", form
             raise InvalidInputError(errors)
         substance.save()
         return substance
+
+
+def _check_formula(substance: Substance) -> Iterator[FieldError]:
+    if substance.formula:
+        try:
+            parse_formula(substance.formula)
+        except FormulaError as error:
+            yield FieldError("formula", str(error))
+            return
+    if not substance.inert:
+        return
+    code = solute_code(substance.formula)
+    if not code:
+        yield FieldError("formula", "What is inert is balanced by its formula. Write the formula.")
+    elif code in METALS:
+        yield FieldError("inert", "A metal is balanced in any case. Leave this out.")
+    elif moles_of(substance.formula):
+        kinds = ", ".join(moles_of(substance.formula))
+        yield FieldError("inert", f"This brings {kinds}, which reacts. Leave this out.")
+    elif len(code) > LONGEST_CODE:
+        yield FieldError("formula", f"The formula of what is inert has at most {LONGEST_CODE} characters.")
 
 
 @dataclass(frozen=True)

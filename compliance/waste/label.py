@@ -8,9 +8,10 @@ from django.utils import timezone
 from django_scopes import scope
 
 from chemicals.books.events import GROSS_MASS, VOLUME
+from chemicals.ledger import components
 from chemicals.ledger.models import Content
 from chemicals.ledger.selectors import Held, list_held
-from chemicals.science.formula import element_name
+from chemicals.science.formula import METALS
 from chemicals.science.quantity import show
 from chemicals.science.reactivity import DANGERS, UNKNOWN, declared
 from compliance.waste.models import WasteContainer
@@ -52,14 +53,14 @@ def show_held(row: Held) -> str | None:
     """Return an amount as it is read, None where it is unknown."""
     if row.amount is None:
         return None
-    return show(row.amount, "volume" if row.component == VOLUME else "mass")
+    return show(row.amount, components.dimension_of(row.component))
 
 
 def show_sd(row: Held) -> str | None:
     """Return the standard uncertainty as it is read, None where the amount is unknown."""
     if row.amount is None:
         return None
-    return show(row.sd, "volume" if row.component == VOLUME else "mass", digits=2)
+    return show(row.sd, components.dimension_of(row.component), digits=2)
 
 
 def _doubt(row: Held) -> str:
@@ -68,10 +69,8 @@ def _doubt(row: Held) -> str:
 
 
 def name_of(component: str) -> str:
-    """Return the name of a component as people say it."""
-    if component in (VOLUME, GROSS_MASS):
-        return component
-    return f"{element_name(component)} ({component})"
+    """Return the name of a component as people say it, of a metal with its symbol."""
+    return f"{components.name_of(component)} ({component})" if component in METALS else component
 
 
 def hazards_of(container: WasteContainer) -> dict[str, Any]:

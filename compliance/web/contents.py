@@ -2,12 +2,14 @@
 
 from collections.abc import Iterable, Iterator
 
-from chemicals.books.events import VOLUME
+from chemicals.ledger.components import dimension_of
 from chemicals.ledger.models import Vessel
 from chemicals.ledger.selectors import Contents, Held
-from compliance.web.export import Column, grams, litres
+from compliance.web.export import Column, grams, litres, moles
 
 Part = tuple[Vessel, Held | None]
+IN_FILES = {"volume": ("L", litres), "mass": ("g", grams), "amount_of_substance": ("mol", moles)}
+"""Unit and number of an amount in a file, by its dimension."""
 
 
 def parts_of(vessels: Iterable[tuple[Vessel, Contents | None]]) -> Iterator[Part]:
@@ -20,7 +22,7 @@ def parts_of(vessels: Iterable[tuple[Vessel, Contents | None]]) -> Iterator[Part
 
 def _unit(part: Part) -> str:
     held = part[1]
-    return "" if held is None else "L" if held.component == VOLUME else "g"
+    return "" if held is None else IN_FILES[dimension_of(held.component)][0]
 
 
 def _amount(part: Part, *, of_sd: bool = False) -> object:
@@ -28,7 +30,7 @@ def _amount(part: Part, *, of_sd: bool = False) -> object:
     if held is None or held.amount is None:
         return None
     base = held.sd if of_sd else held.amount
-    return litres(base) if held.component == VOLUME else grams(base)
+    return IN_FILES[dimension_of(held.component)][1](base)
 
 
 CONTENT_COLUMNS = (

@@ -121,6 +121,11 @@ def grams(micrograms: int | None) -> Decimal | None:
     return None if micrograms is None else Decimal(micrograms) / 10**6
 
 
+def moles(nanomoles: int | None) -> Decimal | None:
+    """Return exact moles."""
+    return None if nanomoles is None else Decimal(nanomoles) / 10**9
+
+
 def litres(nanolitres: int | None) -> Decimal | None:
     """Return exact litres."""
     return None if nanolitres is None else Decimal(nanolitres) / 10**9

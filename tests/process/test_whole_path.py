@@ -145,7 +145,7 @@ def drum_off(shop: Shop) -> int:
     """The spent first rinse, all of it."""
     spent = held(shop, "First rinse")
     shop.record("drum-off", days_ago=3, source="First rinse", target="Drum")
-    assert shop.holds(vessel(shop, "First rinse")) == {"volume": 0, "gross mass": 0, "Cu": 0}
+    assert shop.holds(vessel(shop, "First rinse")) == {"volume": 0, "gross mass": 0, "Cu": 0, "acid": 0}
     assert (held(shop, "Drum"), held(shop, "Drum", "volume")) == (spent, 9_500 * ML)
     return spent
 

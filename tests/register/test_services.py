@@ -19,6 +19,7 @@ from chemicals.register.selectors import (
     list_current_revisions_for,
     list_products_for,
     list_revisions_of,
+    list_solutes,
     list_substances_for,
 )
 from chemicals.register.services import (
@@ -59,9 +60,14 @@ def fields_of(error: InvalidInputError) -> list[str]:
         ({"cas_number": "copper"}, ["cas_number"]),
         ({"formula": "CuSO5x"}, ["formula"]),
         ({"name": "", "cas_number": "1", "formula": "?"}, ["name", "cas_number", "formula"]),
+        ({"inert": True}, ["formula"]),
+        ({"inert": True, "formula": "?"}, ["formula"]),
+        ({"inert": True, "formula": "Cu"}, ["inert"]),
+        ({"inert": True, "formula": "NaCN"}, ["inert"]),
+        ({"inert": True, "formula": "C" * 41}, ["formula"]),
     ],
 )
-def test_a_substance_is_refused_by_field(worker: Membership, said: dict[str, str], fields: list[str]) -> None:
+def test_a_substance_is_refused_by_field(worker: Membership, said: dict[str, Any], fields: list[str]) -> None:
     with pytest.raises(InvalidInputError) as caught:
         create_substance(actor=worker, **({"name": "Copper"} | said))
     assert fields_of(caught.value) == fields
@@ -146,8 +152,8 @@ def test_revisions_are_numbered_and_stay(worker: Membership, now: datetime, salt
         assert list(list_current_revisions_for(worker)) == [second]
 
 
-def test_a_recipe_holds_the_metal_of_each_line(worker: Membership, now: datetime, salt: Substance) -> None:
-    """98 % of CuSO4.5H2O, of which 0.2545 is copper."""
+def test_a_recipe_holds_metal_and_species_of_each_line(worker: Membership, now: datetime, salt: Substance) -> None:
+    """98 % of CuSO4.5H2O, of which 0.2545 is copper; 1 % of H2SO4, 10 g at 98.08 g/mol with two hydrogens."""
     acid = create_substance(actor=worker, name="Sulfuric acid", formula="H2SO4")
     secret = create_substance(actor=worker, name="Brightener")
     lines = (LineInput(salt, "98 %"), LineInput(acid, "1 %"), LineInput(secret, "1 %"))
@@ -159,12 +165,28 @@ def test_a_recipe_holds_the_metal_of_each_line(worker: Membership, now: datetime
         revision=revision(form="liquid", density="1.2 g/mL", lines=lines),
     )
     recipe = build_recipe(get_current_revision(made.product))
-    (share,) = recipe.shares
+    share, acidity = recipe.shares
     assert (share.component, share.per) == ("Cu", "kg")
+    assert (acidity.component, acidity.per) == ("acid", "kg")
+    assert abs(Decimal(acidity.amount) / 10**9 - 2 * Decimal(10) / Decimal("98.08")) < Decimal("0.0001")
     assert abs(Decimal(share.amount) / 10**9 - Decimal("0.98") * Decimal("0.25451")) < Decimal("0.00001")
     assert (recipe.solid, recipe.complete) == (False, True)
     assert recipe.density is not None
     assert recipe.density.base == 1_200_000
+
+
+def test_what_was_declared_inert_is_balanced_by_its_formula(
+    worker: Membership, stranger: Membership, now: datetime
+) -> None:
+    salt = create_substance(actor=worker, name="Glauber's salt", formula="Na2SO4·10 H2O", inert=True)
+    double = create_substance(actor=worker, name="Nickel salt", formula="NiSO4.6H2O", inert=True)
+    lines = (LineInput(salt, "50 %"), LineInput(double, "10 %"))
+    made = create_product(actor=worker, now=now, name="Salts", supplier="", revision=revision(lines=lines))
+    shares = {share.component: share.amount for share in build_recipe(get_current_revision(made.product)).shares}
+    assert shares.pop("Ni") == pytest.approx(0.1 * 10**9 * 58.693 / 262.84, rel=1e-4)
+    assert shares == {"Na2SO4.10H2O": 5 * 10**8, "NiSO4.6H2O": 10**8}
+    assert list_solutes(worker.workshop) == set(shares)
+    assert list_solutes(stranger.workshop) == set()
 
 
 def test_a_content_per_litre_stays_per_litre(worker: Membership, now: datetime) -> None:

@@ -8,7 +8,6 @@ from django.utils.translation import gettext as _now
 from django.utils.translation import gettext_lazy as _
 from rest_framework import serializers
 
-from chemicals.books.events import VOLUME
 from chemicals.science.quantity import show
 from chemicals.science.units import DIMENSIONS
 
@@ -37,11 +36,6 @@ class Estimate:
     base: int | None
     sd: int = 0
     dimension: str = "mass"
-
-
-def dimension_of(component: str) -> str:
-    """Return what a component is measured as: a volume, else a mass."""
-    return "volume" if component == VOLUME else "mass"
 
 
 class Figure(Shape):

@@ -12,11 +12,12 @@ from rest_framework import serializers
 from chemicals.books.events import ASSUMED, COMPUTED, OBSERVED
 from chemicals.books.fold.state import Transfer
 from chemicals.books.occurred import PRECISIONS, Occurred
+from chemicals.ledger.components import dimension_of
 from chemicals.process import fields as kinds
 from chemicals.process.inputs import INPUTS, Input
 from chemicals.workshop.models import Workshop
 from compliance.api.fields import Amount, Choice, Flag, Identifier, Moment, MomentOrDay, Strict, Text, Words, rows
-from compliance.api.serializers.base import End, Estimate, Figure, Shape, choices_of, dimension_of
+from compliance.api.serializers.base import End, Estimate, Figure, Shape, choices_of
 from compliance.api.serializers.entries import FindingShape, PayloadShape
 
 MOST_ROWS = 100
@@ -134,7 +135,7 @@ def _moved(transfer: Transfer) -> Estimate:
 class TransferShape(Shape):
     """An amount of one component that would go from one end to another."""
 
-    component = serializers.CharField(help_text=_("The metal, volume or gross mass."))
+    component = serializers.CharField(help_text=_("The metal, species or solute, volume or gross mass."))
     source = End(help_text=_("Where it would come from."))  # type: ignore[assignment]  # a field of the answer
     target = End(help_text=_("Where it would go."))
     amount = Figure(source="*", of=_moved, help_text=_("How much."))

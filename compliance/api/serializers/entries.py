@@ -12,9 +12,10 @@ from chemicals.books.clearance import VERDICTS
 from chemicals.books.events import CURRENT
 from chemicals.books.fold.state import FINDINGS
 from chemicals.books.occurred import PRECISIONS
+from chemicals.ledger.components import dimension_of
 from chemicals.ledger.models import Basis, Posting
 from compliance.api.fields import Choice, Day, Identifier, Strict
-from compliance.api.serializers.base import End, Estimate, Figure, Hex, Named, Person, Shape, choices_of, dimension_of
+from compliance.api.serializers.base import End, Estimate, Figure, Hex, Named, Person, Shape, choices_of
 from compliance.api.serializers.query import PageQuery
 
 

@@ -23,6 +23,7 @@ class SubstanceShape(Shape):
     name = serializers.CharField(help_text=_("Its name."))
     cas_number = serializers.CharField(help_text=_("Its CAS number; empty where none was written."))
     formula = serializers.CharField(help_text=_("Its formula; the metal content follows from it."))
+    inert = serializers.BooleanField(help_text=_("Declared to react with nothing here: balanced by its formula."))
 
 
 class SubstanceInput(Strict):
@@ -31,6 +32,9 @@ class SubstanceInput(Strict):
     name = Text(max_length=120, help_text=_("A name that no other substance here has."))
     cas_number = Text(required=False, allow_blank=True, max_length=12, help_text=_("Such as 7758-99-8."))
     formula = Text(required=False, allow_blank=True, max_length=80, help_text=_("Such as CuSO4.5H2O."))
+    inert = Flag(
+        required=False, help_text=_("True if it reacts with nothing here: it is then balanced by its formula.")
+    )
 
 
 class LineShape(Shape):

@@ -3,13 +3,14 @@
 from django.utils.translation import gettext_lazy as _
 from rest_framework import serializers
 
+from chemicals.ledger.components import dimension_of, dimension_per_litre
 from chemicals.ledger.models import VesselKind
 from chemicals.ledger.selectors import Held, HeldMetal
 from chemicals.process.models import AnodeKind
 from chemicals.process.setup import HOLDERS
 from chemicals.science.formula import METALS
 from compliance.api.fields import BaseUnits, Choice, Identifier, Strict, Text, Whole, Words
-from compliance.api.serializers.base import Estimate, Figure, Named, Shape, choices_of, dimension_of
+from compliance.api.serializers.base import Estimate, Figure, Named, Shape, choices_of
 from compliance.api.serializers.entries import DatedFinding
 from compliance.api.serializers.query import PageQuery
 
@@ -55,18 +56,20 @@ def _amount(held: Held) -> Estimate:
 
 
 def _concentration(held: HeldMetal) -> Estimate:
-    return Estimate(held.concentration, held.concentration_sd, "concentration")
+    return Estimate(held.concentration, held.concentration_sd, dimension_per_litre(held.component))
 
 
 class HeldShape(Shape):
-    """What a vessel holds of one component."""
+    """What a vessel holds of one component: metals and solutes by mass, species by amount of substance."""
 
-    component = serializers.CharField(help_text=_("The metal's symbol, volume, or gross mass."))
+    component = serializers.CharField(
+        help_text=_("The metal's symbol, a species, the formula of a solute, volume, or gross mass.")
+    )
     amount = Figure(source="*", of=_amount, help_text=_("How much, now."))
 
 
 class HeldMetalShape(HeldShape):
-    """A metal in a vessel, also per litre where the volume is known."""
+    """A metal (or another substance) in a vessel, also per litre where the volume is known."""
 
     concentration = Figure(
         source="*", of=_concentration, help_text=_("Amount over volume; unknown where either is unknown.")
@@ -78,7 +81,7 @@ class ContentsShape(Shape):
 
     volume = HeldShape(allow_null=True, help_text=_("The volume; null if nothing was ever recorded of it."))
     mass = HeldShape(allow_null=True, help_text=_("The gross mass; null if nothing was ever recorded of it."))
-    metals = HeldMetalShape(many=True, help_text=_("Every metal that is listed."))
+    metals = HeldMetalShape(many=True, help_text=_("Every metal, species and solute that is listed."))
     incomplete = serializers.BooleanField(help_text=_("True if there may be more in it than is listed."))
 
 

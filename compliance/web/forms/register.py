@@ -44,6 +44,10 @@ class SubstanceForm(WebForm):
         help_text=_("For example CuSO4.5H2O. Without it, its metal cannot be counted."),
     )
     cas_number = LineField(label=_("CAS number"), required=False, max_length=12, help_text=_("For example 7758-99-8."))
+    inert = FlagField(
+        label=_("It reacts with nothing here"),
+        help_text=_("Then it is balanced by its formula, beside the metals: sodium sulfate, boric acid."),
+    )
 
 
 class HazardForm(WebForm):

@@ -8,6 +8,7 @@ from django.utils.safestring import SafeString
 
 from chemicals.balance.selectors import Amount, FlowEnd
 from chemicals.journal.models import Entry
+from chemicals.ledger.components import dimension_per_litre
 from chemicals.ledger.selectors import Held, HeldMetal
 from chemicals.science.quantity import show
 from compliance.documents.twin import symbol
@@ -56,7 +57,7 @@ def per_litre(row: HeldMetal) -> str:
     """Show a concentration with its uncertainty; nothing where there is none."""
     if row.concentration is None:
         return ""
-    return words.in_one_unit(row.concentration, row.concentration_sd, "concentration")
+    return words.in_one_unit(row.concentration, row.concentration_sd, dimension_per_litre(row.component))
 
 
 @register.filter

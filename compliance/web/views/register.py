@@ -49,6 +49,7 @@ SUBSTANCE_COLUMNS = (
     Column("substance", lambda row: row.name),
     Column("formula", lambda row: row.formula),
     Column("cas number", lambda row: row.cas_number),
+    Column("inert", lambda row: "yes" if row.inert else "no"),
 )
 
 
