@@ -151,8 +151,8 @@ def test_folding_on_the_touched_vessels_is_folding_everything(history: list[Entr
                 part.put(vessel, component, kept.holding(vessel, component))
         followed[entry.uuid] = folded = fold_event(part, entry.event)
         assert {vessel for vessel, component, _ in folded.contents if component == EVERY} == set(dict(folded.vessels))
-        for name, vessel in folded.vessels:
-            kept.put_vessel(name, vessel)
+        for name, known in folded.vessels:
+            kept.put_vessel(name, known)
         for name, component, holding in folded.contents:
             assert name in entry.event.vessels()
             if component == EVERY:

@@ -10,20 +10,39 @@ from typing import Any
 from uuid import UUID
 
 from chemicals.books import events
-from chemicals.books.fold import analysis, day_sheet, dummy, level, making, opening, run, waste
+from chemicals.books.fold import (
+    analysis,
+    correction,
+    counts,
+    day_sheet,
+    dummy,
+    level,
+    making,
+    opening,
+    run,
+    treatment,
+    upkeep,
+    waste,
+)
 from chemicals.books.fold.folding import Folding
 from chemicals.books.fold.state import EVERY, Finding, Holding, State, Transfer, Vessel
 
-VERSION = 1
+VERSION = 2
 """Version of the projection; a change of meaning raises it."""
 
 FOLDS: Mapping[type[events.Event], Callable[[Folding, Any], None]] = {
     events.Opening: opening.fold_opening,
+    events.Count: counts.fold_count,
     events.LevelReading: level.fold_level_reading,
+    events.WeightReading: counts.fold_weight_reading,
+    events.DensityReading: counts.fold_density_reading,
     events.Receipt: making.fold_receipt,
     events.MakeUp: making.fold_make_up,
     events.TopUp: making.fold_top_up,
     events.Move: making.fold_move,
+    events.Sample: making.fold_move,
+    events.Spill: making.fold_move,
+    events.Discharge: making.fold_move,
     events.Run: run.fold_run,
     events.DaySheet: day_sheet.fold_day_sheet,
     events.Dummy: dummy.fold_dummy,
@@ -31,8 +50,15 @@ FOLDS: Mapping[type[events.Event], Callable[[Folding, Any], None]] = {
     events.Acceptance: analysis.fold_acceptance,
     events.DrumOff: waste.fold_drum_off,
     events.HandOver: waste.fold_hand_over,
+    events.Filter: upkeep.fold_uptake,
+    events.Carbon: upkeep.fold_uptake,
+    events.Resin: upkeep.fold_uptake,
+    events.Sludge: upkeep.fold_sludge,
+    events.CleanOut: upkeep.fold_clean_out,
+    events.Treatment: treatment.fold_treatment,
+    events.Correction: correction.fold_correction,
 }
-"""Kinds that are not listed (analysis, cancellation, paper) post nothing."""
+"""Kinds that are not listed post nothing: analysis, cancellation, closing and reopening a period, paper."""
 
 
 @dataclass(frozen=True)

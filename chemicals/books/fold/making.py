@@ -2,14 +2,17 @@
 
 from chemicals.books.events import (
     AIR,
+    ASSUMED,
     COMPUTED,
     GROSS_MASS,
     OBSERVED,
+    REACTION,
     SUPPLIER,
     UNACCOUNTED,
     VOLUME,
     WATER_SUPPLY,
     Figure,
+    Ingredient,
     MakeUp,
     Measured,
     Move,
@@ -68,20 +71,34 @@ def _volume(event: Receipt) -> Amount | None:
 
 
 def fold_make_up(folding: Folding, event: MakeUp) -> None:
-    """stock -> tank in proportion; then water from the supply up to the level.
+    """stock -> tank in proportion, and the room that salts need; then water from the supply up to the level.
 
     Liquids that shrink or swell on mixing lose or gain volume but no mass: that is unaccounted volume.
     """
-    for item in event.ingredients:
-        if item.volume is not None:
-            folding.pour(item.stock, event.tank, item.volume.base, item.volume.stated_sd, OBSERVED)
-        elif item.mass is not None:
-            folding.scoop(item.stock, event.tank, item.mass.base, item.mass.stated_sd, OBSERVED)
-        else:
-            folding.pour_unknown(item.stock, event.tank)
+    for item, swelling in zip(event.ingredients, event.dissolved, strict=True):
+        add_ingredient(folding, item, event.tank)
+        if item.mass is not None:
+            _swell(folding, item.stock, event.tank, item.mass, swelling)
     if event.level is not None:
         _fill(folding, event.tank, WATER_SUPPLY, event.level, event.water_density)
         folding.set_content(event.tank, VOLUME, event.level.base, event.level.stated_sd, UNACCOUNTED, COMPUTED)
+
+
+def add_ingredient(folding: Folding, item: Ingredient, tank: str) -> None:
+    """stock -> tank in proportion to the volume or the mass; without either nobody knows how much."""
+    if item.volume is not None:
+        folding.pour(item.stock, tank, item.volume.base, item.volume.stated_sd, OBSERVED)
+    elif item.mass is not None:
+        folding.scoop(item.stock, tank, item.mass.base, item.mass.stated_sd, OBSERVED)
+    else:
+        folding.pour_unknown(item.stock, tank)
+
+
+def _swell(folding: Folding, stock: str, tank: str, mass: Measured, swelling: Figure) -> None:
+    """``reaction`` -> tank of the volume by which what dissolves swells the liquid."""
+    volume, sd = product(mass.base, mass.stated_sd, swelling.base, swelling.sd, 10**9)
+    if stock != tank and (volume or sd):
+        folding.move(VOLUME, REACTION, tank, volume, sd, ASSUMED)
 
 
 def fold_top_up(folding: Folding, event: TopUp) -> None:
@@ -98,11 +115,13 @@ def fold_top_up(folding: Folding, event: TopUp) -> None:
 
 
 def fold_move(folding: Folding, event: Move) -> None:
-    """Vessel -> vessel in proportion to the volume, or all of it."""
-    if event.volume is None:
-        folding.pour_all(event.source, event.target)
-    else:
+    """One end -> the other in proportion to the volume, or to the mass, or all of it."""
+    if event.volume is not None:
         folding.pour(event.source, event.target, event.volume.base, event.volume.stated_sd, OBSERVED)
+    elif event.mass is not None:
+        folding.scoop(event.source, event.target, event.mass.base, event.mass.stated_sd, OBSERVED)
+    else:
+        folding.pour_all(event.source, event.target)
 
 
 def _fill(folding: Folding, tank: str, source: str, level: Measured, density: Figure) -> None:
