@@ -22,6 +22,8 @@ from chemicals.books.fold.state import Holding, State
 
 G, KG, ML, L = 10**6, 10**9, 10**6, 10**9
 """Micrograms in a gram and a kilogram, nanolitres in a millilitre and a litre."""
+MMOL = 10**6
+"""Nanomoles in a millimole."""
 
 NO_ROOM = Figure(0, 0, "what dissolves needs no room, for easy sums")
 WATER = Figure(1_000_000, 0, "1 g/mL, for easy sums")
@@ -48,6 +50,10 @@ def grams(amount: Number, sd: Number | None = None) -> Measured:
 
 def kilograms(amount: Number, sd: Number | None = None) -> Measured:
     return _measured(amount, "kg", KG, sd)
+
+
+def millimoles(amount: Number, sd: Number | None = None) -> Measured:
+    return _measured(amount, "mmol", MMOL, sd)
 
 
 def coulombs(amount: Number, sd: Number | None = None) -> Measured:
@@ -122,8 +128,8 @@ def opening(
     poured: tuple[str, ...] = (),
     **held: Measured,
 ) -> Opening:
-    """Return what a vessel holds: by default a complete list, as dense as water."""
-    listed = tuple(Held(component, amount) for component, amount in held.items())
+    """Return what a vessel holds: by default a complete list, as dense as water. free_cyanide is free cyanide."""
+    listed = tuple(Held(component.replace("_", " "), amount) for component, amount in held.items())
     return Opening(vessel, complete, volume, mass, listed, density, poured)
 
 
