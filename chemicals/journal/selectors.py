@@ -1,10 +1,11 @@
 """Reads of the journal."""
 
 from collections.abc import Iterable, Iterator
+from typing import TYPE_CHECKING, TypedDict
 from uuid import UUID
 
 from django.db.backends.base.base import BaseDatabaseWrapper
-from django.db.models import BinaryField, Exists, Func, IntegerField, OuterRef, QuerySet, Value
+from django.db.models import BinaryField, Exists, Func, IntegerField, OuterRef, Q, QuerySet, Value
 from django.db.models.sql.compiler import SQLCompiler
 from django_scopes import scope, scopes_disabled
 
@@ -13,6 +14,9 @@ from chemicals.books.clearance import INCIDENT
 from chemicals.journal.models import Attachment, Entry, Head
 from chemicals.workshop.errors import NotFoundError
 from chemicals.workshop.models import Membership, Workshop
+
+if TYPE_CHECKING:
+    from django_stubs_ext import WithAnnotations
 
 
 def list_entries_for(member: Membership) -> QuerySet[Entry]:
@@ -55,6 +59,19 @@ def list_unanswered_for(member: Membership, kind: str, *answers: str) -> QuerySe
 def _cancelled() -> Exists:
     with scopes_disabled():
         return Exists(Entry.objects.filter(about=OuterRef("pk"), kind=events.Cancellation.KIND))
+
+
+class Standing(TypedDict):
+    """What ``mark_standing`` gives an entry."""
+
+    stands: bool
+
+
+def mark_standing(entries: QuerySet[Entry]) -> "QuerySet[WithAnnotations[Entry, Standing]]":
+    """Give each entry ``stands``: it is not cancelled, and is no acceptance of a cancelled analysis."""
+    with scopes_disabled():
+        subject = Exists(Entry.objects.filter(about=OuterRef("about"), kind=events.Cancellation.KIND))
+    return entries.annotate(stands=~_cancelled() & ~(Q(kind=events.Acceptance.KIND) & subject))
 
 
 def list_mentions_of(entry: Entry) -> QuerySet[Entry]:

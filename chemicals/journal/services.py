@@ -14,7 +14,7 @@ from chemicals.books.occurred import DAY, Occurred
 from chemicals.journal import files
 from chemicals.journal.models import Attachment, Entry, Head
 from chemicals.workshop.errors import ConflictError, FieldError, InvalidInputError
-from chemicals.workshop.models import Membership
+from chemicals.workshop.models import Membership, Workshop
 from chemicals.workshop.permissions import require_writer
 from chemicals.workshop.texts import find_bad_lines, find_unwritable, tidy
 
@@ -100,10 +100,15 @@ def _require_writable(event: events.Event, clearance: Clearance) -> None:
 
 def lock_chain(actor: Membership) -> Head:
     """Lock the end of the workshop's chain until the transaction ends: records of a workshop wait for each other."""
-    heads = Head.objects.select_for_update().filter(workshop=actor.workshop)
+    return lock_head(actor.workshop)
+
+
+def lock_head(workshop: Workshop) -> Head:
+    """Lock the end of a workshop's chain for who is no member: a job."""
+    heads = Head.objects.select_for_update().filter(workshop=workshop)
     head = heads.first()
     if head is None:  # the workshop's first record; two at once meet at the primary key
-        Head.objects.get_or_create(workshop=actor.workshop, defaults={"hash": canonical.GENESIS})
+        Head.objects.get_or_create(workshop=workshop, defaults={"hash": canonical.GENESIS})
         head = heads.get()
     return head
 

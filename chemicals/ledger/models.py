@@ -1,15 +1,18 @@
 """Every vessel, and the projection of the journal: postings, contents, holdings, findings.
 
-All but vessels and components can be rebuilt from the journal. Amounts are integers: micrograms, nanolitres.
+All but vessels and components can be rebuilt from the journal; what belongs to a closed period is kept as it was folded
+then, and proved by its digest. Amounts are integers: micrograms, nanolitres.
 """
 
 import uuid
+from datetime import datetime
 
 from django.db import models
 from django.utils.translation import gettext_lazy as _
 from django_scopes import ScopedManager
 
 from chemicals.books.events import ASSUMED, BOUNDARIES, COMPUTED, OBSERVED
+from chemicals.jobs.models import Job
 from chemicals.journal.models import Entry
 from chemicals.ledger.fields import ExactIntegerField
 from chemicals.register.models import Product
@@ -238,3 +241,94 @@ class Finding(models.Model):
 
     def __str__(self) -> str:
         return self.code
+
+
+class Books(models.Model):
+    """How far the projection of a workshop has come.
+
+    While ``recomputed_to`` is None the books stand: they say all that the journal says. Else they say what the entries
+    before (``recomputed_to``, ``recomputed_sequence``) in fold order say, and ``job`` works on the rest.
+    """
+
+    workshop = models.OneToOneField(Workshop, on_delete=models.PROTECT, related_name="books")
+    fold_version = models.PositiveSmallIntegerField()
+    recomputed_to = models.DateTimeField(null=True)
+    recomputed_sequence = models.BigIntegerField(null=True)
+    job = models.ForeignKey(Job, null=True, on_delete=models.PROTECT, related_name="+")
+
+    objects: "models.Manager[Books]" = ScopedManager(workshop="workshop")
+
+    class Meta:
+        constraints = [
+            models.CheckConstraint(
+                condition=models.Q(recomputed_to=None, recomputed_sequence=None, job=None)
+                | models.Q(recomputed_to__isnull=False, recomputed_sequence__isnull=False, job__isnull=False),
+                name="books_recomputed_by_a_job",
+            )
+        ]
+
+    def __str__(self) -> str:
+        return f"{self.workshop}: {self.recomputed_to or 'all'}"
+
+    @property
+    def position(self) -> tuple[datetime, int] | None:
+        """Return the place in the fold before which the books stand; None if they stand altogether."""
+        if self.recomputed_to is None or self.recomputed_sequence is None:
+            return None
+        return self.recomputed_to, self.recomputed_sequence
+
+
+class Period(models.Model):
+    """A closed period: from ``after`` (None: the beginning) until just before ``until``; a copy of its closing entry.
+
+    ``reopening`` is the entry that opened it again: then what stands here is superseded.
+    """
+
+    workshop = models.ForeignKey(Workshop, on_delete=models.PROTECT, related_name="periods")
+    closing = models.OneToOneField(Entry, on_delete=models.PROTECT, related_name="period")
+    reopening = models.OneToOneField(Entry, null=True, on_delete=models.PROTECT, related_name="reopened_period")
+    after = models.DateTimeField(null=True)
+    until = models.DateTimeField()
+    sequence = models.BigIntegerField()
+    fold_version = models.PositiveSmallIntegerField()
+    followed_sha256 = models.CharField(max_length=64)
+    holdings_sha256 = models.CharField(max_length=64)
+
+    objects: "models.Manager[Period]" = ScopedManager(workshop="workshop")
+
+    class Meta:
+        constraints = [
+            models.UniqueConstraint(
+                fields=["workshop", "until"], condition=models.Q(reopening=None), name="period_until_once"
+            ),
+            models.CheckConstraint(
+                condition=models.Q(after=None) | models.Q(after__lt=models.F("until")), name="period_after_before_until"
+            ),
+        ]
+
+    def __str__(self) -> str:
+        return f"until {self.until}"
+
+
+class ClosingHolding(models.Model):
+    """What a vessel held of a component at the end of a closed period: the state from which the next one folds.
+
+    Columns as in Content: the row of everything else says whether the list is incomplete, and what was poured in.
+    """
+
+    workshop = models.ForeignKey(Workshop, on_delete=models.PROTECT, related_name="closing_holdings")
+    period = models.ForeignKey(Period, on_delete=models.PROTECT, related_name="holdings")
+    vessel = models.ForeignKey(Vessel, on_delete=models.PROTECT, related_name="closing_holdings")
+    component = models.ForeignKey(Component, on_delete=models.PROTECT, related_name="closing_holdings")
+    amount = models.BigIntegerField(null=True)
+    variance = ExactIntegerField()
+    known_part = models.BigIntegerField(default=0)
+    poured = models.JSONField(null=True)
+
+    objects: "models.Manager[ClosingHolding]" = ScopedManager(workshop="workshop")
+
+    class Meta:
+        constraints = [models.UniqueConstraint(fields=["period", "vessel", "component"], name="closing_holding_once")]
+
+    def __str__(self) -> str:
+        return f"{self.vessel}: {self.amount} {self.component}"

@@ -1,35 +1,30 @@
-"""Between the fold's state and the tables. All functions run inside the workshop's scope and a transaction."""
+"""Between the fold's state and the tables: what vessels hold and remember, now, at any moment, at the end of a period.
 
-from collections import Counter, defaultdict
-from collections.abc import Iterable, Iterator, Mapping
-from uuid import UUID
+All functions run inside the workshop's scope; those that write, inside a transaction. What followed from each entry
+stands in ``followed``.
+"""
 
-from django.db.models import Model
+from collections.abc import Collection, Iterable, Mapping
+from datetime import datetime
+from typing import Any, TypeVar
 
-from chemicals.books import fold
-from chemicals.books.events import BOUNDARIES, GROSS_MASS, VOLUME
+from django.db.models import OuterRef, Q, QuerySet, Subquery
+
+from chemicals.books.events import GROSS_MASS, SPECIES, VOLUME
 from chemicals.books.fold.state import EVERY, Holding, State, Vessel
-from chemicals.journal.models import Entry
 from chemicals.ledger import models
 from chemicals.ledger.models import ComponentKind
+from chemicals.science.formula import METALS
 from chemicals.workshop.models import Workshop
 
 BATCH = 2000
+"""How many rows are written at once."""
 
+Order = tuple[datetime, int]
+"""A place in the fold: when it happened, then in which order it was recorded."""
 
-def load_state(workshop: Workshop, vessels: Iterable[str]) -> State:
-    """Return the state of the named vessels. Two queries."""
-    state = State()
-    names = list(vessels)
-    rows = models.Holding.objects.filter(vessel__uuid__in=names).values_list(
-        "vessel__uuid", "component__code", "amount", "variance", "known_part"
-    )
-    for vessel, component, amount, variance, known_part in rows:
-        state.put(str(vessel), component, Holding(amount, variance, known_part))
-    memories = models.Memory.objects.filter(vessel__uuid__in=names).values_list("vessel__uuid", "incomplete", "poured")
-    for vessel, incomplete, poured in memories:
-        state.vessels[str(vessel)] = Vessel(incomplete, frozenset(poured))
-    return state
+HELD = ("amount", "variance", "known_part")
+"""The columns of a Holding of the fold, in Holding, Content and ClosingHolding."""
 
 
 class Names:
@@ -54,180 +49,164 @@ def _kind(code: str) -> ComponentKind:
         VOLUME: ComponentKind.VOLUME,
         GROSS_MASS: ComponentKind.GROSS_MASS,
         EVERY: ComponentKind.EVERYTHING,
+        **dict.fromkeys(SPECIES, ComponentKind.SPECIES),
+        **dict.fromkeys(METALS, ComponentKind.METAL),
     }
-    return special.get(code, ComponentKind.METAL)
+    return special.get(code, ComponentKind.SOLUTE)
 
 
-def _components(folded: fold.Folded) -> set[str]:
-    return {t.component for t in folded.transfers} | {component for _, component, _ in folded.contents}
+def load_state(workshop: Workshop, vessels: Iterable[str] | None = None) -> State:
+    """Return what the named vessels (all, if none are given) hold and remember now. Two queries."""
+    state = State()
+    holdings, memories = models.Holding.objects.all(), models.Memory.objects.all()
+    if vessels is not None:
+        names = list(vessels)
+        holdings, memories = holdings.filter(vessel__uuid__in=names), memories.filter(vessel__uuid__in=names)
+    for vessel, component, *held in holdings.values_list("vessel__uuid", "component__code", *HELD):
+        state.put(str(vessel), component, Holding(*held))
+    for vessel, incomplete, poured in memories.values_list("vessel__uuid", "incomplete", "poured"):
+        state.put_vessel(str(vessel), Vessel(incomplete, frozenset(poured)))
+    return state
 
 
-def _postings(entry: Entry, folded: fold.Folded, names: Names) -> Iterator[models.Posting]:
-    for number, transfer in enumerate(folded.transfers):
-        for end, amount in ((transfer.source, -transfer.amount), (transfer.target, transfer.amount)):
-            yield models.Posting(
-                workshop_id=entry.workshop_id,
-                entry_id=entry.pk,
-                transfer=number,
-                component_id=names.components[transfer.component],
-                vessel_id=None if end in BOUNDARIES else names.vessels[end],
-                boundary=end if end in BOUNDARIES else "",
-                amount=amount,
-                sd=transfer.sd,
-                basis=transfer.basis,
-                occurred_at=entry.occurred_at,
+def load_state_before(order: Order, vessels: Collection[str] | None = None) -> State:
+    """Return the fold's whole state just before a place in the fold (of the named vessels, if given). Two queries.
+
+    The last rows of Content before a place are the state there. Every vessel and component that has a row of Content
+    has one in Holding or, for the vessel as a whole, in Memory: from these the last rows are looked up by their index.
+    """
+    rows = models.Content.objects.filter(vessel=OuterRef("vessel"), occurred_at__lte=order[0])
+    before = rows.filter(Q(occurred_at__lt=order[0]) | Q(sequence__lt=order[1])).order_by("-occurred_at", "-sequence")
+    every = Subquery(models.Component.objects.filter(code=EVERY).values("pk")[:1])
+    held = models.Holding.objects.annotate(last=_last(before.filter(component=OuterRef("component"))))
+    seen = models.Memory.objects.annotate(last=_last(before.filter(component=every)))
+    state = State()
+    pairs: QuerySet[Any]
+    for pairs in (held, seen):
+        found = pairs if vessels is None else pairs.filter(vessel__uuid__in=list(vessels))
+        put_rows(state, models.Content.objects.filter(pk__in=Subquery(found.values("last"))))
+    return state
+
+
+def _last(rows: QuerySet[models.Content]) -> Subquery:
+    return Subquery(rows.values("pk")[:1])
+
+
+def load_closing_state(period: models.Period | None) -> State:
+    """Return the state at the end of a closed period; before the first one everything is empty. One query at most."""
+    state = State()
+    if period is not None:
+        put_rows(state, models.ClosingHolding.objects.filter(period=period))
+    return state
+
+
+def put_rows(state: State, rows: QuerySet[Any]) -> None:
+    """Put rows of Content, or of ClosingHolding, into a state."""
+    for vessel, component, poured, *held in rows.values_list("vessel__uuid", "component__code", "poured", *HELD):
+        if component == EVERY:
+            state.put_vessel(str(vessel), read_vessel(held[0], poured))
+        else:
+            state.put(str(vessel), component, Holding(*held))
+
+
+def read_vessel(amount: int | None, poured: Iterable[str] | None) -> Vessel:
+    """Return what a row of everything else says; version 1 of the fold did not keep there what was poured in."""
+    return Vessel(amount is None, frozenset(poured or ()))
+
+
+def write_closing_state(period: models.Period, state: State) -> None:
+    """Keep a state as the end of a period."""
+    names = Names(period.workshop, {EVERY, *(component for _, component in state.holdings)})
+    wholes = {
+        (name, EVERY): (Holding(None if vessel.incomplete else 0), sorted(vessel.poured))
+        for name, vessel in state.vessels.items()
+    }
+    parts = {key: (holding, None) for key, holding in state.holdings.items()}
+    models.ClosingHolding.objects.bulk_create(
+        (
+            models.ClosingHolding(
+                workshop_id=period.workshop_id,
+                period=period,
+                vessel_id=names.vessels[vessel],
+                component_id=names.components[component],
+                poured=poured,
+                **_columns(holding),
             )
-
-
-def _contents(entry: Entry, folded: fold.Folded, names: Names) -> Iterator[models.Content]:
-    for vessel, component, holding in folded.contents:
-        yield models.Content(
-            workshop_id=entry.workshop_id,
-            entry_id=entry.pk,
-            vessel_id=names.vessels[vessel],
-            component_id=names.components[component],
-            occurred_at=entry.occurred_at,
-            sequence=entry.sequence,
-            amount=holding.amount,
-            variance=holding.variance,
-        )
-
-
-def _findings(entry: Entry, folded: fold.Folded) -> Iterator[models.Finding]:
-    for finding in folded.findings:
-        yield models.Finding(
-            workshop_id=entry.workshop_id,
-            entry_id=entry.pk,
-            code=finding.code,
-            component=finding.component,
-            source=finding.source,
-            target=finding.target,
-            occurred_at=entry.occurred_at,
-        )
-
-
-def write_incrementally(entry: Entry, state: State, folded: fold.Folded) -> None:
-    """Write what followed from the newest entry, and the holdings that it touched."""
-    ends = {end for transfer in folded.transfers for end in (transfer.source, transfer.target)}
-    names = Names(entry.workshop, _components(folded), ends - BOUNDARIES | {vessel for vessel, _, _ in folded.contents})
-    _write_followed([(entry, folded)], names)
-    _upsert_holdings(entry.workshop, state, {key for key in state.touched if key[1] != EVERY}, names)
-    _upsert_memories(
-        entry.workshop, state, {vessel for vessel, component in state.touched if component == EVERY}, names
+            for (vessel, component), (holding, poured) in {**parts, **wholes}.items()
+        ),
+        batch_size=BATCH,
     )
 
 
-def _write_followed(followed: Iterable[tuple[Entry, fold.Folded]], names: Names) -> None:
-    pairs = list(followed)
-    models.Posting.objects.bulk_create([row for e, f in pairs for row in _postings(e, f, names)], batch_size=BATCH)
-    models.Content.objects.bulk_create([row for e, f in pairs for row in _contents(e, f, names)], batch_size=BATCH)
-    models.Finding.objects.bulk_create([row for e, f in pairs for row in _findings(e, f)], batch_size=BATCH)
+def _columns(holding: Holding) -> dict[str, int | None]:
+    return {"amount": holding.amount, "variance": holding.variance, "known_part": holding.known_part}
 
 
-def _upsert_holdings(workshop: Workshop, state: State, keys: set[tuple[str, str]], names: Names) -> None:
-    rows = [
-        models.Holding(
-            workshop=workshop,
-            vessel_id=names.vessels[vessel],
-            component_id=names.components[component],
-            amount=state.holding(vessel, component).amount,
-            variance=state.holding(vessel, component).variance,
-            known_part=state.holding(vessel, component).known_part,
-        )
-        for vessel, component in sorted(keys)
-    ]
+def write_touched(workshop: Workshop, state: State, names: Names) -> None:
+    """Write the holdings and memories that the last entry touched."""
+    holdings = {key: state.holding(*key) for key in state.touched if key[1] != EVERY}
+    memories = {vessel: state.vessel(vessel) for vessel, component in state.touched if component == EVERY}
+    _upsert_holdings(workshop, holdings, names)
+    write_memories(workshop, memories, names)
+
+
+def replace_holdings(workshop: Workshop, state: State, names: Names) -> None:
+    """Make holdings and memories those of the state: what differs is written, what nothing speaks of vanishes."""
+    now = load_state(workshop)
+    for vessel, component in now.holdings.keys() - state.holdings.keys():
+        models.Holding.objects.filter(vessel__uuid=vessel, component__code=component).delete()
+    models.Memory.objects.filter(vessel__uuid__in=now.vessels.keys() - state.vessels.keys()).delete()
+    _upsert_holdings(workshop, _differing(state.holdings, now.holdings), names)
+    write_memories(workshop, _differing(state.vessels, now.vessels), names)
+
+
+def add_missing_holdings(workshop: Workshop, state: State, names: Names) -> None:
+    """Give a row to whatever the state speaks of and the tables do not: from these rows states are looked up."""
+    now = load_state(workshop)
+    _upsert_holdings(workshop, {key: state.holdings[key] for key in state.holdings.keys() - now.holdings.keys()}, names)
+    write_memories(workshop, {name: state.vessels[name] for name in state.vessels.keys() - now.vessels.keys()}, names)
+
+
+Key = TypeVar("Key")
+Value = TypeVar("Value")
+
+
+def _differing(wanted: Mapping[Key, Value], kept: Mapping[Key, Value]) -> dict[Key, Value]:
+    return {key: value for key, value in wanted.items() if kept.get(key) != value}
+
+
+def _upsert_holdings(workshop: Workshop, holdings: Mapping[tuple[str, str], Holding], names: Names) -> None:
     models.Holding.objects.bulk_create(
-        rows,
+        (
+            models.Holding(
+                workshop=workshop,
+                vessel_id=names.vessels[vessel],
+                component_id=names.components[component],
+                **_columns(holding),
+            )
+            for (vessel, component), holding in holdings.items()
+        ),
         batch_size=BATCH,
         update_conflicts=True,
         unique_fields=["vessel", "component"],
-        update_fields=["amount", "variance", "known_part"],
+        update_fields=HELD,
     )
 
 
-def _upsert_memories(workshop: Workshop, state: State, vessels: set[str], names: Names) -> None:
-    rows = [
-        models.Memory(
-            workshop=workshop,
-            vessel_id=names.vessels[name],
-            incomplete=state.vessel(name).incomplete,
-            poured=sorted(state.vessel(name).poured),
-        )
-        for name in sorted(vessels)
-    ]
+def write_memories(workshop: Workshop, vessels: Mapping[str, Vessel], names: Names) -> None:
+    """Write what is known of vessels as a whole."""
     models.Memory.objects.bulk_create(
-        rows, batch_size=BATCH, update_conflicts=True, unique_fields=["vessel"], update_fields=["incomplete", "poured"]
+        (
+            models.Memory(
+                workshop=workshop,
+                vessel_id=names.vessels[name],
+                incomplete=vessel.incomplete,
+                poured=sorted(vessel.poured),
+            )
+            for name, vessel in vessels.items()
+        ),
+        batch_size=BATCH,
+        update_conflicts=True,
+        unique_fields=["vessel"],
+        update_fields=["incomplete", "poured"],
     )
-
-
-def write_differences(workshop: Workshop, state: State, followed: Mapping[UUID, fold.Folded]) -> None:
-    """Make the tables say what a full fold says, touching only the entries and holdings that differ."""
-    names = Names(workshop, {component for folded in followed.values() for component in _components(folded)})
-    entries = {entry.pk: entry for entry in Entry.objects.only("pk", "uuid", "workshop_id", "occurred_at", "sequence")}
-    nothing = fold.Folded((), (), ())
-    changed = [entry for entry in entries.values() if entry.pk in _differing(entries, followed, names)]
-    for table in (models.Posting, models.Content, models.Finding):
-        _delete(table, [entry.pk for entry in changed])
-    _write_followed([(entry, followed.get(entry.uuid, nothing)) for entry in changed], names)
-    _replace_holdings(workshop, state, names)
-
-
-def _differing(entries: Mapping[int, Entry], followed: Mapping[UUID, fold.Folded], names: Names) -> set[int]:
-    """Return the ids of the entries whose rows are not what they should be."""
-    nothing = fold.Folded((), (), ())
-    kept = stored_rows()
-    return {
-        pk
-        for pk, entry in entries.items()
-        if kept[pk] != expected_rows(entry, followed.get(entry.uuid, nothing), names)
-    }
-
-
-Row = tuple[object, ...]
-
-
-def stored_rows() -> Mapping[int, Counter[Row]]:
-    """Return the projected rows of the scope's workshop as counted plain tuples, by entry. Three queries."""
-    rows: dict[int, Counter[Row]] = defaultdict(Counter)
-    for table, fields in ROWS.items():
-        for entry_id, *values in table._default_manager.values_list("entry_id", *fields).iterator(chunk_size=BATCH):
-            rows[entry_id][table.__name__, *values] += 1
-    return rows
-
-
-ROWS: Mapping[type[Model], tuple[str, ...]] = {
-    models.Posting: ("transfer", "component_id", "vessel_id", "boundary", "amount", "sd", "basis", "occurred_at"),
-    models.Content: ("vessel_id", "component_id", "amount", "variance", "occurred_at", "sequence"),
-    models.Finding: ("code", "component", "source", "target", "occurred_at"),
-}
-
-
-def expected_rows(entry: Entry, folded: fold.Folded, names: Names) -> Counter[Row]:
-    """Return the rows that should be there for an entry, as counted plain tuples."""
-    made: list[Model] = [
-        *_postings(entry, folded, names),
-        *_contents(entry, folded, names),
-        *_findings(entry, folded),
-    ]
-    return Counter((type(row).__name__, *(getattr(row, field) for field in ROWS[type(row)])) for row in made)
-
-
-def _delete(table: type[Model], entries: list[int]) -> None:
-    for start in range(0, len(entries), BATCH):
-        table._default_manager.filter(entry_id__in=entries[start : start + BATCH]).delete()
-
-
-def _replace_holdings(workshop: Workshop, state: State, names: Names) -> None:
-    wanted = {
-        (names.vessels[vessel], names.components[component]): (holding.amount, holding.variance)
-        for (vessel, component), holding in state.holdings.items()
-    }
-    surplus = [
-        pk
-        for pk, vessel, component in models.Holding.objects.values_list("pk", "vessel_id", "component_id")
-        if (vessel, component) not in wanted
-    ]
-    models.Holding.objects.filter(pk__in=surplus).delete()
-    _upsert_holdings(workshop, state, set(state.holdings), names)
-    models.Memory.objects.exclude(vessel__uuid__in=list(state.vessels)).delete()
-    _upsert_memories(workshop, state, set(state.vessels), names)

@@ -12,10 +12,11 @@ from chemicals.books import fold
 from chemicals.books.events import GROSS_MASS, VOLUME
 from chemicals.books.fold.arithmetic import quotient
 from chemicals.books.fold.state import State, Transfer
+from chemicals.jobs import models as jobs
 from chemicals.journal.models import Entry
-from chemicals.ledger import projection
+from chemicals.ledger import projection, recompute
 from chemicals.ledger.codes import tidy_code
-from chemicals.ledger.models import Content, Finding, Holding, Memory, Posting, Vessel, VesselKind
+from chemicals.ledger.models import Books, Content, Finding, Holding, Memory, Period, Posting, Vessel, VesselKind
 from chemicals.workshop.errors import NotFoundError
 from chemicals.workshop.models import Membership, Workshop
 
@@ -216,3 +217,51 @@ def get_last_change(workshop: Workshop) -> datetime | None:
     with scope(workshop=workshop):
         last: datetime | None = Posting.objects.aggregate(last=Max("occurred_at"))["last"]
         return last
+
+
+def list_periods_for(member: Membership) -> QuerySet[Period]:
+    """Return the closed periods of the member's workshop, the latest first, superseded ones too. One query."""
+    with scope(workshop=member.workshop):
+        rows = Period.objects.select_related("closing__member__user", "reopening__member__user")
+        return rows.order_by("-until", "-closing__sequence")
+
+
+def get_period_for(member: Membership, uuid: UUID) -> Period:
+    """Return one closed period of the member's workshop, by the uuid of its closing entry."""
+    try:
+        return list_periods_for(member).get(closing__uuid=uuid)
+    except Period.DoesNotExist as error:
+        raise NotFoundError("There is no such period in this workshop.") from error
+
+
+def get_closed_until(workshop: Workshop) -> datetime | None:
+    """Return the moment before which the books are closed; None if no period is. One query."""
+    with scope(workshop=workshop):
+        last = recompute.get_last_close()
+        return None if last is None else last.until
+
+
+@dataclass(frozen=True)
+class Recomputing:
+    """The books say what happened before ``until``; a job works on the rest.
+
+    ``done`` of ``total`` entries are folded; ``failed``: the job has given up, and a person must look at it.
+    """
+
+    until: datetime
+    job: UUID
+    done: int
+    total: int
+    failed: bool
+
+
+def get_recomputed_to(workshop: Workshop) -> Recomputing | None:
+    """Return up to when the books stand while a job recomputes them; None: they say all. One query."""
+    with scope(workshop=workshop):
+        books = Books.objects.select_related("job").filter(job__isnull=False).first()
+    if books is None or books.job is None or books.recomputed_to is None:
+        return None
+    job = books.job
+    return Recomputing(
+        books.recomputed_to, job.pk, job.progress_done, job.progress_total, job.state == jobs.State.FAILED
+    )

@@ -1,17 +1,18 @@
 """Writes of the ledger: vessels, and the projection of entries. Called inside the transaction of the whole record."""
 
 from datetime import datetime
-from uuid import UUID
 
 from django.db import IntegrityError, transaction
 from django_scopes import scope, scopes_disabled
 
 from chemicals.books import events, fold
-from chemicals.journal import selectors as journal
+from chemicals.books.events import BOUNDARIES
 from chemicals.journal.models import Entry
-from chemicals.ledger import projection
+from chemicals.journal.services import lock_head
+from chemicals.ledger import late, periods, projection, recompute
 from chemicals.ledger.codes import make_code
-from chemicals.ledger.models import Vessel, VesselKind
+from chemicals.ledger.followed import NOTHING, components_of, read_followed, write_followed
+from chemicals.ledger.models import Books, Vessel, VesselKind
 from chemicals.register.models import Product
 from chemicals.workshop.errors import FieldError, InvalidInputError
 from chemicals.workshop.models import Membership, Place, Workshop
@@ -66,31 +67,57 @@ def _free_code() -> str:
 
 
 def project_entry(entry: Entry, event: events.Event) -> fold.Folded:
-    """Bring the ledger up to date with a new entry and return what followed from it.
+    """Bring the ledger up to date with a new entry and return what followed from it; call it under the chain's lock.
 
-    An entry at the end of time folds on the holdings it touches. A late one, or a cancellation, folds everything
-    again in memory and writes only what differs.
+    An entry at the end of time folds on the holdings it touches. A late one, or a cancellation, folds again what comes
+    after it in fold order: (``occurred_at``, ``sequence``), so that of two entries of the same minute the one that was
+    recorded first counts first. With more than LATE_LIMIT later entries, or while a job is at it already, the job does
+    it, and nothing is known to have followed yet. Raises InvalidInputError for what would change a closed period.
     """
-    with scope(workshop=entry.workshop):
-        if type(event) not in fold.FOLDS and not isinstance(event, events.Cancellation):
-            return fold.Folded((), (), ())
-        if isinstance(event, events.Cancellation) or _is_late(entry):
-            followed = refold(entry.workshop)
-            return followed.get(entry.uuid, fold.Folded((), (), ()))
-        state = projection.load_state(entry.workshop, event.vessels())
-        folded = fold.fold_event(state, event)
-        projection.write_incrementally(entry, state, folded)
-        return folded
+    with transaction.atomic(), scope(workshop=entry.workshop):
+        start = late.find_start(entry, event)
+        if start is None:
+            return NOTHING
+        periods.require_open(entry, event)
+        books = recompute.get_books(entry.workshop)
+        if books.position is None and books.fold_version != fold.VERSION:
+            refold(entry.workshop)
+        elif books.position is None and start == recompute.order_of(entry) and not late.count_later(start):
+            return _fold_at_the_end(entry, event)
+        elif not late.fold_again(entry.workshop, entry.recorded_at, start):
+            late.remember_meanwhile(entry.workshop, entry, event)
+            return NOTHING
+        return read_followed([entry], projection.Names(entry.workshop, ()))[entry.pk] or NOTHING
 
 
-def _is_late(entry: Entry) -> bool:
-    folding = [kind.KIND for kind in fold.FOLDS]
-    return Entry.objects.filter(kind__in=folding, occurred_at__gt=entry.occurred_at).exists()
+def _fold_at_the_end(entry: Entry, event: events.Event) -> fold.Folded:
+    state = projection.load_state(entry.workshop, event.vessels())
+    folded = fold.fold_event(state, event)
+    ends = {end for transfer in folded.transfers for end in (transfer.source, transfer.target)} - BOUNDARIES
+    vessels = ends | {vessel for vessel, _, _ in folded.contents}
+    names = projection.Names(entry.workshop, components_of([folded]), vessels)
+    write_followed([(entry, folded)], names)
+    projection.write_touched(entry.workshop, state, names)
+    return folded
 
 
-def refold(workshop: Workshop) -> dict[UUID, fold.Folded]:
-    """Fold all entries of a workshop again and write what differs; return what followed from each entry."""
+def refold(workshop: Workshop) -> None:
+    """Fold everything again that lies in no closed period, and write what differs; the books stand afterwards."""
     with transaction.atomic(), scope(workshop=workshop):
-        state, followed = fold.rebuild(journal.iterate_fold_entries(workshop))
-        projection.write_differences(workshop, state, followed)
-        return followed
+        lock_head(workshop)
+        last = recompute.get_last_close()
+        recompute.get_books(workshop)
+        recompute.refold_from(workshop, projection.load_closing_state(last), recompute.start_after(last))
+
+
+def refold_outdated() -> list[Workshop]:
+    """Fold the books again that an older version of the fold kept; return their workshops."""
+    outdated = [books.workshop for books in _all_books() if books.fold_version != fold.VERSION]
+    for workshop in outdated:
+        refold(workshop)
+    return outdated
+
+
+def _all_books() -> list[Books]:
+    with scopes_disabled():
+        return list(Books.objects.select_related("workshop").order_by("workshop"))

@@ -12,6 +12,7 @@ from chemicals.books.clearance import Clearance
 from chemicals.journal import services as journal
 from chemicals.journal.models import Entry
 from chemicals.journal.services import Appended
+from chemicals.ledger.periods import require_closed
 from chemicals.ledger.services import project_entry
 from chemicals.process.build import Built
 from chemicals.workshop.errors import ConflictError
@@ -56,6 +57,8 @@ def _require_possible(entry: Entry, event: events.Event) -> None:
     """Refuse what earlier entries make impossible; the transaction is rolled back with the entry in it."""
     if entry.about is None:
         return
+    if isinstance(event, events.Correction):
+        require_closed(entry.about)
     others = list(Entry.objects.filter(about=entry.about).exclude(pk=entry.pk))
     cancelled = set(
         Entry.objects.filter(kind=events.Cancellation.KIND, about__in=others).values_list("about_id", flat=True)

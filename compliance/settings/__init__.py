@@ -207,6 +207,7 @@ JOB_LEASE_SECONDS = int(os.environ.get("JOB_LEASE_SECONDS", "300"))
 """How long a worker keeps a job that it does not finish: more than the longest step of a task takes."""
 JOB_TASKS = {
     "clear-sessions": "compliance.ops.tasks.clear_sessions",
+    "recompute": "chemicals.ledger.tasks.recompute",
     "verify": "compliance.ops.tasks.verify",
 }
 """Which function does which task: `(payload, *, now)` reads, and returns what to write (chemicals/jobs/registry.py)."""

@@ -137,12 +137,12 @@ def test_serve_refuses_a_database_that_is_not_as_this_version_needs_it(
 
 def test_upgrade_backs_up_then_migrates_then_verifies(migrated: Path, tmp_path: Path) -> None:
     shutil.copy(migrated, tmp_path / migrated.name)
-    succeed("migrate", "jobs", "zero", GRAMLEDGER_DATA=str(tmp_path))
+    succeed("migrate", "dropoffs", "zero", GRAMLEDGER_DATA=str(tmp_path))
     output = succeed("upgrade", GRAMLEDGER_DATA=str(tmp_path))
     backup, migrations, *_, proof = output.splitlines()
     (written,) = (tmp_path / "backups").iterdir()
     assert backup == f"Backup: {written}"
-    assert migrations == "Migrations: jobs.0001_initial"
+    assert migrations == "Migrations: dropoffs.0001_initial"
     assert proof == "0 workshops, 0 entries, 0 files: all is as it was recorded."
 
 

@@ -13,7 +13,7 @@ from django.db.models import CheckConstraint, Model, UniqueConstraint
 from chemicals.jobs.models import Job, Schedule
 from chemicals.journal import triggers
 from chemicals.journal.models import Entry
-from chemicals.ledger.models import Finding, Vessel
+from chemicals.ledger.models import ClosingHolding, Component, Finding, Period, Vessel
 from compliance.ops.verify import our_models
 from tests.ops.conftest import LOADED_AT
 
@@ -31,6 +31,13 @@ def on_another_entry(row: Model) -> Values:
     return {"entry_id": Entry._base_manager.filter(paper=None).first().pk}  # type: ignore[union-attr]
 
 
+def another_entry(row: Model) -> Entry:
+    """Return an entry that closed no period."""
+    entry = Entry._base_manager.filter(period=None).first()
+    assert entry is not None
+    return entry
+
+
 def after(row: Model, **values: Any) -> Values:
     """Change a row so that it is the second of its kind."""
     values["transfer"] = 999
@@ -43,6 +50,13 @@ def a_vessel() -> int:
     vessel = Vessel._base_manager.first()
     assert vessel is not None
     return vessel.pk
+
+
+def a_component() -> int:
+    """Return the id of some component."""
+    component = Component._base_manager.first()
+    assert component is not None
+    return component.pk
 
 
 OTHER_END = {"vessel_id": None, "boundary": "the moon"}
@@ -89,6 +103,12 @@ EXAMPLES: dict[str, dict[str, Change]] = {
     "ledger.Holding": {"holding_once": twice},
     "ledger.Content": {"content_once": twice},
     "ledger.Finding": {"finding_once": twice},
+    "ledger.Books": {"books_recomputed_by_a_job": {"recomputed_to": LOADED_AT}},
+    "ledger.Period": {
+        "period_until_once": lambda row: {"closing_id": another_entry(row).pk},
+        "period_after_before_until": lambda row: {"closing_id": another_entry(row).pk, "after": LOADED_AT},
+    },
+    "ledger.ClosingHolding": {"closing_holding_once": twice},
     "process.Tank": {
         "tank_metal_with_valence": {"metal": "Cu", "valence": None},
         "tank_soluble_anode_set": {"anode_kind": "soluble", "anode_id": None},
@@ -121,7 +141,17 @@ def first_row(model: type[Model]) -> Model:
         Job: {"task": "sweep", "due_at": LOADED_AT, "created_at": LOADED_AT},
         Schedule: {"task": "sweep", "every_seconds": 60, "due_at": LOADED_AT},
         Finding: {"workshop_id": entry.workshop_id, "entry": entry, "code": "x", "occurred_at": LOADED_AT},
+        Period: {
+            "workshop_id": entry.workshop_id,
+            "closing": entry,
+            "until": LOADED_AT,
+            "sequence": 1,
+            "fold_version": 1,
+        },
     }
+    if model is ClosingHolding:
+        held = {"period": first_row(Period), "vessel_id": a_vessel(), "component_id": a_component(), "variance": 0}
+        return model._base_manager.create(workshop_id=entry.workshop_id, **held)
     return model._base_manager.create(**made[model])
 
 
