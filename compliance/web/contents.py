@@ -5,10 +5,10 @@ from collections.abc import Iterable, Iterator
 from chemicals.ledger.components import dimension_of
 from chemicals.ledger.models import Vessel
 from chemicals.ledger.selectors import Contents, Held
-from compliance.web.export import Column, grams, litres, moles
+from compliance.web.export import Column, grams, litres, millimoles
 
 Part = tuple[Vessel, Held | None]
-IN_FILES = {"volume": ("L", litres), "mass": ("g", grams), "amount_of_substance": ("mol", moles)}
+IN_FILES = {"volume": ("L", litres), "mass": ("g", grams), "amount_of_substance": ("mmol", millimoles)}
 """Unit and number of an amount in a file, by its dimension."""
 
 

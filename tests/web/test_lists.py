@@ -2,6 +2,7 @@
 
 import csv
 import io
+import json
 import re
 from collections.abc import Callable
 from datetime import datetime
@@ -87,14 +88,22 @@ XLSX = "application/vnd.openxmlformats-officedocument.spreadsheetml.sheet"
 
 
 def rows_of(response: Any) -> list[dict[str, str]]:
-    text = response.content.decode("utf-8-sig")
+    text = response.getvalue().decode("utf-8-sig")
     return list(csv.DictReader(io.StringIO(text)))
+
+
+def lines_of(response: Any) -> list[Any]:
+    """Return the objects of a file of JSON lines."""
+    assert response.headers["Content-Type"] == "application/jsonl"
+    text = response.getvalue().decode()
+    assert text.endswith("\n") or not text
+    return [json.loads(line) for line in text.split("\n")[:-1]]
 
 
 def sheet_of(response: Any) -> list[dict[str, Any]]:
     """Return the rows of an XLSX file, formulas as they would be stored."""
     assert response.headers["Content-Type"] == XLSX
-    headings, *rows = load_workbook(io.BytesIO(response.content)).worksheets[0].iter_rows()
+    headings, *rows = load_workbook(io.BytesIO(response.getvalue())).worksheets[0].iter_rows()
     return [{str(head.value): cell for head, cell in zip(headings, row, strict=True)} for row in rows]
 
 
@@ -113,6 +122,8 @@ def test_every_list_is_a_file_too(name: str, visit: Visitor, grow: Callable[[str
         assert [[_as_text(cell.value) for cell in row.values()] for row in sheet] == [
             list(row.values()) for row in rows
         ]
+        lines = lines_of(visit.get(name, query=query.replace("&amp;", "&").replace("as=csv", "as=jsonl")))
+        assert [[_as_text(value) for value in line.values()] for line in lines] == [list(row.values()) for row in rows]
 
 
 def _as_text(value: object) -> str:
@@ -122,12 +133,12 @@ def _as_text(value: object) -> str:
     return "" if value is None else str(value)
 
 
-def test_each_list_links_both_kinds_of_file(visit: Visitor, grow: Callable[[str], None]) -> None:
+def test_each_list_links_every_kind_of_file(visit: Visitor, grow: Callable[[str], None]) -> None:
     grow("one")
     for name in [name for name in COUNTS if name != "today"]:
         page = visit.get(name).content.decode()
-        as_csv, as_xlsx = (set(re.findall(rf'href="(\?[^"]*)as={kind}"', page)) for kind in ("csv", "xlsx"))
-        assert as_csv == as_xlsx
+        kinds = [set(re.findall(rf'href="(\?[^"]*)as={kind}"', page)) for kind in ("csv", "xlsx", "jsonl")]
+        assert kinds[0] == kinds[1] == kinds[2]
 
 
 def test_what_people_type_never_becomes_a_formula(visit: Visitor, owner: Membership) -> None:

@@ -90,7 +90,7 @@ def test_a_file_keeps_text_text_and_unknown_empty(rf: RequestFactory) -> None:
     )
     assert response is not None
     assert response.headers["Content-Disposition"] == 'attachment; filename="cells-of-today.csv"'
-    assert response.content.decode("utf-8-sig").splitlines() == [
+    assert response.getvalue().decode("utf-8-sig").splitlines() == [
         "cell",
         '"\'=HYPERLINK(""x"")"',
         "'-5",

@@ -4,7 +4,7 @@ from datetime import date, timedelta
 from typing import Any
 from urllib.parse import urlencode
 
-from django.http import HttpRequest, HttpResponse
+from django.http import HttpRequest, HttpResponseBase
 from django.utils import timezone
 
 from chemicals.balance.selectors import BookBalance, get_book_balance, list_metals_for
@@ -41,7 +41,7 @@ VESSEL_COLUMNS = (
 
 
 @page()
-def index(request: HttpRequest, member: Membership) -> HttpResponse:
+def index(request: HttpRequest, member: Membership) -> HttpResponseBase:
     """Show the balance of a metal, this year so far unless another period is chosen."""
     metals = list_metals_for(member)
     today = timezone.localdate()

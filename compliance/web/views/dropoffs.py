@@ -3,7 +3,7 @@
 from uuid import UUID
 
 from django.contrib import messages
-from django.http import HttpRequest, HttpResponse, HttpResponseRedirect
+from django.http import HttpRequest, HttpResponse, HttpResponseBase, HttpResponseRedirect
 from django.utils import timezone
 from django.utils.translation import gettext as _
 
@@ -39,7 +39,7 @@ RECEIVER_COLUMNS = (
 
 
 @page()
-def index(request: HttpRequest, member: Membership) -> HttpResponse:
+def index(request: HttpRequest, member: Membership) -> HttpResponseBase:
     """List drop-offs and receivers."""
     rows = list_drop_offs_for(member)
     receivers = list_receivers_for(member)

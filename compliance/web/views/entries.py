@@ -4,7 +4,7 @@ from typing import Any
 from uuid import UUID
 
 from django.core.paginator import Paginator
-from django.http import HttpRequest, HttpResponse
+from django.http import HttpRequest, HttpResponse, HttpResponseBase
 
 from chemicals.books import events
 from chemicals.journal.selectors import get_entry_for, list_mentions_of, read_body
@@ -36,7 +36,7 @@ RECORDABLE = [(verb, data.title) for verb, data in INPUTS.items()]
 
 
 @page()
-def index(request: HttpRequest, member: Membership) -> HttpResponse:
+def index(request: HttpRequest, member: Membership) -> HttpResponseBase:
     """List entries, newest record first."""
     chosen = EntryFilter(member, request.GET)
     file = wanted_file(request, entries=(COLUMNS, lambda: entry_rows(member, chosen.qs)))

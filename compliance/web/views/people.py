@@ -3,7 +3,7 @@
 from uuid import UUID
 
 from django.contrib import messages
-from django.http import HttpRequest, HttpResponse, HttpResponseRedirect
+from django.http import HttpRequest, HttpResponse, HttpResponseBase, HttpResponseRedirect
 from django.urls import reverse
 from django.utils import timezone
 from django.utils.translation import gettext as _
@@ -47,7 +47,7 @@ PLACE_COLUMNS = (
 
 
 @page()
-def index(request: HttpRequest, member: Membership) -> HttpResponse:
+def index(request: HttpRequest, member: Membership) -> HttpResponseBase:
     """Show the workshop: settings, people, places, the member's own keys, the end of the chain."""
     people, places = list_members_for(member), list_places_for(member)
     file = wanted_file(request, people=(COLUMNS, lambda: people), places=(PLACE_COLUMNS, lambda: places))

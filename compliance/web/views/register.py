@@ -4,7 +4,7 @@ from typing import Any
 from uuid import UUID
 
 from django.contrib import messages
-from django.http import HttpRequest, HttpResponse
+from django.http import HttpRequest, HttpResponse, HttpResponseBase
 from django.utils import timezone
 from django.utils.translation import gettext as _
 
@@ -54,7 +54,7 @@ SUBSTANCE_COLUMNS = (
 
 
 @page()
-def index(request: HttpRequest, member: Membership) -> HttpResponse:
+def index(request: HttpRequest, member: Membership) -> HttpResponseBase:
     """List the products as they are known now."""
     revisions = list_current_revisions_for(member)
     contents = list_contents_for(member)
@@ -64,7 +64,7 @@ def index(request: HttpRequest, member: Membership) -> HttpResponse:
 
 
 @page()
-def substances(request: HttpRequest, member: Membership) -> HttpResponse:
+def substances(request: HttpRequest, member: Membership) -> HttpResponseBase:
     """List the substances."""
     rows = list_substances_for(member)
     file = wanted_file(request, substances=(SUBSTANCE_COLUMNS, lambda: rows))

@@ -3,7 +3,7 @@
 from typing import Any
 from uuid import UUID
 
-from django.http import Http404, HttpRequest, HttpResponse
+from django.http import Http404, HttpRequest, HttpResponse, HttpResponseBase
 from django.utils import timezone
 from django.utils.translation import gettext as _
 
@@ -36,7 +36,7 @@ ROUTE_COLUMNS = (
 
 
 @page()
-def index(request: HttpRequest, member: Membership) -> HttpResponse:
+def index(request: HttpRequest, member: Membership) -> HttpResponseBase:
     """List tanks and anode sets with what they hold, and the set-up of the line."""
     contents = list_contents_for(member)
     rows = [(vessel, contents.get(vessel.pk)) for vessel in list_vessels_for(member, *KINDS)]

@@ -4,7 +4,7 @@ from typing import Any
 from uuid import UUID, uuid4
 
 from django.contrib import messages
-from django.http import HttpRequest, HttpResponse, HttpResponseRedirect
+from django.http import HttpRequest, HttpResponse, HttpResponseBase, HttpResponseRedirect
 from django.utils import timezone
 from django.utils.translation import gettext as _
 
@@ -67,7 +67,7 @@ PAPER_COLUMNS = (
 
 
 @page()
-def index(request: HttpRequest, member: Membership) -> HttpResponse:
+def index(request: HttpRequest, member: Membership) -> HttpResponseBase:
     """List containers with their fill, and the streams."""
     containers = list_containers_for(member)
     streams = list_streams_for(member)
@@ -77,7 +77,7 @@ def index(request: HttpRequest, member: Membership) -> HttpResponse:
 
 
 @page()
-def container(request: HttpRequest, member: Membership, uuid: UUID) -> HttpResponse:
+def container(request: HttpRequest, member: Membership, uuid: UUID) -> HttpResponseBase:
     """Show a waste container; the code on it opens this page."""
     found = get_container_for(member, uuid)
     file = wanted_file(request, papers=(PAPER_COLUMNS, lambda: list_papers_naming(member, found.vessel.code)))

@@ -7,7 +7,7 @@ from django.utils.translation import gettext_lazy, pgettext_lazy
 
 from chemicals.books import events
 from chemicals.books.fold.state import EVERY
-from chemicals.science.formula import METALS, element_name
+from chemicals.ledger.components import dimension_of, name_of
 from chemicals.science.quantity import show
 from chemicals.science.units import find, to_base
 
@@ -83,13 +83,6 @@ def signed(base: int | None, sd: int, component: str) -> str:
     return f"{sign}{with_uncertainty(abs(base), sd, component)}"
 
 
-def dimension_of(component: str) -> str:
-    """Return the dimension in which a component is counted."""
-    if component == events.VOLUME:
-        return "volume"
-    return "amount_of_substance" if component in events.SPECIES else "mass"
-
-
 def component_name(component: str) -> str:
     """Return a component as people say it: copper, free cyanide, liquid, weight in all; a solute by its formula."""
     if component == events.VOLUME:
@@ -98,6 +91,4 @@ def component_name(component: str) -> str:
         return str(WEIGHT)
     if component == EVERY:
         return _("anything else")
-    if component in SPECIES:
-        return str(SPECIES[component])
-    return element_name(component) if component in METALS else component
+    return str(SPECIES[component]) if component in SPECIES else name_of(component)
