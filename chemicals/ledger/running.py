@@ -10,7 +10,7 @@ from dataclasses import dataclass
 from datetime import datetime
 from typing import Any
 
-from django.db.models import Q, Sum
+from django.db.models import Q, QuerySet, Sum
 from django_scopes import scope
 
 from chemicals.books import events
@@ -97,6 +97,33 @@ class VesselLedger:
     pages: int
 
 
+class _Period:
+    """Of which vessel and component, and from when until when, rows are read. One query."""
+
+    def __init__(self, vessel: Vessel, component: str, start: datetime, end: datetime) -> None:
+        self.vessel, self.component, self.start, self.end = vessel, component, start, end
+        # rows are looked up by the component's key: through its code no database would use their index
+        self.keys = dict(
+            Component.objects.filter(code__in=(component, EVERY, VOLUME)).values_list("code", "pk"),
+        )
+        if component not in self.keys:
+            raise NotFoundError("The books hold none of this.")
+
+    def read(self, component: str) -> tuple["_Row | None", list["_Row"]]:
+        """Return the last row of Content before the period, and those of the period. Two queries."""
+        mine = Content.objects.filter(vessel=self.vessel, component=self.keys.get(component))
+        ordered = mine.order_by("occurred_at", "sequence")
+        fields = ("entry_id", "entry__kind", "occurred_at", "sequence", "amount", "variance", "known_part")
+        before = ordered.filter(occurred_at__lt=self.start).reverse().values_list(*fields)[:1]
+        rows = ordered.filter(occurred_at__gte=self.start, occurred_at__lt=self.end).values_list(*fields)
+        return next(map(_row, before), None), list(map(_row, rows))
+
+    def postings(self) -> QuerySet[Posting]:
+        """Return what came and went."""
+        mine = Posting.objects.filter(vessel=self.vessel, component=self.keys[self.component])
+        return mine.filter(occurred_at__gte=self.start, occurred_at__lt=self.end)
+
+
 @dataclass(frozen=True)
 class _Row:
     """What was held after an entry: its kind, its place in the fold."""
@@ -128,12 +155,11 @@ def get_vessel_ledger(
     Twelve queries at most, however many lines. Raises NotFoundError for what stands in no book of the workshop.
     """
     with scope(workshop=vessel.workshop):
-        if not Component.objects.filter(code=component).exists():
-            raise NotFoundError("The books hold none of this.")
-        series = _read_series(vessel, component, start, end)
-        running = list(_run(vessel, component, series, start, end))
+        period = _Period(vessel, component, start, end)
+        series = _read_series(period)
+        running = list(_run(period, series))
         number, pages, first, last = _cut(page, len(series.rows))
-        came, went = _sum_movements(vessel, component, start, end)
+        came, went = _sum_movements(period)
         return VesselLedger(
             vessel=vessel,
             component=component,
@@ -144,7 +170,7 @@ def get_vessel_ledger(
             came=came,
             went=went,
             points=tuple(_points(component, series.rows, running[1:-1])),
-            lines=tuple(_lines(vessel, component, series.rows[first:last], running[first + 1 : last + 1])),
+            lines=tuple(_lines(period, series.rows[first:last], running[first + 1 : last + 1])),
             before=running[first],
             after=running[last] if number < pages else running[-1],
             page=number,
@@ -161,14 +187,14 @@ def _cut(page: int | None, count: int) -> tuple[int, int, int, int]:
     return number, pages, (number - 1) * LINES, min(number * LINES, count)
 
 
-def _read_series(vessel: Vessel, component: str, start: datetime, end: datetime) -> _Series:
+def _read_series(period: _Period) -> _Series:
     """Return what was held over a period. Until a component is listed, the rows of everything else speak for it."""
-    before, rows = _read_rows(vessel, component, start, end)
+    before, rows = period.read(period.component)
     if before is not None:
         return _Series(before.held, rows)
-    whole, unlisted = _read_rows(vessel, EVERY, start, end)
+    whole, unlisted = period.read(EVERY)
     first = Holding(0) if whole is None else whole.held
-    listed = rows[0].order if rows else (end, 0)
+    listed = rows[0].order if rows else (period.end, 0)
     return _Series(first, [*_changes(first, [row for row in unlisted if row.order < listed]), *rows])
 
 
@@ -181,23 +207,15 @@ def _changes(first: Holding, rows: Sequence[_Row]) -> Iterator[_Row]:
         was = row.held.amount
 
 
-def _read_rows(vessel: Vessel, component: str, start: datetime, end: datetime) -> tuple[_Row | None, list[_Row]]:
-    """Return the last row of Content before a period, and those of the period. Two queries."""
-    mine = Content.objects.filter(vessel=vessel, component__code=component).order_by("occurred_at", "sequence")
-    fields = ("entry_id", "entry__kind", "occurred_at", "sequence", "amount", "variance", "known_part")
-    before = mine.filter(occurred_at__lt=start).reverse().values_list(*fields)[:1]
-    rows = mine.filter(occurred_at__gte=start, occurred_at__lt=end).values_list(*fields)
-    return next(map(_row, before), None), list(map(_row, rows))
-
-
 def _row(fields: tuple[Any, ...]) -> _Row:
     entry, kind, at, sequence, *held = fields
     return _Row(entry, kind, (at, sequence), Holding(*held))
 
 
-def _run(vessel: Vessel, component: str, series: _Series, start: datetime, end: datetime) -> Iterator[Running]:
+def _run(period: _Period, series: _Series) -> Iterator[Running]:
     """Yield what was held at the beginning, after each row, and at the end; per litre where the volume was known."""
-    before, rows = (None, []) if component in READINGS else _read_rows(vessel, VOLUME, start, end)
+    component = period.component
+    before, rows = (None, []) if component in READINGS else period.read(VOLUME)
     volume, later = None if before is None else before.held, deque(rows)
     held = series.first
     yield _running(component, held, volume)
@@ -224,45 +242,47 @@ def _points(component: str, rows: Sequence[_Row], running: Sequence[Running]) ->
         yield Point(row.order[0], held, held.amount is not None and row.kind == reading)
 
 
-def _sum_movements(vessel: Vessel, component: str, start: datetime, end: datetime) -> tuple[int, int]:
+def _sum_movements(period: _Period) -> tuple[int, int]:
     """Return what came and what went over a period, both not below zero. One query."""
-    mine = Posting.objects.filter(vessel=vessel, component__code=component)
-    sums = mine.filter(occurred_at__gte=start, occurred_at__lt=end).aggregate(
+    sums = period.postings().aggregate(
         came=Sum("amount", filter=Q(amount__gt=0)), went=Sum("amount", filter=Q(amount__lt=0))
     )
     return sums["came"] or 0, -(sums["went"] or 0)
 
 
-def _lines(vessel: Vessel, component: str, rows: Sequence[_Row], running: Sequence[Running]) -> Iterator[Line]:
+def _lines(period: _Period, rows: Sequence[_Row], running: Sequence[Running]) -> Iterator[Line]:
     """Yield the lines of these rows. Three queries for each batch."""
     for first in range(0, len(rows), BATCH):
         batch = rows[first : first + BATCH]
         keys = [row.entry for row in batch]
         entries = Entry.objects.select_related("member__user", "about").in_bulk(keys)
-        movements, findings = _read_movements(vessel, component, keys), _read_findings(vessel, component, keys)
+        movements, findings = _read_movements(period, keys), _read_findings(period, keys)
         for number, key in enumerate(keys, first):
             yield Line(entries[key], tuple(movements[key]), tuple(findings[key]), running[number])
 
 
-def _read_movements(vessel: Vessel, component: str, entries: Sequence[int]) -> Mapping[int, list[Movement]]:
+def _read_movements(period: _Period, entries: Sequence[int]) -> Mapping[int, list[Movement]]:
     """Return what came and went by each entry: of the two postings of a transfer one is the vessel's."""
-    rows = Posting.objects.filter(entry_id__in=entries, component__code=component).select_related("vessel")
+    rows = Posting.objects.filter(entry_id__in=entries, component=period.keys[period.component]).select_related(
+        "vessel"
+    )
     pairs: dict[tuple[int, int], list[Posting]] = defaultdict(list)
     for posting in rows.order_by("entry_id", "transfer"):
         pairs[posting.entry_id, posting.transfer].append(posting)
     found: dict[int, list[Movement]] = defaultdict(list)
     for (entry, _transfer), pair in pairs.items():
         for mine, other in (pair, pair[::-1]):
-            if mine.vessel_id == vessel.pk:
+            if mine.vessel_id == period.vessel.pk:
                 end = other.boundary if other.vessel is None else str(other.vessel.uuid)
                 found[entry].append(Movement(mine.amount, mine.sd, mine.basis, end))
     return found
 
 
-def _read_findings(vessel: Vessel, component: str, entries: Sequence[int]) -> Mapping[int, list[Finding]]:
+def _read_findings(period: _Period, entries: Sequence[int]) -> Mapping[int, list[Finding]]:
     """Return what a person should know of each entry about the component in this vessel."""
-    here = Q(source=str(vessel.uuid)) | Q(target=str(vessel.uuid))
+    here = Q(source=str(period.vessel.uuid)) | Q(target=str(period.vessel.uuid))
     found: dict[int, list[Finding]] = defaultdict(list)
-    for finding in Finding.objects.filter(here, entry_id__in=entries, component__in=(component, EVERY)).order_by("pk"):
+    about = Finding.objects.filter(here, entry_id__in=entries, component__in=(period.component, EVERY))
+    for finding in about.order_by("pk"):
         found[finding.entry_id].append(finding)
     return found
