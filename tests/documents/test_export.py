@@ -63,7 +63,7 @@ def test_rows_are_read_while_the_file_is_sent(ending: str) -> None:
     assert 0 < len(read) < 5_000
 
 
-def test_a_file_that_nobody_waits_for_any_more_reads_no_further() -> None:
+def test_a_file_that_nobody_waits_for_any_more_reads_no_further(db: None) -> None:
     closed = []
 
     def rows() -> Iterator[int]:
