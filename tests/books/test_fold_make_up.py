@@ -1,12 +1,15 @@
 """A bath is made up: stock goes into the tank, water fills it to a level."""
 
 from chemicals.books.events import (
+    ASSUMED,
     COMPUTED,
     GROSS_MASS,
     OBSERVED,
+    REACTION,
     UNACCOUNTED,
     VOLUME,
     WATER_SUPPLY,
+    Figure,
     Ingredient,
     MakeUp,
     Measured,
@@ -48,8 +51,10 @@ def a_workshop_with_stock(*, complete: bool = True) -> Books:
     )
 
 
-def made_up(*ingredients: Ingredient, level: Measured | None = None, tank: str = "bath") -> MakeUp:
-    return MakeUp(tank, ingredients, level, WATER, (NO_ROOM,) * len(ingredients))
+def made_up(
+    *ingredients: Ingredient, level: Measured | None = None, tank: str = "bath", room: Figure = NO_ROOM
+) -> MakeUp:
+    return MakeUp(tank, ingredients, level, WATER, (room,) * len(ingredients))
 
 
 TWO_KILOGRAMS = Ingredient("bag", kilograms(2), None)
@@ -70,6 +75,43 @@ def test_salt_acid_and_water_up_to_the_level() -> None:
     assert (WATER_SUPPLY, "bath", 9 * L) in moved(folded, VOLUME)
     assert books.remembers("bath") == {salt().key, acid().key}
     assert codes(folded) == set()
+
+
+FOUR_TENTHS = Figure(4 * L // 10, L // 10, "assumed: 0.4 +- 0.1 L for each kilogram")
+
+
+def test_a_salt_swells_the_liquid_and_less_water_is_needed() -> None:
+    """2 kg need 0.8 L: 9.2 L of water fill up to 10 L, and 11.2 kg are there."""
+    books = a_workshop_with_stock()
+    folded = books.record(made_up(TWO_KILOGRAMS, level=litres(10), room=FOUR_TENTHS))
+    assert moved(folded, VOLUME) == [(REACTION, "bath", 8 * L // 10), (WATER_SUPPLY, "bath", 92 * L // 10)]
+    assert bases(folded, VOLUME) == {ASSUMED, COMPUTED}
+    assert books.holds("bath", VOLUME) == 10 * L
+    assert books.holds("bath", GROSS_MASS) == 11_200_000_000
+    assert codes(folded) == set()
+
+
+def test_the_water_is_as_uncertain_as_the_room_that_the_salt_needs() -> None:
+    """2 kg x 0.1 L/kg = 0.2 L; the level itself is sure."""
+    books = a_workshop_with_stock()
+    folded = books.record(made_up(TWO_KILOGRAMS, level=litres(10), room=FOUR_TENTHS))
+    assert [transfer.sd for transfer in folded.transfers if transfer.component == VOLUME] == [L // 5, L // 5]
+    assert books.holding("bath", VOLUME).variance == 0
+
+
+def test_without_a_level_the_liquid_is_as_much_more_as_dissolved() -> None:
+    """1 kg into 5 L: 5.4 L."""
+    books = a_workshop_with_stock()
+    books.record(opening("bath", litres(5)))
+    books.record(made_up(Ingredient("bag", kilograms(1), None), room=FOUR_TENTHS))
+    assert books.holds("bath", VOLUME) == 54 * L // 10
+    assert books.holding("bath", VOLUME).variance == (L // 10) ** 2
+
+
+def test_what_is_measured_by_volume_brings_its_own_room() -> None:
+    books = a_workshop_with_stock()
+    folded = books.record(made_up(ONE_LITRE, room=FOUR_TENTHS))
+    assert moved(folded, VOLUME) == [("can", "bath", 1 * L)]
 
 
 def test_what_is_taken_is_observed_and_what_goes_along_is_computed() -> None:

@@ -183,6 +183,13 @@ def test_a_component_that_the_target_does_not_list_comes_along_known(volume: Mea
     assert not books.is_complete("b")
 
 
+def test_what_a_source_is_known_not_to_hold_the_target_does_not_get() -> None:
+    """Of the drum nobody knows all, but that it has no silver."""
+    books = Books(opening("a", litres(10), complete=False, Ag=grams(0)), opening("b", litres(1)))
+    books.record(poured("a", "b"))
+    assert (books.holds("b", "Ag"), books.holds("b", "Cu")) == (0, None)
+
+
 def test_emptying_an_unknown_content_leaves_nothing_and_carries_what_was_known_of_it() -> None:
     """Of 500 g an unknown part went; the rest is carried along as a known part of an unknown amount."""
     books = with_copper_unknown()

@@ -148,7 +148,7 @@ class Folding:
         basis = COMPUTED if held.amount is not None else ASSUMED
         if held.amount is None:
             self.move_unknown(component, source, target)
-        if held.booked > 0:
+        if held.booked >= 0:  # that there is none is known at the target, too
             self._shift(component, source, target, held.booked, held.variance, 0, basis)
         left = self.state.holding(source, component)
         if left.amount is not None and left.amount < 0:
