@@ -160,9 +160,9 @@ def test_a_month_from_five_inputs() -> None:
     """Tanks and their make-up; metal bought; the month's ampere-hours; the waste's weight; analysis and level at last.
 
     100 L at 50.0 +- 0.5 g/L: 5000 +- 50 g, 115 kg in all. Anodes: 8 kg, and 2 kg bought. 1000 Ah: 63.546 x 3 600 000 /
-    (2 x 96485.33212) = 1185.494183 g onto parts and off the anodes. 5.75 of 115 kg were drummed off, 1/20: 250 +- 2.5
-    g. The level is 92 of 95 L: 3 L have evaporated. The analysis says 51.0 +- 0.5 g/L, 4692 +- 46 g, where the books
-    have 4750 +- 47.5 g: 58 +- 66.122992 g (it shows nothing). The anodes weigh 8.8 kg, where the books have 8814.505817 g.
+    (2 x 96485.33212) = 1185.494183 g onto parts and off the anodes. 5.75 of 115 kg were drummed off: 1/20 of it. The
+    level is 92 of 95 L: 3 L have evaporated. The analysis says 51.0 +- 0.5 g/L, 4692 +- 46 g, where the books have
+    4750 +- 47.5 g: 58 +- 66.122992 g, which shows nothing. The anodes weigh 8.8 kg, where the books have 8814.505817 g.
     """
     books = Books(opening("anodes", mass=kilograms(8), Cu=kilograms(8)), opening("drum"))
     bath = opening("bath", litres(100), mass=kilograms(115), Cu=grams(5000, 50))
