@@ -2,7 +2,7 @@
 
 import random
 from collections import Counter
-from collections.abc import Iterator
+from collections.abc import Callable, Iterator, Mapping
 from dataclasses import dataclass, replace
 from fractions import Fraction
 from itertools import pairwise
@@ -12,14 +12,25 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
+from chemicals.books import events
 from chemicals.books.events import (
     BOUNDARIES,
     GROSS_MASS,
     REACTION,
+    SEWER,
+    SPECIES,
+    SPILL,
     VOLUME,
     Acceptance,
     Cancellation,
+    CleanOut,
+    Count,
+    DaySheet,
+    DensityReading,
+    Discharge,
+    DrumOff,
     Event,
+    Figure,
     HandOver,
     LevelReading,
     MakeUp,
@@ -27,14 +38,20 @@ from chemicals.books.events import (
     Move,
     Opening,
     Run,
+    Sludge,
+    Spill,
+    Strip,
     TopUp,
+    Treatment,
+    Uptake,
+    WeightReading,
 )
 from chemicals.books.fold import Entry, Folded, fold_event, rebuild, standing
 from chemicals.books.fold.state import EVERY, FINDINGS, LIMIT, Holding, State, Transfer, Vessel
-from tests.books.histories import EVENTS, METALS, VESSELS, histories, orderly_histories
-from tests.books.words import Books, L, grams, opening
+from tests.books.histories import BALANCED, EVENTS, VESSELS, histories, orderly_histories
+from tests.books.words import WATER, Books, L, grams, litres, opening
 
-COMPONENTS = (*METALS, "Na", "Fe", VOLUME, GROSS_MASS)
+COMPONENTS = (*BALANCED, "Na", "Fe", VOLUME, GROSS_MASS)
 FAR = 10**9
 
 
@@ -81,11 +98,17 @@ def net(transfers: tuple[Transfer, ...]) -> Counter[tuple[str, str]]:
 
 def emptied(event: Event) -> set[str]:
     """Return the vessels of which an entry says that nothing is left, or all that there is."""
-    if isinstance(event, Move) and event.volume is None and event.source != event.target:
-        return {event.source}
-    if isinstance(event, HandOver):
-        return {event.container}
-    return {event.vessel} if isinstance(event, Opening) else set()
+    match event:
+        case Move(source=source, target=target, volume=None, mass=None):
+            return {source} - {target}
+        case CleanOut(tank=tank, target=target):
+            return {tank} - {target}
+        case Treatment(vessel=vessel, filtrate=filtrate):
+            return {vessel} - {filtrate}
+        case HandOver(container=vessel) | Opening(vessel=vessel):
+            return {vessel}
+        case _:
+            return set()
 
 
 @given(histories)
@@ -93,6 +116,7 @@ def test_every_unit_that_leaves_one_end_arrives_at_another(history: list[Entry])
     """What changed in the vessels is what was posted there, and with the boundaries it sums to zero."""
     for before, _, folded, after in told(history):
         posted = net(folded.transfers)
+        assert {component for _, component in posted} <= set(COMPONENTS)
         for component in COMPONENTS:
             change = {
                 vessel: after.holding(vessel, component).booked - before.holding(vessel, component).booked
@@ -133,9 +157,11 @@ def test_transfers_are_between_two_ends_and_within_bounds(history: list[Entry]) 
 
 @given(histories)
 def test_a_metal_never_reacts_away(history: list[Entry]) -> None:
+    """Only species do; and what dissolves needs more room, or less, than before."""
     _, followed = rebuild(history)
-    ends = {end for folded in followed.values() for t in folded.transfers for end in (t.source, t.target)}
-    assert REACTION not in ends
+    transfers = [transfer for folded in followed.values() for transfer in folded.transfers]
+    reacted = {t.component for t in transfers if REACTION in {t.source, t.target}}
+    assert reacted <= {*SPECIES, VOLUME}
 
 
 @given(histories)
@@ -190,30 +216,51 @@ def test_what_is_cancelled_has_never_been(history: list[Entry], which: int, minu
     assert (state, followed) == (expected, expected_followed)
 
 
-@given(histories, st.sampled_from(VESSELS))
-def test_taking_all_leaves_nothing(history: list[Entry], vessel: str) -> None:
+TAKING_ALL: Mapping[str, Callable[[str], Event]] = {
+    "move": lambda vessel: Move(vessel, "new drum"),
+    "drum off": lambda vessel: DrumOff(vessel, "new drum"),
+    "clean-out": lambda vessel: CleanOut(vessel, "new drum", litres(0), WATER),
+    "treatment": lambda vessel: Treatment(vessel, (), "new drum", "new box", litres(1), grams(9), (), ("acid",)),
+    "discharge": lambda vessel: Discharge(vessel, SEWER),
+    "spill": lambda vessel: Spill(vessel, SPILL),
+    "hand-over": lambda vessel: HandOver(vessel, "the collection point", None),
+}
+
+
+@pytest.mark.parametrize("way", TAKING_ALL)
+@settings(max_examples=40)
+@given(history=histories, vessel=st.sampled_from(VESSELS))
+def test_taking_all_leaves_nothing(way: str, history: list[Entry], vessel: str) -> None:
     state, _ = rebuild(history)
     total = Counter({c: sum(state.holding(v, c).booked for v in VESSELS) for c in COMPONENTS})
-    folded = fold_event(state, Move(vessel, "new drum", None))
+    folded = fold_event(state, TAKING_ALL[way](vessel))
     assert state.vessel(vessel) == Vessel()
     for component in COMPONENTS:
         assert state.holding(vessel, component) == Holding(0)
-    after = Counter({c: sum(state.holding(v, c).booked for v in (*VESSELS, "new drum")) for c in COMPONENTS})
+    after = Counter({c: sum(state.holding(v, c).booked for v in (*VESSELS, "new drum", "new box")) for c in COMPONENTS})
     posted = net(folded.transfers)
     assert {c: after[c] - total[c] for c in COMPONENTS} == {
         c: -sum(posted[end, c] for end in BOUNDARIES) for c in COMPONENTS
     }
 
 
-def may_become_known(event: Event, vessel: str, component: str) -> bool:
-    """Return whether an entry says how much of a component a vessel holds."""
-    if vessel in emptied(event):
-        return True
-    if isinstance(event, Acceptance):
-        return (vessel, component) == (event.vessel, event.component)
-    if isinstance(event, LevelReading):
-        return (vessel, component) == (event.vessel, VOLUME)
-    return isinstance(event, MakeUp | TopUp) and event.level is not None and (vessel, component) == (event.tank, VOLUME)
+def said(event: Event) -> set[tuple[str, str]]:
+    """Return (vessel, component) of what an entry says how much there is of it."""
+    known: set[tuple[str, str]] = set()
+    match event:
+        case Acceptance(vessel=vessel, component=component):
+            known = {(vessel, component)}
+        case Count(vessel=vessel, volume=volume):
+            known = {(vessel, GROSS_MASS if volume is None else VOLUME)}
+        case WeightReading(vessel=vessel) | DensityReading(vessel=vessel):
+            known = {(vessel, GROSS_MASS)}
+        case LevelReading(vessel=tank) | MakeUp(tank=tank, level=Measured()) | TopUp(tank=tank, level=Measured()):
+            known = {(tank, VOLUME)}
+        case Strip(source=source, metal=metal, weight_before=None):
+            known = {(source, metal)}
+        case Treatment(vessel=vessel, dissolved=dissolved, consumed=consumed):
+            known = {(vessel, component) for component in (VOLUME, *(row.component for row in dissolved), *consumed)}
+    return known
 
 
 @given(histories)
@@ -221,44 +268,61 @@ def test_unknown_stays_unknown_until_somebody_says_how_much_there_is(history: li
     for before, entry, _, after in told(history):
         for vessel in VESSELS:
             for component in COMPONENTS:
-                if before.holding(vessel, component).amount is None and not may_become_known(
-                    entry.event, vessel, component
-                ):
+                silent = vessel not in emptied(entry.event) and (vessel, component) not in said(entry.event)
+                if silent and before.holding(vessel, component).amount is None:
                     assert after.holding(vessel, component).amount is None
 
 
-@given(histories, st.builds(Move, st.sampled_from(VESSELS), st.sampled_from(VESSELS), st.none() | st.just(grams(1))))
+moves = st.builds(Move, st.sampled_from(VESSELS), st.sampled_from(VESSELS), st.none() | st.just(litres(1)))
+scoops = st.builds(Move, st.sampled_from(VESSELS), st.sampled_from(VESSELS), st.none(), st.just(grams(1)))
+
+
+@given(histories, moves | scoops)
 def test_an_unknown_source_makes_the_target_unknown(history: list[Entry], move: Move) -> None:
     state, _ = rebuild(history)
     before = moment(state)
     fold_event(state, move)
+    everything = move.volume is None and move.mass is None
     for component in COMPONENTS:
         source = before.holding(move.source, component)
-        measured = component == VOLUME and move.volume is not None  # the volume that moved was read
+        measured = component == (GROSS_MASS if move.volume is None else VOLUME) and not everything
         if source.amount is None and move.source != move.target and not measured:
             assert state.holding(move.target, component).amount is None
-            left = state.holding(move.source, component).amount
-            assert left == (0 if move.volume is None else None)
+            assert state.holding(move.source, component).amount == (0 if everything else None)
 
 
 def poured(event: Event) -> list[tuple[str, str]]:
     """Return (from, to) of all liquids and salts that an entry says were poured, in order."""
+    pours: list[tuple[str, str]] = []
     match event:
-        case Move(source=source, target=target, volume=volume):
-            return [(source, target)] if volume is None or volume.base else []
-        case TopUp(tank, source, volume, _):
-            return [(source, tank)] if volume is not None and volume.base else []
+        case Move(source=source, target=target, volume=volume, mass=mass):
+            pours = some([(source, target, volume or mass)])
+        case TopUp(tank=tank, source=source, volume=Measured() as volume):
+            pours = some([(source, tank, volume)])
         case MakeUp(tank=tank, ingredients=ingredients):
-            amounts = [item.volume or item.mass for item in ingredients]
-            return [
-                (item.stock, tank)
-                for item, amount in zip(ingredients, amounts, strict=True)
-                if amount is None or amount.base
-            ]
+            pours = some([(item.stock, tank, item.volume or item.mass) for item in ingredients])
         case Run(route=route, drag_out=drag_out):
-            return [ends for ends, drags in zip(pairwise(route), drag_out, strict=False) if drags.base]
-        case _:
-            return []
+            pours = dipped(route, drag_out)
+        case DaySheet(racks=racks, drag_out=drag_out):
+            pours = [ends for row, drags in zip(racks, drag_out, strict=True) for ends in dipped(row.route, drags)]
+        case Uptake(tank=source, target=target) | CleanOut(tank=source, target=target):
+            pours = [(source, target)]
+        case Sludge(source=source, target=target, mass=mass):
+            pours = some([(source, target, mass)])
+        case Treatment(vessel=vessel, reagents=reagents, filtrate=filtrate, sludge=sludge):
+            went_in = some([(item.stock, vessel, item.volume or item.mass) for item in reagents])
+            pours = [*went_in, *((vessel, end) for end in (sludge, filtrate) if end is not None)]
+    return pours
+
+
+def some(pours: list[tuple[str, str, Measured | None]]) -> list[tuple[str, str]]:
+    """Return the ends of what was poured: None is an unknown amount, or all."""
+    return [(source, target) for source, target, amount in pours if amount is None or amount.base]
+
+
+def dipped(route: tuple[str, ...], drag_out: tuple[Figure, ...]) -> list[tuple[str, str]]:
+    """Return the ends between which a load drags liquid."""
+    return [ends for ends, drags in zip(pairwise(route), drag_out, strict=False) if drags.base]
 
 
 @given(histories)
@@ -296,6 +360,10 @@ def test_mixing_agrees_with_exact_fractions(copper: list[int], moves: list[tuple
         assert held is not None
         assert books.holds(str(tank), VOLUME) == volume[tank]
         assert abs(held - content[tank]) <= done
+
+
+def test_histories_are_of_every_kind() -> None:
+    assert set(EVENTS) == set(events.EVENTS)
 
 
 @pytest.mark.parametrize("kind", EVENTS, ids=lambda kind: str(kind.KIND))
