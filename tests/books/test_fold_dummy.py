@@ -1,7 +1,10 @@
 """Metal out of a bath onto a dummy sheet or a recovery cell's cathode, and stripped back into a tank."""
 
+from collections.abc import Callable
+
 import pytest
 
+from chemicals.books.canonical import CanonicalError
 from chemicals.books.events import (
     COMPUTED,
     GROSS_MASS,
@@ -10,6 +13,7 @@ from chemicals.books.events import (
     UNACCOUNTED,
     VOLUME,
     Dummy,
+    Event,
     Measured,
     Plating,
     Strip,
@@ -190,6 +194,21 @@ def test_all_of_less_than_nothing_is_unaccounted() -> None:
     folded = books.record(stripped())
     assert moved(folded, "Cu") == [(UNACCOUNTED, "racks", 5 * G)]
     assert books.holds("racks", "Cu") == 0
+
+
+@pytest.mark.parametrize(
+    ("wrong", "field"),
+    [
+        (lambda: dummied("reaction"), r"Dummy\.target"),
+        (lambda: Dummy("sewer", "cell", None, None, None, None, None, BARE), r"Dummy\.tank"),
+        (lambda: stripped(grams(2), grams(1), "opening"), r"Strip\.source"),
+        (lambda: Strip("racks", PARTS, "Cu", None, None), r"Strip\.tank"),
+        (lambda: stripped(source=PARTS), r"Strip\.weight_before"),
+    ],
+)
+def test_metal_goes_from_a_tank_onto_a_vessel_or_parts_and_back(wrong: Callable[[], Event], field: str) -> None:
+    with pytest.raises(CanonicalError, match=field):
+        wrong()
 
 
 @pytest.mark.parametrize("event", [dummied("bath", charge=coulombs(3600)), Strip("bath", "bath", "Cu", None, None)])

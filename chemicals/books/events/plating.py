@@ -4,7 +4,7 @@ from dataclasses import dataclass
 from typing import Any
 
 from chemicals.books import checks
-from chemicals.books.events.base import PARTS, SPECIES, Event, Figure, Measured, Used, only_vessels
+from chemicals.books.events.base import BOUNDARIES, PARTS, SPECIES, Event, Figure, Measured, Used, only_vessels
 
 
 @dataclass(frozen=True)
@@ -151,6 +151,10 @@ class Dummy(Event):
     weight_after: Measured | None
     plating: Used[Plating]
 
+    def __post_init__(self) -> None:
+        checks.none_of("Dummy", BOUNDARIES, tank=self.tank)
+        checks.none_of("Dummy", BOUNDARIES - {PARTS}, target=self.target)
+
     def vessels(self) -> tuple[str, ...]:
         return (self.tank, *only_vessels(self.target), *self.plating.vessels())
 
@@ -170,6 +174,8 @@ class Strip(Event):
     weight_after: Measured | None
 
     def __post_init__(self) -> None:
+        checks.none_of("Strip", BOUNDARIES, tank=self.tank)
+        checks.none_of("Strip", BOUNDARIES - {PARTS}, source=self.source)
         checks.both_or_neither("Strip", weight_before=self.weight_before, weight_after=self.weight_after)
         if self.source == PARTS:
             checks.needed("Strip", weight_before=self.weight_before)
