@@ -255,13 +255,13 @@ def test_no_posting_holds_more_than_the_books_can() -> None:
 
 
 def test_a_busy_day_folds_while_one_types() -> None:
-    """200 loads through 4 tanks of 6 components are 4800 portions: 0.03 s measured, 0.1 s is wanted, 1 s is tested."""
+    """200 loads through 4 tanks of 6 components are 4800 portions: 0.03 s of work measured, half a second is tested."""
     state = State()
     bath = opening("bath", litres(100, 1), density=DENSE, Cu=grams(5000), Na=grams(300), Fe=grams(900), Cl=grams(600))
     for event in bath, *(opening(tank, litres(20)) for tank in ("first", "second", "third")):
         fold_event(state, event)
     route = [step(tank, 10, 3) for tank in ("bath", "first", "second", "third")]
-    begun = time.perf_counter()
+    begun = time.process_time()
     folded = fold_event(state, sheet((200, route)))
-    assert time.perf_counter() - begun < 1
+    assert time.process_time() - begun < 0.5
     assert len(folded.transfers) == 4 * 6
