@@ -6,7 +6,7 @@ from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 from datetime import datetime
 
-from django.db.models import Min, OuterRef, Subquery
+from django.db.models import Min, OuterRef, Subquery, Sum
 from django_scopes import scope
 
 from chemicals.books.events import BOUNDARIES, OPENING, SUPPLIER, UNACCOUNTED, WATER_SUPPLY
@@ -95,6 +95,14 @@ def list_metals_for(member: Membership) -> list[str]:
     with scope(workshop=member.workshop):
         metals = Component.objects.filter(kind=ComponentKind.METAL)
         return sorted(metals.values_list("code", flat=True))
+
+
+def find_main_metal_for(member: Membership) -> str | None:
+    """Return the metal of which the workshop's vessels hold most now; None if the books know no metal. One query."""
+    with scope(workshop=member.workshop):
+        metals = Component.objects.filter(kind=ComponentKind.METAL).order_by("code")
+        sums = dict(metals.annotate(held=Sum("holdings__amount")).values_list("code", "held"))
+        return max(sums, key=lambda code: sums[code] or 0, default=None)
 
 
 def get_book_balance(member: Membership, component: str, start: datetime, end: datetime) -> BookBalance:

@@ -1,12 +1,10 @@
 """Filters of lists: they make an address that can be kept."""
 
-from datetime import datetime, time, timedelta
+from datetime import timedelta
 from typing import Any
 
 import django_filters
-from django import forms
 from django.db.models import QuerySet
-from django.utils import timezone
 from django.utils.translation import gettext_lazy as _
 
 from chemicals.journal.models import Entry
@@ -15,6 +13,7 @@ from chemicals.ledger.selectors import list_vessels_for
 from chemicals.workshop.models import Membership
 from compliance.web.forms.base import Shown
 from compliance.web.forms.fields import DayField, ThingField
+from compliance.web.forms.period import start_of
 from compliance.web.words import KINDS
 
 
@@ -55,26 +54,3 @@ class EntryFilter(django_filters.FilterSet):  # type: ignore[misc]  # the librar
     def not_after(self, entries: QuerySet[Entry], _name: str, value: Any) -> QuerySet[Entry]:
         """Keep what happened on this day or earlier."""
         return entries.filter(occurred_at__lt=start_of(value + timedelta(days=1)))
-
-
-def start_of(day: Any) -> datetime:
-    """Return the moment at which a day begins in the workshop's zone."""
-    return datetime.combine(day, time(), timezone.get_current_timezone())
-
-
-class PeriodForm(Shown):
-    """A metal and a period."""
-
-    metal = forms.ChoiceField(label=_("Metal"))
-    since = DayField(label=_("From"))
-    until = DayField(label=_("Through"))
-
-    def __init__(self, metals: list[tuple[str, str]], data: Any) -> None:
-        super().__init__(data)
-        self.fields["metal"] = forms.ChoiceField(label=_("Metal"), choices=metals)
-
-    def clean(self) -> dict[str, Any]:
-        cleaned: dict[str, Any] = super().clean() or self.cleaned_data
-        if cleaned.get("since") and cleaned.get("until") and cleaned["until"] < cleaned["since"]:
-            self.add_error("until", _("The period ends before it begins. Turn the two days round."))
-        return cleaned

@@ -7,7 +7,7 @@ import pytest
 from django.db import connection
 from django.test.utils import CaptureQueriesContext
 
-from chemicals.balance.selectors import BookBalance, get_book_balance, list_metals_for
+from chemicals.balance.selectors import BookBalance, find_main_metal_for, get_book_balance, list_metals_for
 from chemicals.ledger.models import Vessel
 from chemicals.workshop.errors import NotFoundError
 from chemicals.workshop.models import Membership
@@ -151,6 +151,16 @@ def test_of_a_metal_that_nobody_has_there_is_no_balance(shop: Shop, stranger: Me
         balance(shop, metal="Au")
     with pytest.raises(NotFoundError):
         get_book_balance(stranger, "Cu", shop.now - timedelta(days=9), shop.now)
+
+
+def test_the_main_metal_is_the_one_of_which_most_is_held(shop: Shop, stranger: Membership) -> None:
+    """Ag comes before Cu by its name; there is more of it than the kilogram of copper only at last."""
+    shop.holder("Flask", shop.product("Silver grain", {"Ag": "100 %"}))
+    shop.record("receipt", days_ago=5, vessel="Flask", amount="0.9 kg")
+    assert (list_metals_for(shop.member), find_main_metal_for(shop.member)) == (["Ag", "Cu"], "Cu")
+    shop.record("receipt", days_ago=4, vessel="Flask", amount="0.2 kg")
+    assert find_main_metal_for(shop.member) == "Ag"
+    assert find_main_metal_for(stranger) is None
 
 
 def test_it_asks_as_often_for_one_entry_as_for_many(shop: Shop) -> None:

@@ -33,7 +33,7 @@ COUNTS = {
     "substances": 4,
     "tanks": 9,
     "entries": 9,
-    "balance": 12,
+    "balance": 13,
     "waste": 6,
     "drop-offs": 6,
     "workshop": 7,

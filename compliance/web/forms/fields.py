@@ -8,6 +8,7 @@ from zoneinfo import ZoneInfo
 
 from django import forms
 from django.core.exceptions import ValidationError
+from django.core.validators import MaxValueValidator, MinValueValidator
 from django.utils import timezone
 from django.utils.functional import Promise
 from django.utils.translation import gettext as _
@@ -23,6 +24,7 @@ REQUIRED = gettext_lazy("This is needed.")
 LARGEST_FILE = 20 * 1024 * 1024
 """Bytes of the largest file that is taken."""
 NO_CHOICE = gettext_lazy("Choose one from the list.")
+OTHER_DAY = gettext_lazy("Write a day between 1900-01-01 and 2999-12-31.")
 
 
 def check_characters(text: str) -> None:
@@ -175,10 +177,10 @@ class ThingField(forms.TypedChoiceField):
 
 
 class WordField(forms.ChoiceField):
-    """One word of a list."""
+    """One word of a list; ``empty`` says what none of them means."""
 
-    def __init__(self, choices: Iterable[tuple[str, Text]], **kwargs: Any) -> None:
-        blank = _("Choose…") if kwargs.get("required", True) else "—"
+    def __init__(self, choices: Iterable[tuple[str, Text]], *, empty: Text = "", **kwargs: Any) -> None:
+        blank = empty or (_("Choose…") if kwargs.get("required", True) else "—")
         self.labels = dict(choices)
         super().__init__(
             choices=[("", blank), *self.labels.items()],
@@ -222,7 +224,12 @@ def check_size(upload: Any) -> None:
 
 
 class DayField(forms.DateField):
-    """A day, ISO 8601."""
+    """A day, ISO 8601, in whose neighbourhood every time zone has days."""
+
+    default_validators = [
+        MinValueValidator(date(1900, 1, 1), OTHER_DAY),
+        MaxValueValidator(date(2999, 12, 31), OTHER_DAY),
+    ]
 
     def __init__(self, **kwargs: Any) -> None:
         super().__init__(

@@ -47,6 +47,12 @@ def mass(micrograms: int | None) -> str:
 
 
 @register.filter
+def of(base: int | None, component: str) -> str:
+    """Show an amount of a component."""
+    return words.amount(base, component)
+
+
+@register.filter
 def held(row: Held | None) -> str:
     """Show what a vessel holds of a component, with its uncertainty."""
     return words.amount(0, "volume") if row is None else words.with_uncertainty(row.amount, row.sd, row.component)
