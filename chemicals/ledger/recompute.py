@@ -22,7 +22,7 @@ from chemicals.ledger.models import Books, Period
 from chemicals.ledger.projection import Names, Order
 from chemicals.workshop.models import Workshop
 
-STRETCH = 1000
+STRETCH = 500
 """How many entries are folded and compared at once; a killed worker loses as many at most."""
 
 

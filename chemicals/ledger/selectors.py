@@ -265,3 +265,10 @@ def get_recomputed_to(workshop: Workshop) -> Recomputing | None:
     return Recomputing(
         books.recomputed_to, job.pk, job.progress_done, job.progress_total, job.state == jobs.State.FAILED
     )
+
+
+def list_outdated_books() -> list[Workshop]:
+    """Return the workshops whose books another version of the fold kept: `manage.py upgrade` folds them again."""
+    with scopes_disabled():
+        books = Books.objects.exclude(fold_version=fold.VERSION).select_related("workshop").order_by("workshop")
+        return [row.workshop for row in books]

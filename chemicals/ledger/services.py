@@ -12,7 +12,8 @@ from chemicals.journal.services import lock_head
 from chemicals.ledger import late, periods, projection, recompute
 from chemicals.ledger.codes import make_code
 from chemicals.ledger.followed import NOTHING, components_of, read_followed, write_followed
-from chemicals.ledger.models import Books, Vessel, VesselKind
+from chemicals.ledger.models import Vessel, VesselKind
+from chemicals.ledger.selectors import list_outdated_books
 from chemicals.register.models import Product
 from chemicals.workshop.errors import FieldError, InvalidInputError
 from chemicals.workshop.models import Membership, Place, Workshop
@@ -111,13 +112,8 @@ def refold(workshop: Workshop) -> None:
 
 
 def refold_outdated() -> list[Workshop]:
-    """Fold the books again that an older version of the fold kept; return their workshops."""
-    outdated = [books.workshop for books in _all_books() if books.fold_version != fold.VERSION]
+    """Fold the books again that another version of the fold kept; return their workshops."""
+    outdated = list_outdated_books()
     for workshop in outdated:
         refold(workshop)
     return outdated
-
-
-def _all_books() -> list[Books]:
-    with scopes_disabled():
-        return list(Books.objects.select_related("workshop").order_by("workshop"))

@@ -12,6 +12,7 @@ from django.db import DatabaseError, connection, transaction
 from django.db.models import Model
 
 from chemicals.journal import files
+from chemicals.ledger.services import refold_outdated
 from compliance.ops import archive as layout
 from compliance.ops.archive import BackupError, Manifest, open_checked
 from compliance.ops.verify import find_loose_ends, our_models, verify_workshops
@@ -39,6 +40,7 @@ def restore_backup(path: Path) -> Manifest:
                 for model in layout.in_order(our_models()):
                     _restore_table(archive, model)
                 _reset_sequences()
+                _refold()
                 _require_sound()
         except BaseException as error:
             for new in kept:
@@ -118,6 +120,14 @@ def _reset_sequences() -> None:
     with connection.cursor() as cursor:
         for sql in connection.ops.sequence_reset_sql(no_style(), our_models()):
             cursor.execute(sql)
+
+
+def _refold() -> None:
+    """Let open periods be as this version folds; of closed ones everything came with the backup."""
+    try:
+        refold_outdated()
+    except ValueError as error:
+        raise BackupError(f"The backup does not verify ({error}), so nothing was restored.") from error
 
 
 def _require_sound() -> None:

@@ -8,6 +8,7 @@ from django.core.management import call_command
 from django.core.management.base import BaseCommand, CommandError
 from django.db import connections
 
+from chemicals.ledger.selectors import list_outdated_books
 from compliance.ops import start
 from compliance.ops.first_start import ensure_token
 from compliance.ops.supervisor import supervise
@@ -48,6 +49,8 @@ class Command(BaseCommand):
         if pending:
             self.say("Preparing the database ...")
             call_command("migrate", interactive=False, verbosity=0)
+        if list_outdated_books():
+            raise start.StartError("The books were kept by an older version of this program. Run: make upgrade")
         self.check(databases=["default"])  # is the journal still guarded by its triggers?
         start.collect_static(settings.DATA)
 
