@@ -15,6 +15,7 @@ from chemicals.books.events import (
     Ingredient,
     MakeUp,
     Measured,
+    Move,
     Receipt,
 )
 from chemicals.books.fold import Folded
@@ -143,6 +144,20 @@ def test_the_doubt_about_a_count_is_never_more_than_everything() -> None:
     assert books.holding("bag", "Cu").variance == (500 * G) ** 2
 
 
+def test_the_doubt_about_what_was_found_is_never_more_than_all_that_is_there_now() -> None:
+    """20 +- 50 kg where the books have 10 kg with 500 g of copper: 1000 g, give or take as much."""
+    books = Books(opening("bag", mass=kilograms(10), Cu=grams(500)))
+    books.record(weighed(kilograms(20, 50)))
+    assert books.holding("bag", "Cu").variance == (1000 * G) ** 2
+
+
+def test_the_doubt_about_the_books_is_never_more_than_everything() -> None:
+    """5 kg where the books have 10 +- 30 kg with 500 g of copper: 250 g, give or take as much."""
+    books = Books(opening("bag", mass=kilograms(10, 30), Cu=grams(500)))
+    books.record(weighed(kilograms(5)))
+    assert books.holding("bag", "Cu").variance == (250 * G) ** 2
+
+
 def doubts(folded: Folded) -> dict[str, int]:
     """Return the standard uncertainty of what moved, by component."""
     return {transfer.component: transfer.sd for transfer in folded.transfers}
@@ -168,6 +183,14 @@ def test_from_an_unknown_mass_the_count_is_known_and_the_difference_is_not() -> 
     assert codes(folded) == {UNKNOWN_MASS, UNKNOWN_AMOUNT, WAS_UNKNOWN}
     assert moved(folded, "Cu") == []
     assert books.is_complete("bag")
+
+
+def test_if_nothing_is_missing_nothing_unknown_is_missing() -> None:
+    books = Books(opening("bag", mass=kilograms(10), complete=False), opening("box", mass=kilograms(1), Cu=grams(1)))
+    books.record(Move("bag", "box", mass=kilograms(1)))
+    assert books.holds("box", "Cu") is None
+    folded = books.record(weighed(kilograms(2), "box"))
+    assert (folded.transfers, folded.findings) == ((), ())
 
 
 def test_a_known_whole_with_an_unknown_part_keeps_the_part_unknown() -> None:

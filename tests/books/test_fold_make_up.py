@@ -108,6 +108,12 @@ def test_without_a_level_the_liquid_is_as_much_more_as_dissolved() -> None:
     assert books.holding("bath", VOLUME).variance == (L // 10) ** 2
 
 
+def test_a_tank_that_is_its_own_ingredient_does_not_swell() -> None:
+    books = a_workshop_with_stock()
+    folded = books.record(made_up(TWO_KILOGRAMS, tank="bag", room=FOUR_TENTHS))
+    assert folded.transfers == ()
+
+
 def test_what_is_measured_by_volume_brings_its_own_room() -> None:
     books = a_workshop_with_stock()
     folded = books.record(made_up(ONE_LITRE, room=FOUR_TENTHS))

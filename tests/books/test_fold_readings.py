@@ -75,6 +75,13 @@ def test_the_mass_is_as_uncertain_as_the_volume_and_the_density() -> None:
     assert books.holding("drum", GROSS_MASS).variance == (KG // 2) ** 2
 
 
+def test_a_density_of_nothing_says_nothing() -> None:
+    books = Books(opening("drum", mass=kilograms(12)))
+    folded = books.record(as_dense_as("1.2"))
+    assert codes(folded) == {UNKNOWN_LEVEL}
+    assert books.holds("drum", GROSS_MASS) == 12 * KG
+
+
 def test_without_a_volume_a_density_says_nothing_of_the_mass() -> None:
     books = Books(opening("drum", mass=kilograms(12), complete=False))
     folded = books.record(as_dense_as("1.2"))

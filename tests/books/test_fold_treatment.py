@@ -13,6 +13,7 @@ from chemicals.books.events import (
     UNACCOUNTED,
     VOLUME,
     Dissolved,
+    DrumOff,
     Ingredient,
     Measured,
     Receipt,
@@ -141,6 +142,14 @@ def test_filtrate_and_sludge_are_as_uncertain_as_the_analysis_and_the_books() ->
     assert books.holding("filtrate", VOLUME).variance == (18 * L // 10) ** 2
 
 
+def test_the_liquid_in_the_sludge_is_as_uncertain_as_the_two_volumes() -> None:
+    """20.0 +- 0.3 L less 18.0 +- 0.4 L: 2.0 +- 0.5 L. Of 100 g of salt: (100 x 0.5/20)^2 + (10 x 0.3/20)^2 g^2."""
+    books = Books(opening("drum", litres(20, "0.3"), NaCl=grams(100)))
+    books.record(treated(volume=litres(18, "0.4")))
+    assert books.holding("sludge", VOLUME).variance == (L // 2) ** 2
+    assert books.holding("sludge", "NaCl").variance == 6_272_500 * G**2 // 10**6
+
+
 def test_without_an_analysis_nobody_guesses_what_settled() -> None:
     books = a_drum()
     folded = books.record(treated())
@@ -159,6 +168,13 @@ def test_without_an_analysis_no_metal_is_said_to_have_gone_to_the_sewer() -> Non
     assert books.went_to(SEWER, "Cu") == 0
     assert Finding(UNKNOWN_AMOUNT, "Cu", "drum", SEWER) in folded.findings
     assert books.went_to(SEWER, VOLUME) == 18 * L
+
+
+def test_a_metal_that_was_not_there_is_neither_dissolved_nor_settled() -> None:
+    books = Books(opening("drum", litres(20), Cu=grams(50), Ag=grams(0)))
+    folded = books.record(treated(CLEAR))
+    assert (books.holds("filtrate", "Ag"), books.holds("sludge", "Ag")) == (0, 0)
+    assert codes(folded) == set()
 
 
 def test_unanalysed_metal_of_a_filtrate_that_stays_is_unknown_there() -> None:
@@ -294,6 +310,15 @@ def test_an_unknown_drum_with_an_analysed_filtrate_knows_the_filtrate() -> None:
 
 def test_an_unknown_volume_without_a_measured_filtrate_leaves_the_metal_unknown() -> None:
     books = Books(opening("drum", mass=kilograms(20), complete=False, Cu=grams(50)), opening("filtrate"))
+    folded = books.record(treated(CLEAR, volume=None))
+    assert Finding(UNKNOWN_LEVEL, "Cu", "drum", "filtrate") in folded.findings
+    assert (books.holds("filtrate", "Cu"), books.holds("sludge", "Cu")) == (None, None)
+
+
+def test_less_than_no_liquid_dissolves_nothing_that_one_could_compute() -> None:
+    """22 of 20 L were poured out before: the books hold -2 L."""
+    books = a_drum()
+    books.record(DrumOff("drum", "elsewhere", litres(22)))
     folded = books.record(treated(CLEAR, volume=None))
     assert Finding(UNKNOWN_LEVEL, "Cu", "drum", "filtrate") in folded.findings
     assert (books.holds("filtrate", "Cu"), books.holds("sludge", "Cu")) == (None, None)

@@ -15,6 +15,7 @@ from chemicals.books.events import (
     Filter,
     Held,
     Measured,
+    Move,
     Resin,
 )
 from chemicals.books.fold.state import (
@@ -189,6 +190,22 @@ def test_from_an_unknown_level_the_metal_that_is_taken_up_is_unknown() -> None:
     books.record(through_resin(litres(4), takes_up(990_000)))
     assert books.holds("bath", "Cu") is None
     assert books.holds("resin", "Cu") is None
+
+
+def test_metal_that_is_not_there_is_not_taken_up_whatever_the_level() -> None:
+    books = Books(opening("bath", mass=grams(9000), complete=False, Ag=grams(0)), opening("resin"))
+    folded = books.record(through_resin(litres(4), takes_up(990_000)))
+    assert books.holds("resin", "Ag") == 0
+    assert codes(folded) == {UNKNOWN_CONTENTS}
+
+
+@pytest.mark.parametrize(("passed", "uptake"), [(litres(0), takes_up(990_000)), (litres(4), NOTHING)])
+def test_resin_that_takes_nothing_leaves_what_was_unknown_alone(passed: Measured, uptake: Figure) -> None:
+    books = Books(opening("bath", litres(10), complete=False, Cu=grams(600)), opening("resin"))
+    books.record(Move("bath", "drum", litres(1)))
+    books.record(Move("drum", "bath", mass=grams(1)))
+    folded = books.record(through_resin(passed, uptake))
+    assert UNKNOWN_AMOUNT not in codes(folded)
 
 
 def test_from_an_unknown_level_the_kept_liquid_is_known_and_what_is_in_it_is_not() -> None:

@@ -148,7 +148,7 @@ class Folding:
         basis = COMPUTED if held.amount is not None else ASSUMED
         if held.amount is None:
             self.move_unknown(component, source, target)
-        if held.booked >= 0:  # that there is none is known at the target, too
+        if held.booked > 0:
             self._shift(component, source, target, held.booked, held.variance, 0, basis)
         left = self.state.holding(source, component)
         if left.amount is not None and left.amount < 0:
@@ -185,12 +185,15 @@ class Folding:
             listed = [*self.state.components(source), *known]
             self.remember(target, came.poured, incomplete=came.incomplete, listed=listed)
 
-    def remember(self, vessel: str, keys: Iterable[str], *, incomplete: bool, listed: Iterable[str]) -> None:
+    def remember(self, vessel: str, keys: Iterable[str], *, incomplete: bool, listed: Collection[str]) -> None:
         """Remember what was poured in. Of an incomplete list, whatever is not ``listed`` may have come along."""
+        before, there = self.state.vessel(vessel), set(self.state.components(vessel))
         if incomplete:
-            for component in sorted(set(self.state.components(vessel)) - set(listed)):
+            for component in sorted(there.difference(listed)):
                 self._make_unknown(vessel, component)
-        before = self.state.vessel(vessel)
+        if incomplete and not before.incomplete:
+            for component in sorted(set(listed) - there):  # none of it is there: that stays known
+                self.state.put(vessel, component, self.state.holding(vessel, component))
         after = Vessel(before.incomplete or incomplete, before.poured | frozenset(keys))
         if after != before:
             self.state.put_vessel(vessel, after)

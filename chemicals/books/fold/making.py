@@ -97,7 +97,7 @@ def add_ingredient(folding: Folding, item: Ingredient, tank: str) -> None:
 def _swell(folding: Folding, stock: str, tank: str, mass: Measured, swelling: Figure) -> None:
     """``reaction`` -> tank of the volume by which what dissolves swells the liquid."""
     volume, sd = product(mass.base, mass.stated_sd, swelling.base, swelling.sd, 10**9)
-    if stock != tank and (volume or sd):
+    if stock != tank:
         folding.move(VOLUME, REACTION, tank, volume, sd, ASSUMED)
 
 

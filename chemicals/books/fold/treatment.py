@@ -37,7 +37,7 @@ def fold_treatment(folding: Folding, event: Treatment) -> None:
         if event.filtrate_volume is not None:
             _part_liquid(folding, event, event.sludge, event.filtrate_volume)
         _weigh(folding, event.vessel, event.sludge, event.sludge_mass)
-        folding.remember_from(event.vessel, event.sludge, known=_apart(folding, event))
+        folding.remember_from(event.vessel, event.sludge)
     folding.pour_all(event.vessel, event.filtrate)
 
 
