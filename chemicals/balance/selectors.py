@@ -120,8 +120,8 @@ def get_book_balance(member: Membership, component: str, start: datetime, end: d
         component=component,
         start=start,
         end=end,
-        opening=_total(opening.values()),
-        closing=_total(closing.values()),
+        opening=sum_up(opening.values()),
+        closing=sum_up(closing.values()),
         boundaries=_boundaries(flows, unknown),
         vessels=tuple(_vessel_rows(vessels, opening, closing, flows)),
         flows=tuple(_named_flows(vessels, flows, unknown)),
@@ -190,11 +190,12 @@ def _unknown_flows(component: str, start: datetime, end: datetime) -> set[tuple[
     }
 
 
-def _total(amounts: Iterable[Amount]) -> Amount:
+def sum_up(amounts: Iterable[Amount]) -> Amount:
+    """Return the sum, as if the uncertainties were independent; unknown if any of them is."""
     known = list(amounts)
     if any(amount.value is None for amount in known):
         return Amount(None, 0)
-    return Amount(sum(a.value for a in known if a.value is not None), math.isqrt(sum(a.sd * a.sd for a in known)))
+    return Amount(sum(amount.value or 0 for amount in known), root(sum(amount.sd**2 for amount in known)))
 
 
 def _boundaries(flows: Flows, unknown: set[tuple[str, str]]) -> dict[str, Amount]:
