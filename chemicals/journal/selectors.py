@@ -1,6 +1,7 @@
 """Reads of the journal."""
 
 from collections.abc import Iterable, Iterator
+from dataclasses import dataclass
 from typing import TYPE_CHECKING, TypedDict
 from uuid import UUID
 
@@ -74,10 +75,44 @@ def mark_standing(entries: QuerySet[Entry]) -> "QuerySet[WithAnnotations[Entry, 
     return entries.annotate(stands=~_cancelled() & ~(Q(kind=events.Acceptance.KIND) & subject))
 
 
-def list_mentions_of(entry: Entry) -> QuerySet[Entry]:
-    """Return the later entries that speak of this one, in order of recording. One query."""
+def list_related_to(member: Membership, entry: Entry) -> QuerySet[Entry]:
+    """Return the entry that this one speaks of, and the later ones that speak of it, as recorded. One query."""
+    return list_entries_for(member).filter(Q(pk=entry.about_id) | Q(about=entry)).order_by("sequence")
+
+
+@dataclass(frozen=True)
+class Neighbours:
+    """The entries beside one: in the chain, and in the order in which they happened."""
+
+    recorded_before: Entry | None
+    recorded_after: Entry | None
+    happened_before: Entry | None
+    happened_after: Entry | None
+
+
+def find_neighbours(entry: Entry) -> Neighbours:
+    """Return the entries beside this one. Four queries."""
+    before = Q(occurred_at__lt=entry.occurred_at) | Q(occurred_at=entry.occurred_at, sequence__lt=entry.sequence)
+    after = Q(occurred_at__gt=entry.occurred_at) | Q(occurred_at=entry.occurred_at, sequence__gt=entry.sequence)
     with scope(workshop=entry.workshop):
-        return Entry.objects.filter(about=entry).select_related("member__user").order_by("sequence")
+        entries = Entry.objects.defer("body")
+        return Neighbours(
+            recorded_before=entries.filter(sequence=entry.sequence - 1).first(),
+            recorded_after=entries.filter(sequence=entry.sequence + 1).first(),
+            # the first condition repeats a part of the second in a form that an index answers
+            happened_before=entries.filter(before, occurred_at__lte=entry.occurred_at)
+            .order_by("-occurred_at", "-sequence")
+            .first(),
+            happened_after=entries.filter(after, occurred_at__gte=entry.occurred_at)
+            .order_by("occurred_at", "sequence")
+            .first(),
+        )
+
+
+def list_attachments_of(entry: Entry, hashes: Iterable[str]) -> list[Attachment]:
+    """Return the files that an entry names by SHA-256, by name. One query."""
+    with scope(workshop=entry.workshop):
+        return list(Attachment.objects.filter(sha256__in=list(hashes)).order_by("name", "sha256"))
 
 
 def find_cancelled(entries: Iterable[Entry]) -> set[int]:

@@ -82,7 +82,6 @@ INSTALLED_APPS = [
     "django.contrib.staticfiles",
     "axes",
     "django_htmx",
-    "django_filters",
     "rest_framework",
     "drf_spectacular",
     "chemicals.workshop",

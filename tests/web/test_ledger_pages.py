@@ -168,12 +168,12 @@ def test_the_next_period_is_as_long_and_begins_where_this_one_ends(
 def test_the_page_tells_each_line_with_its_other_end(visit: Visitor, filled: Line) -> None:
     visit.post("record", "run", key=uuid4(), route=filled.route.uuid, current="1 A", time="1 h", step="save")
     text = text_of(visit.get("ledger", filled.bath.uuid))
-    assert "copper in it, 2026-01-01 to 2026-03-02" in text
+    assert "Copper in it, 2026-01-01 to 2026-03-02" in text
     assert re.search(r"<strong>\+1\.018 kg</strong> from Salt tub, \w+", text)
     assert re.search(r"<strong>−254\.5 ± \S+ g</strong> to Drum 7, computed", text) or "to Drum 7" in text
     assert re.search(r"<strong>−1\.18\d ± [\d.]+ g</strong> to parts, computed", text)
     assert 'role="img"' in text
-    assert "copper in Copper bath over time</title>" in text
+    assert "Copper in Copper bath over time</title>" in text
     assert "g/L" in text
 
 
@@ -187,7 +187,7 @@ def test_a_vessel_links_its_ledger(visit: Visitor, filled: Line) -> None:
 def test_anything_that_was_held_can_be_chosen(visit: Visitor, filled: Line) -> None:
     page = visit.get("ledger", filled.bath.uuid, query="?component=volume")
     text = text_of(page)
-    assert "liquid in it" in text
+    assert "Liquid in it" in text
     assert "from water supply" in text
     options = re.findall(r'<option value="([^"]*)"', page.content.decode())
     assert options == ["Cu", "gross mass", "volume"]

@@ -32,7 +32,7 @@ COUNTS = {
     "register": 8,
     "substances": 4,
     "tanks": 9,
-    "entries": 9,
+    "entries": 11,
     "balance": 13,
     "waste": 6,
     "drop-offs": 6,

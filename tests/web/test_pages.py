@@ -138,8 +138,8 @@ def test_an_entry_names_what_was_poured_in(visit: Visitor, line: Line) -> None:
     known, unknown = (
         text_of(visit.get("entry", entry.uuid)) for entry in Entry._base_manager.filter(kind="opening").order_by("pk")
     )
-    assert "<dt>poured in 1</dt> <dd>Blue salt, revision 1</dd>" in known
-    assert "<dt>poured in 1</dt> <dd>unknown</dd>" in unknown
+    assert "<dt>poured in</dt> <dd>Blue salt, revision 1</dd>" in known
+    assert "<dt>poured in</dt> <dd>a liquid that nobody can name</dd>" in unknown
 
 
 def test_a_code_opens_the_page_of_its_vessel(visit: Visitor, line: Line, stranger: Membership) -> None:

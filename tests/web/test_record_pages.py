@@ -48,7 +48,7 @@ def test_what_was_previewed_is_saved_from_the_page_alone(visit: Visitor, filled:
     text = text_of(visit.client.get(saved.headers["Location"]))
     assert "Recorded." in text
     assert "hinges, 0.44 A, 2 h 30 min" in text
-    assert "copper goes from Copper bath to parts" in text
+    assert "copper went from Copper bath to parts, computed from current and time and the efficiency" in text
 
 
 def test_going_back_loses_nothing_and_blames_nothing(visit: Visitor, filled: Line) -> None:

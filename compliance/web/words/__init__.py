@@ -11,7 +11,7 @@ from compliance.web.words.amounts import (
 from compliance.web.words.ends import BOUNDARIES, Ends, end_name
 from compliance.web.words.kinds import BASES, KINDS, VERDICTS, verb_of
 from compliance.web.words.moments import moment
-from compliance.web.words.sentences import Follows, finding, movement
+from compliance.web.words.sentences import Follows, finding, movement, went
 
 __all__ = [
     "BASES",
@@ -30,5 +30,6 @@ __all__ = [
     "movement",
     "signed",
     "verb_of",
+    "went",
     "with_uncertainty",
 ]

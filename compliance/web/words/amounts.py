@@ -23,6 +23,7 @@ SPECIES = {
     events.SULFITE: gettext_lazy("sulfite"),
 }
 TENTH_OF_A_GRAM, GRAM = 10**5, 10**6
+MILLIMOLES = {"amount_of_substance": "mmol", "molar_concentration": "mmol/L"}
 DIGITS = 4
 """Significant digits of an amount of which no uncertainty is stated."""
 
@@ -60,8 +61,8 @@ def in_one_unit(base: int, sd: int, dimension: str) -> str:
 
 def _preferred_unit(base: int, dimension: str) -> str:
     """Return the unit in which the trade thinks: parts of a gram down to a tenth, millimoles always."""
-    if dimension == "amount_of_substance":
-        return "mmol"
+    if dimension in MILLIMOLES:
+        return MILLIMOLES[dimension]
     return "g" if dimension == "mass" and TENTH_OF_A_GRAM <= base < GRAM else ""
 
 
