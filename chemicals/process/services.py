@@ -15,9 +15,11 @@ from chemicals.journal.services import Appended
 from chemicals.ledger.periods import require_closed
 from chemicals.ledger.services import project_entry
 from chemicals.process.build import Built
-from chemicals.workshop.errors import ConflictError
+from chemicals.workshop.errors import ConflictError, InvalidInputError
 from chemicals.workshop.models import Membership
 from chemicals.workshop.permissions import require_writer
+
+PERIODS = (events.PeriodClosing.KIND, events.PeriodReopening.KIND)
 
 
 def record_matter(
@@ -59,6 +61,8 @@ def _require_possible(entry: Entry, event: events.Event) -> None:
         return
     if isinstance(event, events.Correction):
         require_closed(entry.about)
+    if isinstance(event, events.Cancellation) and entry.about.kind in PERIODS:
+        raise InvalidInputError.of("entry", "A closing cannot be cancelled. Let an owner open the period again.")
     others = list(Entry.objects.filter(about=entry.about).exclude(pk=entry.pk))
     cancelled = set(
         Entry.objects.filter(kind=events.Cancellation.KIND, about__in=others).values_list("about_id", flat=True)

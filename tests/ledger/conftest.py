@@ -23,3 +23,11 @@ def shop(worker: Membership, now: datetime, tmp_path: Path, settings: Settings) 
     shop.record("opening", days_ago=10, vessel="Copper", volume="20 L", held=held, product="Salt", complete=True)
     shop.record("make-up", days_ago=10, tank="Rinse", level="10 L")
     return shop
+
+
+@pytest.fixture
+def week(shop: Shop) -> Shop:
+    """A shop that has plated from six days ago until yesterday."""
+    for days in (6, 5, 4, 3, 2, 1):
+        shop.record("run", days_ago=days, label=f"run {days}", route="Plate", charge="10 Ah")
+    return shop
