@@ -144,7 +144,11 @@ class _Series:
 
 def list_components_of(vessel: Vessel) -> list[Held]:
     """Return of what a vessel ever held anything: first the metal of which it holds most now. One query."""
-    return sorted(list_held(vessel), key=lambda row: (row.component in READINGS, -(row.amount or 0)))
+
+    def place(row: Held) -> tuple[bool, bool, int]:
+        return not events.is_metal(row.component), row.component in READINGS, -(row.amount or 0)
+
+    return sorted(list_held(vessel), key=place)
 
 
 def get_vessel_ledger(

@@ -5,6 +5,7 @@ from django.urls import path
 from compliance.web.views import (
     balance,
     calculations,
+    difference,
     dropoffs,
     entries,
     export,
@@ -53,6 +54,7 @@ urlpatterns = [
     path(W + "entries/<uuid:uuid>/", entries.entry, name="entry"),
     path(W + "export/", export.index, name="export"),
     path(W + "balance/", balance.index, name="balance"),
+    path(W + "balance/difference/", difference.index, name="difference"),
     path(W + "waste/", waste.index, name="waste"),
     path(W + "waste/stream/", waste.add_stream, name="add-stream"),
     path(W + "waste/container/", waste.add_container, name="add-container"),

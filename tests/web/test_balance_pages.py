@@ -114,7 +114,7 @@ def test_the_page_shows_where_the_metal_went(visit: Visitor, filled: Line) -> No
     visit.post("record", "run", key=uuid4(), route=filled.route.uuid, current="1 A", time="1 h", step="save")
     page = visit.get("balance")
     text = text_of(page)
-    assert "Where the copper went, 2026-01-01 to 2026-03-02" in text
+    assert 'Where the copper went, <time datetime="2026-01-01">2026-01-01</time> to' in text
     assert "received from suppliers" in text
     assert 'role="img"' in text
     assert "Copper bath → parts" in text

@@ -69,6 +69,23 @@ class ComponentForm(ThingAndDaysForm):
     name, label = "component", _("What")
 
 
+class DifferenceForm(ComponentForm):
+    """Two days to compare, for anything that the books count, or for everything."""
+
+    EVERYTHING = "everything"
+
+    def __init__(self, choices: Sequence[tuple[str, Text]], usual: str, data: Mapping[str, Any]) -> None:
+        super().__init__([*choices, (self.EVERYTHING, _("everything"))], usual, data)
+        self.fields["since"].label = _("At the beginning of")
+        self.fields["until"].label = _("At the end of")
+
+    @property
+    def component(self) -> str | None:
+        """Return the chosen component; None for everything."""
+        chosen: str = self.cleaned_data["component"]
+        return None if chosen == self.EVERYTHING else chosen
+
+
 def neighbours(since: date, until: date) -> tuple[tuple[date, date], tuple[date, date]]:
     """Return the period before this one and the one after it: as many whole months, else as many days."""
     months = 12 * (until.year - since.year) + until.month - since.month + 1

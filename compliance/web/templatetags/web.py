@@ -1,6 +1,6 @@
 """Filters of the pages: amounts and moments."""
 
-from datetime import datetime
+from datetime import date, datetime
 
 from django import template
 from django.utils.html import format_html
@@ -28,6 +28,12 @@ def moment(at: datetime | None) -> SafeString | str:
 def happened(entry: Entry) -> SafeString:
     """Show when an entry happened, as precisely as is known."""
     return _time(entry.occurred_at, words.moment(entry.occurred_at, entry.precision))
+
+
+@register.filter
+def day(on: date | str) -> SafeString:
+    """Show a day, in one piece."""
+    return format_html('<time datetime="{0}">{0}</time>', str(on))
 
 
 def _time(at: datetime, text: str) -> SafeString:

@@ -10,6 +10,7 @@ from django.http import HttpRequest, HttpResponseBase
 from django.utils import timezone
 from django.utils.translation import gettext as _
 
+from chemicals.balance.difference import list_components_for
 from chemicals.journal.models import Entry
 from chemicals.journal.selectors import read_event
 from chemicals.ledger.components import dimension_of
@@ -44,7 +45,7 @@ class Told:
 def vessel_ledger(request: HttpRequest, member: Membership, uuid: UUID) -> HttpResponseBase:
     """Show the ledger of what the vessel holds most of, this year so far, unless something else is chosen."""
     vessel = get_vessel_for(member, uuid)
-    codes = [held.component for held in list_components_of(vessel)]
+    codes = _codes(member, vessel, request.GET.get("component", ""))
     context: dict[str, Any] = {"here": _page_of(vessel), "vessel": vessel}
     if not codes:
         return show(request, member, "web/ledger.html", form=None, **context)
@@ -66,6 +67,12 @@ def vessel_ledger(request: HttpRequest, member: Membership, uuid: UUID) -> HttpR
         return file
     ledger = get_vessel_ledger(vessel, component, *moments, page=_number(request.GET.get("page", "")))
     return show(request, member, "web/ledger.html", form=form, **context, **_context(ledger, names, form))
+
+
+def _codes(member: Membership, vessel: Vessel, asked: str) -> list[str]:
+    """Return what may be chosen: what the vessel ever held, and what is asked for if the books count it at all."""
+    codes = [held.component for held in list_components_of(vessel)]
+    return codes if asked in {"", *codes} or asked not in list_components_for(member) else [*codes, asked]
 
 
 def _page_of(vessel: Vessel) -> str:
