@@ -7,13 +7,12 @@ from decimal import ROUND_HALF_EVEN
 from typing import Any
 
 from chemicals.books import events
-from chemicals.books.events import AIR, SPILL, WATER_SUPPLY, Event, Figure, Measured
+from chemicals.books.events import AIR, SPILL, WATER_SUPPLY, Event, Figure, Measured, Recipe
 from chemicals.books.occurred import Occurred
-from chemicals.journal import selectors as journal
 from chemicals.ledger.models import Vessel
 from chemicals.process import inputs
 from chemicals.process.build_run import build_run
-from chemicals.process.draft import WATER, Draft, by_dimension, measured
+from chemicals.process.draft import WATER, Draft, Known, by_dimension, measured
 from chemicals.process.models import Tank
 from chemicals.register.models import Product, ProductRevision
 from chemicals.register.selectors import build_recipe, get_current_revision, recipe_key
@@ -33,9 +32,14 @@ class Built:
     occurred: Occurred | None
 
 
-def build(member: Membership, now: datetime, data: inputs.Input, occurred: Occurred | None) -> Built:
-    """Return the event that the input describes, or raise InvalidInputError with everything that is wrong."""
-    draft = Draft(member)
+def build(
+    member: Membership, now: datetime, data: inputs.Input, occurred: Occurred | None, known: Known | None = None
+) -> Built:
+    """Return the event that the input describes, or raise InvalidInputError with everything that is wrong.
+
+    Many builds may share what is ``known``.
+    """
+    draft = Draft(member, known)
     event = BUILDERS[type(data)](draft, now, data)
     draft.finish()
     assert event is not None  # noqa: S101  (a builder that returns nothing has refused)
@@ -46,7 +50,8 @@ def _occurred(draft: Draft, event: Event, occurred: Occurred | None) -> Occurred
     """An acceptance happens at sampling time: from then on the content is what was found."""
     if not isinstance(event, events.Acceptance):
         return occurred
-    analysis = journal.get_entry_for(draft.member, event.analysis)
+    analysis = draft.entry("analysis", event.analysis)
+    assert analysis is not None  # noqa: S101  (its acceptance was built)
     return Occurred(analysis.occurred_at, analysis.precision)
 
 
@@ -60,7 +65,7 @@ def _build_opening(draft: Draft, now: datetime, data: inputs.OpeningInput) -> Ev
         draft.refuse("held", "A metal stands twice in the list. Add the two together.")
     if draft.errors or vessel is None:
         return None
-    revision = None if product is None else get_current_revision(product)
+    revision = None if product is None else _current(draft, product)
     return events.Opening(
         vessel=str(vessel.uuid),
         complete=data.complete,
@@ -104,8 +109,16 @@ def _build_receipt(draft: Draft, now: datetime, data: inputs.ReceiptInput) -> Ev
         mass=by_dimension(data.amount, "mass"),
         volume=by_dimension(data.amount, "volume"),
         lot=data.lot,
-        recipe=build_recipe(get_current_revision(vessel.product)),
+        recipe=_recipe(draft, vessel.product),
     )
+
+
+def _current(draft: Draft, product: Product) -> ProductRevision:
+    return draft.known.once((ProductRevision, product.pk), lambda: get_current_revision(product))
+
+
+def _recipe(draft: Draft, product: Product) -> Recipe:
+    return draft.known.once((Recipe, product.pk), lambda: build_recipe(_current(draft, product)))
 
 
 def _build_make_up(draft: Draft, now: datetime, data: inputs.MakeUpInput) -> Event | None:
@@ -137,7 +150,7 @@ def _build_top_up(draft: Draft, now: datetime, data: inputs.TopUpInput) -> Event
         draft.refuse("source", "A tank cannot be topped up from itself. Choose another source.")
     level = None
     if data.volume is None and tank is not None:
-        level = _mark(tank)
+        level = draft.known.once((Tank, tank.pk), lambda: _mark(tank))
         if level is None:
             draft.refuse("volume", "This tank has no mark. Write how much was added.")
     if draft.errors or tank is None:
@@ -216,7 +229,7 @@ def _build_acceptance(draft: Draft, now: datetime, data: inputs.AcceptanceInput)
     entry = draft.entry("analysis", data.analysis, events.Analysis)
     if entry is None:
         return None
-    analysis = journal.read_event(entry)
+    analysis = draft.known.event_of(entry)
     assert isinstance(analysis, events.Analysis)  # noqa: S101  (the kind was asked for)
     return events.Acceptance(
         analysis=entry.uuid,

@@ -4,6 +4,7 @@ from datetime import datetime
 
 from chemicals.books import events
 from chemicals.books.events import Deposit, Figure, Measured, Plating
+from chemicals.ledger.models import Vessel
 from chemicals.process.draft import Draft, measured
 from chemicals.process.inputs import RunInput
 from chemicals.process.models import AnodeKind, RackType, Route, RouteStep, Tank
@@ -19,13 +20,12 @@ def build_run(draft: Draft, now: datetime, data: RunInput) -> events.Run | None:
     _check_charge(draft, data)
     if draft.errors or route is None or rack is None:
         return None
-    vessels = [step.vessel for step in RouteStep.objects.filter(route=route).select_related("vessel")]
+    vessels = draft.known.once((RouteStep, route.pk), lambda: _list_vessels(route))
     if not vessels:
         draft.refuse("route", "This route has no tanks. Add its tanks first.")
         return None
-    bath = Tank.objects.filter(vessel=vessels[0]).select_related("vessel", "anode").first()
+    plating = draft.known.once((Plating, vessels[0].pk), lambda: _plating(vessels[0]))
     drag_out = Figure(rack.drag_out, rack.drag_out * rack.drag_out_sd // 10**6, f"rack type {rack.name}")
-    plating = None if bath is None or not bath.metal else _plating(bath)
     if plating is not None and data.charge is None and (current is None or data.time is None) and not _weighed(data):
         draft.refuse("charge", "Write the ampere-hours, or current and time, or both weights.")
         return None
@@ -46,7 +46,7 @@ def build_run(draft: Draft, now: datetime, data: RunInput) -> events.Run | None:
 def _rack(draft: Draft, data: RunInput, route: Route | None) -> RackType | None:
     if data.rack is not None:
         return draft.find(RackType, "rack", data.rack)
-    return None if route is None else RackType.objects.get(pk=route.rack_id)
+    return None if route is None else draft.known.once(("rack", route.pk), lambda: RackType.objects.get(routes=route))
 
 
 def _current(draft: Draft, data: RunInput, rack: RackType | None) -> Measured | None:
@@ -80,7 +80,15 @@ def _weighed(data: RunInput) -> bool:
     return data.weight_before is not None and data.weight_after is not None
 
 
-def _plating(bath: Tank) -> Plating:
+def _list_vessels(route: Route) -> list[Vessel]:
+    return [step.vessel for step in RouteStep.objects.filter(route=route).select_related("vessel")]
+
+
+def _plating(first: Vessel) -> Plating | None:
+    """Return how the first tank of a route plates; None if it has no metal."""
+    bath = Tank.objects.filter(vessel=first).select_related("vessel", "anode").first()
+    if bath is None or not bath.metal:
+        return None
     soluble = bath.anode_kind == AnodeKind.SOLUBLE and bath.anode is not None
     anode = str(bath.anode.uuid) if soluble and bath.anode is not None else None
     return Plating(_deposit(bath), anode, racks=None, rack_share=None, conversions=())

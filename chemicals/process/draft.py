@@ -1,5 +1,6 @@
 """Turns what a person says into names and rows, and collects everything that is wrong with it."""
 
+from collections.abc import Callable, Hashable
 from typing import Any, TypeVar
 from uuid import UUID
 
@@ -9,6 +10,7 @@ from django_scopes import scope
 from chemicals.books import events
 from chemicals.books.events import Figure, Measured
 from chemicals.journal.models import Entry
+from chemicals.journal.selectors import read_event
 from chemicals.ledger.models import Vessel
 from chemicals.process.fields import VesselField, describe
 from chemicals.science.quantity import Quantity
@@ -20,13 +22,45 @@ WATER = Figure(998_200, 2_000, "water at 20 °C, 0.9982 g/mL (CRC Handbook); hot
 
 
 Row = TypeVar("Row", bound=Model)
+T = TypeVar("T")
+
+
+class Known:
+    """What was looked up is not asked for again: by one draft, or by all drafts of an import.
+
+    An import adds the entries that it is about to write, so that others of its rows can speak of them.
+    """
+
+    def __init__(self) -> None:
+        self._found: dict[Hashable, Any] = {}
+        self._fresh: dict[UUID, tuple[Entry, events.Event]] = {}
+
+    def once(self, key: Hashable, ask: Callable[[], T]) -> T:
+        """Return what was found under the key, or ask for it."""
+        if key not in self._found:
+            self._found[key] = ask()
+        found: T = self._found[key]
+        return found
+
+    def add(self, entry: Entry, event: events.Event) -> None:
+        """Let drafts find an entry that is not written yet."""
+        self._fresh[entry.uuid] = entry, event
+
+    def entry(self, uuid: UUID) -> Entry | None:
+        """Return such an entry."""
+        return self._fresh[uuid][0] if uuid in self._fresh else None
+
+    def event_of(self, entry: Entry) -> events.Event:
+        """Return what an entry records."""
+        return self._fresh[entry.uuid][1] if entry.uuid in self._fresh else read_event(entry)
 
 
 class Draft:
     """Looks things up for one member; what is missing is noted under its field and raised at the end, all at once."""
 
-    def __init__(self, member: Membership) -> None:
+    def __init__(self, member: Membership, known: Known | None = None) -> None:
         self.member = member
+        self.known = known or Known()
         self.errors: list[FieldError] = []
 
     def refuse(self, field: str, message: str) -> None:
@@ -46,14 +80,16 @@ class Draft:
         if uuid is None:
             return None
         with scope(workshop=self.member.workshop):
-            vessel = Vessel.objects.filter(uuid=uuid, kind__in=kind.kinds).select_related("product").first()
-        if vessel is None:
+            row = Vessel.objects.filter(uuid=uuid).select_related("product")
+            vessel = self.known.once((Vessel, uuid), row.first)
+        if vessel is None or vessel.kind not in kind.kinds:
             self.refuse(under + field, "There is no such vessel here. Choose one from the list.")
+            return None
         return vessel
 
     def entry(self, field: str, uuid: UUID, *kinds: type[events.Event]) -> Entry | None:
         """Return an entry of the workshop, of one of the kinds (any, if none is named)."""
-        entry = self.find(Entry, field, uuid)
+        entry = self.known.entry(uuid) or self.find(Entry, field, uuid)
         if entry is not None and kinds and entry.kind not in {kind.KIND for kind in kinds}:
             self.refuse(field, f"This is no {kinds[0].KIND}. Choose one from the list.")
             return None
@@ -62,7 +98,7 @@ class Draft:
     def find(self, table: type[Row], field: str, uuid: UUID) -> Row | None:
         """Return a row of the workshop by its uuid."""
         with scope(workshop=self.member.workshop):
-            found = table._default_manager.filter(uuid=uuid).first()
+            found = self.known.once((table, uuid), table._default_manager.filter(uuid=uuid).first)
         if found is None:
             self.refuse(field, "There is no such thing in this workshop. Choose one from the list.")
         return found
