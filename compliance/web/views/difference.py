@@ -15,6 +15,7 @@ from chemicals.balance.difference import (
     list_components_for,
 )
 from chemicals.balance.selectors import Amount, find_main_metal_for
+from chemicals.books.events import UNACCOUNTED
 from chemicals.ledger.components import dimension_of
 from chemicals.workshop.models import Membership
 from compliance.web import words
@@ -22,7 +23,10 @@ from compliance.web.contents import IN_FILES
 from compliance.web.door import page, show
 from compliance.web.export import Column, wanted_file
 from compliance.web.forms.period import DifferenceForm
-from compliance.web.statement import NAMES
+from compliance.web.statement import CAME, LEFT, NAMES
+
+ORDER = (*CAME, *LEFT, UNACCOUNTED)
+"""In which order the boundaries stand: where it came from, where it went, and what nobody recorded."""
 
 
 @dataclass(frozen=True)
@@ -107,7 +111,8 @@ class _Told:
         self.is_known = difference.value is not None
         self.booked = self._signed(difference.booked)
         self.vessels = [self._vessel(row) for row in difference.vessels]
-        self.explained = [self._explain(row) for row in difference.explained]
+        in_order = sorted(difference.explained, key=lambda row: (ORDER.index(row.boundary), row.kind))
+        self.explained = [self._explain(row) for row in in_order]
         self.unknown = ", ".join(row.vessel.name for row in difference.vessels if row.value is None)
 
     def _amount(self, amount: Amount) -> str:
