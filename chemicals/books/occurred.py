@@ -19,3 +19,20 @@ class Occurred:
     def on_day(cls, day: date, zone: ZoneInfo) -> "Occurred":
         """Return noon, local time, of a day of which nothing finer is known."""
         return cls(datetime.combine(day, time(12), zone).astimezone(UTC), DAY)
+
+    @classmethod
+    def at_clock(cls, day: date, clock: time, zone: ZoneInfo, *, second: bool = False) -> "Occurred":
+        """Return the moment that a clock showed; the ``second`` one where it showed that time twice."""
+        return cls(datetime.combine(day, clock.replace(fold=int(second)), zone).astimezone(UTC))
+
+
+def was_skipped(day: date, clock: time, zone: ZoneInfo) -> bool:
+    """Say whether no clock showed this time on this day: clocks were put forward."""
+    local = datetime.combine(day, clock, zone)
+    return local.astimezone(UTC).astimezone(zone).replace(tzinfo=None) != local.replace(tzinfo=None)
+
+
+def came_twice(day: date, clock: time, zone: ZoneInfo) -> bool:
+    """Say whether clocks showed this time twice on this day: they were put back."""
+    first, second = (datetime.combine(day, clock.replace(fold=fold), zone) for fold in (0, 1))
+    return first.utcoffset() != second.utcoffset() and not was_skipped(day, clock, zone)

@@ -15,7 +15,7 @@ from django.utils.translation import gettext as _
 from django.utils.translation import gettext_lazy
 
 from chemicals.books.canonical import CanonicalError, check_text
-from chemicals.books.occurred import Occurred
+from chemicals.books.occurred import Occurred, came_twice
 from chemicals.science.quantity import MESSAGES, Quantity, QuantityError, parse
 from compliance.web import moments
 
@@ -119,7 +119,7 @@ class MomentWidget(forms.MultiWidget):
             day, clock = date.fromisoformat(value[0] or ""), time.fromisoformat(value[1] or "")
         except (TypeError, ValueError):
             return False
-        return moments.is_ambiguous(day, clock, self.zone)
+        return came_twice(day, clock, self.zone)
 
 
 class MomentField(forms.MultiValueField):
