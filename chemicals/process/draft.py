@@ -8,11 +8,13 @@ from django.db.models import Model
 from django_scopes import scope
 
 from chemicals.books import events
-from chemicals.books.events import Figure, Measured
+from chemicals.books.events import GROSS_MASS, SPECIES, VOLUME, Figure, Measured
 from chemicals.journal.models import Entry
 from chemicals.journal.selectors import read_event
 from chemicals.ledger.models import Vessel
 from chemicals.process.fields import VesselField, describe
+from chemicals.register.selectors import list_solutes, solute_code
+from chemicals.science.formula import METALS
 from chemicals.science.quantity import Quantity
 from chemicals.workshop.errors import FieldError, InvalidInputError
 from chemicals.workshop.models import Membership
@@ -87,6 +89,15 @@ class Draft:
             return None
         return vessel
 
+    def component(self, field: str, said: str, *, bulk: bool = False) -> str | None:
+        """Return what is balanced by its code: a metal, a species, a solute declared inert; ``bulk``: as a whole."""
+        if said in (*METALS, *SPECIES) or (bulk and said in (VOLUME, GROSS_MASS)):
+            return said
+        if solute_code(said) in self.known.once("solutes", lambda: list_solutes(self.member.workshop)):
+            return solute_code(said)
+        self.refuse(field, "This is not balanced here. Choose one from the list, or declare the substance inert first.")
+        return None
+
     def entry(self, field: str, uuid: UUID, *kinds: type[events.Event]) -> Entry | None:
         """Return an entry of the workshop, of one of the kinds (any, if none is named)."""
         entry = self.known.entry(uuid) or self.find(Entry, field, uuid)
@@ -111,6 +122,11 @@ def measured(quantity: Quantity | None, sd: Quantity | None = None) -> Measured 
     return Measured(quantity.typed, quantity.unit, quantity.base, None if sd is None else sd.base)
 
 
-def by_dimension(quantity: Quantity, dimension: str) -> Measured | None:
+def by_dimension(quantity: Quantity | None, dimension: str, sd: Quantity | None = None) -> Measured | None:
     """Return the amount if it is of the dimension: a mass or a volume may be typed in the same field."""
-    return measured(quantity) if quantity.dimension == dimension else None
+    return measured(quantity, sd) if quantity is not None and quantity.dimension == dimension else None
+
+
+def vessel_name(vessel: Vessel | None, otherwise: str) -> str:
+    """Return the name by which events know a vessel, or a boundary where none was chosen."""
+    return otherwise if vessel is None else str(vessel.uuid)

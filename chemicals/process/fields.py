@@ -7,7 +7,9 @@ from typing import Any
 
 from django.utils.functional import Promise
 
+from chemicals.books.events import GROSS_MASS, SPECIES, VOLUME
 from chemicals.ledger.models import VesselKind
+from chemicals.science.formula import METALS
 from chemicals.science.quantity import Quantity, QuantityError, parse
 from chemicals.science.units import DIMENSIONS
 
@@ -16,11 +18,12 @@ Text = str | Promise
 
 @dataclass(frozen=True)
 class FieldKind:
-    """Base: label and help as shown; required or not."""
+    """Base: label and help as shown; required or not; ``detail`` for those who know more than is needed."""
 
     label: Text
     help: Text = ""
     required: bool = True
+    detail: bool = False
 
 
 @dataclass(frozen=True)
@@ -33,9 +36,10 @@ class AmountField(FieldKind):
 
 @dataclass(frozen=True)
 class VesselField(FieldKind):
-    """One vessel of the workshop, of one of the kinds."""
+    """One vessel of the workshop, of one of the kinds; ``fills`` where something goes in."""
 
     kinds: tuple[VesselKind, ...] = ()
+    fills: bool = False
 
 
 @dataclass(frozen=True)
@@ -50,6 +54,29 @@ class ChoiceField(FieldKind):
     """One of a list of (value, label)."""
 
     choices: tuple[tuple[str, Text], ...] = ()
+
+
+@dataclass(frozen=True)
+class ComponentField(FieldKind):
+    """What is balanced: a metal, a species, or a solute that the workshop declared inert.
+
+    ``bulk``: also the liquid or the weight as a whole.
+    """
+
+    bulk: bool = False
+
+    @property
+    def known(self) -> tuple[str, ...]:
+        """Return what every workshop balances."""
+        return (*METALS, *SPECIES, *((VOLUME, GROSS_MASS) if self.bulk else ()))
+
+
+@dataclass(frozen=True)
+class WholeField(FieldKind):
+    """A whole number between two ends."""
+
+    least: int = 1
+    most: int = 1000
 
 
 @dataclass(frozen=True)
@@ -77,7 +104,7 @@ class RowsField(FieldKind):
     blank_rows: int = 3
 
 
-EMPTY: dict[type[FieldKind], Any] = {RowsField: (), TextField: "", FlagField: False}
+EMPTY: dict[type[FieldKind], Any] = {RowsField: (), TextField: "", FlagField: False, ChoiceField: ""}
 """What a field holds that was left empty, where it is not None."""
 
 

@@ -18,10 +18,19 @@ class AnodeKind(models.TextChoices):
     INERT = "inert", _("inert")
 
 
+class SideReaction(models.TextChoices):
+    """What the current at an inert anode does to a bath besides taking its metal out."""
+
+    ACID = "acid", _("acid is made (acid bath)")
+    ALKALI = "alkali", _("alkali is used up (alkaline bath)")
+    CHROMIUM_VI = "chromium(VI)", _("chromium(VI) is used up (chromium bath)")
+
+
 class Tank(models.Model):
     """A vessel that parts go through. A bath has a metal with its valence; a rinse has none.
 
-    ``mark`` in nanolitres, ``efficiency`` and its uncertainty in parts per million.
+    ``mark`` in nanolitres, ``efficiency`` and its uncertainty in parts per million. ``racks`` stands for what grows on
+    racks: ``rack_share`` of the deposit (parts per million; None is not known) instead of on parts.
     """
 
     vessel = models.OneToOneField(Vessel, on_delete=models.PROTECT, related_name="tank")
@@ -33,6 +42,9 @@ class Tank(models.Model):
     efficiency_sd = models.PositiveIntegerField(_("its uncertainty"), default=30_000)
     anode_kind = models.CharField(_("anode"), max_length=8, choices=AnodeKind.choices, blank=True)
     anode = models.ForeignKey(Vessel, null=True, blank=True, on_delete=models.PROTECT, related_name="+")
+    side_reaction = models.CharField(_("side reaction"), max_length=12, choices=SideReaction.choices, blank=True)
+    racks = models.ForeignKey(Vessel, null=True, blank=True, on_delete=models.PROTECT, related_name="+")
+    rack_share = models.PositiveIntegerField(_("share that grows on racks"), null=True, blank=True)
 
     objects: "models.Manager[Tank]" = ScopedManager(workshop="vessel__workshop")
 
@@ -47,6 +59,13 @@ class Tank(models.Model):
                 condition=~models.Q(anode_kind="soluble") | models.Q(anode__isnull=False), name="tank_soluble_anode_set"
             ),
             models.CheckConstraint(condition=models.Q(efficiency__gt=0), name="tank_efficiency_above_zero"),
+            models.CheckConstraint(
+                condition=models.Q(side_reaction="") | models.Q(anode_kind="inert"), name="tank_side_reaction_inert"
+            ),
+            models.CheckConstraint(
+                condition=models.Q(rack_share=None) | models.Q(racks__isnull=False, rack_share__lt=1_000_000),
+                name="tank_rack_share_of_racks",
+            ),
         ]
 
     def __str__(self) -> str:

@@ -44,13 +44,13 @@ def try_out(member: Membership, now: datetime, data: Input, occurred: Occurred |
 def list_tanks_for(member: Membership) -> QuerySet[Tank]:
     """Return the baths and rinses of the member's workshop, by name. One query."""
     with scope(workshop=member.workshop):
-        return Tank.objects.select_related("vessel__place", "anode").order_by("vessel__kind", "vessel__name")
+        return Tank.objects.select_related("vessel__place", "anode", "racks").order_by("vessel__kind", "vessel__name")
 
 
 def get_tank_of(vessel: Vessel) -> Tank | None:
     """Return the tank settings of a vessel, if it is a bath or a rinse."""
     with scope(workshop=vessel.workshop):
-        return Tank.objects.filter(vessel=vessel).select_related("anode", "vessel").first()
+        return Tank.objects.filter(vessel=vessel).select_related("anode", "racks", "vessel").first()
 
 
 def list_open_analyses_for(member: Membership) -> list[tuple[Entry, Analysis]]:

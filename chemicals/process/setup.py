@@ -9,7 +9,7 @@ from django_scopes import scope
 
 from chemicals.ledger.models import Vessel, VesselKind
 from chemicals.ledger.services import create_vessel
-from chemicals.process.models import AnodeKind, RackType, Route, RouteStep, Tank
+from chemicals.process.models import AnodeKind, RackType, Route, RouteStep, SideReaction, Tank
 from chemicals.register.models import Product
 from chemicals.science.formula import METALS
 from chemicals.workshop.errors import FieldError, InvalidInputError
@@ -34,6 +34,9 @@ class TankInput:
     efficiency_sd: int = 30_000
     anode_kind: str = ""
     anode: Vessel | None = None
+    side_reaction: str = ""
+    racks: Vessel | None = None
+    rack_share: int | None = None
 
 
 TANKS = (VesselKind.BATH, VesselKind.RINSE)
@@ -42,7 +45,7 @@ TANKS = (VesselKind.BATH, VesselKind.RINSE)
 def create_tank(*, actor: Membership, now: datetime, tank: TankInput) -> Tank:
     """Create a bath or a rinse with its vessel."""
     require_writer(actor)
-    require_same_workshop(actor, *(thing for thing in (tank.place, tank.anode) if thing is not None))
+    require_same_workshop(actor, *(thing for thing in (tank.place, tank.anode, tank.racks) if thing is not None))
     if tank.kind not in TANKS:
         raise InvalidInputError.of("kind", "A tank is a bath or a rinse.")
     row = Tank(
@@ -54,8 +57,13 @@ def create_tank(*, actor: Membership, now: datetime, tank: TankInput) -> Tank:
         efficiency_sd=tank.efficiency_sd,
         anode_kind=tank.anode_kind,
         anode=tank.anode,
+        side_reaction=tank.side_reaction,
+        racks=tank.racks,
+        rack_share=tank.rack_share,
     )
-    errors = [*_check_figures(tank), *_check_anode(tank), *check_row(row, leave_out=["vessel"])]
+    errors = [
+        *_check_figures(tank), *_check_anode(tank), *_check_racks(tank), *check_row(row, leave_out=["vessel"])
+    ]  # fmt: skip
     with transaction.atomic(), scope(workshop=actor.workshop):
         row.vessel = _create_tank_vessel(actor, now, tank, errors)
         row.save()
@@ -102,9 +110,33 @@ def _check_anode(tank: TankInput) -> Iterator[FieldError]:
         yield FieldError("anode", "A soluble anode loses metal: choose its anode set, so that it is counted.")
     if tank.anode is not None and tank.anode.kind != VesselKind.ANODE:
         yield FieldError("anode", "This is no anode set. Choose one, or set one up first.")
+    if tank.side_reaction and tank.anode_kind != AnodeKind.INERT:
+        yield FieldError("side_reaction", "This happens at an inert anode. Choose that anode, or leave this out.")
+    if tank.side_reaction and not tank.metal:
+        yield FieldError("side_reaction", "This follows from the metal that is plated. Choose the metal first.")
+    chromium = (tank.metal, tank.valence) == ("Cr", 6)
+    if tank.side_reaction == SideReaction.CHROMIUM_VI and tank.metal and not chromium:
+        yield FieldError("side_reaction", "Only a bath that plates chromium of valence 6 uses chromium(VI) up.")
 
 
-HOLDERS = (VesselKind.STOCK, VesselKind.ANODE)
+def _check_racks(tank: TankInput) -> Iterator[FieldError]:
+    if tank.racks is not None and tank.racks.kind != VesselKind.RACKS:
+        yield FieldError("racks", "This is no rack build-up. Choose one, or set one up first.")
+    if tank.racks is not None and not tank.metal:
+        yield FieldError("racks", "Nothing grows on racks where nothing is plated. Leave this out.")
+    if tank.rack_share is not None and tank.racks is None:
+        yield FieldError("racks", "A share of the deposit grows on racks: choose the rack build-up that it goes to.")
+    if tank.rack_share is not None and not 0 <= tank.rack_share < 1_000_000:
+        yield FieldError("rack_share", "A share lies between 0 and 100 %, and something is left for the parts.")
+
+
+SOLID_HOLDERS = (
+    VesselKind.FILTER, VesselKind.CARBON, VesselKind.RESIN, VesselKind.RECOVERY_CELL, VesselKind.RACKS,
+    VesselKind.SLUDGE,
+)  # fmt: skip
+"""Kinds of vessels that stand for solids which took metal out of a liquid."""
+HOLDERS = (VesselKind.STOCK, VesselKind.ANODE, *SOLID_HOLDERS)
+"""Kinds of vessels that need no figures of their own."""
 
 
 def create_holder(
@@ -117,13 +149,18 @@ def create_holder(
     place: Place | None = None,
     capacity: int | None = None,
 ) -> Vessel:
-    """Create a stock container of a product, or an anode set. Capacity in nanolitres."""
+    """Create a stock container, an anode set, or what stands for solids: filter, sludge and so on.
+
+    Capacity in nanolitres. Of filter, carbon, resin and what grows nothing is bought in: they have no product.
+    """
     require_writer(actor)
     errors = []
     if kind not in HOLDERS:
-        errors.append(FieldError("kind", "Choose a stock container or an anode set."))
+        errors.append(FieldError("kind", "Choose one of the list. Tanks and waste containers have forms of their own."))
     if kind == VesselKind.STOCK and product is None:
         errors.append(FieldError("product", "A stock container holds one product. Choose the product."))
+    if product is not None and kind in SOLID_HOLDERS:
+        errors.append(FieldError("product", "Nothing is received into this. Leave the product out."))
     if errors:
         raise InvalidInputError(errors)
     return create_vessel(

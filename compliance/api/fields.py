@@ -1,6 +1,6 @@
 """Fields as strict as their description: nothing is guessed, and every refusal says what to write instead."""
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from datetime import date, datetime
 from typing import Any, cast
 from uuid import UUID
@@ -10,6 +10,7 @@ from rest_framework import serializers
 
 from chemicals.books.canonical import CanonicalError, check_text
 from chemicals.process import fields as kinds
+from chemicals.science.formula import FormulaError, parse_formula
 from chemicals.science.quantity import LONGEST, Quantity, QuantityError
 
 EARLIEST, LATEST = date(1900, 1, 1), date(2999, 12, 31)
@@ -95,6 +96,30 @@ class Choice(serializers.ChoiceField):
         if not isinstance(data, str) or data not in self.choices:
             self.fail("invalid_choice", input=str(data)[:80], known=", ".join(map(str, self.choices)))
         return data
+
+
+class Component(Text):
+    """What is balanced: one of the known names, or the formula of a substance declared inert."""
+
+    default_error_messages = {
+        **Text.default_error_messages,
+        "unknown": _('"{input}" is not balanced. Write a formula that was declared inert, or one of: {known}.'),
+    }
+
+    def __init__(self, *, known: Sequence[str], **options: Any) -> None:
+        self.known = known
+        super().__init__(max_length=80, **options)
+
+    def to_internal_value(self, data: Any) -> str:
+        """Return the code; whether a formula was declared inert is known in the workshop alone."""
+        code = super().to_internal_value(data)
+        if code in self.known:
+            return code
+        try:
+            parse_formula(code)
+        except FormulaError:
+            self.fail("unknown", input=code, known=", ".join(self.known))
+        return code
 
 
 class Identifier(serializers.UUIDField):

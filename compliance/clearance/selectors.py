@@ -3,53 +3,72 @@
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 from datetime import datetime
-from itertools import pairwise
 
 from django_scopes import scope
 
 from chemicals.books import events
-from chemicals.books.events import BOUNDARIES
+from chemicals.books.clearance import ALLOWED, INCIDENT, OVERRIDDEN, Clearance
 from chemicals.books.occurred import Occurred
 from chemicals.ledger.models import Vessel, VesselKind
-from chemicals.ledger.selectors import list_held, read_memory
+from chemicals.ledger.selectors import read_memory
 from chemicals.process.inputs import Input
 from chemicals.process.selectors import Trial, try_out
 from chemicals.register.selectors import list_reactivity
-from chemicals.science.reactivity import UNKNOWN, Danger, declared, find_dangers
+from chemicals.science.reactivity import ACID, CYANIDE, HYPOCHLORITE, OXIDISER, UNKNOWN, Danger, declared, find_dangers
 from chemicals.workshop.models import Membership, Workshop
-from compliance.waste.selectors import find_obstacles, get_declared_reactivity
+from compliance.clearance.meetings import find_fillings, find_meetings, find_opened
+from compliance.clearance.texts import FIRST_STEPS, ONLY_IN_A_LICENSED_PLAN, SEWER, SPILL_STEPS, TREATMENT_CAUTIONS
+from compliance.waste.selectors import find_obstacles, find_seal, get_declared_reactivity
 
-FIRST_STEPS = (
-    "Everyone out, and warn others. Shut off from outside only. Call the emergency number.",
-    "Nobody returns without breathing apparatus; oxygen is given by trained people.",
-    "Follow your local rules and the written instruction of this workplace.",
-)
-"""What to do first where liquids met that must never meet."""
+LIQUID_PATH = frozenset(VesselKind) - {VesselKind.STOCK, VesselKind.WASTE}
+"""Kinds of vessels that hold what loads, filters and cells carried there from a tank."""
 
 
 @dataclass(frozen=True)
 class Answer:
-    """Why something must not be done, and what to do first if it has happened. No reason: it may be done."""
+    """Whether something may be done.
 
-    reasons: tuple[str, ...]
-    first_steps: tuple[str, ...]
+    ``dangers`` and ``obstacles`` speak against it; ``questions`` only a person can answer who has read them.
+    ``cautions`` go with it in any case. ``happened``: it is nothing that anybody would do on purpose.
+    """
+
+    dangers: tuple[str, ...] = ()
+    obstacles: tuple[str, ...] = ()
+    questions: tuple[str, ...] = ()
+    cautions: tuple[str, ...] = ()
+    first_steps: tuple[str, ...] = ()
+    happened: bool = False
+
+    @property
+    def reasons(self) -> tuple[str, ...]:
+        """Return why it is not recorded unless somebody says that it has happened."""
+        return self.dangers + self.obstacles + self.questions
+
+    @property
+    def allowed(self) -> bool:
+        """Say whether nothing speaks against it."""
+        return not self.reasons
+
+    @property
+    def clearance(self) -> Clearance:
+        """Return what the journal keeps once it has happened: the reasons, the first steps and the cautions shown."""
+        if self.dangers or self.obstacles or self.happened:
+            return Clearance(INCIDENT, self.reasons + self.first_steps + self.cautions)
+        return Clearance(OVERRIDDEN if self.questions else ALLOWED, self.reasons + self.cautions)
 
 
 @dataclass(frozen=True)
 class Preview:
-    """The answer before anything is written: allowed or not, why, and what would be recorded."""
+    """The answer before anything is written, and what would be recorded."""
 
-    allowed: bool
-    reasons: tuple[str, ...]
-    first_steps: tuple[str, ...]
+    answer: Answer
     trial: Trial
 
 
 def preview(member: Membership, now: datetime, data: Input, occurred: Occurred | None) -> Preview:
     """Return the verdict on an input and what would follow from it. Writes nothing."""
     trial = try_out(member, now, data, occurred)
-    answer = ask(member.workshop, trial.event, now if trial.occurred is None else trial.occurred.at)
-    return Preview(not answer.reasons, answer.reasons, answer.first_steps, trial)
+    return Preview(ask(member.workshop, trial.event, now if trial.occurred is None else trial.occurred.at), trial)
 
 
 def ask(workshop: Workshop, event: events.Event, at: datetime) -> Answer:
@@ -57,56 +76,57 @@ def ask(workshop: Workshop, event: events.Event, at: datetime) -> Answer:
     with scope(workshop=workshop):
         rows = Vessel.objects.filter(uuid__in=event.vessels()).select_related("workshop")
         vessels = {str(vessel.uuid): vessel for vessel in rows}
-    dangers = tuple(_find_dangers(vessels, event))
-    obstacles: tuple[str, ...] = ()
-    if isinstance(event, events.Move):
-        obstacles = tuple(find_obstacles(vessels[event.target], at, _poured(vessels, event)))
-    return Answer(dangers + obstacles, FIRST_STEPS if dangers else ())
+    dangers = tuple(dict.fromkeys(_find_dangers(vessels, event)))
+    spilled = isinstance(event, events.Spill)
+    return Answer(
+        dangers=dangers,
+        obstacles=tuple(_find_obstacles(vessels, event, at)),
+        questions=(SEWER,) if isinstance(event, events.Discharge) else (),
+        cautions=TREATMENT_CAUTIONS if isinstance(event, events.Treatment) else (),
+        first_steps=(FIRST_STEPS if dangers else ()) + (SPILL_STEPS if spilled else ()),
+        happened=spilled,
+    )
 
 
-def _poured(vessels: Mapping[str, Vessel], event: events.Move) -> int | None:
-    """Return how much would be poured, as far as that is known."""
-    if event.volume is not None:
-        return event.volume.base
-    held = {row.component: row.amount for row in list_held(vessels[event.source])}
-    return held.get(events.VOLUME, 0)
+def _find_obstacles(vessels: Mapping[str, Vessel], event: events.Event, at: datetime) -> Iterator[str]:
+    for filling in find_fillings(vessels, event):
+        yield from find_obstacles(vessels[filling.target], at, filling.volume)
+    opened = find_opened(event)
+    if opened is not None:
+        yield from find_seal(vessels[opened], at)
 
 
 def _find_dangers(vessels: Mapping[str, Vessel], event: events.Event) -> Iterator[str]:
     """Yield every pair of liquids that would meet and never must, with the danger named."""
-    for one, other in _meetings(event):
-        if one not in BOUNDARIES:
+    for one, other in find_meetings(event):
+        if one in vessels and other in vessels:
             for danger in find_dangers_between(vessels[one], vessels[other]):
                 yield (
                     f"{vessels[one].name} ({danger.first}) and {vessels[other].name} ({danger.second}) must never "
                     f"meet, either way round: {danger.danger}."
                 )
+                if isinstance(event, events.Treatment) and _is_destruction(danger):
+                    yield ONLY_IN_A_LICENSED_PLAN
+    if isinstance(event, events.Discharge):
+        source = vessels[event.source]
+        for danger in find_dangers(react_as(source), {ACID}):
+            yield f"{source.name} ({danger.first}) may meet acid in the sewer, which gives {danger.danger}."
 
 
-def _meetings(event: events.Event) -> Iterator[tuple[str, str]]:
-    """Yield every pair of vessels whose contents would meet."""
-    if isinstance(event, events.Move):
-        yield event.source, event.target
-    elif isinstance(event, events.TopUp):
-        yield event.source, event.tank
-    elif isinstance(event, events.Run):
-        yield from pairwise(event.route)  # a load drags out of one tank into the next
-    elif isinstance(event, events.MakeUp):
-        stocks = [item.stock for item in event.ingredients]
-        for number, stock in enumerate(stocks):
-            yield stock, event.tank
-            yield from ((stock, other) for other in stocks[:number] if other != stock)
+def _is_destruction(danger: Danger) -> bool:
+    pair = {danger.first, danger.second}
+    return CYANIDE in pair and bool(pair & {OXIDISER, HYPOCHLORITE})
 
 
 def find_dangers_between(one: Vessel, other: Vessel) -> list[Danger]:
     """Return every danger of bringing the contents of two vessels together, each once; ``first`` is of the one.
 
-    A liquid that nobody can name counts as an acid and as a cyanide, but not between a tank and its own rinse, of
-    which one holds nothing else than the other.
+    A liquid that nobody can name counts as an acid and as a cyanide, but not between a tank and its own rinse or its
+    own filter, of which one holds nothing else than the other.
     """
     left, right = read_marks(one), read_marks(other)
     nested = left.keys() <= right.keys() or right.keys() <= left.keys()
-    own_rinse = nested and {one.kind, other.kind} <= {VesselKind.BATH, VesselKind.RINSE}
+    own_rinse = nested and {one.kind, other.kind} <= LIQUID_PATH
     found = {
         (danger.gives, danger.harm): danger
         for key, kinds in sorted(left.items())

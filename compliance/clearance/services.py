@@ -7,7 +7,6 @@ from uuid import UUID
 from django.db import transaction
 from django_scopes import scope
 
-from chemicals.books.clearance import ALLOWED, INCIDENT, Clearance
 from chemicals.books.occurred import Occurred
 from chemicals.journal.selectors import list_entries_for
 from chemicals.journal.services import Appended, lock_chain
@@ -21,7 +20,10 @@ from compliance.clearance.selectors import ask
 
 
 class RefusedError(ConflictError):
-    """This may not be done. If it has happened already, it is recorded as an incident."""
+    """This may not be done, or only by somebody who answers for it.
+
+    If it has happened already, it is recorded: as an incident, or as overridden where only a question was open.
+    """
 
     def __init__(self, reasons: Sequence[str]) -> None:
         super().__init__(" ".join(reasons))
@@ -44,16 +46,14 @@ def record(
         lock_chain(actor)  # nothing is poured in between the answer and the record
         built = build(actor, now, data, occurred)
         answer = ask(actor.workshop, built.event, now if built.occurred is None else built.occurred.at)
-        if answer.reasons and not already_happened and not _is_retry(actor, key):
+        if not answer.allowed and not already_happened and not _is_retry(actor, key):
             raise RefusedError(answer.reasons)
-        incident = Clearance(INCIDENT, answer.reasons + answer.first_steps)
-        clearance = incident if answer.reasons else Clearance(ALLOWED)
         return record_matter(
             actor=actor,
             now=now,
             key=key,
             built=built,
-            clearance=clearance,
+            clearance=answer.clearance,
             attachments=attachments,
         )
 

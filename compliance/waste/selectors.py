@@ -115,6 +115,16 @@ def find_obstacles(vessel: Vessel, at: datetime, volume: int | None) -> Iterator
         )
 
 
+def find_seal(vessel: Vessel, at: datetime) -> Iterator[str]:
+    """Yield why nothing is taken out of a waste container at a moment: it is closed."""
+    if vessel.kind != VesselKind.WASTE:
+        return
+    with scope(workshop=vessel.workshop):
+        closed = WasteContainer.objects.filter(vessel=vessel, closed_at__lte=at).exists()
+    if closed:
+        yield f"{vessel.name} is closed and weighed: its papers say what is in it. Take nothing out of it."
+
+
 def get_declared_reactivity(vessel: Vessel) -> frozenset[str]:
     """Return what the stream of a waste container may react as, whatever is in the container today."""
     if vessel.kind != VesselKind.WASTE:

@@ -45,6 +45,7 @@ urlpatterns = [
     path(W + "tanks/", tanks.index, name="tanks"),
     path(W + "tanks/new/<str:kind>/", tanks.add_tank, name="add-tank"),
     path(W + "tanks/anode/", tanks.add_anode, name="add-anode"),
+    path(W + "tanks/holder/", tanks.add_holder, name="add-holder"),
     path(W + "tanks/rack-type/", tanks.add_rack_type, name="add-rack-type"),
     path(W + "tanks/route/", tanks.add_route, name="add-route"),
     path(W + "vessels/<uuid:uuid>/", vessel.vessel, name="vessel"),

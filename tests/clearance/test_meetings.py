@@ -175,7 +175,7 @@ class TestUnknownLiquid:
     def test_comes_out_of_a_vessel_that_the_books_call_empty(self, bench: Bench) -> None:
         ghost, tank = bench.tank("Ghost"), bench.made_from("Tank", bench.bottle("Acid", "acid"))
         bench.pour(LevelInput(vessel=ghost.uuid, volume=parse("2 L", "volume")))
-        answer = preview(bench.owner, bench.now, MoveInput(source=ghost.uuid, target=tank.uuid), None)
+        answer = preview(bench.owner, bench.now, MoveInput(source=ghost.uuid, target=tank.uuid), None).answer
         assert not answer.allowed
         assert "hydrogen cyanide" in answer.reasons[0]
 

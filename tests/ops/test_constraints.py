@@ -113,6 +113,8 @@ EXAMPLES: dict[str, dict[str, Change]] = {
         "tank_metal_with_valence": {"metal": "Cu", "valence": None},
         "tank_soluble_anode_set": {"anode_kind": "soluble", "anode_id": None},
         "tank_efficiency_above_zero": {"efficiency": 0},
+        "tank_side_reaction_inert": {"anode_kind": "soluble", "side_reaction": "acid"},
+        "tank_rack_share_of_racks": {"racks_id": None, "rack_share": 30_000},
     },
     "process.RackType": {"rack_type_name_once": twice, "rack_type_drag_out_not_negative": {"drag_out": -1}},
     "process.Route": {"route_name_once": twice},

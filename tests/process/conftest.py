@@ -21,7 +21,9 @@ def furnish(shop: Shop) -> Shop:
     acid = shop.product("Acid", {"H2SO4": "96 %"}, form="liquid", density="1.84 g/mL", reactivity=("acid",))
     shop.holder("Jar", salt)
     shop.holder("Bottle", acid)
-    anodes = shop.holder("Anodes", shop.product("Anode copper", {"Cu": "99.9 %"}), kind="anode")
+    anodes = shop.holder(
+        "Anodes", shop.product("Anode copper", {"Cu": "99.9 %"}, reactivity=("nothing",)), kind="anode"
+    )
     bath = shop.tank("Copper", "20 L", kind="bath", metal="Cu", valence=2, anode_kind="soluble", anode=anodes)
     rinses = [shop.tank("First rinse", "10 L"), shop.tank("Second rinse", "10 L")]
     rack = shop.rack("Small part", "1 mL", "44 cm2")

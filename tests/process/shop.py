@@ -5,6 +5,7 @@ from datetime import datetime, timedelta
 from typing import Any
 from uuid import UUID, uuid4
 
+import pytest
 from django_scopes import scope
 
 from chemicals.books.occurred import Occurred
@@ -13,11 +14,13 @@ from chemicals.ledger.models import Finding, Holding, Posting, Vessel, VesselKin
 from chemicals.ledger.services import create_vessel
 from chemicals.ledger.verify import verify_projection
 from chemicals.process import setup
+from chemicals.process.build import build
 from chemicals.process.inputs import INPUTS, Input
 from chemicals.process.models import RackType, Route
 from chemicals.register.models import Product
 from chemicals.register.services import LineInput, RevisionInput, create_product, create_substance
 from chemicals.science.quantity import parse
+from chemicals.workshop.errors import InvalidInputError
 from chemicals.workshop.models import Membership
 from compliance.clearance.services import record
 from compliance.ops.demo_reader import read_input
@@ -36,17 +39,18 @@ class Shop:
         self.now = now
         self.entries: dict[str, Entry] = {}
 
-    def product(self, name: str, lines: dict[str, str], **sheet: Any) -> Product:
-        """Register a product; lines: formula -> content."""
+    def product(self, name: str, lines: dict[str, str], *, inert: Sequence[str] = (), **sheet: Any) -> Product:
+        """Register a product; lines: formula -> content; ``inert`` names formulas that react with nothing here."""
         found = []
         for formula, content in lines.items():
-            substance = create_substance(actor=self.member, name=f"{formula} of {name}", formula=formula)
+            named = f"{formula} of {name}"
+            substance = create_substance(actor=self.member, name=named, formula=formula, inert=formula in inert)
             found.append(LineInput(substance, content))
         said = RevisionInput(lines=tuple(found), **{"form": "solid", **sheet})
         return create_product(actor=self.member, now=self.now, name=name, supplier="Anyone", revision=said).product
 
-    def holder(self, name: str, product: Product, kind: str = "stock") -> Vessel:
-        """Put up a stock container or an anode set."""
+    def holder(self, name: str, product: Product | None = None, kind: str = "stock") -> Vessel:
+        """Put up a stock container, an anode set, or what stands for solids."""
         return create_vessel(actor=self.member, now=self.now, kind=VesselKind(kind), name=name, product=product)
 
     def tank(self, name: str, mark: str = "", **said: Any) -> Vessel:
@@ -74,6 +78,19 @@ class Shop:
         """Return the input of a verb; vessels, routes, products and entries stand there by name."""
         data: Input = read_input(INPUTS[verb], said, self.find)
         return data
+
+    def event(self, verb: str, **said: Any) -> Any:
+        """Return the event that recording would write, with the figures that it relies on."""
+        with scope(workshop=self.member.workshop):
+            return build(self.member, self.now, self.read(verb, **said), None).event
+
+    def wrong(self, verb: str, **said: Any) -> dict[str, str]:
+        """Return everything that is wrong with what was said, by field; nothing must have been written."""
+        before = self.ledger()
+        with pytest.raises(InvalidInputError) as caught:
+            self.record(verb, **said)
+        assert self.ledger() == before
+        return {error.field: error.message for error in caught.value.errors}
 
     def record(
         self,

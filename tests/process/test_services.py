@@ -173,7 +173,7 @@ def test_figures_used_may_change_between_two_tries(shop: Shop) -> None:
 def test_a_preview_says_what_recording_does_and_writes_nothing(shop: Shop) -> None:
     data, before = shop.read("run", route="Plate", charge="1.8 Ah"), shop.ledger()
     seen = preview(shop.member, shop.now, data, None)
-    assert seen.allowed
+    assert seen.answer.allowed
     assert shop.ledger() == before
     entry = record(actor=shop.member, now=shop.now, key=uuid4(), data=data).entry
     with scope(workshop=shop.member.workshop):

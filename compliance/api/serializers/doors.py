@@ -9,6 +9,7 @@ from django.utils.text import format_lazy
 from django.utils.translation import gettext_lazy as _
 from rest_framework import serializers
 
+from chemicals.books.clearance import VERDICTS
 from chemicals.books.events import ASSUMED, COMPUTED, OBSERVED
 from chemicals.books.fold.state import Transfer
 from chemicals.books.occurred import PRECISIONS, Occurred
@@ -16,7 +17,20 @@ from chemicals.ledger.components import dimension_of
 from chemicals.process import fields as kinds
 from chemicals.process.inputs import INPUTS, Input
 from chemicals.workshop.models import Workshop
-from compliance.api.fields import Amount, Choice, Flag, Identifier, Moment, MomentOrDay, Strict, Text, Words, rows
+from compliance.api.fields import (
+    Amount,
+    Choice,
+    Component,
+    Flag,
+    Identifier,
+    Moment,
+    MomentOrDay,
+    Strict,
+    Text,
+    Whole,
+    Words,
+    rows,
+)
 from compliance.api.serializers.base import End, Estimate, Figure, Shape, choices_of
 from compliance.api.serializers.entries import FindingShape, PayloadShape
 
@@ -44,7 +58,10 @@ class Door(Strict):
     already_happened = Flag(
         required=False,
         allow_null=True,
-        help_text=_("True if it cannot be undone: then it is recorded as an incident even if it must not be done."),
+        help_text=_(
+            "True if it has happened and cannot be undone: then it is recorded even if it must not be done, as an "
+            "incident, or as overridden where somebody answers for it, as for a discharge."
+        ),
     )
     attachments = Words(
         child=Text(max_length=64, help_text=_("SHA-256 of an uploaded file.")),
@@ -80,6 +97,8 @@ def _name(kind: kinds.FieldKind) -> kinds.Text:
         return format_lazy("{}: {} ({}).", kind.label, _("a vessel"), which)
     if isinstance(kind, kinds.ReferenceField):
         return format_lazy("{}: {}.", kind.label, REFERENCES[kind.to])
+    if isinstance(kind, kinds.ComponentField):
+        return format_lazy("{}: {} ({}).", kind.label, _("a formula declared inert, or one of"), ", ".join(kind.known))
     if isinstance(kind, kinds.AmountField):
         return format_lazy('{}, {} "{}".', kind.label, _("such as"), kind.example)
     return format_lazy("{}.", kind.label)
@@ -88,6 +107,8 @@ def _name(kind: kinds.FieldKind) -> kinds.Text:
 BUILDERS: Mapping[type[kinds.FieldKind], Callable[[Any, dict[str, Any]], Any]] = {
     kinds.AmountField: lambda kind, options: Amount(*kind.dimensions, example=kind.example, **options),
     kinds.ChoiceField: lambda kind, options: Choice(choices=kind.choices, **options),
+    kinds.ComponentField: lambda kind, options: Component(known=kind.known, **options),
+    kinds.WholeField: lambda kind, options: Whole(min_value=kind.least, max_value=kind.most, **options),
     kinds.TextField: lambda kind, options: Text(max_length=kind.longest, allow_blank=not kind.required, **options),
     kinds.FlagField: lambda kind, options: Flag(**options),
     kinds.MomentField: lambda kind, options: Moment(**options),
@@ -146,8 +167,16 @@ class PreviewShape(Shape):
     """The answer before anything is written."""
 
     allowed = serializers.BooleanField(help_text=_("Whether it may be done."))
+    verdict = choices_of(VERDICTS, _("What would be recorded as the answer, if it is recorded."))
     reasons = serializers.ListField(
-        child=serializers.CharField(help_text=_("One danger, named.")), help_text=_("Why it may not be done.")
+        child=serializers.CharField(help_text=_("One danger or obstacle, named, or what a person answers for.")),
+        help_text=_("Why it may not be done unless it has happened already."),
+    )
+    cautions = serializers.ListField(
+        child=serializers.CharField(help_text=_("One caution.")), help_text=_("What whoever does it should know.")
+    )
+    first_steps = serializers.ListField(
+        child=serializers.CharField(help_text=_("One step.")), help_text=_("What to do first if it has gone wrong.")
     )
     occurred_at = serializers.DateTimeField(allow_null=True, help_text=_("When it happened, in UTC; null is now."))
     precision = choices_of(PRECISIONS, _("How finely that is known."))

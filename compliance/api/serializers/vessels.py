@@ -6,7 +6,7 @@ from rest_framework import serializers
 from chemicals.ledger.components import dimension_of, dimension_per_litre
 from chemicals.ledger.models import VesselKind
 from chemicals.ledger.selectors import Held, HeldMetal
-from chemicals.process.models import AnodeKind
+from chemicals.process.models import AnodeKind, SideReaction
 from chemicals.process.setup import HOLDERS
 from chemicals.science.formula import METALS
 from compliance.api.fields import BaseUnits, Choice, Identifier, Strict, Text, Whole, Words
@@ -38,14 +38,15 @@ class VesselQuery(PageQuery):
 
 
 class VesselInput(Strict):
-    """A new stock container or anode set. Tanks and waste containers are set up at their own addresses."""
+    """A new stock container, anode set, filter or the like; tanks and waste containers have addresses of their own."""
 
     kind = Choice(
-        choices=[(kind.value, kind.label) for kind in HOLDERS], help_text=_("A stock container or an anode set.")
+        choices=[(kind.value, kind.label) for kind in HOLDERS],
+        help_text=_("A stock container, an anode set, or what stands for solids that take metal out of a liquid."),
     )
     name = Text(max_length=80, help_text=_("A name that no other vessel here has."))
     product = Identifier(
-        required=False, allow_null=True, help_text=_("The product that it holds; a stock container needs one.")
+        required=False, allow_null=True, help_text=_("The product that it holds; only a stock container needs one.")
     )
     place = Identifier(required=False, allow_null=True, help_text=_("Where it stands."))
     capacity = BaseUnits("volume", example="2.5 L", required=False, allow_null=True, help_text=CAPACITY_HELP)
@@ -104,6 +105,13 @@ class TankShape(Shape):
     efficiency_sd = Figure(dimension="fraction", help_text=_("Standard uncertainty of that share."))
     anode_kind = serializers.CharField(help_text=_("soluble, inert, or empty where there is none."))
     anode = Named(allow_null=True, help_text=_("The anode set of a soluble anode."))
+    side_reaction = serializers.CharField(
+        help_text=_("What the current does at an inert anode: acid, alkali, chromium(VI), or empty.")
+    )
+    racks = Named(allow_null=True, help_text=_("The rack build-up; null where it is not counted."))
+    rack_share = Figure(
+        dimension="fraction", allow_null=True, help_text=_("Share of the deposit that grows on racks; null is assumed.")
+    )
 
 
 class TankInput(Strict):
@@ -150,6 +158,22 @@ class TankInput(Strict):
         help_text=_("A soluble anode gives its metal to the bath."),
     )
     anode = Identifier(required=False, allow_null=True, help_text=_("The anode set of a soluble anode."))
+    side_reaction = Choice(
+        choices=SideReaction.choices,
+        required=False,
+        allow_null=True,
+        help_text=_("What the current does at an inert anode besides plating; how much follows from Faraday's law."),
+    )
+    racks = Identifier(
+        required=False, allow_null=True, help_text=_("The rack build-up: counts what grows on racks, not on parts.")
+    )
+    rack_share = BaseUnits(
+        "fraction",
+        example="3 %",
+        required=False,
+        allow_null=True,
+        help_text=_("Share of the deposit that grows on racks; 3 %, assumed, if left out."),
+    )
 
 
 class RackTypeShape(Shape):

@@ -33,13 +33,14 @@ class PreviewView(WorkshopView):
         data = build_input(self.verb, said)
         occurred = build_occurred(said.get("occurred_at"), self.member.workshop)
         found = preview(self.member, self.now, data, occurred)
-        whole = With(found, echo=list(echo_amounts(data)), **_would_follow(found))
+        whole = With(found.answer, echo=list(echo_amounts(data)), **_would_follow(found))
         return self.respond(whole, vessels=name_vessels(self.member))
 
 
 def _would_follow(found: Preview) -> dict[str, Any]:
     trial = found.trial
     return {
+        "verdict": found.answer.clearance.verdict,
         "occurred_at": trial.occurred and trial.occurred.at,
         "precision": trial.occurred.precision if trial.occurred else MINUTE,
         "payload": events.encode(trial.event),

@@ -33,7 +33,7 @@ LATEST = 50
 
 
 class VesselsView(ListCreateView):
-    """Everything that holds matter. A POST sets up a stock container or an anode set."""
+    """Everything that holds matter. A POST sets up a stock container, an anode set, a filter or the like."""
 
     shape, input_class, query_class = shapes.VesselShape, shapes.VesselInput, shapes.VesselQuery
 
@@ -47,7 +47,7 @@ class VesselsView(ListCreateView):
         return rows
 
     def create(self, said: dict[str, Any]) -> Vessel:
-        """Set up a stock container or an anode set."""
+        """Set up a stock container, an anode set, or what stands for solids."""
         lookup = Lookup(self.member)
         product = lookup.find("product", get_product_for, said.pop("product", None))
         place = lookup.find("place", get_place_for, said.pop("place", None))
@@ -81,8 +81,10 @@ class TanksView(ListCreateView):
         lookup = Lookup(self.member)
         place = lookup.find("place", get_place_for, said.pop("place", None))
         anode = lookup.find("anode", get_vessel_for, said.pop("anode", None))
+        racks = lookup.find("racks", get_vessel_for, said.pop("racks", None))
         lookup.finish()
-        return create_tank(actor=self.member, now=self.now, tank=TankInput(place=place, anode=anode, **said))
+        tank = TankInput(place=place, anode=anode, racks=racks, **said)
+        return create_tank(actor=self.member, now=self.now, tank=tank)
 
 
 class TankView(WorkshopView):

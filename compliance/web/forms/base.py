@@ -78,6 +78,8 @@ class Shown(Quiet):
 
     rows: Mapping[str, Rows] = {}
     order: Sequence[str] = ()
+    details: frozenset[str] = frozenset()
+    """Names of the parts for those who know more than is needed: shown last, folded away."""
 
     @property
     def all_parts(self) -> Iterator[BoundField | Rows]:
@@ -88,6 +90,24 @@ class Shown(Quiet):
                 yield self.rows[name]
             elif not self[name].is_hidden:
                 yield self[name]
+
+    @property
+    def main_parts(self) -> list[BoundField | Rows]:
+        """Return what everybody is asked."""
+        return [part for part in self.all_parts if part.name not in self.details]
+
+    @property
+    def detail_parts(self) -> list[BoundField | Rows]:
+        """Return the details."""
+        return [part for part in self.all_parts if part.name in self.details]
+
+    @property
+    def shows_details(self) -> bool:
+        """Say whether something is written, or wrong, among the details: then they are unfolded."""
+        parts = self.detail_parts
+        fields = [part for part in parts if not isinstance(part, Rows)]
+        written = any(part.filled for part in parts if isinstance(part, Rows)) or any(part.value() for part in fields)
+        return written or any(part.errors for part in fields)
 
     @property
     def all_problems(self) -> list[Problem]:
@@ -119,7 +139,7 @@ class WebForm(Shown):
         """Add numbered groups of fields after the fields so far."""
         rows.fill(self.data if self.is_bound else None, self.initial_rows.get(rows.name, ()))
         self.rows[rows.name] = rows
-        self.order = [*(name for name in self.fields if name not in self.order), rows.name]
+        self.order = [*self.order, *(name for name in self.fields if name not in self.order), rows.name]
 
     def is_valid(self) -> bool:
         """Check fields and rows, all of them."""

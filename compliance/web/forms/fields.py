@@ -189,6 +189,19 @@ class WordField(forms.ChoiceField):
         )
 
 
+class WholeField(forms.IntegerField):
+    """A whole number between two ends."""
+
+    def __init__(self, least: int, most: int, **kwargs: Any) -> None:
+        wrong = gettext_lazy("Write a whole number from %(least)s to %(most)s.") % {"least": least, "most": most}
+        super().__init__(
+            min_value=least,
+            max_value=most,
+            error_messages={"required": REQUIRED, "invalid": wrong, "min_value": wrong, "max_value": wrong},
+            **kwargs,
+        )
+
+
 class WordsField(forms.MultipleChoiceField):
     """Any words of a list, each with a box to tick."""
 

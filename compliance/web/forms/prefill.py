@@ -7,14 +7,16 @@ from uuid import UUID
 
 from chemicals.books.events import Measured, Run
 from chemicals.journal.selectors import get_entry_for, read_event
-from chemicals.ledger.models import Vessel
+from chemicals.ledger.models import Vessel, VesselKind
 from chemicals.ledger.selectors import get_vessel_for
 from chemicals.process.fields import VesselField, describe
-from chemicals.process.inputs import INPUTS, RunInput
+from chemicals.process.inputs import INPUTS, RunInput, WeightInput
 from chemicals.process.selectors import list_routes_for, list_routes_through
 from chemicals.science.units import find
 from chemicals.workshop.errors import NotFoundError
 from chemicals.workshop.models import Membership
+from compliance.waste.selectors import get_container_for
+from compliance.web.export import grams
 
 
 def prefill(member: Membership, verb: str, query: Mapping[str, str]) -> dict[str, Any]:
@@ -34,8 +36,16 @@ def _from_vessel(member: Membership, verb: str, vessel: Vessel) -> dict[str, Any
         return {"route": str(routes[0].uuid)} if len(routes) == 1 else {}
     for name, kind in describe(INPUTS[verb]):
         if isinstance(kind, VesselField) and vessel.kind in kind.kinds:
-            return {name: str(vessel.uuid)}
+            return {name: str(vessel.uuid), **_tare(member, verb, vessel)}
     return {}
+
+
+def _tare(member: Membership, verb: str, vessel: Vessel) -> dict[str, str]:
+    """Return the empty weight of a waste container that is to be weighed, if it is known."""
+    if INPUTS[verb] is not WeightInput or vessel.kind != VesselKind.WASTE:
+        return {}
+    tare = get_container_for(member, vessel.uuid).tare
+    return {} if tare is None else {"tare": f"{grams(tare)} g"}
 
 
 def _from_entry(member: Membership, verb: str, uuid: UUID) -> dict[str, Any]:

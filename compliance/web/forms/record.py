@@ -20,14 +20,22 @@ from chemicals.process import fields as kinds
 from chemicals.process.fields import FieldKind, describe
 from chemicals.process.inputs import INPUTS, Input
 from chemicals.process.selectors import list_open_analyses_for, list_rack_types_for, list_routes_for
-from chemicals.register.selectors import list_products_for
+from chemicals.register.selectors import list_products_for, list_solutes
 from chemicals.science.quantity import Quantity, echo
 from chemicals.workshop.errors import NotFoundError
 from chemicals.workshop.models import Membership
 from compliance.waste.selectors import list_closed_vessels
 from compliance.web import words
 from compliance.web.forms.base import Row, Rows, WebForm
-from compliance.web.forms.fields import AmountField, FlagField, LineField, MomentField, ThingField, WordField
+from compliance.web.forms.fields import (
+    AmountField,
+    FlagField,
+    LineField,
+    MomentField,
+    ThingField,
+    WholeField,
+    WordField,
+)
 
 UNDATED = ("acceptance", "cancellation")
 """Verbs whose time is given: an acceptance has that of its analysis, a cancellation that of its recording."""
@@ -44,6 +52,10 @@ MISSING: Mapping[str, Any] = {
 MISSING_VESSELS = (
     ({VesselKind.BATH, VesselKind.RINSE}, gettext_lazy("No tank yet. Set one up on the page Tanks first.")),
     ({VesselKind.STOCK}, gettext_lazy("No container yet. Set one up on the page of its product first.")),
+    (
+        {VesselKind.FILTER, VesselKind.CARBON, VesselKind.RESIN, VesselKind.SLUDGE},
+        gettext_lazy("Nothing to put it into. Set it up on the page Tanks, or put up a container on the page Waste."),
+    ),
     ({VesselKind.WASTE}, gettext_lazy("No open container. Put one up on the page Waste first.")),
 )
 """The same for vessels, by the kinds that would do."""
@@ -61,6 +73,7 @@ class RecordForm(WebForm):
         initial = {"key": uuid4(), **kwargs.pop("initial", {})}
         super().__init__(data, initial=initial, **kwargs)
         self.member, self.verb, self.input = member, verb, INPUTS[verb]
+        self.details = frozenset(name for name, kind in describe(self.input) if kind.detail)
         for name, kind in describe(self.input):
             if isinstance(kind, kinds.RowsField):
                 make = partial(InputRow, self, kind.of)
@@ -83,6 +96,11 @@ class RecordForm(WebForm):
     def vessels(self) -> Sequence[Vessel]:
         """Return all vessels, once for all fields of the form."""
         return list(list_vessels_for(self.member))
+
+    @cached_property
+    def solutes(self) -> Sequence[str]:
+        """Return the formulas of what the workshop declared inert, once for all fields of the form."""
+        return sorted(list_solutes(self.member.workshop))
 
     @cached_property
     def closed(self) -> frozenset[UUID]:
@@ -157,11 +175,10 @@ def _build_amount(form: RecordForm, name: str, kind: kinds.AmountField) -> forms
 
 
 def _build_vessel(form: RecordForm, name: str, kind: kinds.VesselField) -> forms.Field:
-    fills = form.verb == "drum-off" and VesselKind.WASTE in kind.kinds
     things = [
         (vessel.uuid, f"{vessel.name} ({vessel.code})")
         for vessel in form.vessels
-        if vessel.kind in kind.kinds and not (fills and vessel.uuid in form.closed)
+        if vessel.kind in kind.kinds and not (kind.fills and vessel.uuid in form.closed)
     ]
     missing = next(text for some, text in MISSING_VESSELS if some & set(kind.kinds)) if kind.required else ""
     return ThingField(things, missing=missing, label=kind.label, help_text=kind.help, required=kind.required)
@@ -175,6 +192,15 @@ def _build_reference(form: RecordForm, name: str, kind: kinds.ReferenceField) ->
 
 def _build_choice(form: RecordForm, name: str, kind: kinds.ChoiceField) -> forms.Field:
     return WordField(kind.choices, label=kind.label, help_text=kind.help, required=kind.required)
+
+
+def _build_component(form: RecordForm, name: str, kind: kinds.ComponentField) -> forms.Field:
+    choices = [(code, words.component_name(code)) for code in (*kind.known, *form.solutes)]
+    return WordField(choices, label=kind.label, help_text=kind.help, required=kind.required)
+
+
+def _build_whole(form: RecordForm, name: str, kind: kinds.WholeField) -> forms.Field:
+    return WholeField(kind.least, kind.most, label=kind.label, help_text=kind.help, required=kind.required)
 
 
 def _build_text(form: RecordForm, name: str, kind: kinds.TextField) -> forms.Field:
@@ -201,6 +227,8 @@ BUILDERS: Mapping[type[FieldKind], Callable[[RecordForm, str, Any], forms.Field]
     kinds.VesselField: _build_vessel,
     kinds.ReferenceField: _build_reference,
     kinds.ChoiceField: _build_choice,
+    kinds.ComponentField: _build_component,
+    kinds.WholeField: _build_whole,
     kinds.TextField: _build_text,
     kinds.FlagField: _build_flag,
     kinds.MomentField: _build_moment,

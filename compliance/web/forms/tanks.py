@@ -9,9 +9,9 @@ from django.utils.translation import gettext_lazy as _
 
 from chemicals.ledger.models import VesselKind
 from chemicals.ledger.selectors import get_vessel_for, list_vessels_for
-from chemicals.process.models import AnodeKind
+from chemicals.process.models import AnodeKind, SideReaction
 from chemicals.process.selectors import list_rack_types_for
-from chemicals.process.setup import TankInput
+from chemicals.process.setup import SOLID_HOLDERS, TankInput
 from chemicals.register.selectors import list_products_for
 from chemicals.science.formula import METALS, element_name
 from chemicals.workshop.models import Membership, Place
@@ -65,7 +65,11 @@ class BathForm(RinseForm):
 
     def __init__(self, member: Membership, data: Any = None) -> None:
         super().__init__(member, data)
-        anodes = [(vessel.uuid, vessel.name) for vessel in list_vessels_for(member, VesselKind.ANODE)]
+        holders = list(list_vessels_for(member, VesselKind.ANODE, VesselKind.RACKS))
+        anodes, racks = (
+            [(vessel.uuid, vessel.name) for vessel in holders if vessel.kind == kind]
+            for kind in (VesselKind.ANODE, VesselKind.RACKS)
+        )
         more: dict[str, forms.Field] = {
             "bath_type": LineField(
                 label=_("Bath type"), required=False, max_length=80, help_text=_("For example acid copper, bright.")
@@ -96,6 +100,25 @@ class BathForm(RinseForm):
             "anode": ThingField(
                 anodes, label=_("Anode set"), required=False, help_text=_("That gives its metal to the bath.")
             ),
+            "side_reaction": WordField(
+                SideReaction.choices,
+                label=_("Besides, at an inert anode"),
+                required=False,
+                help_text=_("What the current makes or uses up; how much follows from Faraday's law."),
+            ),
+            "racks": ThingField(
+                racks,
+                label=_("Rack build-up"),
+                required=False,
+                help_text=_("Where metal is counted that grows on racks instead of on parts."),
+            ),
+            "rack_share": AmountField(
+                ["fraction"],
+                example="3 %",
+                label=_("Share that grows on racks"),
+                required=False,
+                help_text=_("Of the deposit. Empty means 3 %, assumed, if a rack build-up is chosen."),
+            ),
         }
         self.fields.update(more)
 
@@ -112,6 +135,9 @@ class BathForm(RinseForm):
             valence=cleaned["valence"],
             anode_kind=cleaned["anode_kind"],
             anode=cleaned["anode"] and get_vessel_for(self.member, cleaned["anode"]),
+            side_reaction=cleaned["side_reaction"],
+            racks=cleaned["racks"] and get_vessel_for(self.member, cleaned["racks"]),
+            rack_share=_base(cleaned["rack_share"]),
             **figures,
             **self.common(),
         )
@@ -127,6 +153,16 @@ class AnodeForm(VesselForm):
         self.fields["product"] = ThingField(
             products, label=_("Product"), required=False, help_text=_("What is bought for it.")
         )
+
+
+class HolderForm(VesselForm):
+    """What stands for solids: a filter, carbon, resin, a recovery cell, what grows on racks, sludge."""
+
+    def __init__(self, member: Membership, data: Any = None) -> None:
+        super().__init__(member, data)
+        self.fields["kind"] = WordField([(kind.value, kind.label) for kind in SOLID_HOLDERS], label=_("What it is"))
+        self.fields["capacity"].help_text = _("Of a sludge box or a resin column.")
+        self.order_fields(["kind"])
 
 
 class RackTypeForm(WebForm):

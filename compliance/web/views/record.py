@@ -77,7 +77,7 @@ def _preview(request: HttpRequest, form: RecordForm, status: int = 200) -> HttpR
     context: dict[str, Any] = {
         "heading": form.input.title,
         "form": form,
-        "verdict": verdict,
+        "answer": verdict.answer,
         "follows": words.Follows.of(folded.transfers, ends),
         "findings": [words.finding(each, ends) for each in folded.findings],
         "pairs": hidden_pairs(request.POST, without=("csrfmiddlewaretoken", "step", "more")),

@@ -1,4 +1,4 @@
-"""Tanks: baths and rinses with what they hold, anode sets, rack types, routes."""
+"""Tanks: baths and rinses with what they hold, anode sets, filters and the like, rack types, routes."""
 
 from typing import Any
 from uuid import UUID
@@ -10,17 +10,17 @@ from django.utils.translation import gettext as _
 from chemicals.ledger.models import Vessel, VesselKind
 from chemicals.ledger.selectors import list_contents_for, list_vessels_for
 from chemicals.process.selectors import get_rack_type_for, list_rack_types_for, list_routes_for
-from chemicals.process.setup import create_holder, create_rack_type, create_route, create_tank
+from chemicals.process.setup import SOLID_HOLDERS, create_holder, create_rack_type, create_route, create_tank
 from chemicals.register.selectors import get_product_for
 from chemicals.workshop.models import Membership
 from chemicals.workshop.permissions import require_writer
 from compliance.web.contents import CONTENT_COLUMNS, parts_of
 from compliance.web.door import page, show
 from compliance.web.export import Column, litres, wanted_file
-from compliance.web.forms.tanks import AnodeForm, BathForm, RackTypeForm, RinseForm, RouteForm
+from compliance.web.forms.tanks import AnodeForm, BathForm, HolderForm, RackTypeForm, RinseForm, RouteForm
 from compliance.web.views.acts import address, fill_in, sent
 
-KINDS = (VesselKind.BATH, VesselKind.RINSE, VesselKind.ANODE)
+KINDS = (VesselKind.BATH, VesselKind.RINSE, VesselKind.ANODE, *SOLID_HOLDERS)
 FORMS = {"bath": BathForm, "rinse": RinseForm}
 RACK_COLUMNS = (
     Column("rack type", lambda row: row.name),
@@ -37,7 +37,7 @@ ROUTE_COLUMNS = (
 
 @page()
 def index(request: HttpRequest, member: Membership) -> HttpResponseBase:
-    """List tanks and anode sets with what they hold, and the set-up of the line."""
+    """List tanks, anode sets, filters and the like with what they hold, and the set-up of the line."""
     contents = list_contents_for(member)
     rows = [(vessel, contents.get(vessel.pk)) for vessel in list_vessels_for(member, *KINDS)]
     racks, routes = list_rack_types_for(member), list_routes_for(member)
@@ -86,6 +86,23 @@ def add_anode(request: HttpRequest, member: Membership) -> HttpResponse:
 
     words = {"heading": _("Set up an anode set"), "button": _("Set it up"), "back": address("tanks", member)}
     return fill_in(request, member, AnodeForm(member, sent(request)), act, here="tanks", **words)
+
+
+@page("GET", "POST", need=require_writer)
+def add_holder(request: HttpRequest, member: Membership) -> HttpResponse:
+    """Set up a filter, a recovery cell, rack build-up, sludge or the like."""
+
+    def act(form: HolderForm) -> str:
+        made = create_holder(actor=member, now=timezone.now(), kind=form.cleaned_data["kind"], **form.common())
+        return address("vessel", member, made.uuid)
+
+    words = {
+        "heading": _("Set up a filter, recovery cell, sludge or the like"),
+        "button": _("Set it up"),
+        "back": address("tanks", member),
+        "intro": _("It stands for solids that take metal out of a liquid, so that the metal is counted there."),
+    }
+    return fill_in(request, member, HolderForm(member, sent(request)), act, here="tanks", **words)
 
 
 @page("GET", "POST", need=require_writer)

@@ -1,37 +1,21 @@
 """The page of a vessel: what it holds, and what is done most at a bench."""
 
-from collections.abc import Mapping, Sequence
 from uuid import UUID
 
 from django.http import HttpRequest, HttpResponse, HttpResponseRedirect
 
 from chemicals.journal.selectors import list_entries_naming
-from chemicals.ledger.models import Vessel, VesselKind
+from chemicals.ledger.models import VesselKind
 from chemicals.ledger.selectors import get_vessel_for, read_contents
-from chemicals.process.fields import Text
-from chemicals.process.inputs import INPUTS
 from chemicals.process.selectors import find_last_run, get_tank_of, list_open_analyses_for
 from chemicals.science.reactivity import REACTS_AS
 from chemicals.workshop.models import Membership
 from compliance.clearance.selectors import react_as
+from compliance.web.bench import list_bench, list_groups
 from compliance.web.door import page, show
 from compliance.web.rows import entry_rows
 from compliance.web.views.acts import address
 
-BENCH: Mapping[str, Sequence[str]] = {
-    VesselKind.BATH: ("run", "level-reading", "top-up", "analysis"),
-    VesselKind.RINSE: ("drum-off", "top-up", "level-reading", "analysis"),
-    VesselKind.STOCK: ("receipt",),
-    VesselKind.ANODE: ("receipt",),
-}
-"""What is done most at a vessel of each kind: large buttons."""
-
-RARER: Mapping[str, Sequence[str]] = {
-    VesselKind.BATH: ("make-up", "drum-off", "move", "opening"),
-    VesselKind.RINSE: ("make-up", "move", "opening"),
-    VesselKind.STOCK: ("opening",),
-    VesselKind.ANODE: ("opening",),
-}
 LAST = 10
 """How many entries the page of a vessel shows."""
 
@@ -51,15 +35,9 @@ def vessel(request: HttpRequest, member: Membership, uuid: UUID) -> HttpResponse
         tank=get_tank_of(found),
         contents=read_contents(found),
         reacts_as=[REACTS_AS[kind] for kind in sorted(react_as(found))],
-        bench=verbs(BENCH, found),
-        rarer=verbs(RARER, found),
+        bench=list_bench(found),
+        groups=list_groups(found),
         again=find_last_run(member, found),
         analyses=[pair for pair in list_open_analyses_for(member) if pair[1].vessel == str(found.uuid)],
         rows=entry_rows(member, list_entries_naming(member, found.uuid)[:LAST]),
     )
-
-
-def verbs(table: Mapping[str, Sequence[str]], vessel: Vessel) -> list[tuple[str, Text]]:
-    """Return (verb, what its button says) for a vessel; nothing is bought for a set without a product."""
-    possible = [verb for verb in table.get(vessel.kind, ()) if verb != "receipt" or vessel.product is not None]
-    return [(verb, INPUTS[verb].title) for verb in possible]

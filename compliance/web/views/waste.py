@@ -29,6 +29,7 @@ from compliance.waste.selectors import (
     state_of,
 )
 from compliance.waste.services import StreamInput, close_container, create_container, create_stream, issue_label
+from compliance.web.bench import list_groups
 from compliance.web.door import page, show
 from compliance.web.export import Column, grams, litres, wanted_file
 from compliance.web.forms.waste import CloseForm, ContainerForm, KeyForm, MayForm, StreamForm
@@ -95,6 +96,7 @@ def _container(
         "reacts_as": [REACTS_AS[kind] for kind in sorted(react_as(found.vessel))],
         "rows": entry_rows(member, list_entries_naming(member, found.vessel.uuid)[:LAST]),
         "papers": list_papers_naming(member, found.vessel.code),
+        "groups": list_groups(found.vessel),
         "state": state_of(found),
         "close_form": CloseForm(),
         "may_form": MayForm(_tanks(member), None),
