@@ -39,7 +39,6 @@ def record_matter(
     """
     require_writer(actor)
     with transaction.atomic(), scope(workshop=actor.workshop):
-        journal.lock_chain(actor)
         appended = journal.append(
             actor=actor,
             now=now,
