@@ -2,6 +2,7 @@
 
 import re
 import unicodedata
+from dataclasses import dataclass
 from decimal import ROUND_HALF_EVEN, Decimal
 from uuid import UUID
 
@@ -9,9 +10,10 @@ from django.db.models import OuterRef, Prefetch, QuerySet, Subquery
 from django_scopes import scope, scopes_disabled
 
 from chemicals.books.events import UNKNOWN_LIQUID, Figure, Recipe, Share
-from chemicals.register.models import CompositionLine, Form, Product, ProductRevision, Substance
-from chemicals.science.formula import METALS, mass_fractions
+from chemicals.register.models import CompositionLine, ExposureLimit, Form, Product, ProductRevision, Substance
+from chemicals.science.formula import METALS, mass_fractions, parse_formula
 from chemicals.science.species import nanomoles_per_microgram
+from chemicals.science.substances import Starter, list_starters
 from chemicals.workshop.errors import NotFoundError
 from chemicals.workshop.models import Membership, Workshop
 
@@ -30,6 +32,38 @@ def get_substance_for(member: Membership, uuid: UUID) -> Substance:
         raise NotFoundError("There is no such substance in this workshop.") from error
 
 
+@dataclass(frozen=True)
+class Makeup:
+    """What follows from a formula: grams per mole, grams of each metal per gram; without one None and nothing."""
+
+    molar_mass: Decimal | None
+    metals: dict[str, Decimal]
+
+
+def get_makeup(substance: Substance) -> Makeup:
+    """Return molar mass and metal fractions of a substance."""
+    if not substance.formula:
+        return Makeup(None, {})
+    formula = parse_formula(substance.formula)
+    fractions = formula.mass_fractions
+    return Makeup(formula.molar_mass, {metal: part for metal, part in fractions.items() if metal in METALS})
+
+
+def list_missing_starters(member: Membership) -> list[Starter]:
+    """Return the usual substances that no name, synonym or CAS number of this register stands for. One query."""
+    names: set[str] = set()
+    numbers: set[str] = set()
+    for row in list_substances_for(member):
+        names |= {row.name.casefold(), *(str(name).casefold() for name in row.synonyms)}
+        numbers.add(row.cas_number)
+    numbers.discard("")
+    return [
+        row
+        for row in list_starters()
+        if row.cas_number not in numbers and names.isdisjoint(name.casefold() for name in (row.name, *row.synonyms))
+    ]
+
+
 def list_products_for(member: Membership) -> QuerySet[Product]:
     """Return the products of the member's workshop, by name. One query."""
     with scope(workshop=member.workshop):
@@ -45,7 +79,7 @@ def get_product_for(member: Membership, uuid: UUID) -> Product:
 
 
 def list_current_revisions_for(member: Membership) -> QuerySet[ProductRevision]:
-    """Return the current revision of every product with composition and sheet, by product name. Two queries."""
+    """Return the current revision of every product with all that belongs to it, by product name. Three queries."""
     with scope(workshop=member.workshop):
         newest = ProductRevision.objects.filter(product=OuterRef("product")).order_by("-number")
         return _with_parts(ProductRevision.objects.filter(pk=Subquery(newest.values("pk")[:1]))).order_by(
@@ -54,7 +88,7 @@ def list_current_revisions_for(member: Membership) -> QuerySet[ProductRevision]:
 
 
 def list_revisions_of(product: Product) -> QuerySet[ProductRevision]:
-    """Return all revisions of a product, newest first. Two queries."""
+    """Return all revisions of a product, newest first. Three queries."""
     with scope(workshop=product.workshop):
         return _with_parts(ProductRevision.objects.filter(product=product)).order_by("-number")
 
@@ -69,7 +103,8 @@ def get_current_revision(product: Product) -> ProductRevision:
 
 def _with_parts(revisions: QuerySet[ProductRevision]) -> QuerySet[ProductRevision]:
     lines = Prefetch("lines", CompositionLine.objects.select_related("substance").order_by("pk"))
-    return revisions.select_related("product", "safety_data_sheet", "created_by__user").prefetch_related(lines)
+    limits = Prefetch("limits", ExposureLimit.objects.select_related("substance").order_by("pk"))
+    return revisions.select_related("product", "safety_data_sheet", "created_by__user").prefetch_related(lines, limits)
 
 
 def build_recipe(revision: ProductRevision) -> Recipe:

@@ -1,62 +1,139 @@
 """Writes of the catalogue: substances, products, revisions."""
 
-import re
-from collections.abc import Iterator
-from dataclasses import dataclass
-from datetime import date, datetime
+from collections.abc import Iterator, Sequence
+from datetime import datetime
 
 from django.db import transaction
 from django_scopes import scope
 
 from chemicals.journal import services as journal
 from chemicals.journal.models import Attachment
-from chemicals.register.hazards import check_hazards
-from chemicals.register.models import CompositionLine, Form, Per, Product, ProductRevision, Substance
-from chemicals.register.selectors import solute_code
+from chemicals.register.checks import Checked, check_revision
+from chemicals.register.inputs import LimitInput, LineInput, RevisionInput
+from chemicals.register.models import CompositionLine, ExposureLimit, Product, ProductRevision, Substance
+from chemicals.register.selectors import list_missing_starters, solute_code
+from chemicals.science.errors import TextError
 from chemicals.science.formula import METALS, FormulaError, parse_formula
-from chemicals.science.quantity import QuantityError, parse
+from chemicals.science.identity import read_cas_number, read_ec_number
 from chemicals.science.species import moles_of
 from chemicals.workshop.errors import FieldError, InvalidInputError
 from chemicals.workshop.models import Membership
 from chemicals.workshop.permissions import require_same_workshop, require_writer
 from chemicals.workshop.rows import check_row
-from chemicals.workshop.texts import tidy
+from chemicals.workshop.texts import find_bad_lines, tidy
 
-CAS_NUMBER = re.compile(r"(\d{2,7})-(\d{2})-(\d)")
+__all__ = [
+    "LimitInput",
+    "LineInput",
+    "RevisionInput",
+    "add_starter_substances",
+    "change_substance",
+    "create_product",
+    "create_substance",
+    "keep_sheet",
+    "revise_product",
+]
+
 LONGEST_CODE = 40
 """Characters of a component's code in the ledger."""
-
-
-def check_cas_number(text: str) -> None:
-    """Refuse a CAS number whose check digit does not fit (digits weighted 1, 2, 3 ... from the right, modulo 10)."""
-    match = CAS_NUMBER.fullmatch(text)
-    if match is None:
-        raise InvalidInputError.of("cas_number", "A CAS number looks like 7758-99-8.")
-    digits = (match[1] + match[2])[::-1]
-    if sum(weight * int(digit) for weight, digit in enumerate(digits, 1)) % 10 != int(match[3]):
-        raise InvalidInputError.of("cas_number", f"The check digit of {text} does not fit: read it again.")
+LONGEST_NAME, MOST_SYNONYMS = 120, 30
 
 
 def create_substance(
-    *, actor: Membership, name: str, cas_number: str = "", formula: str = "", inert: bool = False
+    *,
+    actor: Membership,
+    name: str,
+    cas_number: str = "",
+    formula: str = "",
+    inert: bool = False,
+    ec_number: str = "",
+    synonyms: Sequence[str] = (),
 ) -> Substance:
-    """Create a substance; its CAS number and formula are checked if given. An inert one is balanced by its formula."""
+    """Create a substance; its numbers and its formula are checked if given. An inert one is balanced by its formula."""
     require_writer(actor)
-    substance = Substance(workshop=actor.workshop, name=name, cas_number=cas_number, formula=formula, inert=inert)
-    errors = check_row(substance)
-    if substance.cas_number:
-        try:
-            check_cas_number(substance.cas_number)
-        except InvalidInputError as error:
-            errors.extend(error.errors)
-    errors.extend(_check_formula(substance))
+    substance = Substance(workshop=actor.workshop, name=name, formula=formula, inert=inert)
+    errors = _say(substance, cas_number, ec_number, synonyms)
     with transaction.atomic(), scope(workshop=actor.workshop):
-        if Substance.objects.filter(name=substance.name).exists():
-            errors.append(FieldError("name", "This substance is in the register already."))
-        if errors:
-            raise InvalidInputError(errors)
+        _finish(substance, errors)
         substance.save()
-        return substance
+    return substance
+
+
+def change_substance(
+    *,
+    actor: Membership,
+    substance: Substance,
+    name: str,
+    cas_number: str = "",
+    formula: str = "",
+    inert: bool = False,
+    ec_number: str = "",
+    synonyms: Sequence[str] = (),
+) -> Substance:
+    """Correct a substance. What a composition names keeps its formula, and whether it is inert: entries rely on it."""
+    require_writer(actor)
+    require_same_workshop(actor, substance)
+    with transaction.atomic(), scope(workshop=actor.workshop):
+        row = Substance.objects.select_for_update().get(pk=substance.pk)
+        before = (row.formula, row.inert)
+        row.name, row.formula, row.inert = name, formula, inert
+        errors = _say(row, cas_number, ec_number, synonyms)
+        if before != (row.formula, row.inert) and CompositionLine.objects.filter(substance=row).exists():
+            field = "formula" if before[0] != row.formula else "inert"
+            errors.append(FieldError(field, "A composition relies on this. Add another substance, revise the product."))
+        _finish(row, errors)
+        row.save()
+    return row
+
+
+def _say(substance: Substance, cas_number: str, ec_number: str, synonyms: Sequence[str]) -> list[FieldError]:
+    """Put numbers and synonyms into a row in their usual form; return everything that is wrong with the row."""
+    substance.cas_number, substance.ec_number = cas_number, ec_number
+    substance.synonyms = list(dict.fromkeys(name for text in synonyms if (name := tidy(text))))
+    errors = check_row(substance)
+    for field, read in (("cas_number", read_cas_number), ("ec_number", read_ec_number)):
+        number = getattr(substance, field)
+        if number and not any(error.field == field for error in errors):
+            try:
+                setattr(substance, field, read(number))
+            except TextError as error:
+                errors.append(FieldError(field, error.message))
+    return [*errors, *_check_formula(substance), *_check_synonyms(substance.synonyms)]
+
+
+def _check_synonyms(synonyms: Sequence[str]) -> Iterator[FieldError]:
+    if len(synonyms) > MOST_SYNONYMS:
+        yield FieldError("synonyms", f"These are more than {MOST_SYNONYMS} names. Leave some out.")
+    for name in synonyms:
+        yield from find_bad_lines(synonyms=name)
+        if len(name) > LONGEST_NAME:
+            yield FieldError("synonyms", f'"{name[:20]}…" is too long. Write it in at most {LONGEST_NAME} characters.')
+
+
+def _finish(substance: Substance, errors: list[FieldError]) -> None:
+    """Refuse a name that stands there already, together with everything else."""
+    readable = all(error.field != "name" for error in errors)  # PostgreSQL cannot even look for a text with a NUL
+    if readable and Substance.objects.filter(name=substance.name).exclude(pk=substance.pk).exists():
+        errors.append(FieldError("name", "This substance is in the register already."))
+    if errors:
+        raise InvalidInputError(errors)
+
+
+@transaction.atomic
+def add_starter_substances(*, actor: Membership) -> list[Substance]:
+    """Add the usual substances of plating by name, CAS number and formula, no hazards; those here stay as they are."""
+    require_writer(actor)
+    with scope(workshop=actor.workshop):
+        return Substance.objects.bulk_create(
+            Substance(
+                workshop=actor.workshop,
+                name=row.name,
+                cas_number=row.cas_number,
+                formula=row.formula,
+                synonyms=list(row.synonyms),
+            )
+            for row in list_missing_starters(actor)
+        )
 
 
 def _check_formula(substance: Substance) -> Iterator[FieldError]:
@@ -80,30 +157,6 @@ def _check_formula(substance: Substance) -> Iterator[FieldError]:
         yield FieldError("formula", f"The formula of what is inert has at most {LONGEST_CODE} characters.")
 
 
-@dataclass(frozen=True)
-class LineInput:
-    """A substance in a product: "98 %" of the mass, or "250 g/L"."""
-
-    substance: Substance
-    content: str
-
-
-@dataclass(frozen=True, kw_only=True)
-class RevisionInput:
-    """What is known of a product. ``density`` as typed; hazards as they stand on the safety data sheet."""
-
-    form: str
-    lines: tuple[LineInput, ...] = ()
-    complete: bool = True
-    density: str = ""
-    reactivity: tuple[str, ...] = ()
-    signal_word: str = ""
-    pictograms: tuple[str, ...] = ()
-    statements: tuple[str, ...] = ()
-    safety_data_sheet: Attachment | None = None
-    sheet_date: date | None = None
-
-
 def keep_sheet(*, actor: Membership, now: datetime, name: str, data: bytes) -> Attachment:
     """Keep a safety data sheet, so that a revision can name it. Raises InvalidInputError if it is no PDF file."""
     if not data.startswith(b"%PDF-"):
@@ -118,7 +171,7 @@ def create_product(
     require_writer(actor)
     product = Product(workshop=actor.workshop, name=name, supplier=supplier)
     errors = check_row(product)
-    checked, more = _check_revision(actor, revision)
+    checked, more = _check(actor, revision)
     with transaction.atomic(), scope(workshop=actor.workshop):
         if not errors and Product.objects.filter(name=product.name, supplier=product.supplier).exists():
             errors.append(FieldError("name", "This product of this supplier is in the register. Revise it instead."))
@@ -132,7 +185,7 @@ def revise_product(*, actor: Membership, now: datetime, product: Product, revisi
     """Write the next revision; earlier ones stay as they were."""
     require_writer(actor)
     require_same_workshop(actor, product)
-    checked, errors = _check_revision(actor, revision)
+    checked, errors = _check(actor, revision)
     if errors:
         raise InvalidInputError(errors)
     with transaction.atomic(), scope(workshop=actor.workshop):
@@ -141,85 +194,26 @@ def revise_product(*, actor: Membership, now: datetime, product: Product, revisi
         return _write_revision(actor, now, locked, number, checked)
 
 
-@dataclass(frozen=True)
-class _Checked:
-    said: RevisionInput
-    density: int | None
-    lines: tuple[tuple[LineInput, int, str], ...]
-
-
-def _check_revision(actor: Membership, said: RevisionInput) -> tuple[_Checked, list[FieldError]]:
-    require_same_workshop(actor, *(line.substance for line in said.lines))
+def _check(actor: Membership, said: RevisionInput) -> tuple[Checked, list[FieldError]]:
+    """Check what is said of a product; it may name only things of the actor's workshop."""
+    named = [line.substance for line in said.lines] + [each.substance for each in said.limits if each.substance]
+    require_same_workshop(actor, *named)
     if said.safety_data_sheet is not None:
         require_same_workshop(actor, said.safety_data_sheet)
-    errors = list(_check_sheet(said))
-    density, lines = None, []
-    if said.density.strip():
-        try:
-            density = parse(said.density, "density", default_unit="g/mL").base
-        except QuantityError as error:
-            errors.append(FieldError("density", error.message))
-    if density == 0:
-        errors.append(FieldError("density", "A density is more than zero."))
-    for number, line in enumerate(said.lines):
-        try:
-            lines.append((line, *read_content(line.content)))
-        except QuantityError as error:
-            errors.append(FieldError(f"lines.{number}.content", error.message))
-    if said.form == Form.SOLID:
-        errors += [
-            FieldError(f"lines.{said.lines.index(line)}.content", "A solid has no litres. Write % of its mass.")
-            for line, _, per in lines
-            if per == Per.LITRE
-        ]
-    if len({line.substance.pk for line in said.lines}) < len(said.lines):
-        errors.append(FieldError("lines", "A substance stands twice in the list. Add the two together."))
-    if sum(amount for _, amount, per in lines if per == Per.KILOGRAM) > 10**9:
-        errors.append(FieldError("lines", "The parts add up to more than 100 %."))
-    return _Checked(said, density, tuple(lines)), errors
-
-
-def _check_sheet(said: RevisionInput) -> Iterator[FieldError]:
-    if said.form not in Form.values:
-        yield FieldError("form", "Choose solid or liquid.")
-    yield from check_hazards(
-        signal_word=said.signal_word,
-        pictograms=said.pictograms,
-        statements=said.statements,
-        reactivity=said.reactivity,
-    )
-    if said.safety_data_sheet is not None and said.safety_data_sheet.media_type != "application/pdf":
-        yield FieldError("safety_data_sheet", "A safety data sheet is a PDF file. Choose the PDF.")
-
-
-def read_content(text: str) -> tuple[int, str]:
-    """Return (micrograms, per kilogram or litre) of "98 %" or "250 g/L". Raises QuantityError."""
-    if "/" in text:
-        return parse(text, "concentration").base, Per.LITRE
-    return parse(text, "fraction", default_unit="%").base * 1000, Per.KILOGRAM
+    return check_revision(said)
 
 
 def _write_revision(
-    actor: Membership, now: datetime, product: Product, number: int, checked: _Checked
+    actor: Membership, now: datetime, product: Product, number: int, checked: Checked
 ) -> ProductRevision:
-    said = checked.said
-    revision = ProductRevision.objects.create(
-        product=product,
-        number=number,
-        form=said.form,
-        density=checked.density,
-        complete=said.complete,
-        reactivity=sorted(said.reactivity),
-        signal_word=said.signal_word,
-        pictograms=sorted(said.pictograms),
-        statements=[tidy(text) for text in said.statements],
-        safety_data_sheet=said.safety_data_sheet,
-        sheet_date=said.sheet_date,
-        created_at=now,
-        created_by=actor,
-    )
-    CompositionLine.objects.bulk_create(
-        CompositionLine(revision=revision, substance=line.substance, typed=tidy(line.content), amount=amount, per=per)
-        for line, amount, per in checked.lines
-    )
+    revision = checked.revision
+    revision.product, revision.number = product, number
+    revision.created_at, revision.created_by = now, actor
+    revision.save()
+    for line in checked.lines:
+        line.revision = revision
+    for limit in checked.limits:
+        limit.revision = revision
+    CompositionLine.objects.bulk_create(checked.lines)
+    ExposureLimit.objects.bulk_create(checked.limits)
     return revision

@@ -75,6 +75,14 @@ _ALL: Final = (
         "0.2 mol/L",
         (("mol/L", 10**9), ("mmol/L", 10**6), ("umol/L", 10**3), ("nmol/L", 0)),
     ),
+    Dimension(
+        "air_concentration",
+        "a concentration in air",
+        "ng/m3",
+        "ng/m**3",
+        "0.05 mg/m3",
+        (("g/m3", 10**9), ("mg/m3", 10**4), ("ug/m3", 10**3), ("ng/m3", 0)),
+    ),
     Dimension("area", "an area", "mm2", "mm**2", "1.2 dm2", (("dm2", 10**4), ("cm2", 100), ("mm2", 0))),
     Dimension(
         "current_density",

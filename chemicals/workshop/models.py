@@ -6,6 +6,7 @@ from zoneinfo import ZoneInfo, available_timezones
 
 from django.contrib.auth.base_user import AbstractBaseUser, BaseUserManager
 from django.core.exceptions import ValidationError
+from django.core.validators import MaxValueValidator, MinValueValidator
 from django.db import models
 from django.db.models.functions import Lower
 from django.utils.translation import gettext_lazy as _
@@ -46,6 +47,9 @@ class User(AbstractBaseUser):
         return self.name or self.email
 
 
+MOST_SHEET_YEARS = 30
+
+
 def check_time_zone(value: str) -> None:
     """Refuse a time zone that the time zone database does not know."""
     if value not in available_timezones():
@@ -53,15 +57,30 @@ def check_time_zone(value: str) -> None:
 
 
 class Workshop(models.Model):
-    """The tenant: one premises with its people, places, vessels and books."""
+    """The tenant: one premises with its people, places, vessels and books.
+
+    A safety data sheet older than ``sheet_years`` gets a mark: the workshop's own figure, no rule of anybody else.
+    """
 
     uuid = models.UUIDField(default=uuid.uuid4, unique=True, editable=False)
     name = models.CharField(_("name"), max_length=120)
     address = models.TextField(_("address"), blank=True)
     telephone = models.CharField(_("telephone"), max_length=60, blank=True)
     time_zone = models.CharField(_("time zone"), max_length=64, default="UTC", validators=[check_time_zone])
+    sheet_years = models.PositiveSmallIntegerField(
+        _("years until a safety data sheet is marked as old"),
+        default=3,
+        validators=[MinValueValidator(1), MaxValueValidator(MOST_SHEET_YEARS)],
+    )
     invented = models.BooleanField(_("invented data"), default=False)
     created_at = models.DateTimeField()
+
+    class Meta:
+        constraints = [
+            models.CheckConstraint(
+                condition=models.Q(sheet_years__gte=1, sheet_years__lte=MOST_SHEET_YEARS), name="workshop_sheet_years"
+            )
+        ]
 
     def __str__(self) -> str:
         return self.name

@@ -37,14 +37,20 @@ def create_workshop(
 
 
 @transaction.atomic
-def change_workshop(*, actor: Membership, name: str, address: str, telephone: str, time_zone: str) -> Workshop:
-    """Change what papers print of the workshop, and the zone in which its days begin; entries keep their moments."""
+def change_workshop(
+    *, actor: Membership, name: str, address: str, telephone: str, time_zone: str, sheet_years: int | None = None
+) -> Workshop:
+    """Change what papers print of the workshop, and the zone in which its days begin; entries keep their moments.
+
+    ``sheet_years`` after which a safety data sheet is marked as old; as before if left out.
+    """
     require_owner(actor)
     workshop = Workshop.objects.select_for_update().get(pk=actor.workshop_id)
     workshop.name, workshop.time_zone = name.strip(), time_zone
     workshop.address, workshop.telephone = address.strip(), telephone.strip()
+    workshop.sheet_years = workshop.sheet_years if sheet_years is None else sheet_years
     _check(workshop)
-    workshop.save(update_fields=["name", "address", "telephone", "time_zone"])
+    workshop.save(update_fields=["name", "address", "telephone", "time_zone", "sheet_years"])
     return workshop
 
 

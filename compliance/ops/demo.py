@@ -19,7 +19,7 @@ from chemicals.ledger.models import VesselKind
 from chemicals.ledger.services import create_vessel
 from chemicals.process import setup
 from chemicals.process.inputs import INPUTS
-from chemicals.register.services import LineInput, RevisionInput, create_product, create_substance
+from chemicals.register.services import LimitInput, LineInput, RevisionInput, create_product, create_substance
 from chemicals.science.quantity import parse
 from chemicals.workshop.errors import ConflictError
 from chemicals.workshop.models import Membership, Role, User, Workshop
@@ -144,10 +144,15 @@ class Demo:
         if row.pop("sheet", False):
             data = draw_sheet(row["name"], row["supplier"], row["statements"])
             sheet = add_attachment(actor=self.owner, now=self.begins, name=f"{row['name']}.pdf", data=data)
-        name, supplier, lines = row.pop("name"), row.pop("supplier"), row.pop("lines")
+        sheet_days = row.pop("sheet_days", None)
+        name, supplier, lines, limits = row.pop("name"), row.pop("supplier"), row.pop("lines"), row.pop("limits", ())
         revision = RevisionInput(
             lines=tuple(LineInput(self.find("substances", substance), text) for substance, text in lines.items()),
+            limits=tuple(
+                LimitInput(**{**said, "substance": self.find("substances", said.get("substance"))}) for said in limits
+            ),
             safety_data_sheet=sheet,
+            sheet_date=None if sheet_days is None else self.moment(f"{sheet_days} 00:00").date(),
             **row,
         )
         made = create_product(actor=self.owner, now=self.begins, name=name, supplier=supplier, revision=revision)

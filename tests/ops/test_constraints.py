@@ -62,6 +62,7 @@ def a_component() -> int:
 OTHER_END = {"vessel_id": None, "boundary": "the moon"}
 EXAMPLES: dict[str, dict[str, Change]] = {
     "workshop.User": {"user_email_once": lambda row: {"email": row.email.upper()}},  # type: ignore[attr-defined]
+    "workshop.Workshop": {"workshop_sheet_years": {"sheet_years": 0}},
     "workshop.Membership": {"membership_once": twice, "membership_role": {"role": "king"}},
     "workshop.Place": {"place_name_once": twice},
     "jobs.Job": {
@@ -83,13 +84,17 @@ EXAMPLES: dict[str, dict[str, Change]] = {
     "register.ProductRevision": {
         "revision_number_once": twice,
         "revision_density_above_zero": {"density": 0},
+        "revision_ph_floor_range": {"ph_floor": -1},
         "revision_form": {"form": "gas"},
+        "revision_packing_group": {"packing_group": "IV", "transport_unclassified": False},
+        "revision_transport_or_none": {"transport_unclassified": True, "un_number": "1830"},
     },
     "register.CompositionLine": {
         "composition_substance_once": twice,
         "composition_not_negative": {"amount": -1},
         "composition_per": {"per": "mL"},
     },
+    "register.ExposureLimit": {"exposure_limit_kind": {"kind": "weekly"}},
     "ledger.Vessel": {"vessel_name_once": twice, "vessel_kind": {"kind": "bucket"}},
     "ledger.Component": {"component_code_once": twice, "component_kind": {"kind": "spirit"}},
     "ledger.Posting": {

@@ -29,7 +29,7 @@ from tests.web.conftest import LITRE, Line, Say, Visitor
 
 COUNTS = {
     "today": 14,
-    "register": 8,
+    "register": 9,
     "substances": 4,
     "tanks": 9,
     "entries": 11,

@@ -4,8 +4,8 @@ from django.utils.text import format_lazy
 from django.utils.translation import gettext_lazy as _
 from rest_framework import serializers
 
-from chemicals.register.hazards import PICTOGRAMS, SIGNAL_WORDS
 from chemicals.register.models import Form, Per
+from chemicals.science.ghs import PICTOGRAMS, SIGNAL_WORDS
 from chemicals.science.reactivity import REACTS_AS
 from compliance.api.fields import LONGEST_AMOUNT, Choice, Day, Flag, Identifier, Strict, Text, Words, rows
 from compliance.api.serializers.base import Figure, Person, Shape, choices_of

@@ -3,7 +3,7 @@
 from django.utils.translation import gettext_lazy as _
 from rest_framework import serializers
 
-from chemicals.register.hazards import PICTOGRAMS, SIGNAL_WORDS
+from chemicals.science.ghs import PICTOGRAMS, SIGNAL_WORDS
 from chemicals.science.reactivity import REACTS_AS
 from compliance.api.fields import BaseUnits, Choice, Day, Identifier, MomentOrDay, Strict, Text, Words
 from compliance.api.serializers.base import Estimate, Figure, Named, Person, Shape, choices_of

@@ -8,10 +8,10 @@ from django.utils.functional import lazy
 from django.utils.text import format_lazy
 from django.utils.translation import gettext_lazy as _
 
-from chemicals.register.hazards import SIGNAL_WORDS
 from chemicals.register.models import Form, ProductRevision
 from chemicals.register.selectors import list_substances_for
 from chemicals.register.services import LineInput, RevisionInput
+from chemicals.science.ghs import SIGNAL_WORDS
 from chemicals.science.quantity import show
 from chemicals.science.reactivity import REACTS_AS
 from chemicals.workshop.models import Membership
