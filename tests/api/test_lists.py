@@ -165,8 +165,8 @@ def add_paper(api: Caller, shop: Shop, number: int) -> None:
 
 
 LISTS = {
-    "places/": (add_place, 1), "substances/": (add_substance, 1), "products/": (add_product, 2),
-    "products/{product}/revisions/": (add_revision, 4), "vessels/": (add_vessel, 1), "tanks/": (add_tank, 1),
+    "places/": (add_place, 1), "substances/": (add_substance, 1), "products/": (add_product, 3),
+    "products/{product}/revisions/": (add_revision, 5), "vessels/": (add_vessel, 1), "tanks/": (add_tank, 1),
     "rack-types/": (add_rack_type, 1), "routes/": (add_route, 2), "entries/": (add_entry, 3),
     "waste-streams/": (add_stream, 1), "waste-containers/": (add_container, 2), "receivers/": (add_receiver, 1),
     "drop-offs/": (add_drop_off, 2), "papers/": (add_paper, 1),
