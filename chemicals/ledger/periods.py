@@ -25,7 +25,7 @@ from chemicals.ledger import late, projection, recompute
 from chemicals.ledger.models import Period
 from chemicals.workshop.errors import ConflictError, FieldError, InvalidInputError
 from chemicals.workshop.models import Membership, Workshop
-from chemicals.workshop.permissions import require_owner, require_same_workshop, require_writer
+from chemicals.workshop.permissions import require_owner, require_same_workshop
 from chemicals.workshop.texts import find_bad_lines, tidy
 
 ATTEMPTS = 5
@@ -50,11 +50,11 @@ class Digests:
 def close_period(*, actor: Membership, now: datetime, key: UUID, until: datetime) -> Period:
     """Close the books for everything that happened before ``until``, a midnight of the workshop that has passed.
 
-    The same ``key`` returns the first closing. The digests are reckoned before the chain is locked, and again if
-    somebody recorded anything in the period meanwhile. Raises InvalidInputError by the field ``until``, and
-    ConflictError while the books are being recomputed.
+    Only an owner may. The same ``key`` returns the first closing. The digests are reckoned before the chain is locked,
+    and again if somebody recorded anything in the period meanwhile. Raises InvalidInputError by the field ``until``,
+    and ConflictError while the books are being recomputed.
     """
-    require_writer(actor)
+    require_owner(actor)
     with scope(workshop=actor.workshop):
         for _attempt in range(ATTEMPTS):
             first = _find_closing(key, until)

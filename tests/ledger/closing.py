@@ -12,15 +12,22 @@ from chemicals.ledger.models import Period, Posting
 from chemicals.ledger.periods import close_period, reopen_period
 from chemicals.ledger.verify import verify_projection
 from chemicals.workshop.errors import DomainError, InvalidInputError
-from chemicals.workshop.models import Membership
+from chemicals.workshop.models import Membership, Role
+from tests.conftest import make_member
 from tests.process.shop import Shop
 
 BEGUN = datetime(2026, 2, 27, 23, tzinfo=UTC)
 """28 February 2026, 0:00 in Berlin: two days and a half before the tests' now."""
 
 
+def owner_of(shop: Shop) -> Membership:
+    """Return the owner of the shop; whoever works there is none."""
+    owner = shop.member.workshop.memberships.filter(role=Role.OWNER).first()
+    return owner or make_member(shop.member.workshop, Role.OWNER, "otto@alder.example")
+
+
 def close(shop: Shop, until: datetime = BEGUN, *, actor: Membership | None = None, key: UUID | None = None) -> Period:
-    return close_period(actor=actor or shop.member, now=shop.now, key=key or uuid4(), until=until)
+    return close_period(actor=actor or owner_of(shop), now=shop.now, key=key or uuid4(), until=until)
 
 
 def reopen(owner: Membership, period: Period, reason: str = "a drum was forgotten", key: UUID | None = None) -> Period:

@@ -7,6 +7,7 @@ import pytest
 from pytest_django import Settings
 
 from chemicals.workshop.models import Membership
+from tests.ledger.closing import owner_of
 from tests.process.shop import Shop
 
 
@@ -28,6 +29,7 @@ def shop(worker: Membership, now: datetime, tmp_path: Path, settings: Settings) 
 @pytest.fixture
 def week(shop: Shop) -> Shop:
     """A shop that has plated from six days ago until yesterday."""
+    owner_of(shop)
     for days in (6, 5, 4, 3, 2, 1):
         shop.record("run", days_ago=days, label=f"run {days}", route="Plate", charge="10 Ah")
     return shop

@@ -20,7 +20,7 @@ from chemicals.ledger.services import refold
 from chemicals.workshop.errors import ConflictError, DomainError, InvalidInputError
 from chemicals.workshop.models import Membership
 from tests.journal.test_concurrency import at_once
-from tests.ledger.closing import BEGUN, close, refusal, reopen
+from tests.ledger.closing import BEGUN, close, owner_of, refusal, reopen
 from tests.process.shop import Shop
 
 pytestmark = pytest.mark.django_db(transaction=True)
@@ -212,5 +212,5 @@ def test_closing_asks_for_no_lock_while_it_reckons(week: Shop, monkeypatch: pyte
     """Others record while a long period is folded: their transactions need not wait for it."""
     in_transaction: list[bool] = []
     between(monkeypatch, lambda: in_transaction.append(connection.in_atomic_block))
-    close_period(actor=week.member, now=week.now, key=BUTTON, until=BEGUN)
+    close_period(actor=owner_of(week), now=week.now, key=BUTTON, until=BEGUN)
     assert in_transaction == [False]

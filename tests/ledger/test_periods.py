@@ -112,8 +112,9 @@ def test_the_same_key_closes_once(week: Shop) -> None:
     assert "used" in refusal(lambda: close(week, BEGUN + timedelta(days=1), key=used), ConflictError)
 
 
-def test_observers_and_strangers_close_nothing(week: Shop, observer: Membership, stranger: Membership) -> None:
+def test_only_owners_close(week: Shop, observer: Membership, stranger: Membership) -> None:
     assert "Observers only read" in refusal(lambda: close(week, actor=observer), NotPermittedError)
+    assert "Only an owner" in refusal(lambda: close(week, actor=week.member), NotPermittedError)
     period = close(week)
     assert list(list_periods_for(observer)) == [period]
     assert list(list_periods_for(stranger)) == []
