@@ -2,8 +2,9 @@
 
 CAS registry number: the last digit is the sum of the others, weighted 1, 2, 3 ... from the right, modulo 10 (CAS,
 "Check digit verification of CAS registry numbers"). EC number: the last digit is the sum of the others, weighted 1, 2,
-3 ... from the left, modulo 11; numbers with a remainder of 10 were never given (EINECS, OJ C 146 A, 1990). UN numbers
-have four digits and none to check (UN Model Regulations, chapter 3.2); classes and divisions: chapter 2.0.
+3 ... from the left, modulo 11 (EINECS, OJ C 146 A, 1990); with a remainder of 10 only numbers of ELINCS, which begin
+with 4, were given, and end in 1 (Wikipedia, European Community number). UN numbers have four digits and none to check
+(UN Model Regulations, chapter 3.2); classes and divisions: chapter 2.0.
 """
 
 import re
@@ -53,7 +54,8 @@ def read_ec_number(text: str) -> str:
     found = _EC.fullmatch(typed)
     if found is None:
         raise IdentityError("ec_form")
-    if _weigh(found[1] + found[2]) % 11 != int(found[3]):
+    rest = _weigh(found[1] + found[2]) % 11
+    if int(found[3]) != (1 if rest == 10 and typed.startswith("4") else rest):
         raise IdentityError("ec_digit", typed=typed)
     return typed
 
