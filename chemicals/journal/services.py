@@ -1,6 +1,6 @@
 """Writes to the journal: append an entry, add an attachment. Nothing here changes or removes."""
 
-from collections.abc import Sequence
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 from datetime import UTC, datetime, timedelta
 from uuid import UUID
@@ -21,8 +21,24 @@ from chemicals.workshop.texts import find_bad_lines, find_unwritable, tidy
 CLOCK_TOLERANCE = timedelta(minutes=5)
 """How far ahead a device's clock may run before its time is refused as lying in the future."""
 
+FUTURE = "This lies in the future. Write when it happened."
+
+BATCH = 500
+"""How many entries are written, or looked for, at once."""
+
 MAGIC = {b"%PDF-": "application/pdf", b"\x89PNG\r\n\x1a\n": "image/png", b"\xff\xd8\xff": "image/jpeg"}
 """First bytes of the kinds of file that may be attached."""
+
+
+@dataclass(frozen=True)
+class Fact:
+    """What is appended together with others: its key, what happened and when, whether it might, its files."""
+
+    key: UUID
+    event: events.Event
+    occurred: Occurred
+    clearance: Clearance
+    attachments: tuple[str, ...] = ()
 
 
 @dataclass(frozen=True)
@@ -49,46 +65,79 @@ def append(
     content raises ConflictError. ``occurred`` None means now.
     """
     require_writer(actor)
-    if clearance.verdict not in VERDICTS:
-        raise ValueError(f"unknown verdict {clearance.verdict}")
-    when = occurred or Occurred(now)
-    _require_past(actor, now, when)
     attachments = sorted(set(attachments))
-    _require_writable(event, clearance)
+    fact = Fact(key, event, occurred or Occurred(now), clearance, tuple(attachments))
+    _require_sound(actor, now, fact)
     with transaction.atomic(), scope(workshop=actor.workshop):
         head = lock_chain(actor)
         first = Entry.objects.filter(uuid=key).select_related("member__user").first()
         if first is not None:
             return Appended(_same(first, event, occurred, attachments), is_new=False)
-        _require_free_key(key)
+        _require_free_keys([key])
         _require_files(actor, attachments)
-        body = canonical.Body(
-            format=canonical.FORMAT,
-            workshop=actor.workshop.uuid,
-            sequence=head.sequence + 1,
-            entry=key,
-            kind=event.KIND,
-            kind_version=event.VERSION,
-            occurred_at=when.at.astimezone(UTC),
-            precision=when.precision,
-            recorded_at=now.astimezone(UTC),
-            member=actor.uuid,
-            clearance=clearance,
-            payload=events.encode(event),
-            attachments=tuple(attachments),
-        )
-        return Appended(_write(actor, head, body, event), is_new=True)
+        entry = _chain(actor, now, head, fact)
+        about = event.about()
+        entry.about = None if about is None else Entry.objects.get(uuid=about)
+        entry.save(force_insert=True)
+        head.save(update_fields=["sequence", "hash"])
+        return Appended(entry, is_new=True)
 
 
-def _require_past(actor: Membership, now: datetime, when: Occurred) -> None:
-    """A day counts as past from its first hour, in the workshop's zone, though it stands for its noon."""
-    zone = actor.workshop.zone
+def append_all(*, actor: Membership, now: datetime, facts: Sequence[Fact]) -> list[Entry]:
+    """Append entries one after the other at the end of the workshop's chain, as ``append`` does, but in bulk.
+
+    Call it inside the transaction of the whole record: all are there, or none. What an entry speaks of may be appended
+    with it. Raises ConflictError if one of the keys was used before.
+    """
+    require_writer(actor)
+    for fact in facts:
+        _require_sound(actor, now, fact)
+    with transaction.atomic(), scope(workshop=actor.workshop):
+        head = lock_chain(actor)
+        _require_free_keys([fact.key for fact in facts])
+        _require_files(actor, sorted({sha256 for fact in facts for sha256 in fact.attachments}))
+        entries = [_chain(actor, now, head, fact) for fact in facts]
+        speaking = [(entry, about) for entry, fact in zip(entries, facts, strict=True) if (about := fact.event.about())]
+        spoken_of = {entry.uuid for entry, _ in speaking}
+        Entry.objects.bulk_create((entry for entry in entries if entry.uuid not in spoken_of), batch_size=BATCH)
+        _fill_in_subjects(speaking)
+        Entry.objects.bulk_create((entry for entry, _ in speaking), batch_size=BATCH)
+        head.save(update_fields=["sequence", "hash"])
+        return entries
+
+
+def _fill_in_subjects(speaking: Sequence[tuple[Entry, UUID]]) -> None:
+    found = {
+        uuid: pk
+        for batch in _batches([about for _, about in speaking])
+        for uuid, pk in Entry.objects.filter(uuid__in=batch).values_list("uuid", "pk")
+    }
+    for entry, about in speaking:
+        entry.about_id = found[about]
+
+
+def _batches(keys: Sequence[UUID]) -> Iterator[Sequence[UUID]]:
+    return (keys[first : first + BATCH] for first in range(0, len(keys), BATCH))
+
+
+def _require_sound(actor: Membership, now: datetime, fact: Fact) -> None:
+    """Refuse what the journal cannot keep, whatever else stands in it."""
+    if fact.clearance.verdict not in VERDICTS:
+        raise ValueError(f"unknown verdict {fact.clearance.verdict}")
+    if lies_ahead(actor.workshop, now, fact.occurred):
+        raise InvalidInputError.of("occurred_at", FUTURE)
+    _require_writable(fact.event, fact.clearance)
+
+
+def lies_ahead(workshop: Workshop, now: datetime, when: Occurred) -> bool:
+    """Say whether a time has not come yet.
+
+    A day has come from its first hour on, in the workshop's zone, though it stands for its noon.
+    """
+    zone = workshop.zone
     if when.precision == DAY:
-        ahead = when.at.astimezone(zone).date() > now.astimezone(zone).date()
-    else:
-        ahead = when.at > now + CLOCK_TOLERANCE
-    if ahead:
-        raise InvalidInputError.of("occurred_at", "This lies in the future. Write when it happened.")
+        return when.at.astimezone(zone).date() > now.astimezone(zone).date()
+    return when.at > now + CLOCK_TOLERANCE
 
 
 def _require_writable(event: events.Event, clearance: Clearance) -> None:
@@ -113,11 +162,25 @@ def lock_head(workshop: Workshop) -> Head:
     return head
 
 
-def _write(actor: Membership, head: Head, body: canonical.Body, event: events.Event) -> Entry:
-    data = canonical.encode_body(body)
-    previous = bytes(head.hash)
-    about = event.about()
-    entry = Entry.objects.create(
+def _chain(actor: Membership, now: datetime, head: Head, fact: Fact) -> Entry:
+    """Return the next entry of the chain, not saved yet, and move the head on to it."""
+    body = canonical.Body(
+        format=canonical.FORMAT,
+        workshop=actor.workshop.uuid,
+        sequence=head.sequence + 1,
+        entry=fact.key,
+        kind=fact.event.KIND,
+        kind_version=fact.event.VERSION,
+        occurred_at=fact.occurred.at.astimezone(UTC),
+        precision=fact.occurred.precision,
+        recorded_at=now.astimezone(UTC),
+        member=actor.uuid,
+        clearance=fact.clearance,
+        payload=events.encode(fact.event),
+        attachments=fact.attachments,
+    )
+    data, previous = canonical.encode_body(body), bytes(head.hash)
+    entry = Entry(
         workshop=actor.workshop,
         sequence=body.sequence,
         uuid=body.entry,
@@ -128,13 +191,11 @@ def _write(actor: Membership, head: Head, body: canonical.Body, event: events.Ev
         recorded_at=body.recorded_at,
         member=actor,
         verdict=body.clearance.verdict,
-        about=None if about is None else Entry.objects.get(uuid=about),
         body=data,
         previous_hash=previous,
         hash=canonical.chain_hash(previous, data),
     )
     head.sequence, head.hash = entry.sequence, entry.hash
-    head.save(update_fields=["sequence", "hash"])
     return entry
 
 
@@ -153,9 +214,10 @@ def _same(first: Entry, event: events.Event, occurred: Occurred | None, attachme
     return first
 
 
-def _require_free_key(key: UUID) -> None:
+def _require_free_keys(keys: Sequence[UUID]) -> None:
     with scopes_disabled():
-        if Entry.objects.filter(uuid=key).exists():
+        used = any(Entry.objects.filter(uuid__in=batch).exists() for batch in _batches(keys))
+        if used or len(set(keys)) < len(keys):
             raise ConflictError("This key was used before. Open a fresh form and record again.")
 
 
@@ -177,6 +239,15 @@ def add_attachment(*, actor: Membership, now: datetime, name: str, data: bytes) 
         errors.append(FieldError("file", "Only PDF, PNG and JPEG files are kept. Choose one of these."))
     if errors or media_type is None:
         raise InvalidInputError(errors)
+    return keep_file(actor=actor, now=now, name=name, data=data, media_type=media_type)
+
+
+def keep_file(*, actor: Membership, now: datetime, name: str, data: bytes, media_type: str) -> Attachment:
+    """Keep a file of which the caller knows what it is; the same bytes are kept once."""
+    require_writer(actor)
+    errors = find_bad_lines(name=name)
+    if errors:
+        raise InvalidInputError([FieldError("file", error.message) for error in errors])
     sha256 = files.keep(data)
     with scope(workshop=actor.workshop):
         attachment, _ = Attachment.objects.get_or_create(

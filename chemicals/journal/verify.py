@@ -1,6 +1,6 @@
 """Re-hash the journal and compare it with its columns and files: the first broken entry is named."""
 
-from collections.abc import Iterator
+from collections.abc import Generator, Iterator
 from dataclasses import dataclass
 from typing import Any
 
@@ -40,6 +40,8 @@ class Walk:
     def __init__(self, workshop: Workshop, listed: frozenset[str]) -> None:
         self.workshop = workshop
         self.listed = listed
+        self.checked: dict[str, str | None] = {}
+        """What is wrong with each file that an entry named so far: many entries may name the same one."""
         self.sequence = 0
         self.hash = canonical.GENESIS
 
@@ -50,9 +52,19 @@ class Walk:
             found.append(Problem(self.sequence + 1, "The entry is missing: it was removed or moved."))
         elif bytes(entry.previous_hash) != self.hash:
             found.append(Problem(entry.sequence, "The hash before does not fit: an entry was changed or moved."))
-        found += [Problem(entry.sequence, message) for message in _check_entry(self.workshop, entry, self.listed)]
+        found += [Problem(entry.sequence, message) for message in self._check(entry)]
         self.sequence, self.hash = entry.sequence, bytes(entry.hash)
         return found
+
+    def _check(self, entry: Entry) -> Iterator[str]:
+        body = yield from _check_entry(self.workshop, entry)
+        for sha256 in () if body is None else body.attachments:
+            if sha256 not in self.checked:
+                gone = f"The file {sha256} is not listed any more."
+                self.checked[sha256] = _check_file(sha256) if sha256 in self.listed else gone
+            message = self.checked[sha256]
+            if message:
+                yield message
 
     def end(self, head: Head | None) -> list[Problem]:
         """Return what is wrong with the end of the chain."""
@@ -64,23 +76,21 @@ class Walk:
         return [] if digest == self.hash else [Problem(sequence, "The hash at the end of the chain does not fit.")]
 
 
-def _check_entry(workshop: Workshop, entry: Entry, listed: frozenset[str]) -> Iterator[str]:
+def _check_entry(workshop: Workshop, entry: Entry) -> Generator[str, None, canonical.Body | None]:
+    """Yield what is wrong with an entry by itself; return what its bytes say, if they can be read."""
     if canonical.chain_hash(bytes(entry.previous_hash), bytes(entry.body)) != bytes(entry.hash):
         yield "The bytes were changed: their hash does not fit."
-        return
+        return None
     try:
         body = canonical.decode_body(bytes(entry.body))
         event = events.decode(body.kind, body.kind_version, body.payload)
     except ValueError as error:
         yield f"The bytes cannot be read: {error}"
-        return
+        return None
     for name, column, said in _compare(workshop, entry, body, event):
         if column != said:
             yield f"The column {name} says {column}, the bytes say {said}."
-    for sha256 in body.attachments:
-        message = _check_file(sha256) if sha256 in listed else f"The file {sha256} is not listed any more."
-        if message:
-            yield message
+    return body
 
 
 def _compare(
