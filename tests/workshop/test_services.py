@@ -58,6 +58,15 @@ def test_an_address_may_have_lines(now: datetime) -> None:
     assert member.workshop.address == "1 Lane\nTown"
 
 
+@pytest.mark.parametrize(("years", "kept"), [(5, 5), (None, 3)])
+def test_when_a_sheet_is_old_is_the_workshop_s_own_figure(owner: Membership, years: int | None, kept: int) -> None:
+    said = {"name": "Alder", "address": "", "telephone": "", "time_zone": "UTC"}
+    assert services.change_workshop(actor=owner, **said, sheet_years=years).sheet_years == kept
+    with pytest.raises(InvalidInputError) as caught:
+        services.change_workshop(actor=owner, **said, sheet_years=0)
+    assert fields_of(caught.value) == ["sheet_years"]
+
+
 @pytest.mark.django_db
 @pytest.mark.parametrize(
     ("email", "password", "name", "fields"),
