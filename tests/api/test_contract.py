@@ -51,6 +51,7 @@ def name_things(api: Caller, shop: Shop) -> Known:
         "target": [*tanks, *drum], "container": drum, "containers": drum, "waste-containers": drum, "anode": stock,
         "entry": [entry], "entries": [entry], "analysis": [entry], "places": one["place"], "products": one["product"],
         "substance": one["sulfate"], "substances": one["sulfate"], "rack-types": one["rack"], "routes": one["route"],
+        "bath": tanks[:1], "filtrate": [*tanks, *drum], "sludge": drum,
         "waste-streams": one["stream"], "receivers": one["receiver"], "workshops": one["workshop"],
     }  # fmt: skip
 

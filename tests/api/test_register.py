@@ -93,6 +93,42 @@ def test_a_bath_is_set_up_with_the_figures_of_its_runs(api: Caller, shop: Shop) 
     assert api.get(f"tanks/{tank['vessel']['uuid']}/").json() == tank
 
 
+def test_a_chromium_bath_is_set_up_with_rack_build_up_and_what_it_uses_up(api: Caller, shop: Shop) -> None:
+    racks = api.post("vessels/", {"kind": "racks", "name": "Build-up"}).json()
+    said = {
+        "kind": "bath", "name": "Chromium", "metal": "Cr", "valence": 6, "efficiency": "15 %", "anode_kind": "inert",
+        "side_reaction": "chromium(VI)", "racks": racks["uuid"], "rack_share": "4 %",
+    }  # fmt: skip
+    tank = api.post("tanks/", said).json()
+    assert (tank["side_reaction"], tank["rack_share"]["text"]) == ("chromium(VI)", "4 %")
+    assert tank["racks"] == {"uuid": racks["uuid"], "name": "Build-up"}
+    wrong = {
+        **said,
+        "name": "Second",
+        "metal": "Cu",
+        "valence": 2,
+        "racks": str(shop.rinse.uuid),
+        "rack_share": "100 %",
+    }
+    assert set(errors_of(api.post("tanks/", wrong), 400)) == {"side_reaction", "racks", "rack_share"}
+    assert set(errors_of(api.post("tanks/", {**said, "name": "Third", "racks": str(uuid4())}), 400)) == {"racks"}
+
+
+@pytest.mark.parametrize("kind", ["filter", "carbon", "resin", "recovery cell", "racks", "sludge"])
+def test_what_stands_for_solids_is_set_up_by_its_kind(api: Caller, shop: Shop, kind: str) -> None:
+    made = api.post("vessels/", {"kind": kind, "name": "It", "place": str(shop.place.uuid), "capacity": "10 L"})
+    assert (made.status_code, made.json()["kind"], made.json()["product"]) == (201, kind, None)
+    wrong = api.post("vessels/", {"kind": kind, "name": "Other", "product": str(shop.product.uuid)})
+    assert set(errors_of(wrong, 400)) == {"product"}
+
+
+def test_a_substance_may_be_declared_inert(api: Caller) -> None:
+    made = api.post("substances/", {"name": "Glauber's salt", "formula": "Na2SO4", "inert": True})
+    assert made.json()["inert"] is True
+    wrong = api.post("substances/", {"name": "Prussic salt", "formula": "NaCN", "inert": True})
+    assert "free cyanide" in errors_of(wrong, 400)["inert"]
+
+
 def test_what_a_tank_lacks_is_named(api: Caller, shop: Shop) -> None:
     wrong = api.post("tanks/", {"kind": "bath", "name": "Bath", "metal": "Cu", "capacity": "5 L", "mark": "6 L",
                                 "anode_kind": "soluble"})  # fmt: skip

@@ -48,6 +48,12 @@ BATH: dict[str, Any] = {"kind": "bath", "name": "Nickel", "metal": "Ni", "valenc
         ({"efficiency": 1_200_000}, ["efficiency"]),
         ({"anode_kind": "soluble"}, ["anode"]),
         ({"anode_kind": "magic"}, ["anode_kind"]),
+        ({"side_reaction": "acid"}, ["side_reaction"]),
+        ({"side_reaction": "magic", "anode_kind": "inert"}, ["side_reaction"]),
+        ({"side_reaction": "chromium(VI)", "anode_kind": "inert"}, ["side_reaction"]),
+        ({"side_reaction": "acid", "anode_kind": "inert", "metal": "", "valence": None}, ["side_reaction"]),
+        ({"rack_share": 30_000}, ["racks"]),
+        ({"rack_share": 1_000_000}, ["racks", "rack_share"]),
         ({"bath_type": "x" * 81}, ["bath_type"]),
         ({"name": "", "metal": "Xx", "efficiency": 0}, ["name", "metal", "efficiency"]),
     ],
@@ -59,6 +65,14 @@ def test_a_tank_is_refused_by_field(empty_shop: Shop, said: dict[str, Any], fiel
     with scope(workshop=empty_shop.member.workshop):
         assert not Vessel.objects.filter(name="Nickel").exists()
         assert Tank.objects.count() == 3
+
+
+def test_rack_build_up_is_of_its_kind_and_of_a_bath_that_plates(empty_shop: Shop) -> None:
+    racks, anodes = empty_shop.holder("Build-up", kind="racks"), empty_shop.holder("Old anodes", kind="anode")
+    with pytest.raises(InvalidInputError, match="This is no rack build-up"):
+        empty_shop.tank("Nickel", kind="bath", metal="Ni", valence=2, racks=anodes)
+    with pytest.raises(InvalidInputError, match="Nothing grows on racks where nothing is plated"):
+        empty_shop.tank("Pickle", kind="bath", racks=racks)
 
 
 def test_an_anode_set_is_no_rinse(empty_shop: Shop) -> None:
@@ -130,9 +144,9 @@ def test_a_route_keeps_its_order(empty_shop: Shop) -> None:
 
 @pytest.mark.parametrize(
     ("kind", "named", "fields"),
-    [("tank", True, ["kind"]), ("stock", False, ["product"]), ("bath", False, ["kind"])],
+    [("tank", True, ["kind"]), ("stock", False, ["product"]), ("bath", False, ["kind"]), ("sludge", True, ["product"])],
 )
-def test_a_holder_is_a_stock_container_or_an_anode_set(
+def test_a_holder_is_stock_anodes_or_stands_for_solids(
     empty_shop: Shop, kind: str, *, named: bool, fields: list[str]
 ) -> None:
     product = empty_shop.product("Zinc", {"Zn": "99 %"}) if named else None

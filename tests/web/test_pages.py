@@ -17,7 +17,8 @@ from compliance.waste.services import close_container, issue_label
 from tests.web.conftest import Line, Visitor, text_of
 
 WRITING = (
-    "add-product", "add-substance", "add-anode", "add-rack-type", "add-route", "add-stream", "add-container",
+    "add-product", "add-substance", "add-anode", "add-holder", "add-rack-type", "add-route", "add-stream",
+    "add-container",
     "add-drop-off", "add-receiver", "add-place", "add-token",
 )  # fmt: skip
 OWNING = ("workshop-settings", "invite")

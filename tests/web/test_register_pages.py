@@ -8,8 +8,9 @@ from django.core.files.uploadedfile import SimpleUploadedFile
 from django.http import HttpResponse
 from django_scopes import scopes_disabled
 
-from chemicals.ledger.models import Vessel
+from chemicals.ledger.models import Vessel, VesselKind
 from chemicals.process.models import RackType, Route, Tank
+from chemicals.process.setup import SOLID_HOLDERS
 from chemicals.register.models import Product, Substance
 from chemicals.register.selectors import get_current_revision
 from chemicals.workshop.models import Membership
@@ -125,6 +126,37 @@ def test_a_bath_is_set_up_with_figures_as_typed(visit: Visitor, line: Line) -> N
     tank = Tank._base_manager.get(vessel__name="Bath 2")
     assert (tank.vessel.capacity, tank.mark, tank.efficiency) == (30_283_294_272, 20 * LITRE, 980_000)
     assert tank.anode == anode
+
+
+def test_a_bath_is_set_up_with_rack_build_up_and_side_reaction(visit: Visitor, line: Line) -> None:
+    made = visit.post("add-holder", kind="racks", name="Build-up")
+    racks = Vessel._base_manager.get(name="Build-up")
+    assert made.headers["Location"] == visit.address("vessel", racks.uuid)
+    figures = {"metal": "Ni", "valence": "2", "anode_kind": "inert", "side_reaction": "acid", "rack_share": "4 %"}
+    assert visit.post("add-tank", "bath", name="Nickel", racks=racks.uuid, **figures).status_code == 302
+    tank = Tank._base_manager.get(vessel__name="Nickel")
+    assert (tank.side_reaction, tank.racks, tank.rack_share) == ("acid", racks, 40_000)
+    page = text_of(visit.get("vessel", tank.vessel.uuid))
+    assert "acid is made (acid bath)" in page
+    assert f'<a href="{visit.address("vessel", racks.uuid)}">Build-up</a>, 4 %' in page
+    wrong = visit.post("add-tank", "bath", name="Second", racks=racks.uuid, rack_share="120 %", side_reaction="acid")
+    assert set(re.findall(r'href="#id_([a-z_]+)"', text_of(wrong))) == {"racks", "rack_share", "side_reaction"}
+
+
+@pytest.mark.parametrize("kind", SOLID_HOLDERS)
+def test_what_stands_for_solids_is_set_up_and_listed(visit: Visitor, line: Line, kind: VesselKind) -> None:
+    visit.post("add-holder", kind=kind, name="The new one", capacity="10 L")
+    page = text_of(visit.get("tanks"))
+    assert f"<h2>{kind.label.capitalize()}</h2>" in page
+    assert "The new one" in page
+    assert visit.post("add-holder", kind="bath", name="No holder").status_code == 400
+
+
+def test_a_substance_is_declared_inert(visit: Visitor) -> None:
+    assert visit.post("add-substance", name="Glauber's salt", formula="Na2SO4", inert="on").status_code == 302
+    assert "reacts with nothing here" in text_of(visit.get("substances"))
+    page = visit.post("add-substance", name="Acid", formula="H2SO4", inert="on")
+    assert "This brings acid, which reacts." in text_of(page)
 
 
 def test_what_does_not_fit_together_is_told(visit: Visitor, line: Line) -> None:
