@@ -192,12 +192,20 @@ def require_open(entry: Entry, event: events.Event) -> None:
     start = late.find_start(entry, event)
     if last is None or start is None or min(start[0], entry.occurred_at) >= last.until:
         return
-    closed = f"The books are closed for everything before {_spell(entry.workshop, last.until)}."
-    if entry.occurred_at < last.until:
-        remedy = "Date this later, record a correction, or let an owner open the period again."
-    else:
+    message = explain_closed(last)
+    if entry.occurred_at >= last.until:
         remedy = "What this entry speaks of lies before: record a correction, or let an owner open the period again."
-    raise InvalidInputError.of("occurred_at", f"{closed} {remedy}")
+        message = f"{_say_closed(last)} {remedy}"
+    raise InvalidInputError.of("occurred_at", message)
+
+
+def explain_closed(period: Period) -> str:
+    """Return why nothing that happened before the end of a closed period is recorded any more, and what to do."""
+    return f"{_say_closed(period)} Date this later, record a correction, or let an owner open the period again."
+
+
+def _say_closed(period: Period) -> str:
+    return f"The books are closed for everything before {_spell(period.workshop, period.until)}."
 
 
 def require_closed(entry: Entry) -> None:

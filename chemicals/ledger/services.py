@@ -1,5 +1,6 @@
 """Writes of the ledger: vessels, and the projection of entries. Called inside the transaction of the whole record."""
 
+from collections.abc import Sequence
 from datetime import datetime
 
 from django.db import IntegrityError, transaction
@@ -14,6 +15,7 @@ from chemicals.ledger.codes import make_code
 from chemicals.ledger.followed import NOTHING, components_of, read_followed, write_followed
 from chemicals.ledger.models import Vessel, VesselKind
 from chemicals.ledger.selectors import list_outdated_books
+from chemicals.ledger.together import find_first, remember_all
 from chemicals.register.models import Product
 from chemicals.workshop.errors import FieldError, InvalidInputError
 from chemicals.workshop.models import Membership, Place, Workshop
@@ -89,6 +91,26 @@ def project_entry(entry: Entry, event: events.Event) -> fold.Folded:
             late.remember_meanwhile(entry.workshop, entry, event)
             return NOTHING
         return read_followed([entry], projection.Names(entry.workshop, ()))[entry.pk] or NOTHING
+
+
+def project_entries(workshop: Workshop, now: datetime, recorded: Sequence[tuple[Entry, events.Event]]) -> bool:
+    """Bring the ledger up to date with entries that were recorded together; say whether the books stand now.
+
+    Call it under the chain's lock; none of them is a cancellation. Everything is folded again from the earliest of them on, at once or, with more than
+    LATE_LIMIT entries from there on, by the job. Raises InvalidInputError for what would change a closed period.
+    """
+    with transaction.atomic(), scope(workshop=workshop):
+        first = find_first(recorded)
+        if first is None:
+            return True
+        periods.require_open(*first)
+        books = recompute.get_books(workshop)
+        if books.position is None and books.fold_version != fold.VERSION:
+            refold(workshop)
+        elif not late.fold_again(workshop, now, recompute.order_of(first[0])):
+            remember_all(workshop, recorded)
+            return False
+        return True
 
 
 def _fold_at_the_end(entry: Entry, event: events.Event) -> fold.Folded:

@@ -120,12 +120,15 @@ def describe(data: type[Any]) -> Sequence[tuple[str, FieldKind]]:
     return [(f.name, f.metadata["kind"]) for f in dataclasses.fields(data)]
 
 
-def read_amount(kind: AmountField, typed: str) -> Quantity:
-    """Return the amount that was typed, in the dimension that its unit belongs to. Raises QuantityError."""
+def read_amount(kind: AmountField, typed: str, unit: str | None = None) -> Quantity:
+    """Return the amount that was typed, in the dimension that its unit belongs to. Raises QuantityError.
+
+    A bare number is taken in the ``unit``, if one is given.
+    """
     errors = []
     for dimension in kind.dimensions:
         try:
-            return parse(typed, dimension)
+            return parse(typed, dimension, default_unit=unit)
         except QuantityError as error:
             errors.append(error)
     raise _join(kind, errors)

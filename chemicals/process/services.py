@@ -11,9 +11,9 @@ from chemicals.books import events
 from chemicals.books.clearance import Clearance
 from chemicals.journal import services as journal
 from chemicals.journal.models import Entry
-from chemicals.journal.services import Appended
+from chemicals.journal.services import Appended, Fact
 from chemicals.ledger.periods import require_closed
-from chemicals.ledger.services import project_entry
+from chemicals.ledger.services import project_entries, project_entry
 from chemicals.process.build import Built
 from chemicals.workshop.errors import ConflictError, InvalidInputError
 from chemicals.workshop.models import Membership
@@ -49,20 +49,37 @@ def record_matter(
             attachments=attachments,
         )
         if appended.is_new:
-            _require_possible(appended.entry, built.event)
+            if appended.entry.about is not None:
+                require_possible(appended.entry.about, built.event, but=appended.entry)
             project_entry(appended.entry, built.event)
         return appended
 
 
-def _require_possible(entry: Entry, event: events.Event) -> None:
-    """Refuse what earlier entries make impossible; the transaction is rolled back with the entry in it."""
-    if entry.about is None:
-        return
+def record_past(*, actor: Membership, now: datetime, facts: Sequence[Fact]) -> list[Entry]:
+    """Record what happened some time ago, all of it or nothing, and bring the ledger up to date as far as it can be.
+
+    With many entries that fold a job does the rest: see ``ledger.services.project_entries``. None of them is a
+    cancellation. Raises InvalidInputError and ConflictError as ``record_matter`` does.
+    """
+    require_writer(actor)
+    with transaction.atomic(), scope(workshop=actor.workshop):
+        entries = journal.append_all(actor=actor, now=now, facts=facts)
+        recorded = [(entry, fact.event) for entry, fact in zip(entries, facts, strict=True)]
+        fresh = {entry.pk for entry in entries}
+        for entry, event in recorded:
+            if entry.about_id is not None and entry.about_id not in fresh:
+                require_possible(Entry.objects.get(pk=entry.about_id), event, but=entry)
+        project_entries(actor.workshop, now, recorded)
+        return entries
+
+
+def require_possible(about: Entry, event: events.Event, *, but: Entry | None = None) -> None:
+    """Refuse what the entry that an event speaks of makes impossible, or what others (``but`` one) say of it."""
     if isinstance(event, events.Correction):
-        require_closed(entry.about)
-    if isinstance(event, events.Cancellation) and entry.about.kind in PERIODS:
+        require_closed(about)
+    if isinstance(event, events.Cancellation) and about.kind in PERIODS:
         raise InvalidInputError.of("entry", "A closing cannot be cancelled. Let an owner open the period again.")
-    others = list(Entry.objects.filter(about=entry.about).exclude(pk=entry.pk))
+    others = [entry for entry in Entry.objects.filter(about=about) if entry != but]
     cancelled = set(
         Entry.objects.filter(kind=events.Cancellation.KIND, about__in=others).values_list("about_id", flat=True)
     )

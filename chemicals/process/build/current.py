@@ -56,12 +56,12 @@ def plating_onto(draft: Draft, tank: Vessel, target: Vessel | None, metal: str) 
 
     Of a metal that the tank does not plate itself (a rinse, an impurity) the current efficiency is assumed.
     """
-    own = find_bath(tank)
+    own = draft.known.once(("bath", tank.pk), lambda: find_bath(tank))
     cell = target is not None and target.kind == VesselKind.RECOVERY_CELL
     if own is not None and metal in ("", own.metal):
         plating = plating_in(own)
         return Plating(plating.deposit, None if cell else plating.anode, None, None, plating.conversions)
-    feeds = [own] if own is not None else find_feeds(tank)
+    feeds = [own] if own is not None else draft.known.once(("feeds", tank.pk), lambda: find_feeds(tank))
     metals = {bath.metal for bath in feeds}
     if not metal and len(metals) != 1:
         draft.refuse("metal", "Which metal came out of this tank is not known here. Choose the metal.")
