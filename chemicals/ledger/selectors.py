@@ -11,12 +11,23 @@ from django_scopes import scope, scopes_disabled
 from chemicals.books import fold
 from chemicals.books.events import GROSS_MASS, VOLUME
 from chemicals.books.fold.arithmetic import quotient
-from chemicals.books.fold.state import State, Transfer
+from chemicals.books.fold.state import EVERY, State, Transfer
 from chemicals.jobs import models as jobs
 from chemicals.journal.models import Entry
 from chemicals.ledger import projection, recompute
 from chemicals.ledger.codes import tidy_code
-from chemicals.ledger.models import Books, Content, Finding, Holding, Memory, Period, Posting, Vessel, VesselKind
+from chemicals.ledger.models import (
+    Books,
+    ClosingHolding,
+    Content,
+    Finding,
+    Holding,
+    Memory,
+    Period,
+    Posting,
+    Vessel,
+    VesselKind,
+)
 from chemicals.workshop.errors import NotFoundError
 from chemicals.workshop.models import Membership, Workshop
 
@@ -232,6 +243,18 @@ def get_period_for(member: Membership, uuid: UUID) -> Period:
         return list_periods_for(member).get(closing__uuid=uuid)
     except Period.DoesNotExist as error:
         raise NotFoundError("There is no such period in this workshop.") from error
+
+
+def list_closing_holdings_of(period: Period) -> QuerySet[ClosingHolding]:
+    """Return what every vessel held at the end of a closed period, by vessel. One query.
+
+    A row of everything else is there only where the list was incomplete.
+    """
+    with scope(workshop=period.workshop):
+        rows = ClosingHolding.objects.filter(period=period).exclude(component__code=EVERY, amount__isnull=False)
+        return rows.select_related("vessel", "component").order_by(
+            "vessel__name", "-component__kind", "component__code"
+        )
 
 
 def get_closed_until(workshop: Workshop) -> datetime | None:

@@ -16,6 +16,7 @@ from django_scopes import scope
 from chemicals.books.occurred import Occurred
 from chemicals.journal.services import add_attachment
 from chemicals.ledger.models import VesselKind
+from chemicals.ledger.periods import close_period
 from chemicals.ledger.services import create_vessel
 from chemicals.process import setup
 from chemicals.process.inputs import INPUTS
@@ -221,6 +222,7 @@ class Demo:
                 "label container": self.label_container,
                 "pack drop-off": self.pack_drop_off,
                 "hand over drop-off": self.hand_over,
+                "close period": self.close_period,
             }
             steps[verb](actor, now, said)
 
@@ -250,6 +252,10 @@ class Demo:
         """Hand the receiver's latest drop-off over."""
         drop_off = DropOff.objects.filter(receiver=self.find("receivers", said["receiver"])).latest("pk")
         dropoffs.hand_over(actor=actor, now=now, drop_off=drop_off)
+
+    def close_period(self, actor: Membership, now: datetime, said: Row) -> None:
+        """Close the books through a day."""
+        close_period(actor=actor, now=now, key=uuid4(), until=self.moment(f"{said['through'] - 1} 00:00"))
 
 
 def _tuples(row: Row) -> dict[str, Any]:

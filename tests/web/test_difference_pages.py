@@ -77,6 +77,6 @@ def test_it_asks_as_often_for_three_rows_as_for_one(
     visit: Visitor, filled: Line, say: Say, django_assert_num_queries: Any
 ) -> None:
     for litres in (14, 13, 12):
-        with django_assert_num_queries(14):
+        with django_assert_num_queries(15):
             assert visit.get("difference", query="?component=everything").status_code == 200
         say(LevelInput(vessel=filled.bath.uuid, volume=parse(f"{litres} L", "volume")))

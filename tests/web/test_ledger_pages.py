@@ -232,6 +232,6 @@ def test_the_page_asks_as_often_for_three_lines_as_for_one(
     visit: Visitor, filled: Line, say: Say, django_assert_num_queries: Any
 ) -> None:
     for litres in (14, 13, 12):
-        with django_assert_num_queries(16):
+        with django_assert_num_queries(17):
             assert visit.get("ledger", filled.bath.uuid, query="?component=volume").status_code == 200
         say(LevelInput(vessel=filled.bath.uuid, volume=parse(f"{litres} L", "volume")))

@@ -3,6 +3,7 @@
 from collections.abc import Callable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, field
 from typing import Any
+from uuid import uuid4
 
 from django import forms
 from django.forms.boundfield import BoundField
@@ -73,11 +74,43 @@ class Problem:
     message: str
 
 
+@dataclass(frozen=True)
+class Group:
+    """Parts of a long form that belong together, under a name; ``folded`` away until something stands in them."""
+
+    name: str
+    label: Text
+    parts: Sequence[str]
+    folded: bool = False
+
+
+@dataclass(frozen=True)
+class ShownGroup:
+    """A group with its parts, as a page shows it."""
+
+    group: Group
+    parts: Sequence[BoundField | Rows]
+    asked: str = ""
+    """The name of the rows of which more were asked for."""
+
+    @property
+    def is_open(self) -> bool:
+        """Say whether its parts show at once."""
+        return not self.group.folded or self.asked in self.group.parts or any(map(_is_written, self.parts))
+
+
+def _is_written(part: BoundField | Rows) -> bool:
+    if isinstance(part, Rows):
+        return any(form.initial or (form.is_bound and form.has_changed()) for form in part.forms)
+    return bool(part.value() or part.errors)
+
+
 class Shown(Quiet):
     """What the templates ask of a form: its parts in order, and all errors in one list."""
 
     rows: Mapping[str, Rows] = {}
     order: Sequence[str] = ()
+    groups: Sequence[Group] = ()
     details: frozenset[str] = frozenset()
     """Names of the parts for those who know more than is needed: shown last, folded away."""
 
@@ -93,8 +126,18 @@ class Shown(Quiet):
 
     @property
     def main_parts(self) -> list[BoundField | Rows]:
-        """Return what everybody is asked."""
-        return [part for part in self.all_parts if part.name not in self.details]
+        """Return what everybody is asked, outside of groups."""
+        apart = self.details.union(*(group.parts for group in self.groups))
+        return [part for part in self.all_parts if part.name not in apart]
+
+    @property
+    def all_groups(self) -> list[ShownGroup]:
+        """Return the groups with those of their parts that this form has."""
+        parts = {part.name: part for part in self.all_parts}
+        asked = self.data.get("more", "")
+        return [
+            ShownGroup(group, [parts[name] for name in group.parts if name in parts], asked) for group in self.groups
+        ]
 
     @property
     def detail_parts(self) -> list[BoundField | Rows]:
@@ -162,6 +205,15 @@ class WebForm(Shown):
                     filled[int(path[0])].add_error(path[1], each.message)
                     continue
             self.add_error(name if name in self.fields else None, each.message)
+
+
+class KeyForm(WebForm):
+    """A form with a key: a second press of its button is harmless."""
+
+    key = forms.UUIDField(widget=forms.HiddenInput)
+
+    def __init__(self, data: Any = None) -> None:
+        super().__init__(data, initial={"key": uuid4()})
 
 
 def _problems(form: forms.Form, before: str) -> list[Problem]:

@@ -1,15 +1,16 @@
-"""Forms that choose a period and what to look at in it: they make an address that can be kept."""
+"""Forms that choose a period and what to look at in it, and those that close one and open it again."""
 
 from collections.abc import Mapping, Sequence
 from datetime import date, datetime, time, timedelta
 from typing import Any, ClassVar
 
 from django import forms
+from django.core.exceptions import ValidationError
 from django.utils import timezone
 from django.utils.translation import gettext_lazy as _
 
-from compliance.web.forms.base import Shown
-from compliance.web.forms.fields import NO_CHOICE, DayField, Text
+from compliance.web.forms.base import KeyForm, Shown
+from compliance.web.forms.fields import NO_CHOICE, DayField, LineField, Text
 
 DAY = timedelta(days=1)
 
@@ -17,6 +18,16 @@ DAY = timedelta(days=1)
 def start_of(day: date) -> datetime:
     """Return the moment at which a day begins in the workshop's zone."""
     return datetime.combine(day, time(), timezone.get_current_timezone())
+
+
+def start_after(day: date) -> datetime:
+    """Return the moment at which the day after begins: the first that belongs to the day no more."""
+    return start_of(day + DAY)
+
+
+def last_day_of(until: datetime) -> date:
+    """Return the last day of what ends just before a moment."""
+    return timezone.localdate(until - timedelta(microseconds=1))
 
 
 class DaysForm(Shown):
@@ -34,7 +45,7 @@ class DaysForm(Shown):
     @property
     def moments(self) -> tuple[datetime, datetime]:
         """Return when the period begins, and when it ends, which is not part of it."""
-        return start_of(self.cleaned_data["since"]), start_of(self.cleaned_data["until"] + DAY)
+        return start_of(self.cleaned_data["since"]), start_after(self.cleaned_data["until"])
 
     @property
     def kept(self) -> dict[str, str]:
@@ -99,3 +110,22 @@ def _months_on(first: date, months: int) -> date:
     """Return the first of a month some months before or after the first of another."""
     years, month = divmod(12 * first.year + first.month - 1 + months, 12)
     return date(years, month + 1, 1)
+
+
+class CloseForm(KeyForm):
+    """Through which day the books are closed."""
+
+    until = DayField(label=_("Last day"), help_text=_("Everything that happened through its end is closed."))
+
+    def clean_until(self) -> date:
+        """Refuse a day that is not over."""
+        day: date = self.cleaned_data["until"]
+        if day >= timezone.localdate():
+            raise ValidationError(_("This day is not over. Choose an earlier one."))
+        return day
+
+
+class ReopenForm(KeyForm):
+    """Why a period is opened again."""
+
+    reason = LineField(label=_("Reason"), max_length=200, help_text=_("It stays in the journal."))

@@ -71,12 +71,6 @@ class MayForm(WebForm):
         )
 
 
-class KeyForm(WebForm):
-    """The key that makes a second press of a button harmless."""
-
-    key = forms.UUIDField(widget=forms.HiddenInput)
-
-
 class ReceiverForm(WebForm):
     """Who takes waste containers."""
 

@@ -3,6 +3,7 @@
 from datetime import date, datetime
 
 from django import template
+from django.utils import timezone
 from django.utils.html import format_html
 from django.utils.safestring import SafeString
 
@@ -13,6 +14,7 @@ from chemicals.ledger.selectors import Held, HeldMetal
 from chemicals.science.quantity import show
 from compliance.documents.twin import symbol
 from compliance.web import words
+from compliance.web.forms.period import last_day_of
 from compliance.web.statement import Line
 
 register = template.Library()
@@ -34,6 +36,18 @@ def happened(entry: Entry) -> SafeString:
 def day(on: date | str) -> SafeString:
     """Show a day, in one piece."""
     return format_html('<time datetime="{0}">{0}</time>', str(on))
+
+
+@register.filter
+def local_day(at: datetime) -> SafeString:
+    """Show the day of a moment in the workshop's zone."""
+    return day(timezone.localdate(at))
+
+
+@register.filter
+def last_day(until: datetime) -> SafeString:
+    """Show the last day of what ends just before a moment."""
+    return day(last_day_of(until))
 
 
 def _time(at: datetime, text: str) -> SafeString:

@@ -6,6 +6,7 @@ from urllib.parse import urlencode
 from django.http import HttpRequest, HttpResponseBase
 
 from chemicals.balance.selectors import BookBalance, find_main_metal_for, get_book_balance, list_metals_for
+from chemicals.ledger.selectors import get_recomputed_to
 from chemicals.science.formula import element_name
 from chemicals.workshop.models import Membership
 from compliance.web import words
@@ -57,12 +58,13 @@ def index(request: HttpRequest, member: Membership) -> HttpResponseBase:
         flows=(FLOW_COLUMNS, lambda: balance.flows),
         vessels=(VESSEL_COLUMNS, lambda: balance.vessels),
     )
-    more = {**_context(balance), "kept": form.kept, "query": urlencode(form.kept)}
+    more = {**_context(member, balance), "kept": form.kept, "query": urlencode(form.kept)}
     return file or show(request, member, "web/balance.html", here="balance", form=form, **more)
 
 
-def _context(balance: BookBalance) -> dict[str, Any]:
+def _context(member: Membership, balance: BookBalance) -> dict[str, Any]:
     return {
+        "recomputing": get_recomputed_to(member.workshop),
         "balance": balance,
         "name": element_name(balance.component),
         "lines": lines_of(balance),

@@ -17,6 +17,7 @@ from chemicals.balance.difference import (
 from chemicals.balance.selectors import Amount, find_main_metal_for
 from chemicals.books.events import UNACCOUNTED
 from chemicals.ledger.components import dimension_of
+from chemicals.ledger.selectors import get_recomputed_to
 from chemicals.workshop.models import Membership
 from compliance.web import words
 from compliance.web.contents import IN_FILES
@@ -91,7 +92,12 @@ def index(request: HttpRequest, member: Membership) -> HttpResponseBase:
         explained=(EXPLAINED_COLUMNS, lambda: _rows(found, "explained")),
     )
     told = [_Told(difference) for difference in found]
-    context: dict[str, Any] = {"found": told, "kept": form.kept, "query": urlencode(form.kept)}
+    context: dict[str, Any] = {
+        "recomputing": get_recomputed_to(member.workshop),
+        "found": told,
+        "kept": form.kept,
+        "query": urlencode(form.kept),
+    }
     return file or show(request, member, "web/difference.html", here="balance", form=form, **context)
 
 

@@ -16,7 +16,7 @@ from chemicals.journal.selectors import read_event
 from chemicals.ledger.components import dimension_of
 from chemicals.ledger.models import Vessel, VesselKind
 from chemicals.ledger.running import Line, Movement, Running, VesselLedger, get_vessel_ledger, list_components_of
-from chemicals.ledger.selectors import get_vessel_for
+from chemicals.ledger.selectors import get_recomputed_to, get_vessel_for
 from chemicals.workshop.models import Membership
 from compliance.web import words
 from compliance.web.contents import IN_FILES
@@ -46,7 +46,8 @@ def vessel_ledger(request: HttpRequest, member: Membership, uuid: UUID) -> HttpR
     """Show the ledger of what the vessel holds most of, this year so far, unless something else is chosen."""
     vessel = get_vessel_for(member, uuid)
     codes = _codes(member, vessel, request.GET.get("component", ""))
-    context: dict[str, Any] = {"here": _page_of(vessel), "vessel": vessel}
+    behind = get_recomputed_to(member.workshop)
+    context: dict[str, Any] = {"here": _page_of(vessel), "vessel": vessel, "recomputing": behind}
     if not codes:
         return show(request, member, "web/ledger.html", form=None, **context)
     choices = [(code, words.component_name(code)) for code in codes]

@@ -8,7 +8,7 @@ from django.utils import timezone
 from django.utils.translation import gettext as _
 
 from chemicals.ledger.models import Vessel, VesselKind
-from chemicals.ledger.selectors import list_contents_for, list_vessels_for
+from chemicals.ledger.selectors import get_recomputed_to, list_contents_for, list_vessels_for
 from chemicals.process.selectors import get_rack_type_for, list_rack_types_for, list_routes_for
 from chemicals.process.setup import SOLID_HOLDERS, create_holder, create_rack_type, create_route, create_tank
 from chemicals.register.selectors import get_product_for
@@ -49,7 +49,9 @@ def index(request: HttpRequest, member: Membership) -> HttpResponseBase:
     )
     groups = [(kind.label, [row for row in rows if row[0].kind == kind]) for kind in KINDS]
     more: dict[str, Any] = {"groups": groups, "any_tank": bool(rows), "racks": racks, "routes": routes}
-    return file or show(request, member, "web/tanks.html", here="tanks", **more)
+    return file or show(
+        request, member, "web/tanks.html", here="tanks", recomputing=get_recomputed_to(member.workshop), **more
+    )
 
 
 @page("GET", "POST", need=require_writer)

@@ -3,7 +3,7 @@
 from django.http import HttpRequest, HttpResponse
 
 from chemicals.journal.selectors import list_entries_for, list_incidents_for
-from chemicals.ledger.selectors import list_findings_for
+from chemicals.ledger.selectors import get_recomputed_to, list_findings_for
 from chemicals.process.selectors import list_open_analyses_for
 from chemicals.workshop.models import Membership
 from compliance.waste.selectors import list_filling_for
@@ -30,4 +30,5 @@ def today(request: HttpRequest, member: Membership) -> HttpResponse:
         findings=[(found.entry, words.finding(found, ends)) for found in findings],
         analyses=[(entry, event, ends.name(event.vessel)) for entry, event in list_open_analyses_for(member)],
         filling=list_filling_for(member),
+        recomputing=get_recomputed_to(member.workshop),
     )

@@ -6,7 +6,7 @@ from django.http import HttpRequest, HttpResponse, HttpResponseRedirect
 
 from chemicals.journal.selectors import list_entries_naming
 from chemicals.ledger.models import VesselKind
-from chemicals.ledger.selectors import get_vessel_for, read_contents
+from chemicals.ledger.selectors import get_recomputed_to, get_vessel_for, read_contents
 from chemicals.process.selectors import find_last_run, get_tank_of, list_open_analyses_for
 from chemicals.science.reactivity import REACTS_AS
 from chemicals.workshop.models import Membership
@@ -31,6 +31,7 @@ def vessel(request: HttpRequest, member: Membership, uuid: UUID) -> HttpResponse
         member,
         "web/vessel.html",
         here="register" if found.kind == VesselKind.STOCK else "tanks",
+        recomputing=get_recomputed_to(member.workshop),
         vessel=found,
         tank=get_tank_of(found),
         contents=read_contents(found),

@@ -10,7 +10,7 @@ from django.utils.translation import gettext as _
 
 from chemicals.journal.selectors import list_entries_naming
 from chemicals.ledger.models import VesselKind
-from chemicals.ledger.selectors import get_vessel_for, list_vessels_for, read_contents
+from chemicals.ledger.selectors import get_recomputed_to, get_vessel_for, list_vessels_for, read_contents
 from chemicals.process.inputs import DrumOffInput
 from chemicals.science.reactivity import REACTS_AS
 from chemicals.workshop.errors import InvalidInputError
@@ -32,7 +32,8 @@ from compliance.waste.services import StreamInput, close_container, create_conta
 from compliance.web.bench import list_groups
 from compliance.web.door import page, show
 from compliance.web.export import Column, grams, litres, wanted_file
-from compliance.web.forms.waste import CloseForm, ContainerForm, KeyForm, MayForm, StreamForm
+from compliance.web.forms.base import KeyForm
+from compliance.web.forms.waste import CloseForm, ContainerForm, MayForm, StreamForm
 from compliance.web.rows import entry_rows
 from compliance.web.views.acts import address, fill_in, sent
 
@@ -91,6 +92,7 @@ def _container(
     context: dict[str, Any] = {
         "container": found,
         "vessel": found.vessel,
+        "recomputing": get_recomputed_to(member.workshop),
         "fill": read_fill(found),
         "contents": read_contents(found.vessel),
         "reacts_as": [REACTS_AS[kind] for kind in sorted(react_as(found.vessel))],
