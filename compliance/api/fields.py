@@ -86,6 +86,18 @@ class PageSize(serializers.IntegerField):
     }
 
 
+class Yes(serializers.BooleanField):
+    """true or false in an address."""
+
+    default_error_messages = {"invalid": _("Write true or false.")}
+
+    def to_internal_value(self, data: Any) -> bool:
+        """Return the flag."""
+        if data not in ("true", "false"):
+            self.fail("invalid", input=data)
+        return bool(data == "true")
+
+
 class Choice(serializers.ChoiceField):
     """One word of a list; a wrong one is answered with the list."""
 

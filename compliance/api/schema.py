@@ -78,7 +78,7 @@ class ApiSchema(AutoSchema):
             good = {(200, *view.media_types): OpenApiTypes.BINARY}
         codes = [400, 401]
         if "{workshop}" in self.path:
-            codes += [404, *((403, 409) if writes else ())]
+            codes += [404, *((403, 409) if writes else (409,) if view.read_conflicts else ())]
         if writes:
             codes += [415]
         return good | {

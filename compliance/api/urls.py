@@ -2,7 +2,7 @@
 
 from django.urls import URLPattern, include, path, register_converter
 
-from compliance.api.views import calculations, doors, entries, papers, register, vessels, waste, workshop
+from compliance.api.views import calculations, doors, entries, exports, papers, register, vessels, waste, workshop
 from compliance.api.views.description import SchemaView
 
 
@@ -43,6 +43,7 @@ WORKSHOP: list[URLPattern] = [
     path("entries/<uuid:uuid>/", entries.EntryView.as_view(), name="api-entry"),
     path("balances/", entries.MetalsView.as_view(), name="api-balances"),
     path("balances/<str:metal>/", entries.BalanceView.as_view(), name="api-balance"),
+    *(path(f"exports/{book}", view.as_view(), name=f"api-export-{book}") for book, view in exports.VIEWS.items()),
     path("waste-streams/", waste.StreamsView.as_view(), name="api-waste-streams"),
     path("waste-streams/<uuid:uuid>/", waste.StreamView.as_view(), name="api-waste-stream"),
     path("waste-containers/", waste.ContainersView.as_view(), name="api-waste-containers"),

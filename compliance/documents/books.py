@@ -4,7 +4,7 @@ Each file says at which end of the chain it was taken, and up to when the books 
 """
 
 import json
-from collections.abc import Callable, Iterable, Iterator, Mapping
+from collections.abc import Callable, Generator, Iterator, Mapping
 from dataclasses import dataclass, fields
 from datetime import datetime
 from decimal import Decimal
@@ -30,6 +30,7 @@ from chemicals.workshop.models import Membership, Workshop
 from compliance.documents.export import Column, Table
 
 Row = TypeVar("Row")
+Rows = Generator[Row, None, None]
 
 BATCH = 2000
 """How many rows are fetched at once."""
@@ -58,17 +59,18 @@ def read_standing(workshop: Workshop) -> Standing:
     return Standing(*get_head(workshop), None if recomputing is None else recomputing.until)
 
 
-def _take(workshop: Workshop, read: Callable[[], Iterable[Row]]) -> tuple[Standing, Iterator[Row]]:
+def _take(workshop: Workshop, read: Callable[[], Rows[Row]]) -> tuple[Standing, Iterator[Row]]:
     """Return how the books stood when the rows were read, and the rows: nothing was recorded in between.
 
     A query goes on reading what was there when its first row was read.
     """
     for _attempt in range(ATTEMPTS):
         standing = read_standing(workshop)
-        rows = iter(read())
+        rows = read()
         first = list(islice(rows, 1))
         if read_standing(workshop) == standing:
             return standing, chain(first, rows)
+        rows.close()
     raise ConflictError(_("Others are recording at this moment. Ask for the file again."))
 
 
@@ -142,7 +144,7 @@ def _compact(payload: Any) -> str:
 def make_journal(member: Membership, wanted: Search, _now: datetime) -> Table:
     """Return the entries that are looked for, in order of recording."""
 
-    def read() -> Iterator[JournalRow]:
+    def read() -> Rows[JournalRow]:
         with scope(workshop=member.workshop):
             later = Entry.objects.filter(about=OuterRef("pk"), kind=events.Cancellation.KIND)
             rows = find_entries(member, wanted).order_by("sequence").annotate(cancelled=Exists(later))
@@ -230,9 +232,9 @@ POSTING_COLUMNS = (
 def make_postings(member: Membership, wanted: Search, _now: datetime) -> Table:
     """Return what followed from the entries that are looked for: one row for each end of a movement, summing to 0."""
 
-    def read() -> Iterator[PostingRow]:
-        rows = find_postings(member, wanted).values_list(*POSTING_FIELDS).iterator(BATCH)
-        return (PostingRow(*row) for row in rows)
+    def read() -> Rows[PostingRow]:
+        for row in find_postings(member, wanted).values_list(*POSTING_FIELDS).iterator(BATCH):
+            yield PostingRow(*row)
 
     standing, rows = _take(member.workshop, read)
     return Table("postings", POSTING_COLUMNS, rows, about=_about("postings", member.workshop, standing, wanted))
@@ -257,8 +259,8 @@ def make_balances(member: Membership, wanted: Search, now: datetime) -> Table:
     """
     moment = wanted.end or now
 
-    def read() -> list[Balance]:
-        return list_balances_before(member, moment, vessel=wanted.vessel, component=wanted.component)
+    def read() -> Rows[Balance]:
+        yield from list_balances_before(member, moment, vessel=wanted.vessel, component=wanted.component)
 
     standing, rows = _take(member.workshop, read)
     only = Search(vessel=wanted.vessel, component=wanted.component)

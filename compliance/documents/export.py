@@ -70,21 +70,20 @@ def send(table: Table, ending: str, *, about: str = "") -> StreamingHttpResponse
     write, media_type = FORMATS[ending]
     name = "-".join(filter(None, (table.name.replace("_", "-"), about)))
     headers = {"Content-Disposition": f'attachment; filename="{name}.{ending}"', "X-Content-Type-Options": "nosniff"}
-    return StreamingHttpResponse(_in_this_context(write(table)), content_type=media_type, headers=headers)
+    return StreamingHttpResponse(_Stream(write(table)), content_type=media_type, headers=headers)
 
 
-def _in_this_context(chunks: Chunks) -> Chunks:
-    """Return the chunks, each made in a copy of the context that this function was called in."""
-    context = contextvars.copy_context()
+class _Stream(Iterator[bytes]):
+    """Chunks, each made in a copy of the context that this was made in; closing it closes what they are read from."""
 
-    def step() -> Chunks:
-        try:
-            while (chunk := context.run(next, chunks, None)) is not None:
-                yield chunk
-        finally:
-            context.run(chunks.close)
+    def __init__(self, chunks: Chunks) -> None:
+        self.chunks, self.context = chunks, contextvars.copy_context()
 
-    return step()
+    def __next__(self) -> bytes:
+        return self.context.run(next, self.chunks)
+
+    def close(self) -> None:
+        self.context.run(self.chunks.close)
 
 
 def _cell(value: object) -> Cell:

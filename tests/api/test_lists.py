@@ -92,6 +92,28 @@ def test_entries_are_found_by_kind_vessel_and_day(api: Caller, shop: Shop) -> No
     assert found(vessel=str(uuid4())) == []
 
 
+def test_entries_are_found_by_everything_else_that_the_page_looks_for(api: Caller, shop: Shop) -> None:
+    api.record("opening", vessel=str(shop.bath.uuid), volume="20 L", occurred_at="2026-01-10")
+    api.record("receipt", vessel=str(shop.stock.uuid), amount="1 kg", lot="Lot 4711")
+    mistake = api.record("level-reading", vessel=str(shop.bath.uuid), volume="19 L", occurred_at="2026-01-11").json()
+    api.record("cancellation", entry=mistake["uuid"], reason="the wrong tank")
+
+    def found(**query: str) -> list[int]:
+        return [row["sequence"] for row in api.get("entries/", query).json()["results"]]
+
+    assert found(component="Cu") == [2]
+    assert found(text="4711") == [2]
+    assert found(text="WRONG") == [4]
+    assert found(verdict="allowed", cancelled="true") == [3]
+    assert found(cancelled="false") == [4, 3, 2, 1]
+    assert found(findings="true") == []
+    assert found(end="2026-01-31", by="recorded") == []
+    assert found(end="2026-01-31", by="occurred") == [3, 1]
+    member = api.get("entries/").json()["results"][0]["recorded_by"]["uuid"]
+    assert found(member=member) == [4, 3, 2, 1]
+    assert found(member=str(uuid4())) == []
+
+
 def test_vessels_are_found_by_kind_and_by_typed_code(api: Caller, shop: Shop) -> None:
     baths = api.get("vessels/", {"kind": "bath"}).json()["results"]
     assert [row["name"] for row in baths] == ["Copper bath"]

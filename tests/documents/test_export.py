@@ -6,6 +6,7 @@ import json
 import tracemalloc
 from collections.abc import Iterable, Iterator
 from decimal import Decimal
+from itertools import chain
 from typing import Any
 
 import pytest
@@ -72,10 +73,14 @@ def test_a_file_that_nobody_waits_for_any_more_reads_no_further(db: None) -> Non
         finally:
             closed.append(True)
 
-    response = send(Table("list", COLUMNS, rows()), "jsonl")
-    next(iter(response))
-    response.close()
-    assert closed == [True]
+    def opened(rows: Iterator[int]) -> Iterator[int]:
+        return chain([next(rows)], rows)
+
+    begun, untouched = (send(Table("list", COLUMNS, opened(rows())), "jsonl") for _ in range(2))
+    next(iter(begun))
+    begun.close()
+    untouched.close()
+    assert closed == [True, True]
 
 
 def test_rows_are_read_in_the_time_zone_of_the_request() -> None:

@@ -14,18 +14,55 @@ from chemicals.books.fold.state import FINDINGS
 from chemicals.books.occurred import PRECISIONS
 from chemicals.ledger.components import dimension_of
 from chemicals.ledger.models import Basis, Posting
-from compliance.api.fields import Choice, Day, Identifier, Strict
+from chemicals.ledger.search import BY
+from compliance.api.fields import Choice, Day, Identifier, Strict, Text, Yes
 from compliance.api.serializers.base import End, Estimate, Figure, Hex, Named, Person, Shape, choices_of
 from compliance.api.serializers.query import PageQuery
+from compliance.documents.export import FORMATS
 
 
-class EntryQuery(PageQuery):
-    """Which entries to list."""
+class EntryFilters(Strict):
+    """Which entries are looked for: those that fit everything that is said."""
 
     kind = Choice(choices=[(kind, kind) for kind in CURRENT], required=False, help_text=_("Only entries of this kind."))
     vessel = Identifier(required=False, help_text=_("Only entries that name this vessel."))
+    component = Text(
+        required=False,
+        max_length=40,
+        help_text=_("Only entries that moved, found or analysed this: a metal's symbol, a species, a formula, volume."),
+    )
+    member = Identifier(required=False, help_text=_("Only what this membership recorded."))
+    verdict = Choice(
+        choices=[(verdict, verdict) for verdict in VERDICTS],
+        required=False,
+        help_text=_("Only entries with this recorded answer to: may this be done?"),
+    )
     start = Day(required=False, help_text=_("Only what happened on this day of the workshop or later."))
     end = Day(required=False, help_text=_("Only what happened on this day of the workshop or earlier."))
+    by = Choice(
+        choices=[(time, time) for time in BY],
+        required=False,
+        help_text=_("Whether start and end mean when it occurred (if left out) or when it was recorded."),
+    )
+    text = Text(
+        required=False, max_length=80, help_text=_("Only entries with these words in parts, lot, receiver or reason.")
+    )
+    findings = Yes(required=False, help_text=_("true: only entries with findings."))
+    cancelled = Yes(required=False, help_text=_("true: only entries that a later one cancelled."))
+
+
+class EntryQuery(EntryFilters, PageQuery):
+    """Which entries to list."""
+
+
+class ExportQuery(EntryFilters):
+    """Which part of the books to write, and how."""
+
+    def get_fields(self) -> dict[str, Any]:
+        """Return the filters, and the kind of file: its name is a word of the language this is written in."""
+        known = [(ending, ending) for ending in FORMATS]
+        text = _("The kind of file: jsonl (JSON lines, if left out), csv or xlsx.")
+        return {**super().get_fields(), "as": Choice(choices=known, required=False, help_text=text)}
 
 
 class Cancelled(serializers.BooleanField):

@@ -58,7 +58,7 @@ class ApiView(GenericAPIView[Any]):
 
     ``shape`` is what an answer looks like, ``input_class`` what a body says, ``query_class`` what may stand after the
     question mark, ``statuses`` what a write may answer with, ``needs_key`` whether it takes an Idempotency-Key,
-    ``media_types`` what a file may be.
+    ``media_types`` what a file may be, ``read_conflicts`` whether reading may meet a record that is being made.
     """
 
     schema: ApiSchema | None = ApiSchema()  # None keeps a view out of the description
@@ -71,6 +71,7 @@ class ApiView(GenericAPIView[Any]):
     statuses: ClassVar[tuple[int, ...]] = (201,)
     needs_key: ClassVar[bool] = False
     media_types: ClassVar[tuple[str, ...]] = ()
+    read_conflicts: ClassVar[bool] = False
     query: dict[str, Any]
 
     def initial(self, request: Request, *args: Any, **kwargs: Any) -> None:

@@ -1,5 +1,6 @@
 """Entries of the journal and the book balance."""
 
+from collections.abc import Mapping
 from datetime import UTC, date, datetime, time, timedelta
 from typing import Any
 from zoneinfo import ZoneInfo
@@ -11,7 +12,8 @@ from rest_framework.response import Response
 
 from chemicals.balance.selectors import get_book_balance, list_metals_for
 from chemicals.journal.models import Entry
-from chemicals.journal.selectors import find_cancelled, get_entry_for, list_entries_for, list_entries_naming, read_body
+from chemicals.journal.selectors import find_cancelled, get_entry_for, read_body
+from chemicals.ledger.search import Search, find_entries
 from chemicals.ledger.selectors import list_findings_for, list_postings_of, list_vessels_for
 from chemicals.workshop.errors import InvalidInputError
 from chemicals.workshop.models import Membership
@@ -48,6 +50,17 @@ def read_entry(entry: Entry, member: Membership) -> tuple[With, dict[str, Any]]:
     return whole, {"vessels": name_vessels(member), "cancelled": find_cancelled([entry])}
 
 
+def read_search(said: Mapping[str, Any], zone: ZoneInfo) -> Search:
+    """Return what a query looks for."""
+    names = ("kind", "vessel", "component", "member", "verdict", "by", "text", "findings", "cancelled")
+    found = {name: said[name] for name in names if name in said}
+    if "start" in said:
+        found["start"] = begin(said["start"], zone)
+    if "end" in said:
+        found["end"] = end(said["end"], zone)
+    return Search(**found)
+
+
 class EntriesView(ListView):
     """All entries, the latest record first."""
 
@@ -55,15 +68,7 @@ class EntriesView(ListView):
 
     def rows(self) -> QuerySet[Entry]:
         """Return the entries that the query asks for."""
-        zone, said = self.member.workshop.zone, self.query
-        rows = list_entries_naming(self.member, said["vessel"]) if "vessel" in said else list_entries_for(self.member)
-        if "kind" in said:
-            rows = rows.filter(kind=said["kind"])
-        if "start" in said:
-            rows = rows.filter(occurred_at__gte=begin(said["start"], zone))
-        if "end" in said:
-            rows = rows.filter(occurred_at__lt=end(said["end"], zone))
-        return rows
+        return find_entries(self.member, read_search(self.query, self.member.workshop.zone))
 
     def list(self, request: Request, *args: Any, **kwargs: Any) -> Response:
         """Return one page, with what was cancelled since."""
