@@ -22,6 +22,7 @@ FORMAT = 1
 GENESIS = bytes(32)
 """What the first entry of a workshop takes as the hash before it."""
 
+SCALARS = (str, int, bool)
 T = TypeVar("T")
 
 
@@ -88,17 +89,17 @@ def chain_hash(previous: bytes, body: bytes) -> bytes:
 
 def to_plain(value: Any) -> Any:
     """Turn dataclasses, tuples, UUIDs and times into plain values."""
+    if value is None or type(value) in SCALARS:
+        return value
     if dataclasses.is_dataclass(value) and not isinstance(value, type):
-        return {f.name: to_plain(getattr(value, f.name)) for f in dataclasses.fields(value)}
+        return {name: to_plain(getattr(value, name)) for name in field_names(type(value))}
     if isinstance(value, UUID):
         return str(value)
     if isinstance(value, datetime):
         return _format_time(value)
     if isinstance(value, dict):
         return {key: to_plain(item) for key, item in value.items()}
-    if isinstance(value, list | tuple):
-        return [to_plain(item) for item in value]
-    return value
+    return [to_plain(item) for item in value] if isinstance(value, list | tuple) else value
 
 
 def from_plain(kind: type[T], value: Any) -> T:
@@ -107,7 +108,9 @@ def from_plain(kind: type[T], value: Any) -> T:
 
 
 def _build(hint: Any, value: Any, where: str) -> Any:
-    origin, args = typing.get_origin(hint), typing.get_args(hint)
+    if type(value) is hint and hint in SCALARS:
+        return value
+    origin, args = _take_apart(hint)
     if origin is typing.Annotated:
         return _build(args[0], value, where)
     if origin in (types.UnionType, typing.Union):
@@ -118,16 +121,20 @@ def _build(hint: Any, value: Any, where: str) -> Any:
     if origin is dict:
         _expect(value, dict, where)
         return {key: _build(args[1], item, f"{where}.{key}") for key, item in value.items()}
-    if dataclasses.is_dataclass(hint):
-        return _build_dataclass(hint, value, where)
-    return _build_scalar(hint, value, where)
+    build = _build_dataclass if dataclasses.is_dataclass(hint) else _build_scalar
+    return build(hint, value, where)
+
+
+@cache
+def _take_apart(hint: Any) -> tuple[Any, tuple[Any, ...]]:
+    return typing.get_origin(hint), typing.get_args(hint)
 
 
 def _build_dataclass(hint: Any, value: Any, where: str) -> Any:
     _expect(value, dict, where)
     hints = type_hints(hint)
-    names = {f.name for f in dataclasses.fields(hint)}
-    if names != set(value):
+    names = set(field_names(hint))
+    if value.keys() != names:
         raise CanonicalError(f"{where}: missing {sorted(names - set(value))}, surplus {sorted(set(value) - names)}")
     return hint(**{name: _build(hints[name], value[name], f"{where}.{name}") for name in names})
 
@@ -166,6 +173,12 @@ def type_hints(kind: type) -> dict[str, Any]:
 
 
 @cache
+def field_names(kind: Any) -> tuple[str, ...]:
+    """Return the names of a dataclass's fields."""
+    return tuple(f.name for f in dataclasses.fields(kind))
+
+
+@cache
 def _cached_hints(kind: Any) -> dict[str, Any]:
     return typing.get_type_hints(kind, include_extras=True)
 
@@ -192,6 +205,8 @@ def _check_key(key: Any) -> str:
 
 def check_text(text: str) -> str:
     """Return the text in NFC; refuse control characters other than line breaks."""
+    if text.isascii() and text.isprintable():  # most texts are
+        return text
     for character in text:
         if unicodedata.category(character) in ("Cc", "Cs") and character != "\n":
             raise CanonicalError(f"The control character U+{ord(character):04X} cannot be recorded. Remove it.")

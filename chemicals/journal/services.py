@@ -126,7 +126,6 @@ def _require_sound(actor: Membership, now: datetime, fact: Fact) -> None:
         raise ValueError(f"unknown verdict {fact.clearance.verdict}")
     if lies_ahead(actor.workshop, now, fact.occurred):
         raise InvalidInputError.of("occurred_at", FUTURE)
-    _require_writable(fact.event, fact.clearance)
 
 
 def lies_ahead(workshop: Workshop, now: datetime, when: Occurred) -> bool:
@@ -140,11 +139,15 @@ def lies_ahead(workshop: Workshop, now: datetime, when: Occurred) -> bool:
     return when.at > now + CLOCK_TOLERANCE
 
 
-def _require_writable(event: events.Event, clearance: Clearance) -> None:
-    """Refuse texts that have no canonical bytes, all at once and by field."""
-    errors = [*find_unwritable(canonical.to_plain(event)), *find_unwritable(clearance.reasons, "reasons")]
-    if errors:
-        raise InvalidInputError(sorted(errors, key=lambda error: error.field))
+def _encode(body: canonical.Body, fact: Fact) -> bytes:
+    """Return the bytes of an entry; refuse texts that have none, all at once and by field."""
+    try:
+        return canonical.encode_body(body)
+    except canonical.CanonicalError:
+        errors = [*find_unwritable(canonical.to_plain(fact.event)), *find_unwritable(fact.clearance.reasons, "reasons")]
+        if not errors:
+            raise
+        raise InvalidInputError(sorted(errors, key=lambda error: error.field)) from None
 
 
 def lock_chain(actor: Membership) -> Head:
@@ -179,7 +182,7 @@ def _chain(actor: Membership, now: datetime, head: Head, fact: Fact) -> Entry:
         payload=events.encode(fact.event),
         attachments=fact.attachments,
     )
-    data, previous = canonical.encode_body(body), bytes(head.hash)
+    data, previous = _encode(body, fact), bytes(head.hash)
     entry = Entry(
         workshop=actor.workshop,
         sequence=body.sequence,
