@@ -68,6 +68,7 @@ def append(
     attachments = sorted(set(attachments))
     fact = Fact(key, event, occurred or Occurred(now), clearance, tuple(attachments))
     _require_sound(actor, now, fact)
+    _require_writable(fact)
     with transaction.atomic(), scope(workshop=actor.workshop):
         head = lock_chain(actor)
         first = Entry.objects.filter(uuid=key).select_related("member__user").first()
@@ -139,15 +140,19 @@ def lies_ahead(workshop: Workshop, now: datetime, when: Occurred) -> bool:
     return when.at > now + CLOCK_TOLERANCE
 
 
+def _require_writable(fact: Fact) -> None:
+    """Refuse texts that have no canonical bytes, all at once and by field."""
+    errors = [*find_unwritable(canonical.to_plain(fact.event)), *find_unwritable(fact.clearance.reasons, "reasons")]
+    if errors:
+        raise InvalidInputError(sorted(errors, key=lambda error: error.field))
+
+
 def _encode(body: canonical.Body, fact: Fact) -> bytes:
-    """Return the bytes of an entry; refuse texts that have none, all at once and by field."""
     try:
         return canonical.encode_body(body)
     except canonical.CanonicalError:
-        errors = [*find_unwritable(canonical.to_plain(fact.event)), *find_unwritable(fact.clearance.reasons, "reasons")]
-        if not errors:
-            raise
-        raise InvalidInputError(sorted(errors, key=lambda error: error.field)) from None
+        _require_writable(fact)
+        raise
 
 
 def lock_chain(actor: Membership) -> Head:
