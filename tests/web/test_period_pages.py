@@ -46,7 +46,7 @@ def test_an_owner_closes_a_period_and_sees_its_proof(visit: Visitor, old: Line) 
     period = only(visit)
     assert answer.headers["Location"] == visit.address("period", period.closing.uuid)
     text = text_of(visit.get("period", period.closing.uuid))
-    assert 'from the beginning through <time datetime="2026-01-31">' in text
+    assert 'Everything through <time datetime="2026-01-31">' in text
     assert "Closed. What followed from its entries is proved by two hashes." in text
     for digest in (period.followed_sha256, period.holdings_sha256):
         assert " ".join(re.findall("....", digest)) in text
@@ -55,6 +55,19 @@ def test_an_owner_closes_a_period_and_sees_its_proof(visit: Visitor, old: Line) 
     assert period.followed_sha256[:12] + "…" in listed
     assert "by Olga" in listed
     assert "fold version" in listed
+
+
+def test_a_period_is_balanced_and_compared_from_its_first_day_on(visit: Visitor, old: Line) -> None:
+    close(visit, "2026-01-31")
+    close(visit, "2026-02-28")
+    last, first = (period.closing.uuid for period in visit.get("periods").context["periods"])
+    for uuid, days in (
+        (first, "since=2026-01-10&amp;until=2026-01-31"),
+        (last, "since=2026-02-01&amp;until=2026-02-28"),
+    ):
+        page = text_of(visit.get("period", uuid))
+        assert f"{visit.address('balance')}?{days}" in page
+        assert f"{visit.address('difference')}?{days}&amp;component=everything" in page
 
 
 def test_the_second_press_of_the_button_closes_nothing_more(visit: Visitor, old: Line) -> None:

@@ -11,7 +11,7 @@ from django.utils.translation import gettext as _
 
 from chemicals.books import events
 from chemicals.books.fold.state import EVERY, root
-from chemicals.journal.selectors import read_event
+from chemicals.journal.selectors import list_entries_for, read_event
 from chemicals.ledger.components import dimension_of
 from chemicals.ledger.models import ClosingHolding, Period
 from chemicals.ledger.periods import close_period, reopen_period
@@ -113,7 +113,7 @@ def period(request: HttpRequest, member: Membership, uuid: UUID) -> HttpResponse
         holdings=[_tell(row) for row in holdings],
         reason=_reason(found),
         is_last=found == list_periods_for(member).filter(reopening=None).first(),
-        query=_days(found),
+        query=_days(member, found),
         recomputing=get_recomputed_to(member.workshop),
     )
 
@@ -130,10 +130,12 @@ def _reason(found: Period) -> str:
     return event.reason if isinstance(event, events.PeriodReopening) else ""
 
 
-def _days(found: Period) -> str:
-    """Return the days of the period as the pages of balances ask for them; the first one begins with this year."""
-    since = {} if found.after is None else {"since": str(timezone.localdate(found.after))}
-    return urlencode({**since, "until": str(last_day_of(found.until))})
+def _days(member: Membership, found: Period) -> str:
+    """Return the days of the period as the pages of balances ask for them; the first begins with the first entry."""
+    first = list_entries_for(member).order_by("occurred_at").values_list("occurred_at", flat=True).first()
+    until = last_day_of(found.until)
+    since = until if first is None else min(until, timezone.localdate(first))
+    return urlencode({"since": str(timezone.localdate(found.after) if found.after else since), "until": str(until)})
 
 
 @page("GET", "POST", need=require_owner)
