@@ -6,6 +6,7 @@ from pathlib import Path
 from uuid import uuid4
 
 import pytest
+from django.conf import settings as django_settings
 from django.core.management import call_command
 from django.core.management.base import CommandError
 from django.db import connection
@@ -57,6 +58,8 @@ def kinds_with_postings() -> set[str]:
 def upgrade() -> list[str]:
     out = io.StringIO()
     call_command("upgrade", stdout=out)
+    for backup in (django_settings.DATA / "backups").iterdir():
+        backup.unlink()  # it has its second in its name, and tests are quicker
     return out.getvalue().splitlines()
 
 
