@@ -2,6 +2,7 @@
 
 import re
 import unicodedata
+from collections.abc import Iterable
 from dataclasses import dataclass
 from decimal import ROUND_HALF_EVEN, Decimal
 from uuid import UUID
@@ -49,11 +50,11 @@ def get_makeup(substance: Substance) -> Makeup:
     return Makeup(formula.molar_mass, {metal: part for metal, part in fractions.items() if metal in METALS})
 
 
-def list_missing_starters(member: Membership) -> list[Starter]:
-    """Return the usual substances that no name, synonym or CAS number of this register stands for. One query."""
+def list_missing_starters(substances: Iterable[Substance]) -> list[Starter]:
+    """Return the usual substances for which no name, synonym or CAS number among these stands."""
     names: set[str] = set()
     numbers: set[str] = set()
-    for row in list_substances_for(member):
+    for row in substances:
         names |= {row.name.casefold(), *(str(name).casefold() for name in row.synonyms)}
         numbers.add(row.cas_number)
     numbers.discard("")

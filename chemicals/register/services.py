@@ -11,7 +11,7 @@ from chemicals.journal.models import Attachment
 from chemicals.register.checks import Checked, check_revision
 from chemicals.register.inputs import LimitInput, LineInput, RevisionInput
 from chemicals.register.models import CompositionLine, ExposureLimit, Product, ProductRevision, Substance
-from chemicals.register.selectors import list_missing_starters, solute_code
+from chemicals.register.selectors import list_missing_starters, list_substances_for, solute_code
 from chemicals.science.errors import TextError
 from chemicals.science.formula import METALS, FormulaError, parse_formula
 from chemicals.science.identity import read_cas_number, read_ec_number
@@ -132,7 +132,7 @@ def add_starter_substances(*, actor: Membership) -> list[Substance]:
                 formula=row.formula,
                 synonyms=list(row.synonyms),
             )
-            for row in list_missing_starters(actor)
+            for row in list_missing_starters(list_substances_for(actor))
         )
 
 

@@ -176,9 +176,12 @@ def test_a_key_is_shown_once_and_can_be_ended(visit: Visitor) -> None:
 
 def test_the_workshop_is_described_by_its_owner(visit: Visitor) -> None:
     said = {"name": "Alder Court", "address": "Lane 1\r\nTown", "telephone": "+49 1", "time_zone": "Europe/Vienna"}
+    said |= {"sheet_years": "5"}
     assert visit.post("workshop-settings", **said).status_code == 302
     workshop = Workshop.objects.get()
-    assert (workshop.address, workshop.time_zone) == ("Lane 1\nTown", "Europe/Vienna")
+    assert (workshop.address, workshop.time_zone, workshop.sheet_years) == ("Lane 1\nTown", "Europe/Vienna", 5)
+    assert "after 5 years" in text_of(visit.get("workshop"))
+    assert visit.post("workshop-settings", **{**said, "sheet_years": "0"}).status_code == 400
     assert visit.post("workshop-settings", **{**said, "time_zone": "Mars/Base"}).status_code == 400
 
 

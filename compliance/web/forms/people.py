@@ -7,7 +7,7 @@ from django import forms
 from django.contrib.auth.forms import AuthenticationForm, SetPasswordForm
 from django.utils.translation import gettext_lazy as _
 
-from chemicals.workshop.models import Membership, Role
+from chemicals.workshop.models import MOST_SHEET_YEARS, Membership, Role
 from compliance.web.forms.base import Shown, WebForm
 from compliance.web.forms.fields import REQUIRED, LineField, WordField
 
@@ -66,6 +66,13 @@ class WorkshopForm(WebForm):
         label=_("Telephone"), required=False, max_length=60, help_text=_("Answered in an emergency; printed on labels.")
     )
     time_zone = ZoneField(help_text=_("Days begin and end by this clock. What was recorded keeps its moment."))
+    sheet_years = forms.IntegerField(
+        label=_("Years until a safety data sheet is marked as old"),
+        min_value=1,
+        max_value=MOST_SHEET_YEARS,
+        help_text=_("Your own figure. Nothing is refused by it."),
+        error_messages={"required": REQUIRED, "invalid": _("Write a whole number.")},
+    )
 
 
 class InviteForm(WebForm):

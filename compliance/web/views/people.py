@@ -67,7 +67,7 @@ def index(request: HttpRequest, member: Membership) -> HttpResponseBase:
 
 @page("GET", "POST", need=require_owner)
 def settings(request: HttpRequest, member: Membership) -> HttpResponse:
-    """Change name, address, telephone, time zone."""
+    """Change name, address, telephone, time zone, and when a sheet is old."""
     workshop = member.workshop
 
     def act(form: WorkshopForm) -> str:
@@ -75,7 +75,7 @@ def settings(request: HttpRequest, member: Membership) -> HttpResponse:
         messages.success(request, _("Saved."))
         return address("workshop", member)
 
-    fields = ("name", "address", "telephone", "time_zone")
+    fields = ("name", "address", "telephone", "time_zone", "sheet_years")
     form = WorkshopForm(sent(request), initial={name: getattr(workshop, name) for name in fields})
     words = {"heading": _("The workshop"), "button": _("Save"), "back": address("workshop", member)}
     return fill_in(request, member, form, act, here="workshop", **words)

@@ -4,9 +4,10 @@ from typing import Any
 from uuid import UUID
 
 from django.contrib import messages
-from django.http import HttpRequest, HttpResponse, HttpResponseBase
+from django.http import HttpRequest, HttpResponse, HttpResponseBase, HttpResponseRedirect
 from django.utils import timezone
 from django.utils.translation import gettext as _
+from django.utils.translation import ngettext
 
 from chemicals.journal.models import Attachment
 from chemicals.ledger.models import VesselKind
@@ -15,19 +16,38 @@ from chemicals.process.setup import create_holder
 from chemicals.register.selectors import (
     get_current_revision,
     get_product_for,
+    get_substance_for,
     list_current_revisions_for,
+    list_missing_starters,
     list_revisions_of,
     list_substances_for,
 )
-from chemicals.register.services import create_product, create_substance, keep_sheet, revise_product
+from chemicals.register.services import (
+    add_starter_substances,
+    change_substance,
+    create_product,
+    create_substance,
+    keep_sheet,
+    revise_product,
+)
+from chemicals.register.sheets import list_sheets
+from chemicals.science.quantity import show as show_amount
 from chemicals.science.reactivity import REACTS_AS, declared
 from chemicals.workshop.models import Membership
 from chemicals.workshop.permissions import require_writer
 from chemicals.workshop.selectors import get_place_for
+from compliance.web.catalogue import Described, HazardLines, limit_words, sheet_mark
 from compliance.web.contents import CONTENT_COLUMNS, parts_of
 from compliance.web.door import page, show
 from compliance.web.export import Column, wanted_file
-from compliance.web.forms.register import ProductForm, RevisionForm, StockForm, SubstanceForm, start_from
+from compliance.web.forms.register import (
+    ProductForm,
+    RevisionForm,
+    StockForm,
+    SubstanceForm,
+    start_from,
+    start_substance,
+)
 from compliance.web.views.acts import address, fill_in, sent
 
 COLUMNS = (
@@ -36,20 +56,36 @@ COLUMNS = (
     Column("revision", lambda row: row.number),
     Column("since", lambda row: row.created_at),
     Column("form", lambda row: row.form),
+    Column("density", lambda row: None if row.density is None else show_amount(row.density, "density")),
+    Column("lowest ph", lambda row: None if row.ph_floor is None else show_amount(row.ph_floor, "ph")),
     Column("composition", lambda row: "; ".join(f"{line.substance.name} {line.typed}" for line in row.lines.all())),
     Column("names every metal", lambda row: "yes" if row.complete else "no"),
+    Column("hazard classes", lambda row: "; ".join(row.hazard_classes)),
     Column("signal word", lambda row: row.signal_word),
     Column("pictograms", lambda row: " ".join(row.pictograms)),
     Column("hazard statements", lambda row: "; ".join(row.statements)),
     Column("reacts as", lambda row: "; ".join(row.reactivity)),
+    Column("contradictions", lambda row: " ".join(each.message for each in row.contradictions)),
+    Column("exposure limits", lambda row: "; ".join(limit_words(limit) for limit in row.limits.all())),
+    Column("gloves", lambda row: row.gloves),
+    Column("un number", lambda row: row.un_number),
+    Column("proper shipping name", lambda row: row.shipping_name),
+    Column("transport class", lambda row: row.transport_class),
+    Column("packing group", lambda row: row.packing_group),
+    Column("not classified for transport", lambda row: "yes" if row.transport_unclassified else "no"),
+    Column("sheet language", lambda row: row.sheet_language),
     Column("sheet date", lambda row: row.sheet_date),
     Column("sheet sha256", lambda row: row.safety_data_sheet.sha256 if row.safety_data_sheet else None),
 )
 SUBSTANCE_COLUMNS = (
-    Column("substance", lambda row: row.name),
-    Column("formula", lambda row: row.formula),
-    Column("cas number", lambda row: row.cas_number),
-    Column("inert", lambda row: "yes" if row.inert else "no"),
+    Column("substance", lambda row: row.substance.name),
+    Column("other names", lambda row: "; ".join(row.substance.synonyms)),
+    Column("formula", lambda row: row.substance.formula),
+    Column("molar mass", lambda row: row.molar_mass),
+    Column("metals", lambda row: row.metals),
+    Column("cas number", lambda row: row.substance.cas_number),
+    Column("ec number", lambda row: row.substance.ec_number),
+    Column("inert", lambda row: "yes" if row.substance.inert else "no"),
 )
 
 
@@ -60,15 +96,19 @@ def index(request: HttpRequest, member: Membership) -> HttpResponseBase:
     contents = list_contents_for(member)
     held = [(vessel, contents.get(vessel.pk)) for vessel in list_vessels_for(member, VesselKind.STOCK)]
     file = wanted_file(request, products=(COLUMNS, lambda: revisions), stock=(CONTENT_COLUMNS, lambda: parts_of(held)))
-    return file or show(request, member, "web/register.html", here="register", revisions=revisions, stocks=held)
+    today = timezone.localdate()
+    marked = [(revision, sheet_mark(revision, today, member.workshop)) for revision in revisions] if not file else []
+    return file or show(request, member, "web/register.html", here="register", revisions=marked, stocks=held)
 
 
 @page()
 def substances(request: HttpRequest, member: Membership) -> HttpResponseBase:
     """List the substances."""
-    rows = list_substances_for(member)
+    known = list(list_substances_for(member))
+    rows = [Described.of(row) for row in known]
     file = wanted_file(request, substances=(SUBSTANCE_COLUMNS, lambda: rows))
-    return file or show(request, member, "web/substances.html", here="register", substances=rows)
+    starters = list_missing_starters(known)
+    return file or show(request, member, "web/substances.html", here="register", rows=rows, starters=starters)
 
 
 @page("GET", "POST", need=require_writer)
@@ -76,12 +116,36 @@ def add_substance(request: HttpRequest, member: Membership) -> HttpResponse:
     """Add a substance."""
 
     def act(form: SubstanceForm) -> str:
-        create_substance(actor=member, **form.cleaned_data)
+        create_substance(actor=member, **form.said())
         return address("substances", member)
 
     words = {"heading": _("Add a substance"), "button": _("Add the substance")}
     back = address("substances", member)
     return fill_in(request, member, SubstanceForm(sent(request)), act, here="register", back=back, **words)
+
+
+@page("GET", "POST", need=require_writer)
+def substance(request: HttpRequest, member: Membership, uuid: UUID) -> HttpResponse:
+    """Correct a substance."""
+    found = get_substance_for(member, uuid)
+
+    def act(form: SubstanceForm) -> str:
+        change_substance(actor=member, substance=found, **form.said())
+        messages.success(request, _("Saved."))
+        return address("substances", member)
+
+    form = SubstanceForm(sent(request), initial=start_substance(found))
+    words = {"heading": found.name, "button": _("Save"), "back": address("substances", member)}
+    return fill_in(request, member, form, act, here="register", **words)
+
+
+@page("POST", need=require_writer)
+def add_starters(request: HttpRequest, member: Membership) -> HttpResponse:
+    """Add the usual substances of plating; those that are here stay as they are."""
+    count = len(add_starter_substances(actor=member))
+    told = ngettext("%(count)d substance is added.", "%(count)d substances are added.", count)
+    messages.success(request, told % {"count": count})
+    return HttpResponseRedirect(address("substances", member))
 
 
 @page()
@@ -98,6 +162,10 @@ def product(request: HttpRequest, member: Membership, uuid: UUID) -> HttpRespons
         here="register",
         product=found,
         current=revisions[0],
+        lines=[(line, Described.of(line.substance)) for line in revisions[0].lines.all()],
+        hazards=HazardLines.of(revisions[0]),
+        sheets=list_sheets(revisions),
+        sheet_mark=sheet_mark(revisions[0], timezone.localdate(), member.workshop),
         reacts_as=[REACTS_AS[kind] for kind in sorted(declared(revisions[0].reactivity))],
         revisions=revisions,
         stocks=[(vessel, contents.get(vessel.pk)) for vessel in stocks],
