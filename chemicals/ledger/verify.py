@@ -27,6 +27,9 @@ from chemicals.ledger.periods import as_columns
 from chemicals.ledger.projection import Names, Order
 from chemicals.workshop.models import Workshop
 
+ATTEMPTS = 5
+"""How often the books are looked at again because they changed meanwhile."""
+
 BROKEN = "What the ledger keeps of this entry is not what follows from it."
 
 
@@ -42,12 +45,23 @@ class Closing:
 def verify_projection(workshop: Workshop) -> list[Problem]:
     """Return the entries whose rows are not what follows from them, then what vessels hold and should not.
 
-    Raises ValueError if an entry cannot be read.
+    What was found while somebody recorded, or the job wrote, is looked at again. Raises ValueError if an entry cannot
+    be read.
     """
+    found: list[Problem] = []
     with scope(workshop=workshop):
-        told = list(journal.iterate_fold_entries(workshop))
-        proof = Proof(workshop, told)
-        return [*proof.of_periods(), *proof.of_the_rest()]
+        for _attempt in range(ATTEMPTS):
+            before = _mark(workshop)
+            proof = Proof(workshop, list(journal.iterate_fold_entries(workshop)))
+            found = [*proof.of_periods(), *proof.of_the_rest()]
+            if not found or _mark(workshop) == before:
+                break
+    return found
+
+
+def _mark(workshop: Workshop) -> tuple[object, ...]:
+    """Return how far chain and books have come."""
+    return journal.get_head(workshop), *Books.objects.values_list("recomputed_to", "recomputed_sequence", "job")
 
 
 class Proof:

@@ -1,7 +1,7 @@
 """Several people and a worker at once: whatever comes first, the books are what the journal says."""
 
 import threading
-from collections.abc import Callable
+from collections.abc import Callable, Iterator
 from datetime import timedelta
 from typing import Any
 from uuid import UUID
@@ -12,11 +12,13 @@ from django_scopes import scope
 
 from chemicals.jobs import services as jobs
 from chemicals.journal.models import Entry
+from chemicals.journal.verify import Problem
 from chemicals.ledger import late, periods, recompute
 from chemicals.ledger.models import Period
 from chemicals.ledger.periods import Digests, close_period
 from chemicals.ledger.selectors import get_recomputed_to, list_periods_for
 from chemicals.ledger.services import refold
+from chemicals.ledger.verify import Proof, verify_projection
 from chemicals.workshop.errors import ConflictError, DomainError, InvalidInputError
 from chemicals.workshop.models import Membership
 from tests.journal.test_concurrency import at_once
@@ -214,3 +216,18 @@ def test_closing_asks_for_no_lock_while_it_reckons(week: Shop, monkeypatch: pyte
     between(monkeypatch, lambda: in_transaction.append(connection.in_atomic_block))
     close_period(actor=owner_of(week), now=week.now, key=BUTTON, until=BEGUN)
     assert in_transaction == [False]
+
+
+def test_what_is_recorded_while_the_books_are_proved_is_no_damage(week: Shop, monkeypatch: pytest.MonkeyPatch) -> None:
+    """Entries are read first and rows after them: a late entry between the two changes the rows of others."""
+    of_periods, times = Proof.of_periods, []
+
+    def prove_slowly(proof: Proof) -> Iterator[Problem]:
+        times.append(proof)
+        if len(times) == 1:
+            level(week, days_ago=4.5)
+        return of_periods(proof)
+
+    monkeypatch.setattr(Proof, "of_periods", prove_slowly)
+    assert verify_projection(week.member.workshop) == []
+    assert len(times) == 2
