@@ -36,7 +36,7 @@ def test_a_product_and_its_next_revision(api: Caller, shop: Shop) -> None:
     assert (first["revision"], first["density"]["text"], first["complete"]) == (1, "1.2 g/cm³", False)
     line = {"substance": str(shop.sulfate.uuid), "name": shop.sulfate.name, "cas_number": "7758-99-8"}
     line |= {"formula": "CuSO4.5H2O", "content": "200 g/L", "per": "L"}
-    assert first["lines"] == [{**line, "amount": 200_000_000}]
+    assert first["lines"] == [{**line, "amount": 200_000_000, "sd": 0}]
     assert (first["safety_data_sheet"], first["sheet_date"]) == (None, "2025-05-01")
     address = f"products/{first['uuid']}/"
     second = api.post(address + "revisions/", {"form": "liquid"}).json()
@@ -44,6 +44,74 @@ def test_a_product_and_its_next_revision(api: Caller, shop: Shop) -> None:
     assert api.get(address).json() == second
     assert [row["revision"] for row in api.get(address + "revisions/").json()["results"]] == [2, 1]
     assert api.get(address + "revisions/").json()["results"][1] == first
+
+
+def test_everything_on_a_sheet_comes_back_as_it_was_said(api: Caller, shop: Shop) -> None:
+    limit = {"substance": str(shop.sulfate.uuid), "kind": "8 h", "value": "1 mg/m3", "source": "invented list"}
+    whole = {"kind": "danger", "value": "50 ppm", "source": "invented list"}
+    kept = {
+        "gloves": "Nitrile", "un_number": "1830", "shipping_name": "SULPHURIC ACID", "transport_class": "8 (6.1)",
+        "packing_group": "II", "sheet_language": "de-AT", "hazard_classes": ["Skin Corr. 1A"],
+        "statements": ["H314", "P280 Wear gloves"], "signal_word": "Danger", "pictograms": ["GHS05"],
+    }  # fmt: skip
+    said = {"name": "Acid", "form": "liquid", "ph_floor": "3.5", "limits": [limit, whole], **kept}
+    said["lines"] = [{"substance": str(shop.sulfate.uuid), "content": "20-30 %"}]
+    made = api.post("products/", said)
+    assert made.status_code == 201
+    answer = made.json()
+    assert {name: answer[name] for name in kept} == kept
+    assert answer["limits"] == [limit, {"substance": None, **whole}]
+    assert (answer["ph_floor"]["base"], answer["ph_floor"]["text"]) == (3500, "pH 3.5")
+    assert (answer["lines"][0]["amount"], answer["lines"][0]["sd"]) == (250_000_000, 28_867_513)
+    assert (answer["contradictions"], answer["transport_unclassified"]) == ([], False)
+
+
+def test_contradictions_are_answered_and_nothing_is_refused(api: Caller) -> None:
+    said = {"name": "Acid", "form": "liquid", "hazard_classes": ["Skin Corr. 1A"], "signal_word": "Warning"}
+    made = api.post("products/", said)
+    assert made.status_code == 201
+    assert made.json()["contradictions"] == [
+        {"code": "statement-missing", "message": "Skin Corr. 1A calls for H314, which is not among the statements."},
+        {"code": "signal-word", "message": "Skin Corr. 1A calls for the signal word Danger; entered is Warning."},
+        {"code": "pictogram-missing", "message": "Skin Corr. 1A calls for GHS05, which is not among the pictograms."},
+    ]
+
+
+def test_a_wrong_sheet_is_named_by_its_fields(api: Caller, shop: Shop) -> None:
+    said = {"name": "Acid", "form": "liquid"}
+    shape = api.post("products/", {**said, "hazard_classes": ["Skin Corr. 9"], "packing_group": "IV"})
+    assert set(errors_of(shape, 400)) == {"hazard_classes.0", "packing_group"}
+    limit = {"kind": "8 h", "value": "5", "source": "list"}
+    wrong = {"un_number": "12", "transport_class": "10", "sheet_language": "German", "ph_floor": "15"}
+    found = api.post("products/", {**said, **wrong, "limits": [limit]})
+    assert set(errors_of(found, 400)) == {*wrong, "limits.0.value"}
+    absent = api.post("products/", {**said, "limits": [{**limit, "substance": str(uuid4())}]})
+    assert set(errors_of(absent, 400)) == {"limits.0.substance"}
+
+
+def test_a_substance_tells_what_follows_from_its_formula_and_is_corrected(api: Caller) -> None:
+    made = api.post("substances/", {"name": "Gold salt", "formula": "KAu(CN)2", "synonyms": ["PGC"]}).json()
+    metals = made["makeup"]["metals"]
+    assert made["makeup"]["molar_mass"].startswith("288.10")  # Wikipedia, Potassium dicyanoaurate: 288.101 g/mol
+    assert [(each["metal"], each["fraction"][:5]) for each in metals] == [("Au", "0.683")]
+    address = f"substances/{made['uuid']}/"
+    changed = api.post(address + "change", {"cas_number": "13967-50-5", "ec_number": "237-748-4"})
+    assert changed.status_code == 200
+    assert changed.json() == {**made, "cas_number": "13967-50-5", "ec_number": "237-748-4"}
+    assert api.get(address).json() == changed.json()
+    wrong = api.post(address + "change", {"cas_number": "13967-50-4", "ec_number": "237-748-5", "name": ""})
+    assert set(errors_of(wrong, 400)) == {"name"}
+    wrong = api.post(address + "change", {"cas_number": "13967-50-4", "ec_number": "237-748-5"})
+    assert set(errors_of(wrong, 400)) == {"cas_number", "ec_number"}
+
+
+def test_the_usual_substances_are_added_once(api: Caller, shop: Shop) -> None:
+    added = api.post("substances/usual")
+    assert added.status_code == 201
+    names = {row["name"] for row in added.json()["added"]}
+    assert {"Nickel sulfate hexahydrate", "Potassium gold cyanide"} <= names
+    assert "Copper sulfate pentahydrate" not in names
+    assert api.post("substances/usual").json() == {"added": []}
 
 
 def test_everything_wrong_with_a_product_is_named(api: Caller, shop: Shop) -> None:

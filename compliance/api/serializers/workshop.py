@@ -18,6 +18,10 @@ class WorkshopShape(Shape):
     time_zone = serializers.CharField(
         source="workshop.time_zone", help_text=_("The zone in which the workshop's days begin and end.")
     )
+    sheet_years = serializers.IntegerField(
+        source="workshop.sheet_years",
+        help_text=_("Years after which this workshop marks a safety data sheet as old: its own figure."),
+    )
     invented = serializers.BooleanField(source="workshop.invented", help_text=_("True where the data are invented."))
     role = choices_of(Role.values, _("What the token may do: an observer only reads."))
 

@@ -16,7 +16,16 @@ from chemicals.register.selectors import (
     list_revisions_of,
     list_substances_for,
 )
-from chemicals.register.services import LineInput, RevisionInput, create_product, create_substance, revise_product
+from chemicals.register.services import (
+    LimitInput,
+    LineInput,
+    RevisionInput,
+    add_starter_substances,
+    change_substance,
+    create_product,
+    create_substance,
+    revise_product,
+)
 from compliance.api.pagination import NewestFirst
 from compliance.api.serializers import register as shapes
 from compliance.api.views.base import ListCreateView, Lookup, WorkshopView, freeze
@@ -36,6 +45,16 @@ class SubstancesView(ListCreateView):
         return create_substance(actor=self.member, **said)
 
 
+class StartersView(WorkshopView):
+    """The usual substances of plating by name, CAS number and formula, without hazards."""
+
+    shape, statuses = shapes.StartersShape, (201,)
+
+    def post(self, request: Request, **kwargs: Any) -> Response:
+        """Add those that are not here yet; what is here stays as it is."""
+        return self.respond({"added": add_starter_substances(actor=self.member)}, 201)
+
+
 class SubstanceView(WorkshopView):
     """One substance."""
 
@@ -44,6 +63,20 @@ class SubstanceView(WorkshopView):
     def get(self, request: Request, **kwargs: Any) -> Response:
         """Return the substance."""
         return self.respond(get_substance_for(self.member, kwargs["uuid"]))
+
+
+class ChangeSubstanceView(WorkshopView):
+    """Corrects a substance: what is left out stays as it is. What a composition names keeps its formula."""
+
+    shape, input_class, statuses = shapes.SubstanceShape, shapes.SubstanceChange, (200,)
+
+    def post(self, request: Request, **kwargs: Any) -> Response:
+        """Correct the substance."""
+        found = get_substance_for(self.member, kwargs["uuid"])
+        said = self.read_body(request)
+        names = ("name", "cas_number", "ec_number", "formula", "synonyms", "inert")
+        kept = {name: getattr(found, name) for name in names if name not in said}
+        return self.respond(change_substance(actor=self.member, substance=found, **kept, **said))
 
 
 class _RevisionsView(ListCreateView):
@@ -58,10 +91,14 @@ class _RevisionsView(ListCreateView):
             (lookup.find(f"lines.{number}.substance", get_substance_for, line["substance"]), line["content"])
             for number, line in enumerate(said.pop("lines", []))
         ]
+        limits = []
+        for number, row in enumerate(said.pop("limits", [])):
+            of_what = lookup.find(f"limits.{number}.substance", get_substance_for, row.pop("substance", None))
+            limits.append(LimitInput(substance=of_what, **row))
         sheet = lookup.find("safety_data_sheet", get_attachment_for, said.pop("safety_data_sheet", None))
         lookup.finish()
         inputs = tuple(LineInput(substance, content) for substance, content in found if substance is not None)
-        return RevisionInput(lines=inputs, safety_data_sheet=sheet, **freeze(said))
+        return RevisionInput(lines=inputs, limits=tuple(limits), safety_data_sheet=sheet, **freeze(said))
 
 
 class ProductsView(_RevisionsView):
