@@ -23,7 +23,7 @@ KEY_HELP = _("A fresh uuid for each record: sent again with the same body it cha
 FAILURES: dict[int, tuple[Any, Any]] = {
     400: (Errors, _("Something in the request is wrong.")),
     401: (Errors, _("The token is missing, unknown or revoked.")),
-    403: (Errors, _("The token's member only reads.")),
+    403: (Errors, _("The token's member only reads, or is no owner.")),
     404: (Errors, _("There is no such thing in the token's workshop.")),
     409: (Refusal, _("The key was used for something else, the state has moved on, or this may not be done.")),
     415: (Errors, _("The body is of another kind.")),

@@ -2,7 +2,18 @@
 
 from django.urls import URLPattern, include, path, register_converter
 
-from compliance.api.views import calculations, doors, entries, exports, papers, register, vessels, waste, workshop
+from compliance.api.views import (
+    books,
+    calculations,
+    doors,
+    entries,
+    exports,
+    papers,
+    register,
+    vessels,
+    waste,
+    workshop,
+)
 from compliance.api.views.description import SchemaView
 
 
@@ -35,6 +46,7 @@ WORKSHOP: list[URLPattern] = [
     path("products/<uuid:uuid>/revisions/", register.RevisionsView.as_view(), name="api-revisions"),
     path("vessels/", vessels.VesselsView.as_view(), name="api-vessels"),
     path("vessels/<uuid:uuid>/", vessels.VesselView.as_view(), name="api-vessel"),
+    path("vessels/<uuid:uuid>/ledger/", books.VesselLedgerView.as_view(), name="api-vessel-ledger"),
     path("tanks/", vessels.TanksView.as_view(), name="api-tanks"),
     path("tanks/<uuid:uuid>/", vessels.TankView.as_view(), name="api-tank"),
     path("rack-types/", vessels.RackTypesView.as_view(), name="api-rack-types"),
@@ -46,6 +58,11 @@ WORKSHOP: list[URLPattern] = [
     path("balances/", entries.MetalsView.as_view(), name="api-balances"),
     path("balances/<str:metal>/", entries.BalanceView.as_view(), name="api-balance"),
     *(path(f"exports/{book}", view.as_view(), name=f"api-export-{book}") for book, view in exports.VIEWS.items()),
+    path("differences/", books.DifferencesView.as_view(), name="api-differences"),
+    path("books/", books.BooksView.as_view(), name="api-books"),
+    path("periods/", books.PeriodsView.as_view(), name="api-periods"),
+    path("periods/<uuid:uuid>/", books.PeriodView.as_view(), name="api-period"),
+    path("periods/<uuid:uuid>/reopen", books.ReopenView.as_view(), name="api-reopen"),
     path("waste-streams/", waste.StreamsView.as_view(), name="api-waste-streams"),
     path("waste-streams/<uuid:uuid>/", waste.StreamView.as_view(), name="api-waste-stream"),
     path("waste-containers/", waste.ContainersView.as_view(), name="api-waste-containers"),

@@ -182,6 +182,10 @@ def add_drop_off(api: Caller, shop: Shop, number: int) -> None:
     api.post("drop-offs/", drop_off)
 
 
+def add_period(api: Caller, shop: Shop, number: int) -> None:
+    api.post("periods/", {"until": f"2026-02-0{number + 1}"}, key=uuid4())
+
+
 def add_paper(api: Caller, shop: Shop, number: int) -> None:
     api.post(f"waste-containers/{shop.drum.vessel.uuid}/label", key=uuid4())
 
@@ -191,7 +195,7 @@ LISTS = {
     "products/{product}/revisions/": (add_revision, 5), "vessels/": (add_vessel, 1), "tanks/": (add_tank, 1),
     "rack-types/": (add_rack_type, 1), "routes/": (add_route, 2), "entries/": (add_entry, 3),
     "waste-streams/": (add_stream, 1), "waste-containers/": (add_container, 2), "receivers/": (add_receiver, 1),
-    "drop-offs/": (add_drop_off, 2), "papers/": (add_paper, 1),
+    "drop-offs/": (add_drop_off, 2), "periods/": (add_period, 1), "papers/": (add_paper, 1),
 }  # fmt: skip
 """How to add one row to each list, and how many queries its page takes besides the one that reads the token."""
 

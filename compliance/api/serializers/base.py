@@ -11,6 +11,7 @@ from rest_framework import serializers
 from chemicals.science.quantity import show
 from chemicals.science.units import DIMENSIONS
 
+STANDS_HELP = _("While a late entry is being worked in: the moment up to which the books stand; null if they say all.")
 UNCERTAINTY_HELP = _("Standard uncertainty in the same unit; 0 where none was stated.")
 
 

@@ -16,7 +16,7 @@ from chemicals.ledger.components import dimension_of
 from chemicals.ledger.models import Basis, Posting
 from chemicals.ledger.search import BY
 from compliance.api.fields import Choice, Day, Identifier, Strict, Text, Yes
-from compliance.api.serializers.base import End, Estimate, Figure, Hex, Named, Person, Shape, choices_of
+from compliance.api.serializers.base import STANDS_HELP, End, Estimate, Figure, Hex, Named, Person, Shape, choices_of
 from compliance.api.serializers.query import PageQuery
 from compliance.documents.export import FORMATS
 
@@ -225,6 +225,7 @@ class BalanceShape(Shape):
     smallest_visible = Figure(
         allow_null=True, help_text=_("The smallest loss that this balance could have seen; null where unknown.")
     )
+    stands_to = serializers.DateTimeField(allow_null=True, help_text=STANDS_HELP)
 
 
 class MetalsShape(Shape):

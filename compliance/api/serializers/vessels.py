@@ -10,7 +10,7 @@ from chemicals.process.models import AnodeKind, SideReaction
 from chemicals.process.setup import HOLDERS
 from chemicals.science.formula import METALS
 from compliance.api.fields import BaseUnits, Choice, Identifier, Strict, Text, Whole, Words
-from compliance.api.serializers.base import Estimate, Figure, Named, Shape, choices_of
+from compliance.api.serializers.base import STANDS_HELP, Estimate, Figure, Named, Shape, choices_of
 from compliance.api.serializers.entries import DatedFinding
 from compliance.api.serializers.query import PageQuery
 
@@ -90,6 +90,7 @@ class VesselDetail(VesselShape):
     """A vessel with what it holds."""
 
     contents = ContentsShape(help_text=_("What it holds now."))
+    stands_to = serializers.DateTimeField(allow_null=True, help_text=STANDS_HELP)
     findings = DatedFinding(many=True, help_text=_("What a person should know about it, the latest 50."))
 
 

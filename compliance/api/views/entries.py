@@ -14,7 +14,7 @@ from chemicals.balance.selectors import get_book_balance, list_metals_for
 from chemicals.journal.models import Entry
 from chemicals.journal.selectors import find_cancelled, get_entry_for, read_body
 from chemicals.ledger.search import Search, find_entries
-from chemicals.ledger.selectors import list_findings_for, list_postings_of, list_vessels_for
+from chemicals.ledger.selectors import get_recomputed_to, list_findings_for, list_postings_of, list_vessels_for
 from chemicals.workshop.errors import InvalidInputError
 from chemicals.workshop.models import Membership
 from compliance.api.fields import EARLIEST
@@ -37,6 +37,12 @@ def end(day: date, zone: ZoneInfo) -> datetime:
 def name_vessels(member: Membership) -> dict[str, str]:
     """Return the names of all vessels by their identifiers. One query."""
     return {str(uuid): name for uuid, name in list_vessels_for(member).values_list("uuid", "name")}
+
+
+def stands_to(member: Membership) -> datetime | None:
+    """Return up to when the books stand; None if they say all. One query."""
+    found = get_recomputed_to(member.workshop)
+    return None if found is None else found.until
 
 
 def read_entry(entry: Entry, member: Membership) -> tuple[With, dict[str, Any]]:
@@ -99,7 +105,8 @@ class BalanceView(WorkshopView):
         first, last = self.query.get("start", EARLIEST), self.query.get("end", self.now.astimezone(zone).date())
         if last < first:
             raise InvalidInputError.of("end", _("The period ends before it begins. Write a later last day."))
-        return self.respond(get_book_balance(self.member, kwargs["metal"], begin(first, zone), end(last, zone)))
+        found = get_book_balance(self.member, kwargs["metal"], begin(first, zone), end(last, zone))
+        return self.respond(With(found, stands_to=stands_to(self.member)))
 
 
 class MetalsView(WorkshopView):

@@ -26,7 +26,7 @@ from chemicals.workshop.selectors import get_place_for
 from compliance.api.serializers import vessels as shapes
 from compliance.api.serializers.base import With
 from compliance.api.views.base import ListCreateView, Lookup, WorkshopView
-from compliance.api.views.entries import name_vessels
+from compliance.api.views.entries import name_vessels, stands_to
 
 LATEST = 50
 """How many findings a vessel shows."""
@@ -63,7 +63,8 @@ class VesselView(WorkshopView):
     def get(self, request: Request, **kwargs: Any) -> Response:
         """Return the vessel."""
         vessel = get_vessel_for(self.member, kwargs["uuid"])
-        found = With(vessel, contents=read_contents(vessel), findings=list_findings_of(vessel)[:LATEST])
+        read = {"contents": read_contents(vessel), "findings": list_findings_of(vessel)[:LATEST]}
+        found = With(vessel, **read, stands_to=stands_to(self.member))
         return self.respond(found, vessels=name_vessels(self.member))
 
 
