@@ -8,7 +8,7 @@ refused.
 
 import unicodedata
 from collections.abc import Iterator
-from functools import cache
+from functools import cache, lru_cache
 from pathlib import Path
 from typing import Any, NamedTuple
 
@@ -123,7 +123,8 @@ def draw(canvas: Any, at: tuple[float, float], text: str, style: Style) -> None:
     canvas.drawText(line)
 
 
-def wrap(text: str, style: Style, room: float) -> list[str]:
+@lru_cache(maxsize=8192)  # the same text is measured several times before it is drawn
+def wrap(text: str, style: Style, room: float) -> tuple[str, ...]:
     """Break text into lines no wider than `room` points: at spaces, and inside a word only if it alone is wider."""
     lines: list[str] = []
     for paragraph in text.split("\n"):
@@ -138,7 +139,7 @@ def wrap(text: str, style: Style, room: float) -> list[str]:
             *full, line = _pieces(word, style, room)
             lines.extend(full)
         lines.append(line)
-    return lines
+    return tuple(lines)
 
 
 def _pieces(word: str, style: Style, room: float) -> list[str]:

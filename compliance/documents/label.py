@@ -10,7 +10,7 @@ from compliance.documents.codes import draw_code
 from compliance.documents.errors import DoesNotFitError, FieldError
 from compliance.documents.flow import MM, Block, Columns, Framed, Gap, Picture, Rule, Stack, Text
 from compliance.documents.fonts import BOLD, REGULAR, SEMIBOLD, Style
-from compliance.documents.pictograms import pictogram_rows
+from compliance.documents.pictograms import diagonal_of, pictogram_rows
 from compliance.documents.shapes import WasteLabelData
 from compliance.documents.stock import PAGES, Stock
 
@@ -67,7 +67,7 @@ def _sizes(stock: Stock) -> Iterator[Sizes]:
         side = smallest_side + part * (largest_side - smallest_side)
         code = 18 * MM + part * (largest_code - 18 * MM)
         body = _SMALLEST_TEXT + part * (_LARGEST_TEXT - _SMALLEST_TEXT)
-        yield Sizes(body, side * 2**0.5, smallest_side * 2**0.5, code)
+        yield Sizes(body, diagonal_of(side), diagonal_of(smallest_side), code)
 
 
 def _wide(data: WasteLabelData, sizes: Sizes, width: float) -> Block:

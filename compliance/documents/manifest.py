@@ -7,18 +7,15 @@ from django.utils.translation import gettext as _
 
 from compliance.documents import words
 from compliance.documents.codes import draw_code
-from compliance.documents.errors import DoesNotFitError, FieldError
-from compliance.documents.flow import MM, Block, Columns, Framed, Gap, Group, Picture, Rule, Stack, Text, paginate
+from compliance.documents.flow import MM, Block, Columns, Framed, Gap, Group, Picture, Rule, Stack, Text
 from compliance.documents.fonts import BOLD, REGULAR, SEMIBOLD, Style
+from compliance.documents.pages import CODE, Pages, draw_pages
 from compliance.documents.pictograms import pictogram_rows
 from compliance.documents.shapes import HazardData, ManifestContainerData, ManifestContentData, ManifestData, PaperSize
-from compliance.documents.stock import PAGES
 
-_MARGIN = 15 * MM
 _BODY, _STRONG, _HEADING = Style(REGULAR, 9), Style(SEMIBOLD, 9), Style(BOLD, 11)
 _SMALL, _SMALL_STRONG = Style(REGULAR, 8), Style(SEMIBOLD, 8)
 _TITLE, _FOOT = Style(BOLD, 17), Style(REGULAR, 7)
-_CODE = 24 * MM
 _DIAMOND = 15 * MM
 _BESIDE = 6  # contents that stand beside the hazards; further ones follow below and may run over a page
 _CONTENT_WIDTHS = (0.4, 0.2, 0.2, 0.2)
@@ -27,20 +24,8 @@ _CONTENTS_SHARE = 0.58
 
 def draw_manifest(canvas: Any, data: ManifestData, paper_size: PaperSize) -> None:
     """Draw all pages."""
-    wide, high = (side * MM for side in PAGES[paper_size])
-    width = wide - 2 * _MARGIN
-    head, foot_height = _head(data), _foot(data, 1, 1).height(width)
-    room = high - 2 * _MARGIN - head.height(width) - foot_height
-    pages = paginate(list(_groups(data)), width, room)
-    if any(sum(block.height(width) for block in page) > room for page in pages):
-        raise DoesNotFitError(
-            [FieldError("containers", _("one text is longer than a page: say less, or in more lines"))]
-        )
-    for number, page in enumerate(pages, start=1):
-        head.draw(canvas, _MARGIN, high - _MARGIN, width)
-        Stack(page).draw(canvas, _MARGIN, high - _MARGIN - head.height(width), width)
-        _foot(data, number, len(pages)).draw(canvas, _MARGIN, _MARGIN + foot_height, width)
-        canvas.showPage()
+    pages = Pages(_head(data), list(_groups(data)), words.issued("manifest", data), data, field="containers")
+    draw_pages(canvas, pages, paper_size)
 
 
 def _head(data: ManifestData) -> Block:
@@ -55,26 +40,8 @@ def _head(data: ManifestData) -> Block:
             Text(words.no_consignment_note(), _BODY),
         ]
     )
-    code = Picture(_CODE, _CODE, lambda canvas, x, y: draw_code(canvas, x, y, _CODE, data["url"]))
-    return Stack([Columns([title, code], [1.0, _CODE]), Rule(1.2, 1, 6)])
-
-
-def _foot(data: ManifestData, number: int, total: int) -> Block:
-    """Stands on every page, so that a single sheet can be told from another and witnesses the journal."""
-    issued = _("Manifest %(number)d, issued %(at)s by %(by)s") % {
-        "number": data["number"],
-        "at": data["issued_at"],
-        "by": data["issued_by"],
-    }
-    page = _("page %(number)d of %(total)d") % {"number": number, "total": total}
-    chain = _("journal %(sequence)d") % {"sequence": data["chain_sequence"]}
-    return Stack(
-        [
-            Rule(0.4, 4, 2),
-            Columns([Text(issued, _FOOT), Text(page, Style(SEMIBOLD, 9), align=1.0)], [0.75, 0.25]),
-            Text(f"{chain}: {words.grouped(data['chain_head'])}", _FOOT),
-        ]
-    )
+    code = Picture(CODE, CODE, lambda canvas, x, y: draw_code(canvas, x, y, CODE, data["url"]))
+    return Stack([Columns([title, code], [1.0, CODE]), Rule(1.2, 1, 6)])
 
 
 def _groups(data: ManifestData) -> Iterator[Group]:
@@ -180,7 +147,7 @@ def _hazard_lines(hazards: HazardData) -> Iterator[Block]:
 def _chain(data: ManifestData) -> Block:
     """The journal's head at the time of issue: this sheet, kept by somebody else, witnesses every entry up to it."""
     witness = words.witness(data["chain_sequence"], data["chain_head"])
-    code = Picture(_CODE, _CODE, lambda canvas, x, y: draw_code(canvas, x, y, _CODE, witness))
+    code = Picture(CODE, CODE, lambda canvas, x, y: draw_code(canvas, x, y, CODE, witness))
     text = Stack(
         [
             Text(_("Chain head"), _HEADING),
@@ -189,7 +156,7 @@ def _chain(data: ManifestData) -> Block:
             Text(words.grouped(data["chain_head"]), Style(SEMIBOLD, 10)),
         ]
     )
-    return Columns([text, code], [1.0, _CODE])
+    return Columns([text, code], [1.0, CODE])
 
 
 def _signatures(data: ManifestData) -> Iterator[Block]:

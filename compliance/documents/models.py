@@ -15,6 +15,9 @@ class PaperKind(models.TextChoices):
 
     WASTE_LABEL = "waste-label", _("waste label")
     MANIFEST = "manifest", _("manifest")
+    LABELS = "labels", _("labels of vessels")
+    EMERGENCY = "emergency", _("emergency sheet")
+    REGISTER = "register", _("list of chemicals")
 
 
 class Paper(models.Model):

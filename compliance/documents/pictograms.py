@@ -10,7 +10,7 @@ import re
 from collections.abc import Iterator, Sequence
 from typing import Any, Literal, NamedTuple
 
-from compliance.documents.flow import Block, Picture
+from compliance.documents.flow import Picture
 from compliance.documents.shapes import Pictogram
 
 Ink = Literal["black", "white", "red"]
@@ -66,6 +66,12 @@ _FRAME = (
     Part("M 50 1 L 99 50 L 50 99 L 1 50 Z", "red"),
     Part("M 50 7.5 L 92.5 50 L 50 92.5 L 7.5 50 Z", "white"),
 )
+_ACROSS = 98  # the frame's diagonal in the box of 100
+
+
+def diagonal_of(side: float) -> float:
+    """The side of the box, which is what the drawing takes as diagonal, of a diamond whose own sides are `side`."""
+    return float(side * 2**0.5 * 100 / _ACROSS)
 
 
 def _spike(degrees: float, inner: float, outer: float, half: float) -> str:
@@ -289,14 +295,14 @@ def _pdf_path(canvas: Any, path: str) -> Any:
     return drawn
 
 
-def pictogram_rows(codes: Sequence[Pictogram], diagonal: float, per_row: int) -> list[Block]:
+def pictogram_rows(codes: Sequence[Pictogram], diagonal: float, per_row: int) -> list[Picture]:
     """The diamonds side by side, in as few rows as `per_row` allows and those of equal length."""
     rows = math.ceil(len(codes) / max(1, per_row))
     length = math.ceil(len(codes) / max(1, rows))
     return [_row(codes[start : start + length], diagonal) for start in range(0, len(codes), max(1, length))]
 
 
-def _row(codes: Sequence[Pictogram], diagonal: float) -> Block:
+def _row(codes: Sequence[Pictogram], diagonal: float) -> Picture:
     def paint(canvas: Any, x: float, y: float) -> None:
         for number, code in enumerate(codes):
             draw_pictogram(canvas, code, (x + number * diagonal, y), diagonal)

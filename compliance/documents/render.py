@@ -8,12 +8,15 @@ from django.utils.translation import get_language
 
 from compliance.documents import fonts
 from compliance.documents.check import check_data
+from compliance.documents.emergency import draw_emergency_sheet
 from compliance.documents.flow import MM
 from compliance.documents.label import draw_label
 from compliance.documents.manifest import draw_manifest
-from compliance.documents.shapes import ManifestData, PaperSize, WasteLabelData
-from compliance.documents.stock import PAGES, find_stock
+from compliance.documents.register_list import draw_register
+from compliance.documents.shapes import EmergencyData, LabelsData, ManifestData, PaperSize, RegisterData, WasteLabelData
+from compliance.documents.stock import ALL_STOCKS, PAGES, find_stock
 from compliance.documents.twin import twin_context
+from compliance.documents.vessel_label import draw_labels
 from compliance.documents.words import paper_title
 
 
@@ -31,13 +34,24 @@ def render_pdf(kind: str, data: dict[str, Any], *, paper_size: PaperSize) -> byt
     canvas.setTitle(paper_title(kind, data))
     canvas.setAuthor(data["workshop"]["name"])
     canvas.setProducer("Gramledger")
+    _draw(canvas, kind, data, paper_size)
+    canvas.save()
+    return target.getvalue()
+
+
+def _draw(canvas: Any, kind: str, data: dict[str, Any], paper_size: PaperSize) -> None:
     if kind == "waste-label":
         label = cast("WasteLabelData", data)
         draw_label(canvas, label, find_stock(label.get("stock"), label.get("start", 1), paper_size))
+    elif kind == "labels":
+        labels = cast("LabelsData", data)
+        draw_labels(canvas, labels, find_stock(labels["stock"], labels["start"], paper_size, ALL_STOCKS))
+    elif kind == "emergency":
+        draw_emergency_sheet(canvas, cast("EmergencyData", data), paper_size)
+    elif kind == "register":
+        draw_register(canvas, cast("RegisterData", data), paper_size)
     else:
         draw_manifest(canvas, cast("ManifestData", data), paper_size)
-    canvas.save()
-    return target.getvalue()
 
 
 def render_html(kind: str, data: dict[str, Any], *, pdf_url: str = "") -> str:

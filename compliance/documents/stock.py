@@ -1,5 +1,6 @@
 """Label stock as data: sheets as they lie in the printer, in millimetres."""
 
+from collections.abc import Sequence
 from typing import NamedTuple
 
 from compliance.documents.errors import FieldError, PaperDataError
@@ -51,10 +52,21 @@ STOCKS: tuple[Stock, ...] = (
     Stock("6 per Letter", "Letter", 101.6, 84.0, 2, 3, 4.0, 13.0, gap_x=4.7, safe=4.0),
 )
 
+# Smaller labels, for bottles and spray bottles: whole fractions of A4, and two sizes of Letter sheets that are sold
+# everywhere (common practice; hold a printed sheet against the stock before the first use).
+SMALL_STOCKS: tuple[Stock, ...] = (
+    Stock("12 per A4", "A4", 105.0, 49.5, 2, 6, 0.0, 0.0, safe=3.0),
+    Stock("24 per A4", "A4", 70.0, 37.125, 3, 8, 0.0, 0.0, safe=2.5),
+    Stock("40 per A4", "A4", 52.5, 29.7, 4, 10, 0.0, 0.0, safe=2.0),
+    Stock("10 per Letter", "Letter", 101.6, 50.8, 2, 5, 3.97, 12.7, gap_x=4.76, safe=3.0),
+    Stock("30 per Letter", "Letter", 66.68, 25.4, 3, 10, 4.76, 12.7, gap_x=3.18, safe=1.5),
+)
+ALL_STOCKS = STOCKS + SMALL_STOCKS
 
-def find_stock(name: str | None, start: int, page: PaperSize) -> Stock:
+
+def find_stock(name: str | None, start: int, page: PaperSize, among: Sequence[Stock] = STOCKS) -> Stock:
     """The stock of that name, or the first of the page size; `PaperDataError` if there is none or no such position."""
-    fitting = [stock for stock in STOCKS if stock.page == page]
+    fitting = [stock for stock in among if stock.page == page]
     chosen = next((stock for stock in fitting if name in (None, stock.name)), None)
     if chosen is None:
         names = ", ".join(stock.name for stock in fitting)

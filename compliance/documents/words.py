@@ -1,4 +1,7 @@
-"""The sentences of the papers, and the few figures derived from frozen data: one place for PDF and HTML twin alike."""
+"""The sentences of the papers, and the few figures derived from frozen data: one place for PDF and HTML twin alike.
+
+What only one kind of paper says stands in label_words, emergency_words and register_words.
+"""
 
 from collections.abc import Mapping, Sequence
 from decimal import Decimal
@@ -7,7 +10,7 @@ from typing import Any, Literal
 from django.utils.translation import gettext as _
 from django.utils.translation import gettext_lazy, ngettext
 
-from compliance.documents.shapes import HazardData, ManifestContainerData, Pictogram, SignalWord
+from compliance.documents.shapes import AvoidData, HazardData, ManifestContainerData, Pictogram, SignalWord
 
 _SYMBOL_NAMES = {
     "GHS01": gettext_lazy("exploding bomb"),
@@ -19,6 +22,13 @@ _SYMBOL_NAMES = {
     "GHS07": gettext_lazy("exclamation mark"),
     "GHS08": gettext_lazy("health hazard"),
     "GHS09": gettext_lazy("environment"),
+}
+_KINDS = {
+    "waste-label": gettext_lazy("Label"),
+    "manifest": gettext_lazy("Manifest"),
+    "labels": gettext_lazy("Labels"),
+    "emergency": gettext_lazy("Emergency sheet"),
+    "register": gettext_lazy("List of chemicals"),
 }
 _SIGNAL_WORDS = {"Danger": gettext_lazy("Danger"), "Warning": gettext_lazy("Warning"), "": ""}
 
@@ -45,8 +55,7 @@ def has_hazards(hazards: HazardData) -> bool:
 
 def paper_title(kind: str, data: Mapping[str, Any]) -> str:
     """Kind and number of a paper."""
-    name = _("Label") if kind == "waste-label" else _("Manifest")
-    return f"{name} {data['number']}"
+    return f"{_KINDS[kind]} {data['number']}"
 
 
 def label_title(hazards: HazardData) -> str:
@@ -156,3 +165,33 @@ def grouped(digest: str) -> str:
 def witness(sequence: int, digest: str) -> str:
     """What the code beside the chain head contains: the entry's number and the hash."""
     return f"{sequence} {digest}"
+
+
+def not_entered(names: Sequence[str]) -> str:
+    """Said where hazards of a part of the contents are missing."""
+    return _("Hazards not entered for: %s. That does not mean there are none.") % ", ".join(names)
+
+
+def contents(text: str | None) -> str:
+    """What is inside, in words."""
+    return text or _("contents unknown")
+
+
+def must_never_meet(others: Sequence[AvoidData], *, brief: bool = False) -> str:
+    """What must never come together with the contents; unless ``brief`` with what that would give."""
+    names = [avoid(other, brief=brief) for other in others]
+    return _("Must never meet: %s") % (", ".join(names) or nothing_to_avoid())
+
+
+def avoid(other: AvoidData, *, brief: bool = False) -> str:
+    """One thing that must not be met."""
+    return other["what"] if brief or not other["gives"] else f"{other['what']} ({other['gives']})"
+
+
+def issued(kind: str, data: Mapping[str, Any]) -> str:
+    """Number, time and person of a paper, for its foot."""
+    return _("%(paper)s, issued %(at)s by %(by)s") % {
+        "paper": paper_title(kind, data),
+        "at": data["issued_at"],
+        "by": data["issued_by"],
+    }
