@@ -160,7 +160,7 @@ class Demo:
         return made.product
 
     def create_vessel(self, row: Row) -> Any:
-        """Create a stock container or an anode set."""
+        """Create a stock container, an anode set, or what stands for solids."""
         return create_vessel(
             actor=self.owner,
             now=self.begins,
@@ -177,10 +177,12 @@ class Demo:
             **row,
             "place": self.find("places", row["place"]),
             "anode": self.find("vessels", row.get("anode")),
+            "racks": self.find("vessels", row.get("racks")),
             "capacity": _base(row, "capacity", "volume"),
             "mark": _base(row, "mark", "volume"),
         }
-        known |= {name: _base(row, name, "fraction") for name in ("efficiency", "efficiency_sd") if name in row}
+        shares = ("efficiency", "efficiency_sd", "rack_share")
+        known |= {name: _base(row, name, "fraction") for name in shares if name in row}
         return setup.create_tank(actor=self.owner, now=self.begins, tank=setup.TankInput(**known))
 
     def create_rack_type(self, row: Row) -> Any:

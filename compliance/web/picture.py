@@ -12,7 +12,12 @@ from chemicals.balance.selectors import BookBalance, Flow, FlowEnd
 from chemicals.ledger.models import Vessel, VesselKind
 from compliance.web.words import amount, end_name
 
-COLUMN = {VesselKind.STOCK: 1, VesselKind.ANODE: 1, VesselKind.BATH: 2, VesselKind.RINSE: 3, VesselKind.WASTE: 4}
+COLUMN = {
+    VesselKind.STOCK: 1, VesselKind.ANODE: 1, VesselKind.BATH: 2, VesselKind.RINSE: 3, VesselKind.FILTER: 3,
+    VesselKind.CARBON: 3, VesselKind.RESIN: 3, VesselKind.RECOVERY_CELL: 3, VesselKind.RACKS: 3, VesselKind.SLUDGE: 4,
+    VesselKind.WASTE: 4,
+}  # fmt: skip
+"""Where each kind of vessel stands, from the left."""
 LAST_COLUMN = 5
 BOX_WIDTH, BOX_HEIGHT, GAP, ROW = 150, 40, 70, 64
 LIST_WIDTH, LIST_BOX, LIST_ROW = 350, 170, 52

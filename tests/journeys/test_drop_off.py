@@ -31,7 +31,7 @@ def test_from_the_rinse_to_the_collection_point(demo: People, visit: Callable[..
     page.get_by_role("link", name="Drum off").click()
     page.get_by_label(re.compile("^From")).select_option(str(vessel_of("Copper second rinse").uuid))
     page.get_by_label(re.compile("^Into")).select_option(str(vessel_of("Canister 2").uuid))
-    page.get_by_label("Amount").fill("3 L")
+    page.get_by_label("Volume", exact=True).fill("3 L")
     visitor.check_page()
     page.get_by_role("button", name="See what follows").click()
     page.get_by_role("button", name="Save").click()

@@ -25,6 +25,11 @@ from compliance.ops.verify import find_loose_ends, verify_workshops
 from tests.ops.conftest import LOADED_AT
 
 G = 10**6
+LEFT_OUT = (
+    events.Move, events.Strip, events.Resin, events.Sludge, events.CleanOut, events.Treatment, events.Discharge,
+    events.Correction, events.PeriodClosing, events.PeriodReopening,
+)  # fmt: skip
+"""Kinds that do not happen in every few weeks of a small workshop, or that need somebody's permission."""
 pytestmark = pytest.mark.django_db
 
 
@@ -68,9 +73,10 @@ def test_everything_says_that_it_is_invented(member: Membership) -> None:
 
 def test_every_kind_of_the_path_happened(member: Membership) -> None:
     kinds = {entry.kind for entry in entries(member)}
-    assert kinds == {kind.KIND for kind in events.EVENTS} - {events.Move.KIND}
-    assert kinds >= {verb.replace("-", " ") for verb in ("level-reading", "drum-off")}
-    assert len(INPUTS) == len(events.EVENTS) - 1  # papers have no form
+    assert {kind.KIND for kind in events.EVENTS} - kinds <= {kind.KIND for kind in LEFT_OUT}
+    assert kinds >= {verb.replace("-", " ") for verb in ("level-reading", "drum-off", "day-sheet", "filter", "spill")}
+    without_a_form = {events.Paper.KIND, events.PeriodClosing.KIND, events.PeriodReopening.KIND}
+    assert set(INPUTS) == {kind.KIND.replace(" ", "-") for kind in events.EVENTS if kind.KIND not in without_a_form}
 
 
 def test_its_history_is_of_the_weeks_before_and_in_order(member: Membership) -> None:
@@ -137,7 +143,7 @@ def test_the_copper_balance_closes_nearly(member: Membership) -> None:
     assert 0 < abs(unaccounted) < received // 100
     assert copper.smallest_visible is not None
     assert abs(unaccounted) < copper.smallest_visible
-    assert -230 * G < (copper.boundaries["parts"].value or 0) < -200 * G
+    assert -275 * G < (copper.boundaries["parts"].value or 0) < -250 * G
     assert -10 * G < (copper.boundaries["receiver"].value or 0) < -3 * G
 
 

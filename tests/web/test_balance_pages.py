@@ -4,6 +4,8 @@ import re
 from datetime import UTC, datetime
 from uuid import uuid4
 
+import pytest
+
 from chemicals.balance.selectors import Amount, BookBalance, Flow, VesselRow
 from chemicals.ledger.models import Vessel, VesselKind
 from compliance.web.picture import LAST_COLUMN, draw_narrow, draw_wide
@@ -104,6 +106,14 @@ def test_a_vessel_called_like_a_boundary_is_drawn_as_a_vessel() -> None:
     assert [(box.node.name, box.node.is_boundary) for box in drawn.boxes] == [
         ("Tub", False), ("parts", False), ("parts", True),
     ]  # fmt: skip
+
+
+@pytest.mark.parametrize("kind", VesselKind)
+def test_every_kind_of_vessel_has_its_place_in_the_picture(kind: VesselKind) -> None:
+    end = Vessel(name="The end", kind=kind)
+    drawing = draw_wide(balance({}, grams(1), Flow(BATH, end, grams(1))))
+    inside = {box.node.name for box in drawing.boxes if 0 < box.node.column < LAST_COLUMN}
+    assert inside == {"Bath", "The end"}
 
 
 def test_an_empty_period_draws_nothing() -> None:

@@ -39,7 +39,11 @@ class OpeningInput(Input):
         )
     )
     complete: bool = use(
-        FlagField(_("No other metal is in it"), _("Without this, every metal not named is unknown."), required=False)
+        FlagField(
+            _("No other metal is in it"),
+            _("Then everything not named is absent, acid and cyanide too; without this, it is unknown."),
+            required=False,
+        )
     )
 
 
