@@ -6,7 +6,6 @@ All functions run inside the workshop's scope; those that write, inside a transa
 from collections import defaultdict
 from collections.abc import Iterable, Iterator, Mapping, Sequence
 from dataclasses import replace
-from typing import Any
 
 from django.db.models import Model
 
@@ -15,16 +14,17 @@ from chemicals.books.fold import Folded
 from chemicals.books.fold.state import EVERY, Finding, Holding, Transfer
 from chemicals.journal.models import Entry
 from chemicals.ledger import models
+from chemicals.ledger.inserting import Row, insert_rows
 from chemicals.ledger.projection import BATCH, HELD, Names, read_vessel
 
 NOTHING = Folded((), (), ())
-Row = tuple[Any, ...]
 
 COLUMNS: Mapping[type[Model], tuple[str, ...]] = {
     models.Posting: ("occurred_at", "transfer", "amount", "component_id", "vessel_id", "boundary", "sd", "basis"),
     models.Content: ("occurred_at", "sequence", "vessel_id", "component_id", *HELD, "poured"),
     models.Finding: ("occurred_at", "code", "component", "source", "target"),
 }
+WRITTEN = {table: ("workshop_id", "entry_id", *columns) for table, columns in COLUMNS.items()}
 
 
 def components_of(followed: Iterable[Folded]) -> set[str]:
@@ -117,9 +117,9 @@ def _expect(truth: bool) -> None:  # noqa: FBT001  (reads as an assertion)
 def write_followed(followed: Iterable[tuple[Entry, Folded]], names: Names) -> None:
     """Write what followed from entries of which nothing is kept yet."""
     pairs = list(followed)
-    models.Posting.objects.bulk_create([row for e, f in pairs for row in _postings(e, f, names)], batch_size=BATCH)
-    models.Content.objects.bulk_create([row for e, f in pairs for row in _contents(e, f, names)], batch_size=BATCH)
-    models.Finding.objects.bulk_create([row for e, f in pairs for row in _findings(e, f)], batch_size=BATCH)
+    insert_rows(models.Posting, WRITTEN[models.Posting], (row for e, f in pairs for row in _postings(e, f, names)))
+    insert_rows(models.Content, WRITTEN[models.Content], (row for e, f in pairs for row in _contents(e, f, names)))
+    insert_rows(models.Finding, WRITTEN[models.Finding], (row for e, f in pairs for row in _findings(e, f)))
 
 
 def replace_followed(followed: Sequence[tuple[Entry, Folded]], names: Names) -> None:
@@ -129,48 +129,25 @@ def replace_followed(followed: Sequence[tuple[Entry, Folded]], names: Names) -> 
     write_followed(followed, names)
 
 
-def _postings(entry: Entry, folded: Folded, names: Names) -> Iterator[models.Posting]:
-    for number, transfer in enumerate(folded.transfers):
-        for end, amount in ((transfer.source, -transfer.amount), (transfer.target, transfer.amount)):
-            yield models.Posting(
-                workshop_id=entry.workshop_id,
-                entry_id=entry.pk,
-                transfer=number,
-                component_id=names.components[transfer.component],
-                vessel_id=None if end in BOUNDARIES else names.vessels[end],
-                boundary=end if end in BOUNDARIES else "",
-                amount=amount,
-                sd=transfer.sd,
-                basis=transfer.basis,
-                occurred_at=entry.occurred_at,
-            )
+def _postings(entry: Entry, folded: Folded, names: Names) -> Iterator[Row]:
+    about = entry.workshop_id, entry.pk, entry.occurred_at
+    for number, moved in enumerate(folded.transfers):
+        component = names.components[moved.component]
+        for end, amount in ((moved.source, -moved.amount), (moved.target, moved.amount)):
+            vessel, boundary = (None, end) if end in BOUNDARIES else (names.vessels[end], "")
+            yield (*about, number, amount, component, vessel, boundary, moved.sd, moved.basis)
 
 
-def _contents(entry: Entry, folded: Folded, names: Names) -> Iterator[models.Content]:
+def _contents(entry: Entry, folded: Folded, names: Names) -> Iterator[Row]:
+    about = entry.workshop_id, entry.pk, entry.occurred_at, entry.sequence
     vessels = dict(folded.vessels)
-    for vessel, component, holding in folded.contents:
-        yield models.Content(
-            workshop_id=entry.workshop_id,
-            entry_id=entry.pk,
-            vessel_id=names.vessels[vessel],
-            component_id=names.components[component],
-            occurred_at=entry.occurred_at,
-            sequence=entry.sequence,
-            amount=holding.amount,
-            variance=holding.variance,
-            known_part=holding.known_part,
-            poured=sorted(vessels[vessel].poured) if component == EVERY else None,
-        )
+    for vessel, component, held in folded.contents:
+        poured = sorted(vessels[vessel].poured) if component == EVERY else None
+        which = names.vessels[vessel], names.components[component]
+        yield (*about, *which, held.amount, held.variance, held.known_part, poured)
 
 
-def _findings(entry: Entry, folded: Folded) -> Iterator[models.Finding]:
-    for finding in folded.findings:
-        yield models.Finding(
-            workshop_id=entry.workshop_id,
-            entry_id=entry.pk,
-            code=finding.code,
-            component=finding.component,
-            source=finding.source,
-            target=finding.target,
-            occurred_at=entry.occurred_at,
-        )
+def _findings(entry: Entry, folded: Folded) -> Iterator[Row]:
+    about = entry.workshop_id, entry.pk, entry.occurred_at
+    for found in folded.findings:
+        yield (*about, found.code, found.component, found.source, found.target)

@@ -96,8 +96,9 @@ def project_entry(entry: Entry, event: events.Event) -> fold.Folded:
 def project_entries(workshop: Workshop, now: datetime, recorded: Sequence[tuple[Entry, events.Event]]) -> bool:
     """Bring the ledger up to date with entries that were recorded together; say whether the books stand now.
 
-    Call it under the chain's lock; none of them is a cancellation. Everything is folded again from the earliest of them on, at once or, with more than
-    LATE_LIMIT entries from there on, by the job. Raises InvalidInputError for what would change a closed period.
+    Call it under the chain's lock; none of them is a cancellation. Everything is folded again from the earliest of them
+    on, at once or, with more than LATE_LIMIT entries from there on, by the job. Raises InvalidInputError for what would
+    change a closed period.
     """
     with transaction.atomic(), scope(workshop=workshop):
         first = find_first(recorded)
