@@ -136,6 +136,26 @@ class Place(models.Model):
         return self.name
 
 
+class EmergencyNumber(models.Model):
+    """Whom to call in an emergency, as the workshop entered it; printed on the emergency sheet in this order."""
+
+    workshop = models.ForeignKey(Workshop, on_delete=models.PROTECT, related_name="emergency_numbers")
+    position = models.PositiveSmallIntegerField()
+    label = models.CharField(_("whom to call"), max_length=80)
+    number = models.CharField(_("telephone"), max_length=60)
+    entered_at = models.DateTimeField()
+    entered_by = models.ForeignKey(Membership, on_delete=models.PROTECT, related_name="+")
+
+    objects: "models.Manager[EmergencyNumber]" = ScopedManager(workshop="workshop")
+
+    class Meta:
+        ordering = ["position"]
+        constraints = [models.UniqueConstraint(fields=["workshop", "position"], name="emergency_number_position_once")]
+
+    def __str__(self) -> str:
+        return f"{self.label}: {self.number}"
+
+
 class ApiToken(models.Model):
     """A member's key for the API. Only its SHA-256 is kept; the key is shown once."""
 

@@ -7,7 +7,7 @@ from django.db.models import QuerySet
 from django_scopes import scope
 
 from chemicals.workshop.errors import NotFoundError
-from chemicals.workshop.models import ApiToken, Membership, Place, User
+from chemicals.workshop.models import ApiToken, EmergencyNumber, Membership, Place, User
 
 
 def list_memberships_of(user: User) -> QuerySet[Membership]:
@@ -50,6 +50,12 @@ def get_place_for(member: Membership, uuid: UUID) -> Place:
         return list_places_for(member).get(uuid=uuid)
     except Place.DoesNotExist as error:
         raise NotFoundError("There is no such place in this workshop.") from error
+
+
+def list_emergency_numbers_for(member: Membership) -> QuerySet[EmergencyNumber]:
+    """Return whom to call in an emergency, in the workshop's order. One query."""
+    with scope(workshop=member.workshop):
+        return EmergencyNumber.objects.select_related("entered_by__user").order_by("position")
 
 
 def list_tokens_for(member: Membership) -> QuerySet[ApiToken]:

@@ -2,6 +2,8 @@
 
 import hashlib
 import secrets
+from collections.abc import Iterator, Sequence
+from dataclasses import dataclass
 from datetime import datetime
 from uuid import UUID
 
@@ -11,7 +13,7 @@ from django.db import transaction
 from django_scopes import scope
 
 from chemicals.workshop.errors import FieldError, InvalidInputError, NotFoundError
-from chemicals.workshop.models import ApiToken, Membership, Place, Role, User, Workshop
+from chemicals.workshop.models import ApiToken, EmergencyNumber, Membership, Place, Role, User, Workshop
 from chemicals.workshop.permissions import require_owner, require_writer
 from chemicals.workshop.rows import check_row
 
@@ -109,6 +111,52 @@ def create_place(*, actor: Membership, name: str, bund: str = "", exhaust_duct: 
     with transaction.atomic():
         place.save()
     return place
+
+
+MOST_EMERGENCY_NUMBERS = 12
+"""Rows that a person finds at a glance."""
+
+
+@dataclass(frozen=True)
+class NumberInput:
+    """Whom to call, and the number."""
+
+    label: str
+    number: str
+
+
+@transaction.atomic
+def set_emergency_numbers(*, actor: Membership, now: datetime, numbers: Sequence[NumberInput]) -> list[EmergencyNumber]:
+    """Replace the workshop's emergency numbers by these, in this order."""
+    require_owner(actor)
+    rows = [
+        EmergencyNumber(
+            workshop=actor.workshop,
+            position=position,
+            label=said.label,
+            number=said.number,
+            entered_at=now,
+            entered_by=actor,
+        )
+        for position, said in enumerate(numbers)
+    ]
+    errors = [
+        FieldError(f"numbers.{row.position}.{each.field}", each.message) for row in rows for each in _check_number(row)
+    ]
+    if len(rows) > MOST_EMERGENCY_NUMBERS:
+        errors.append(FieldError("numbers", f"These are more than {MOST_EMERGENCY_NUMBERS}. Leave some out."))
+    if errors:
+        raise InvalidInputError(errors)
+    with scope(workshop=actor.workshop):
+        Workshop.objects.select_for_update().get(pk=actor.workshop_id)
+        EmergencyNumber.objects.all().delete()
+        return EmergencyNumber.objects.bulk_create(rows)
+
+
+def _check_number(row: EmergencyNumber) -> Iterator[FieldError]:
+    yield from check_row(row)
+    if row.number and not any(char.isdigit() for char in row.number):
+        yield FieldError("number", "A telephone number has figures. Write it as it is dialled from here.")
 
 
 def create_token(*, actor: Membership, now: datetime, name: str) -> tuple[ApiToken, str]:

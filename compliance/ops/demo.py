@@ -24,7 +24,14 @@ from chemicals.register.services import LimitInput, LineInput, RevisionInput, cr
 from chemicals.science.quantity import parse
 from chemicals.workshop.errors import ConflictError
 from chemicals.workshop.models import Membership, Role, User, Workshop
-from chemicals.workshop.services import create_place, create_user, create_workshop, invite_member
+from chemicals.workshop.services import (
+    NumberInput,
+    create_place,
+    create_user,
+    create_workshop,
+    invite_member,
+    set_emergency_numbers,
+)
 from compliance.clearance.services import record
 from compliance.dropoffs import services as dropoffs
 from compliance.dropoffs.models import DropOff
@@ -72,6 +79,8 @@ class Demo:
         """Set up people and things, then let everything happen."""
         users = self.create_people()
         with scope(workshop=self.owner.workshop):
+            numbers = [NumberInput(**row) for row in self.scenario["emergency_numbers"]]
+            set_emergency_numbers(actor=self.owner, now=self.begins, numbers=numbers)
             for table, create in self.creators().items():
                 self.things[table] = {row["name"]: create(row) for row in self.scenario[table]}
             self.things["entries"] = {}

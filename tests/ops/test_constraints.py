@@ -65,6 +65,7 @@ EXAMPLES: dict[str, dict[str, Change]] = {
     "workshop.Workshop": {"workshop_sheet_years": {"sheet_years": 0}},
     "workshop.Membership": {"membership_once": twice, "membership_role": {"role": "king"}},
     "workshop.Place": {"place_name_once": twice},
+    "workshop.EmergencyNumber": {"emergency_number_position_once": twice},
     "jobs.Job": {
         "job_state_known": {"state": "asleep"},
         "job_lease_while_running": {"state": "running"},

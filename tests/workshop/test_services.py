@@ -13,6 +13,7 @@ from chemicals.workshop.selectors import (
     get_membership_by_token,
     get_membership_for,
     get_place_for,
+    list_emergency_numbers_for,
     list_members_for,
     list_memberships_of,
     list_tokens_for,
@@ -184,3 +185,44 @@ def test_a_token_needs_a_name(worker: Membership, now: datetime, name: str) -> N
     with pytest.raises(InvalidInputError) as caught:
         services.create_token(actor=worker, now=now, name=name)
     assert fields_of(caught.value) == ["name"]
+
+
+def set_numbers(actor: Membership, now: datetime, *rows: tuple[str, str]) -> None:
+    services.set_emergency_numbers(actor=actor, now=now, numbers=[services.NumberInput(*row) for row in rows])
+
+
+def test_emergency_numbers_are_replaced_as_a_whole(owner: Membership, observer: Membership, now: datetime) -> None:
+    set_numbers(owner, now, ("Fire brigade", "112"), (" Poison centre ", "+49 000 19240"))
+    set_numbers(owner, now, ("Poison centre", "+49 000 19240"), ("Fire brigade", "112"), ("Owner", "000 1"))
+    rows = list_emergency_numbers_for(observer)
+    assert [(row.label, row.number) for row in rows] == [
+        ("Poison centre", "+49 000 19240"),
+        ("Fire brigade", "112"),
+        ("Owner", "000 1"),
+    ]
+    assert {(row.entered_by, row.entered_at) for row in rows} == {(owner, now)}
+
+
+def test_wrong_emergency_numbers_are_told_all_at_once_and_the_old_ones_stay(owner: Membership, now: datetime) -> None:
+    set_numbers(owner, now, ("Fire brigade", "112"))
+    with pytest.raises(InvalidInputError) as caught:
+        set_numbers(owner, now, ("", "112"), ("Neighbour", "ask"), ("Poison\ncentre", ""), *[("x", "1")] * 10)
+    assert fields_of(caught.value) == [
+        "numbers.0.label",
+        "numbers.1.number",
+        "numbers.2.label",
+        "numbers.2.number",
+        "numbers",
+    ]
+    assert [str(row) for row in list_emergency_numbers_for(owner)] == ["Fire brigade: 112"]
+
+
+def test_emergency_numbers_are_the_owners_to_set_and_stay_in_the_workshop(
+    owner: Membership, worker: Membership, stranger: Membership, now: datetime
+) -> None:
+    set_numbers(owner, now, ("Fire brigade", "112"))
+    set_numbers(stranger, now, ("Fire brigade", "911"))
+    with pytest.raises(NotPermittedError):
+        set_numbers(worker, now)
+    assert [row.number for row in list_emergency_numbers_for(worker)] == ["112"]
+    assert [row.number for row in list_emergency_numbers_for(stranger)] == ["911"]
