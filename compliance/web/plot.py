@@ -18,6 +18,9 @@ from compliance.web.axes import Scale, date_marks
 TOP, BOTTOM, RIGHT, LETTER, LABEL = 30, 34, 14, 9, 96
 """Margins of the field of the plot, the width of a letter, the room that a date needs: pixels."""
 
+BASE_LINE = 5
+"""How far the base line of a text lies below its middle: pixels."""
+
 SIZE = 6
 """How far a mark reaches to each side: pixels."""
 
@@ -27,9 +30,10 @@ COVERAGE = 2
 
 @dataclass(frozen=True)
 class Tick:
-    """A mark on an axis: where, and what stands there."""
+    """A mark on an axis: where it is, where its text stands, and what it says."""
 
     at: str
+    text_at: str
     text: str
 
 
@@ -129,8 +133,8 @@ def draw_plot(ledger: VesselLedger, now: datetime, *, width: int, height: int) -
         band="".join(_band(run, up) for run in known),
         gaps=tuple(_gaps(steps)),
         marks=tuple(_marks(ledger, across, up)),
-        dates=tuple(Tick(_px(across(at)), text) for at, text in dates),
-        amounts=tuple(Tick(_px(up(at)), text) for at, text in scale.marks()),
+        dates=tuple(_date(across(at), text, width) for at, text in dates),
+        amounts=tuple(Tick(_px(up(at)), _px(up(at) + BASE_LINE), text) for at, text in scale.marks()),
         says=tuple(_tell(ledger, held, scale)),
     )
 
@@ -193,6 +197,12 @@ def _marks(ledger: VesselLedger, across: Callable[[datetime], float], up: Height
         amount = words.with_uncertainty(point.held.amount, point.held.sd, ledger.component)
         says = _("measured %(when)s: %(amount)s") % {"when": words.moment(point.at), "amount": amount}
         yield Mark(f"M{x:.1f} {y - SIZE:.1f}l{SIZE} {SIZE}l-{SIZE} {SIZE}l-{SIZE} -{SIZE}Z", says)
+
+
+def _date(x: float, text: str, width: int) -> Tick:
+    """Return a mark on the axis of time; its text stands below it, but not beyond the edges of the plot."""
+    half = LETTER * len(text) / 2
+    return Tick(_px(x), _px(min(max(x, half), width - half)), text)
 
 
 def _px(place: float) -> str:

@@ -106,6 +106,14 @@ def test_ten_thousand_entries_are_drawn_with_their_extremes_in_a_few_strokes() -
     assert highest == pytest.approx(drawn.top + (drawn.bottom - drawn.top) * 0.1, abs=0.1)  # 900 g of 1000
 
 
+def test_no_text_stands_beyond_the_edges() -> None:
+    """A date is ten figures wide, most of nine pixels."""
+    for width in (350, 1060):
+        drawn = plot(ledger(opening=held(10)), width=width)
+        assert all(40 <= float(tick.text_at) <= width - 40 for tick in drawn.dates)
+        assert drawn.dates[0].text == "2026-01-01"
+
+
 def test_what_was_never_held_is_not_drawn() -> None:
     assert draw_plot(ledger(), END, width=720, height=300) is None
 
