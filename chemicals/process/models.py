@@ -7,8 +7,10 @@ from django.db import models
 from django.utils.translation import gettext_lazy as _
 from django_scopes import ScopedManager
 
+from chemicals.jobs.models import Job, State
+from chemicals.journal.models import Attachment
 from chemicals.ledger.models import Vessel
-from chemicals.workshop.models import Workshop
+from chemicals.workshop.models import Membership, Workshop
 
 
 class AnodeKind(models.TextChoices):
@@ -126,3 +128,49 @@ class RouteStep(models.Model):
 
     def __str__(self) -> str:
         return f"{self.position} {self.vessel}"
+
+
+class Import(models.Model):
+    """A file of past records. ``mapping`` says what its columns mean, and who said so when; it is imported once.
+
+    ``errors`` are rows of (row, column, message) that a job found, the first of ``wrong``. ``first`` and ``last`` are
+    the sequences of its entries.
+    """
+
+    uuid = models.UUIDField(default=uuid.uuid4, unique=True, editable=False)
+    workshop = models.ForeignKey(Workshop, on_delete=models.PROTECT, related_name="imports")
+    file = models.ForeignKey(Attachment, on_delete=models.PROTECT, related_name="+")
+    mapping = models.JSONField(default=dict)
+    changed_at = models.DateTimeField()
+    changed_by = models.ForeignKey(Membership, on_delete=models.PROTECT, related_name="+")
+    job = models.ForeignKey(Job, null=True, on_delete=models.PROTECT, related_name="+")
+    errors = models.JSONField(default=list)
+    wrong = models.PositiveIntegerField(default=0)
+    imported_at = models.DateTimeField(null=True)
+    first = models.BigIntegerField(null=True)
+    last = models.BigIntegerField(null=True)
+
+    objects: "models.Manager[Import]" = ScopedManager(workshop="workshop")
+
+    class Meta:
+        constraints = [
+            models.UniqueConstraint(fields=["workshop", "file"], name="import_file_once"),
+            models.CheckConstraint(
+                condition=models.Q(imported_at=None, first=None, last=None)
+                | models.Q(imported_at__isnull=False, first__isnull=False, last__gte=models.F("first")),
+                name="import_with_its_entries",
+            ),
+        ]
+
+    def __str__(self) -> str:
+        return self.file.name
+
+    @property
+    def waits(self) -> bool:
+        """Say whether a job is about to import it."""
+        return self.job is not None and self.job.state in (State.QUEUED, State.RUNNING)
+
+    @property
+    def failed(self) -> bool:
+        """Say whether the job gave up."""
+        return self.job is not None and self.job.state == State.FAILED

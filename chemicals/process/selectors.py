@@ -16,7 +16,7 @@ from chemicals.ledger import selectors as ledger
 from chemicals.ledger.models import Vessel
 from chemicals.process.build import build
 from chemicals.process.inputs import Input
-from chemicals.process.models import RackType, Route, RouteStep, Tank
+from chemicals.process.models import Import, RackType, Route, RouteStep, Tank
 from chemicals.workshop.errors import NotFoundError
 from chemicals.workshop.models import Membership
 
@@ -98,3 +98,18 @@ def get_route_for(member: Membership, uuid: UUID) -> Route:
         return list_routes_for(member).get(uuid=uuid)
     except Route.DoesNotExist as error:
         raise NotFoundError("There is no such route in this workshop.") from error
+
+
+def list_imports_for(member: Membership) -> QuerySet[Import]:
+    """Return the files of past records of the member's workshop, the latest first. One query."""
+    with scope(workshop=member.workshop):
+        rows = Import.objects.select_related("file", "changed_by__user", "job", "workshop")
+        return rows.order_by("-changed_at", "-pk")
+
+
+def get_import_for(member: Membership, uuid: UUID) -> Import:
+    """Return one file of past records of the member's workshop."""
+    try:
+        return list_imports_for(member).get(uuid=uuid)
+    except Import.DoesNotExist as error:
+        raise NotFoundError("There is no such import in this workshop.") from error

@@ -206,6 +206,7 @@ JOB_LEASE_SECONDS = int(os.environ.get("JOB_LEASE_SECONDS", "300"))
 """How long a worker keeps a job that it does not finish: more than the longest step of a task takes."""
 JOB_TASKS = {
     "clear-sessions": "compliance.ops.tasks.clear_sessions",
+    "import-entries": "compliance.clearance.tasks.import_entries",
     "recompute": "chemicals.ledger.tasks.recompute",
     "verify": "compliance.ops.tasks.verify",
 }

@@ -12,8 +12,9 @@ from django.db.models import CheckConstraint, Model, UniqueConstraint
 
 from chemicals.jobs.models import Job, Schedule
 from chemicals.journal import triggers
-from chemicals.journal.models import Entry
+from chemicals.journal.models import Attachment, Entry
 from chemicals.ledger.models import ClosingHolding, Component, Finding, Period, Vessel
+from chemicals.process.models import Import
 from compliance.ops.verify import our_models
 from tests.ops.conftest import LOADED_AT
 
@@ -36,6 +37,13 @@ def another_entry(row: Model) -> Entry:
     entry = Entry._base_manager.filter(period=None).first()
     assert entry is not None
     return entry
+
+
+def another_file(row: Model) -> Attachment:
+    """Return a kept file that no import is of."""
+    file = Attachment._base_manager.exclude(pk=row.file_id).first()  # type: ignore[attr-defined]
+    assert file is not None
+    return file
 
 
 def after(row: Model, **values: Any) -> Values:
@@ -125,6 +133,10 @@ EXAMPLES: dict[str, dict[str, Change]] = {
     "process.RackType": {"rack_type_name_once": twice, "rack_type_drag_out_not_negative": {"drag_out": -1}},
     "process.Route": {"route_name_once": twice},
     "process.RouteStep": {"route_position_once": twice},
+    "process.Import": {
+        "import_file_once": twice,
+        "import_with_its_entries": lambda row: {"file_id": another_file(row).pk, "imported_at": LOADED_AT},
+    },
     "documents.Paper": {"paper_number_once": on_another_entry, "paper_kind": {"kind": "poem"}},
     "waste.WasteStream": {"waste_stream_name_once": twice},
     "dropoffs.Receiver": {"receiver_name_once": twice},
@@ -155,6 +167,12 @@ def first_row(model: type[Model]) -> Model:
             "until": LOADED_AT,
             "sequence": 1,
             "fold_version": 1,
+        },
+        Import: {
+            "workshop_id": entry.workshop_id,
+            "file": Attachment._base_manager.first(),
+            "changed_at": LOADED_AT,
+            "changed_by_id": entry.member_id,
         },
     }
     if model is ClosingHolding:

@@ -1,0 +1,54 @@
+"""Files of past records as they are kept: uploaded, with what their columns mean, until they are imported."""
+
+from datetime import datetime
+
+from django.db import transaction
+from django_scopes import scope
+
+from chemicals.journal import files
+from chemicals.journal.services import keep_file
+from chemicals.process.importing.columns import ColumnMap, as_json, from_json, guess
+from chemicals.process.importing.table import Table, media_type_of, open_table
+from chemicals.process.models import Import
+from chemicals.workshop.errors import ConflictError
+from chemicals.workshop.models import Membership
+from chemicals.workshop.permissions import require_same_workshop, require_writer
+
+
+def add_import(*, actor: Membership, now: datetime, name: str, data: bytes) -> Import:
+    """Keep a CSV or XLSX file of past records; the same bytes are the same import. Nothing is recorded yet."""
+    require_writer(actor)
+    open_table(data)
+    with transaction.atomic(), scope(workshop=actor.workshop):
+        file = keep_file(actor=actor, now=now, name=name, data=data, media_type=media_type_of(data))
+        defaults = {"changed_at": now, "changed_by": actor}
+        found, _ = Import.objects.get_or_create(workshop=actor.workshop, file=file, defaults=defaults)
+        return found
+
+
+def read_table(upload: Import) -> Table:
+    """Return the table in a kept file."""
+    return open_table(files.read(upload.file.sha256))
+
+
+def find_map(upload: Import, table: Table) -> ColumnMap:
+    """Return what the columns mean: as it was said of this file, or as headings and the last import suggest."""
+    if upload.mapping:
+        return from_json(upload.mapping)
+    with scope(workshop=upload.workshop):
+        last = Import.objects.exclude(mapping={}).order_by("-changed_at", "-pk").first()
+    return guess(table.headings, None if last is None else from_json(last.mapping))
+
+
+def choose_columns(*, actor: Membership, now: datetime, upload: Import, chosen: ColumnMap) -> Import:
+    """Keep what the columns of a file mean. Raises ConflictError once it is imported, or about to be."""
+    require_writer(actor)
+    require_same_workshop(actor, upload)
+    with transaction.atomic(), scope(workshop=actor.workshop):
+        found = Import.objects.select_for_update(of=("self",)).select_related("file", "job").get(pk=upload.pk)
+        if found.imported_at is not None or found.waits:
+            raise ConflictError("This file is imported, or about to be. Look at its page.")
+        found.mapping, found.errors, found.wrong = as_json(chosen), [], 0
+        found.changed_at, found.changed_by = now, actor
+        found.save(update_fields=["mapping", "errors", "wrong", "changed_at", "changed_by"])
+        return found
