@@ -6,6 +6,7 @@ import tomllib
 from django.core.management import get_commands
 
 from chemicals.books.fold.state import FINDINGS
+from chemicals.science.ghs import MESSAGES as CONTRADICTIONS
 from tests.house.source import ROOT, python_files
 
 README = (ROOT / "README.md").read_text()
@@ -29,6 +30,10 @@ def test_every_command_is_documented() -> None:
 
 def test_every_finding_code_is_documented() -> None:
     assert {code for code in FINDINGS if f"`{code}`" not in DEVELOPERS} == set()
+
+
+def test_every_contradiction_code_is_documented() -> None:
+    assert {code for code in CONTRADICTIONS if f"`{code}`" not in DEVELOPERS} == set()
 
 
 def test_every_target_of_the_makefile_is_documented_and_exists() -> None:

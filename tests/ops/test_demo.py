@@ -15,6 +15,7 @@ from chemicals.ledger.models import VesselKind
 from chemicals.ledger.selectors import list_findings_for, list_held, list_vessels_for
 from chemicals.process.inputs import INPUTS
 from chemicals.register.selectors import list_current_revisions_for
+from chemicals.register.sheets import mark_of
 from chemicals.workshop.models import Membership, Role, User
 from compliance.documents.models import Paper, PaperKind
 from compliance.documents.selectors import read_data, read_pdf
@@ -65,10 +66,26 @@ def test_everything_says_that_it_is_invented(member: Membership) -> None:
         revisions = list(list_current_revisions_for(member))
     for revision in revisions:
         assert revision.product.supplier.startswith("Invented")
-        assert all("invented" in text for text in revision.statements)
+        with scope(workshop=workshop):
+            sources = [limit.source for limit in revision.limits.all()]
+        typed = [*revision.statements, *sources, revision.gloves, revision.shipping_name]
+        assert all("invented" in text for text in typed if text)
         if revision.statements:
             assert revision.safety_data_sheet is not None
             assert b"%PDF" in files.read(revision.safety_data_sheet.sha256)
+
+
+def test_the_catalogue_shows_what_a_sheet_says(member: Membership) -> None:
+    with scope(workshop=member.workshop):
+        revisions = {row.product.name: row for row in list_current_revisions_for(member)}
+        salt, acid = revisions["Copper sulfate crystals"], revisions["Sulfuric acid 96 %"]
+        assert [limit.value for limit in salt.limits.all()] == ["1 mg/m3"]
+        assert [line.typed for line in acid.lines.all()] == ["95-97 %"]
+    assert (salt.un_number, salt.packing_group, salt.contradictions) == ("3077", "III", ())
+    assert [each.code for each in acid.contradictions] == ["statement-missing"]
+    assert [mark_of(row, LOADED_AT.date(), 3) for row in (salt, acid)] == ["old", ""]
+    assert revisions["Gold sulfite solution"].ph_floor == 8500
+    assert revisions["Copper anodes"].transport_unclassified
 
 
 def test_every_kind_of_the_path_happened(member: Membership) -> None:

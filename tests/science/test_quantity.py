@@ -44,6 +44,8 @@ from chemicals.science.quantity import LIMIT, MESSAGES, QuantityError, echo, mea
         ("4h20min", "time", 15_600_000, "260 min = 4.333 h"),
         ("1.5 A h", "charge", 5_400_000_000, "1.5 Ah"),
         ("2 C", "charge", 2_000_000, "2 C"),
+        ("0.05 mg/m3", "air_concentration", 50_000, "0.05 mg/m³"),
+        ("6 µg/m³", "air_concentration", 6000, "6 µg/m³"),
         ("0.5 ft2", "area", 46_452, "0.5 ft² = 4.645 dm²"),
         ("8.96 g/cm3", "density", 8_960_000, "8.96 g/cm³"),
         ("20 °C", "temperature", 293_150, "20 °C"),

@@ -37,6 +37,8 @@ DEFINITIONS = {
     ("time", "d"): Fraction(86_400_000),
     ("concentration", "oz/gal"): POUND / 16 / GALLON * 10**9,
     ("concentration", "ozt/gal"): 480 * GRAIN / GALLON * 10**9,
+    ("air_concentration", "mg/m3"): Fraction(10**6),
+    ("air_concentration", "g/m3"): Fraction(10**9),
     ("area", "in2"): INCH**2,
     ("area", "ft2"): FOOT**2,
     ("current_density", "A/ft2"): 10**6 * 10**4 / FOOT**2,

@@ -190,6 +190,7 @@ class RevisionForm(HazardForm):
         self.substances = {row.uuid: row for row in list_substances_for(member)}
         things = [(row.uuid, row.name) for row in self.substances.values()]
         hazards = {name: self.fields.pop(name) for name in HazardForm.base_fields}
+        hazards["statements"].label = _("Hazard and precautionary statements")
         self.add_rows(Rows("lines", _("Composition"), "", partial(LineRow, things), blank=3))
         self.fields["complete"] = FlagField(
             label=_("This list names every metal in it"),
