@@ -39,7 +39,18 @@ def packed(filled: Line, owner: Membership, now: datetime) -> Line:
 
 def reading(line: Line, owner: Membership) -> Iterator[tuple[str, tuple[object, ...]]]:
     """Yield every page that anybody of the workshop may read."""
-    names = ("today", "register", "substances", "tanks", "entries", "balance", "waste", "drop-offs", "workshop")
+    names = (
+        "today",
+        "register",
+        "substances",
+        "tanks",
+        "entries",
+        "export",
+        "balance",
+        "waste",
+        "drop-offs",
+        "workshop",
+    )
     yield from ((name, ()) for name in names)
     yield "product", (line.salt.uuid,)
     yield from (("vessel", (vessel.uuid,)) for vessel in (line.tub, line.bath, line.rinse))
