@@ -23,6 +23,7 @@ _STATEMENT: Final = re.compile(rf"(?P<codes>{_CODE}(?:\s*\+\s*{_CODE})*)[\s:;,.â
 _ONLY_CODES: Final = re.compile(rf"{_CODE}(?:\s*[+,;/]?\s*{_CODE})*")
 _BESIDE: Final = "H229"  # stands beside another statement of its class, never in place of it
 _INCLUDED: Final = {"H318": "H314", "H400": "H410"}  # left out where the other one stands: it says it as well
+_IRRITANTS: Final = ("Skin Irrit.", "Eye Irrit.")
 _MANY_CATEGORIES: Final = ("Specific target organ toxicity", "Explosives")  # by organ; by packing
 
 MESSAGES: Final = {
@@ -88,6 +89,16 @@ def list_classes() -> tuple[HazardClass, ...]:
 def find_class(kind: str) -> HazardClass | None:
     """The class of a short name such as "Skin Corr. 1B"; None if there is none."""
     return _classes().get(kind)
+
+
+@cache
+def _owners() -> dict[str, tuple[HazardClass, ...]]:
+    """The classes to which each statement belongs."""
+    found: dict[str, tuple[HazardClass, ...]] = {}
+    for each in list_classes():
+        for code in each.codes:
+            found[code] = (*found.get(code, ()), each)
+    return found
 
 
 @cache
@@ -163,8 +174,7 @@ def find_contradictions(
 
 def _calls_of_codes(codes: Iterable[str]) -> Iterator[_Call]:
     for code in codes:
-        owners = tuple(each for each in list_classes() if code in each.codes)
-        if owners:
+        if owners := _owners().get(code):
             yield _Call(code, owners)
 
 
@@ -176,9 +186,10 @@ def _compare_statements(known: Sequence[HazardClass], codes: Sequence[str]) -> I
                 yield Contradiction("statement-missing", {"kind": each.kind, "codes": " / ".join(group)})
     entered = {code for each in known for code in each.codes}
     for code in codes:
-        owners = [each.kind for each in list_classes() if code in each.codes]
+        owners = _owners().get(code)
         if known and owners and code not in entered:
-            yield Contradiction("class-missing", {"code": code, "kinds": " / ".join(owners)})
+            kinds = " / ".join(each.kind for each in owners)
+            yield Contradiction("class-missing", {"code": code, "kinds": kinds})
         elif code not in _texts() and not code.startswith("P"):
             yield Contradiction("statement-unknown", {"code": code})
 
@@ -231,7 +242,7 @@ def _gives_way_to(pictogram: str, call: _Call, calls: Sequence[_Call]) -> str:
     """The pictogram to which this one gives way, where a call for it counts no longer; empty if it stays."""
     if pictogram != "GHS07":
         return ""
-    irritates = call.is_any_of("Skin Irrit.", "Eye Irrit.")
+    irritates = call.is_any_of(*_IRRITANTS)
     if any("GHS06" in other.needed for other in calls):
         return "GHS06"
     if irritates and any(other.is_any_of("Skin Corr.", "Eye Dam.") for other in calls):
@@ -246,4 +257,6 @@ def _may_be_left_out(pictogram: str, call: _Call, calls: Sequence[_Call]) -> boo
     others = frozenset[str]().union(*(other.needed for other in calls))
     if pictogram in ("GHS02", "GHS03") and "GHS01" in others:
         return not call.is_any_of("Self-react. B", "Org. Perox. B")
+    if pictogram == "GHS07" and call.is_any_of(*_IRRITANTS):
+        return "GHS05" in others  # of metals only: the texts can be read either way
     return pictogram == "GHS04" and bool(others & {"GHS02", "GHS06"})

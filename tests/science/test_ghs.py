@@ -53,6 +53,8 @@ def sentences(classes: str, statements: str, word: str, pictograms: str) -> list
         ("Aquatic Acute 1; Aquatic Chronic 1", "H410", "Warning", "GHS09"),  # H410 says the acute one as well
         ("Carc. 1A", "H350i", "Danger", "GHS08"),
         ("STOT SE 3", "H336", "Warning", "GHS07"),
+        ("Met. Corr. 1; Skin Irrit. 2", "H290 H315", "Warning", "GHS05 GHS07"),  # corrodes metals only: left to choice
+        ("Met. Corr. 1; Skin Irrit. 2", "H290 H315", "Warning", "GHS05"),
         ("STOT SE 1; STOT SE 3", "H370 H335", "Danger", "GHS08 GHS07"),  # several categories, by organ
         ("Aerosol 1", "H222 H229", "Danger", "GHS02"),
         ("Expl. 1.1; Ox. Sol. 2", "H201 H272", "Danger", "GHS01"),  # the flame over circle is left to choice
