@@ -19,7 +19,7 @@ from chemicals.books.fold.arithmetic import quotient, root
 from chemicals.books.fold.state import EVERY, Holding
 from chemicals.journal.models import Entry
 from chemicals.ledger.models import Component, Content, Finding, Posting, Vessel
-from chemicals.ledger.selectors import NANOLITRES_PER_LITRE, Held, HeldMetal, list_held
+from chemicals.ledger.selectors import NANOLITRES_PER_LITRE, Held, list_held
 from chemicals.workshop.errors import NotFoundError
 
 LINES = 100
@@ -35,10 +35,31 @@ Order = tuple[datetime, int]
 
 
 @dataclass(frozen=True)
-class Running(HeldMetal):
-    """What a vessel held at a place in the fold. ``booked`` is what the postings sum to, also where that is unknown."""
+class Running(Held):
+    """What a vessel held at a place in the fold. ``booked`` is what the postings sum to, also where that is unknown.
+
+    ``volume`` is what it held of liquid then; None for the liquid itself and the weight.
+    """
 
     booked: int
+    volume: Holding | None = None
+
+    @property
+    def concentration(self) -> int | None:
+        """Return how much of it a litre held: ug/L or nmol/L; None where either is unknown."""
+        return self._per_litre[0]
+
+    @property
+    def concentration_sd(self) -> int:
+        """Return the standard uncertainty of that, as if those of amount and volume were independent."""
+        return self._per_litre[1]
+
+    @property
+    def _per_litre(self) -> tuple[int | None, int]:
+        volume = self.volume
+        if self.amount is None or volume is None or volume.amount is None or volume.amount <= 0:
+            return None, 0
+        return quotient(self.amount, self.sd, volume.amount, root(volume.variance), NANOLITRES_PER_LITRE)
 
 
 @dataclass(frozen=True)
@@ -232,12 +253,7 @@ def _run(period: _Period, series: _Series) -> Iterator[Running]:
 
 
 def _running(component: str, held: Holding, volume: Holding | None) -> Running:
-    """Amount over volume, as if their uncertainties were independent."""
-    sd = root(held.variance)
-    per_litre: tuple[int | None, int] = (None, 0)
-    if held.amount is not None and volume is not None and volume.amount is not None and volume.amount > 0:
-        per_litre = quotient(held.amount, sd, volume.amount, root(volume.variance), NANOLITRES_PER_LITRE)
-    return Running(component, held.amount, sd, *per_litre, held.booked)
+    return Running(component, held.amount, root(held.variance), held.booked, volume)
 
 
 def _points(component: str, rows: Sequence[_Row], running: Sequence[Running]) -> Iterator[Point]:

@@ -25,7 +25,7 @@ START, END = datetime(2026, 1, 1, tzinfo=UTC), datetime(2026, 2, 1, tzinfo=UTC)
 
 def held(grams: float | None, sd: float = 0) -> Running:
     """Return a content in grams; None is unknown."""
-    return Running("Cu", None if grams is None else round(grams * GRAM), round(sd * GRAM), None, 0, 0)
+    return Running("Cu", None if grams is None else round(grams * GRAM), round(sd * GRAM), 0)
 
 
 def ledger(*after: tuple[int, Running], opening: Running | None = None) -> VesselLedger:

@@ -10,6 +10,7 @@ from django.utils.safestring import SafeString
 from chemicals.balance.selectors import Amount, FlowEnd
 from chemicals.journal.models import Entry
 from chemicals.ledger.components import dimension_per_litre
+from chemicals.ledger.running import Running
 from chemicals.ledger.selectors import Held, HeldMetal
 from chemicals.science.quantity import show
 from compliance.documents.twin import symbol
@@ -79,7 +80,7 @@ def held(row: Held | None) -> str:
 
 
 @register.filter
-def per_litre(row: HeldMetal) -> str:
+def per_litre(row: HeldMetal | Running) -> str:
     """Show a concentration with its uncertainty; nothing where there is none."""
     if row.concentration is None:
         return ""
