@@ -37,6 +37,7 @@ from compliance.dropoffs import services as dropoffs
 from compliance.dropoffs.models import DropOff
 from compliance.ops.demo_reader import read_input
 from compliance.ops.demo_sheet import draw_sheet
+from compliance.premises import services as premises
 from compliance.waste import services as waste
 
 SCENARIO = Path(settings.BASE_DIR) / "fixtures" / "demo.toml"
@@ -81,6 +82,8 @@ class Demo:
         with scope(workshop=self.owner.workshop):
             numbers = [NumberInput(**row) for row in self.scenario["emergency_numbers"]]
             set_emergency_numbers(actor=self.owner, now=self.begins, numbers=numbers)
+            checked_on = self.begins.date()
+            premises.choose_rule(actor=self.owner, now=self.begins, checked_on=checked_on, **self.scenario["list_rule"])
             for table, create in self.creators().items():
                 self.things[table] = {row["name"]: create(row) for row in self.scenario[table]}
             self.things["entries"] = {}
@@ -233,6 +236,10 @@ class Demo:
                 "label container": self.label_container,
                 "pack drop-off": self.pack_drop_off,
                 "hand over drop-off": self.hand_over,
+                "label vessels": self.label_vessels,
+                "label decanted": self.label_decanted,
+                "issue emergency sheet": self.issue_emergency_sheet,
+                "issue chemical list": self.issue_chemical_list,
                 "close period": self.close_period,
             }
             steps[verb](actor, now, said)
@@ -246,6 +253,24 @@ class Demo:
     def label_container(self, actor: Membership, now: datetime, said: Row) -> None:
         """Issue the label of a container."""
         waste.issue_label(actor=actor, now=now, key=uuid4(), container=self.find("containers", said["container"]))
+
+    def label_vessels(self, actor: Membership, now: datetime, said: Row) -> None:
+        """Issue labels of vessels on one sheet."""
+        vessels = [self.find_vessel(name) for name in said["vessels"]]
+        premises.issue_labels(actor=actor, now=now, key=uuid4(), vessels=vessels, stock=said["stock"])
+
+    def label_decanted(self, actor: Membership, now: datetime, said: Row) -> None:
+        """Issue the label of a small container that was filled from a vessel."""
+        vessel, rest = self.find_vessel(said["vessel"]), {name: said[name] for name in ("note", "stock", "start")}
+        premises.issue_decanted_label(actor=actor, now=now, key=uuid4(), vessel=vessel, **rest)
+
+    def issue_emergency_sheet(self, actor: Membership, now: datetime, said: Row) -> None:
+        """Issue the sheet for the fire brigade."""
+        premises.issue_emergency_sheet(actor=actor, now=now, key=uuid4(), **said)
+
+    def issue_chemical_list(self, actor: Membership, now: datetime, said: Row) -> None:
+        """Issue the list of chemicals."""
+        premises.issue_chemical_list(actor=actor, now=now, key=uuid4(), **said)
 
     def pack_drop_off(self, actor: Membership, now: datetime, said: Row) -> None:
         """Draft a drop-off and pack it at once."""

@@ -93,6 +93,7 @@ INSTALLED_APPS = [
     "chemicals.balance",
     "compliance.documents",
     "compliance.waste",
+    "compliance.premises",
     "compliance.clearance",
     "compliance.dropoffs",
     "compliance.ops",

@@ -138,6 +138,7 @@ EXAMPLES: dict[str, dict[str, Change]] = {
         "import_with_its_entries": lambda row: {"file_id": another_file(row).pk, "imported_at": LOADED_AT},
     },
     "documents.Paper": {"paper_number_once": on_another_entry, "paper_kind": {"kind": "poem"}},
+    "premises.ChosenRule": {"chosen_rule_named": {"rule": ""}},
     "waste.WasteStream": {"waste_stream_name_once": twice},
     "dropoffs.Receiver": {"receiver_name_once": twice},
     "dropoffs.DropOff": {

@@ -1,0 +1,5 @@
+from django.apps import AppConfig
+
+
+class PremisesConfig(AppConfig):
+    name = "compliance.premises"
