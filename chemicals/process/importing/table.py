@@ -196,8 +196,12 @@ def _open_xlsx(data: bytes) -> tuple[Callable[[], Iterator[Line]], tuple[str, ..
     def lines() -> Iterator[Line]:
         rows = islice(sheet.iter_rows(max_col=MOST_COLUMNS + 1), SHEET_ROWS)
         try:
+            blank: object = None  # the reader gives the same cells for every row that is missing
             while batch := _read_quietly(rows):
-                yield from map(_read_cells, batch)
+                for cells in batch:
+                    line = [] if cells is blank else _read_cells(cells)
+                    blank = blank if line else cells
+                    yield line
         except Exception as error:  # a damaged sheet breaks its reader in many ways
             yield Broken(f"From here on the sheet cannot be read ({type(error).__name__}). Save the file anew.")
 
@@ -234,7 +238,7 @@ def _read_quietly(rows: Iterator[Any], count: int = 500) -> list[Any]:
 def _read_cells(cells: Sequence[Any]) -> list[Cell]:
     from openpyxl.cell.read_only import EMPTY_CELL
 
-    if cells.count(EMPTY_CELL) == len(cells):
+    if all(cell is EMPTY_CELL for cell in cells):
         return []
     return ["" if cell is EMPTY_CELL or cell.value is None else _read_cell(cell) for cell in cells]
 
