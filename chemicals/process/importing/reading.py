@@ -206,7 +206,7 @@ class Reader:
             elif before + name in filled:
                 said[name] = self._read_field(kind, filled[before + name])
             elif kind.required:
-                self._refuse(self._heading(before + name) or str(kind.label), NEEDED)
+                self._refuse(self._heading(before + name) or (before and before + name) or str(kind.label), NEEDED)
             else:
                 said[name] = EMPTY.get(type(kind))
         return said
