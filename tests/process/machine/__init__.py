@@ -1,0 +1,1 @@
+"""Two people, a worker and kill -9: whatever they do in whatever order, the books are what was acknowledged."""
