@@ -60,7 +60,8 @@ def _groups(data: EmergencyData) -> Iterator[Group]:
         yield Group([head, *totals, Text(emergency_words.counted_whole(), _SMALL), Gap(4)], _total_header())
     for place in data["places"]:
         yield _place(place)
-    yield Group([Gap(4), Text(emergency_words.left_out(data["left_out"]), _SMALL)], nothing)
+    if data["left_out"]:
+        yield Group([Gap(4), Text(emergency_words.left_out(data["left_out"]), _SMALL)], nothing)
 
 
 def _calls(data: EmergencyData) -> Iterator[Block]:

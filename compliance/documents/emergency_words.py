@@ -115,7 +115,9 @@ def counted_whole() -> str:
 
 
 def left_out(count: int) -> str:
-    """How many vessels the sheet leaves out."""
+    """How many vessels the sheet leaves out; nothing where it is none."""
+    if not count:
+        return ""
     text = ngettext(
         "%(count)d vessel that holds nothing by the books is left out.",
         "%(count)d vessels that hold nothing by the books are left out.",

@@ -54,4 +54,5 @@ def chosen(rule: ListRuleData) -> str:
 
 def notes(data: RegisterData) -> list[str]:
     """What stands below the list."""
-    return [left_off(data["left_out"]), *data["cautions"], ask_about_list(), chosen(data["rule"])]
+    off = [left_off(data["left_out"])] if data["left_out"] else []
+    return [*off, *data["cautions"], ask_about_list(), chosen(data["rule"])]

@@ -68,7 +68,7 @@ class ChemicalList:
 
 
 def read_list(member: Membership, now: datetime) -> ChemicalList:
-    """Return the list as the books stand. Thirteen queries."""
+    """Return the list as the books stand. Twelve queries."""
     standing = [each for each in list_standing_for(member) if each.is_here]
     used = _read_used(member, now - LOOK_BACK)
     rows, left_out = [], 0
