@@ -60,7 +60,10 @@ def record_import(*, actor: Membership, now: datetime, upload: Import, chosen: C
     if upload.imported_at is not None or upload.waits:
         return upload
     understood = preview_import(actor, now, upload, chosen)
-    upload = choose_columns(actor=actor, now=now, upload=upload, chosen=chosen)
+    try:
+        upload = choose_columns(actor=actor, now=now, upload=upload, chosen=chosen)
+    except ConflictError:  # somebody else was quicker
+        return get_import_for(actor, upload.uuid)
     if understood.wrong:
         raise RefusedImportError(understood)
     if understood.all_read:
