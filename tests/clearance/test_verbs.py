@@ -205,7 +205,7 @@ class TestContainers:
             ("sample", {"source": "Sour drum", "amount": "20 mL"}),
             ("move", {"source": "Sour drum", "target": "Other drum"}),
             ("sludge", {"source": "Sour drum", "target": "Sludge", "mass": "1 kg"}),
-            ("treatment", {"vessel": "Sour drum"}),
+            ("treatment", {"vessel": "Sour drum", "consumed": [{"species": "acid"}]}),
             ("discharge", {"source": "Sour drum"}),
         ],
     )

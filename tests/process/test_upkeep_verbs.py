@@ -155,6 +155,7 @@ class TestTreatment:
         )
         assert set(told) == {"sludge", "dissolved", "consumed"}
         assert set(spent.wrong("treatment", vessel="Drum", sludge="Drum")) == {"sludge"}
+        assert set(spent.wrong("treatment", vessel="Drum")) == {"reagents"}
 
 
 class TestCorrection:

@@ -63,6 +63,12 @@ class TestButtons:
         visit.post("close-container", line.drum.vessel.uuid, gross="3 kg")
         assert address not in text_of(visit.get("waste-container", line.drum.vessel.uuid))
 
+    def test_a_closed_container_may_leak(self, visit: Visitor, line: Line) -> None:
+        visit.post("close-container", line.drum.vessel.uuid, gross="3 kg")
+        address = visit.address("record", "spill") + f"?vessel={line.drum.vessel.uuid}"
+        assert address in text_of(visit.get("waste-container", line.drum.vessel.uuid))
+        assert f'value="{line.drum.vessel.uuid}" selected' in text_of(visit.client.get(address))
+
     def test_an_observer_is_offered_nothing(self, observer: Membership, line: Line) -> None:
         for vessel in (line.bath, line.tub):
             assert "/record/" not in text_of(Visitor(observer).get("vessel", vessel.uuid))

@@ -97,6 +97,8 @@ def build_treatment(draft: Draft, now: datetime, data: inputs.TreatmentInput) ->
     reagents = find_ingredients(draft, "reagents", data.reagents)
     found = [_dissolved(draft, f"dissolved.{number}.", row) for number, row in enumerate(data.dissolved)]
     dissolved = tuple(row for row in found if row is not None)
+    if not (data.reagents or data.consumed or data.dissolved or data.filtrate or data.sludge):
+        draft.refuse("reagents", "Write what went in, what reacted away, or where filtrate and sludge went.")
     if len({row.component for row in dissolved}) < len(dissolved):
         draft.refuse("dissolved", "A metal stands twice in the list. Write each once.")
     if len({row.species for row in data.consumed}) < len(data.consumed):

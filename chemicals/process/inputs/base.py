@@ -26,7 +26,7 @@ METAL_CHOICES = tuple((symbol, symbol) for symbol in METALS)
 VOLUME_HELP = _("For example 20 L or 2.5 gal.")
 UNCERTAINTY_HELP = _("Standard uncertainty, if you know it.")
 ALL_HELP = _("Without volume and mass: all of it.")
-FORMULA_HELP = _("The formula it was expressed as, for example CuSO4.5H2O or NaCN; empty means the metal itself.")
+FORMULA_HELP = _("A formula: CuSO4.5H2O, NaCN; empty means the metal itself.")
 
 
 class Input:
@@ -49,7 +49,7 @@ class HeldRow:
     amount: Quantity = use(
         AmountField(
             _("Amount"),
-            _("A mass, moles, a concentration, or a share of the mass."),
+            _("A mass, moles, per litre, or a share."),
             dimensions=("mass", "concentration", "amount_of_substance", "molar_concentration", "fraction"),
             example="50 g/L",
         )

@@ -52,7 +52,7 @@ class RacksRow:
     rack: UUID | None = use(
         ReferenceField(_("Rack type"), _("Empty means the route's own."), required=False, to="rack type")
     )
-    loads: int = use(WholeField(_("Loads"), _("How many racks went through.")))
+    loads: int = use(WholeField(_("Loads"), _("How many.")))
 
 
 @dataclass(frozen=True, kw_only=True)

@@ -48,7 +48,9 @@ class FilterInput(Input):
         _("Share of the metal that it keeps"), _("Empty means none of what is dissolved."), "fraction", example="0.1 %",
         detail=True,
     )  # fmt: skip
-    taken: tuple[HeldRow, ...] = use(RowsField(IN_LABEL, IN_HELP, required=False, of=HeldRow, blank_rows=1))
+    taken: tuple[HeldRow, ...] = use(
+        RowsField(IN_LABEL, IN_HELP, required=False, detail=True, of=HeldRow, blank_rows=1)
+    )
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -69,7 +71,9 @@ class CarbonInput(Input):
         _("Empty means none. Carbon does take gold and silver out of cyanide: then say how much."),
         "fraction", example="5 %", detail=True,
     )  # fmt: skip
-    taken: tuple[HeldRow, ...] = use(RowsField(IN_LABEL, IN_HELP, required=False, of=HeldRow, blank_rows=1))
+    taken: tuple[HeldRow, ...] = use(
+        RowsField(IN_LABEL, IN_HELP, required=False, detail=True, of=HeldRow, blank_rows=1)
+    )
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -92,7 +96,9 @@ class ResinInput(Input):
         _("Solution in it"), _("Empty means half a litre for each kilogram, assumed; none without its weight."),
         "volume", example="0.3 L", detail=True,
     )  # fmt: skip
-    taken: tuple[HeldRow, ...] = use(RowsField(IN_LABEL, IN_HELP, required=False, of=HeldRow, blank_rows=1))
+    taken: tuple[HeldRow, ...] = use(
+        RowsField(IN_LABEL, IN_HELP, required=False, detail=True, of=HeldRow, blank_rows=1)
+    )
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -155,7 +161,11 @@ class TreatmentInput(Input):
     sludge_mass: Quantity | None = if_known(_("Weight of the wet sludge"), "", "mass", example="3 kg")
     dissolved: tuple[DissolvedRow, ...] = use(
         RowsField(
-            _("Found in the filtrate"), _("Of each metal the rest is in the sludge."), required=False, of=DissolvedRow
+            _("Found in the filtrate"),
+            _("Of each metal the rest is in the sludge."),
+            required=False,
+            of=DissolvedRow,
+            blank_rows=2,
         )
     )
     consumed: tuple[SpeciesRow, ...] = use(
