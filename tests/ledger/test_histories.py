@@ -16,7 +16,7 @@ from hypothesis import strategies as st
 
 from chemicals.books import events
 from chemicals.books.clearance import not_asked
-from chemicals.books.events import Cancellation, PeriodClosing, PeriodReopening
+from chemicals.books.events import Acceptance, Analysis, Cancellation, Figure, Measured, PeriodClosing, PeriodReopening
 from chemicals.books.fold import Entry, Folded, rebuild
 from chemicals.books.fold.state import State
 from chemicals.books.occurred import Occurred
@@ -34,7 +34,8 @@ from chemicals.ledger.services import project_entry
 from chemicals.ledger.verify import verify_projection
 from chemicals.workshop.errors import InvalidInputError
 from chemicals.workshop.models import Membership, Role, Workshop
-from tests.books.histories import MIDNIGHT, VESSELS, histories, orderly_histories
+from tests.books.histories import IN_USE, MIDNIGHT, VESSELS, entries_of, histories, orderly_histories
+from tests.books.words import G
 from tests.conftest import make_member
 
 pytestmark = pytest.mark.django_db
@@ -225,4 +226,21 @@ def test_what_the_job_does_in_steps_is_what_one_request_does(
         while books.work():
             pass
         assert get_recomputed_to(books.workshop) is None
+        assert books.is_proved()
+
+
+def test_an_analysis_that_is_cancelled_past_its_acceptance_takes_it_along() -> None:
+    """The door refuses this order; the books do not depend on the door."""
+    found = Figure(40 * G, G, "titration")
+    analysis = Analysis("bath", "Cu", Measured("40", "g/L", 40 * G), "Cu", MIDNIGHT, found)
+    acceptance = Acceptance(UUID(int=2), "bath", "Cu", found)
+    history = entries_of([(IN_USE[0], 1), (analysis, 5), (acceptance, 5), (Cancellation(UUID(int=2), "mixed up"), 9)])
+    with fresh_books() as books:
+        books.record(history[0])
+        before = books.tell()
+        for entry in history[1:3]:
+            books.record(entry)
+        assert books.tell() != before
+        books.record(history[3])
+        assert books.tell() == before
         assert books.is_proved()
