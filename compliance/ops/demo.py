@@ -3,6 +3,7 @@
 import secrets
 import tomllib
 from collections.abc import Callable, Mapping
+from dataclasses import replace
 from datetime import datetime, time, timedelta
 from pathlib import Path
 from typing import Any
@@ -19,6 +20,7 @@ from chemicals.ledger.models import VesselKind
 from chemicals.ledger.periods import close_period
 from chemicals.ledger.services import create_vessel
 from chemicals.process import setup
+from chemicals.process.importing.files import add_import, choose_columns, find_map, read_table
 from chemicals.process.inputs import INPUTS
 from chemicals.register.services import LimitInput, LineInput, RevisionInput, create_product, create_substance
 from chemicals.science.quantity import parse
@@ -89,6 +91,8 @@ class Demo:
             self.things["entries"] = {}
             for row in sorted(self.scenario["history"], key=lambda row: self.moment(row.get("recorded", row["when"]))):
                 self.happen(row)
+            for row in self.scenario["imports"]:
+                self.upload(row)
         return users
 
     @property
@@ -218,6 +222,13 @@ class Demo:
             "tare": _base(row, "tare", "mass"),
         }
         return waste.create_container(actor=self.owner, now=self.begins, **known)
+
+    def upload(self, row: Row) -> None:
+        """Leave a file of past records ready to be imported."""
+        file, actor = SCENARIO.parent / row["file"], self.members[row["by"]]
+        upload = add_import(actor=actor, now=self.now, name=file.name, data=file.read_bytes())
+        chosen = replace(find_map(upload, read_table(upload)), verb=row["verb"])
+        choose_columns(actor=actor, now=self.now, upload=upload, chosen=chosen)
 
     def happen(self, row: Row) -> None:
         """Let one row of the history happen: a record of matter, or a step with waste and papers."""
