@@ -108,8 +108,9 @@ def prove_sums_of_vessels() -> None:
 
 
 def all_rows(workshop: Workshop) -> dict[str, list[Any]]:
-    """Return every row that a workshop has, by table."""
-    tables = [table for table in our_models() if any(column.name == "workshop" for column in table._meta.fields)]
+    """Return every row of a workshop's journal, ledger and jobs, by table."""
+    apps = ("journal", "ledger", "jobs")
+    tables = [table for table in our_models() if table._meta.app_label in apps and hasattr(table, "workshop")]
     with scope(workshop=workshop):
         return {
             table._meta.label: list(table._default_manager.filter(workshop=workshop).order_by("pk").values_list())
