@@ -28,7 +28,7 @@ def twin_context(kind: str, data: dict[str, Any]) -> dict[str, Any]:
         "waste-label": lambda: _label(cast("WasteLabelData", data)),
         "manifest": lambda: _manifest(cast("ManifestData", data)),
         "labels": lambda: _labels(cast("LabelsData", data)),
-        "emergency": lambda: _emergency(cast("EmergencyData", data)),
+        "emergency": lambda: describe_premises(data),
         "register": lambda: _register(cast("RegisterData", data)),
     }[kind]()
     return {
@@ -123,16 +123,21 @@ def _labels(data: LabelsData) -> dict[str, Any]:
     }
 
 
-def _emergency(data: EmergencyData) -> dict[str, Any]:
+def describe_premises(said: dict[str, Any]) -> dict[str, Any]:
+    """What an emergency sheet says, in the words of the paper; ``said`` may lack what issuing fills in."""
+    data = cast("EmergencyData", said)
+    columns = emergency_words.total_columns()
+    totals = [emergency_words.total_cells(total) for total in data["totals"]]
     return {
+        "no_hazards": words.no_hazards(),
         "follow": emergency_words.follow_the_fire_brigade(),
         "calls": emergency_words.calls(data),
         "no_calls": "" if data["calls"] else emergency_words.no_calls(),
         "together": emergency_words.together(data),
         "nothing_together": emergency_words.nothing_together(),
         "cautions": emergency_words.cautions(data["cautions"]),
-        "total_columns": emergency_words.total_columns(),
-        "totals": [emergency_words.total_cells(total) for total in data["totals"]],
+        "total_columns": columns,
+        "totals": [list(zip(columns, cells, strict=True)) for cells in totals],
         "counted_whole": emergency_words.counted_whole(),
         "places": [
             {

@@ -1,6 +1,6 @@
 """What stands where, how much of it, and how hazardous: reads of everything together, in a fixed number of queries."""
 
-from collections.abc import Iterable, Mapping
+from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
 from uuid import UUID
 
@@ -8,6 +8,7 @@ from django.db.models import OuterRef, Q, QuerySet, Subquery
 from django_scopes import scope
 
 from chemicals.books.events import UNKNOWN_LIQUID
+from chemicals.ledger.codes import tidy_code
 from chemicals.ledger.models import Memory, Vessel, VesselKind
 from chemicals.ledger.selectors import Contents, Held, list_contents_for, list_vessels_for
 from chemicals.process.models import Tank
@@ -15,8 +16,11 @@ from chemicals.process.selectors import list_tanks_for
 from chemicals.register.models import ProductRevision
 from chemicals.register.selectors import recipe_key
 from chemicals.science.reactivity import UNKNOWN, declared
-from chemicals.workshop.errors import ConflictError
+from chemicals.workshop.errors import ConflictError, InvalidInputError
 from chemicals.workshop.models import Membership
+from compliance.documents.models import Paper, PaperKind
+from compliance.documents.selectors import list_papers_for, list_papers_naming, read_data
+from compliance.documents.stock import ALL_STOCKS
 from compliance.premises.hazards import Hazards, Part, merge, part_of
 from compliance.premises.models import ChosenRule
 from compliance.premises.rules import ListRule, find_rule
@@ -24,6 +28,9 @@ from compliance.waste.models import WasteContainer, WasteStream
 from compliance.waste.selectors import list_containers_for
 
 UNNAMED = "a liquid that nobody can name"
+MOST_SHOWN = 5
+FIRST_STOCK = "8 per A4"
+"""What is offered before a workshop has printed any label: large enough for what most labels say."""
 
 
 @dataclass(frozen=True)
@@ -166,3 +173,31 @@ def require_chosen_rule(member: Membership) -> tuple[ListRule, ChosenRule]:
     if found is None:
         raise ConflictError("No rule is chosen for the list of chemicals. An owner chooses one on its page first.")
     return found
+
+
+def find_vessels_by_code(member: Membership, codes: Sequence[str]) -> list[Vessel]:
+    """Return the vessels that typed codes name, in that order, each as often. One query.
+
+    Raises InvalidInputError with every code that names nothing here.
+    """
+    tidied = [tidy_code(code) for code in codes]
+    found = {vessel.code: vessel for vessel in list_vessels_for(member).filter(code__in=tidied)}
+    missing = [typed for typed, code in zip(codes, tidied, strict=True) if code not in found]
+    if missing:
+        raise InvalidInputError.of("codes", f"Nothing here has the code {', '.join(missing[:10])}. Read it again.")
+    return [found[code] for code in tidied]
+
+
+def read_next_label(member: Membership) -> tuple[str, int]:
+    """Return the label stock that was used last, and its first free position. One query."""
+    last = list_papers_for(member).filter(kind=PaperKind.LABELS).first()
+    if last is None:
+        return FIRST_STOCK, 1
+    data = read_data(last)
+    stock = next(stock for stock in ALL_STOCKS if stock.name == data["stock"])
+    return stock.name, (data["start"] - 1 + len(data["labels"])) % stock.labels + 1
+
+
+def list_labels_of(vessel: Vessel, member: Membership) -> list[Paper]:
+    """Return the labels that were issued of a vessel, the latest first, at most MOST_SHOWN. One query."""
+    return list(list_papers_naming(member, vessel.code).filter(kind=PaperKind.LABELS)[:MOST_SHOWN])

@@ -13,7 +13,7 @@ from chemicals.journal.models import Attachment
 from chemicals.journal.selectors import list_entries_for
 from chemicals.ledger.selectors import list_periods_for, list_vessels_for
 from chemicals.process.inputs import INPUTS
-from chemicals.process.selectors import list_rack_types_for, list_routes_for, list_tanks_for
+from chemicals.process.selectors import list_imports_for, list_rack_types_for, list_routes_for, list_tanks_for
 from chemicals.register.selectors import list_products_for, list_substances_for
 from chemicals.science.calculations import CALCULATIONS
 from chemicals.workshop.models import Membership
@@ -69,7 +69,8 @@ def things(member: Membership, sha256: str) -> Mapping[str, list[Any]]:
         "receivers": [row.uuid for row in list_receivers_for(member)[:1]],
         "drop-offs": [row.uuid for row in list_drop_offs_for(member)[:1]],
         "periods": [row.closing.uuid for row in list_periods_for(member)[:1]],
-        "papers": [row.uuid for row in list_papers_for(member)[:1]],
+        "imports": [row.uuid for row in list_imports_for(member)[:1]],
+        "papers": [row.uuid for row in {row.kind: row for row in list_papers_for(member)}.values()],
         "people": [row.uuid for row in list_members_for(member)[:1]],
         "places": [row.uuid for row in list_places_for(member)[:1]],
         "rack-types": [row.uuid for row in list_rack_types_for(member)[:1]],

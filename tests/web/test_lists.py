@@ -20,8 +20,9 @@ from chemicals.process.setup import TankInput, create_holder, create_rack_type, 
 from chemicals.register.services import LineInput, RevisionInput, create_product, create_substance
 from chemicals.science.quantity import parse
 from chemicals.workshop.models import Membership, Place, Role
-from chemicals.workshop.services import create_place, create_token
+from chemicals.workshop.services import NumberInput, create_place, create_token, set_emergency_numbers
 from compliance.dropoffs.services import create_drop_off, create_receiver
+from compliance.premises.services import choose_rule
 from compliance.waste.services import StreamInput, close_container, create_container, create_stream
 from compliance.web.export import Column, wanted_file
 from tests.conftest import make_member
@@ -36,7 +37,9 @@ COUNTS = {
     "balance": 14,
     "waste": 6,
     "drop-offs": 6,
-    "workshop": 7,
+    "workshop": 8,
+    "emergency": 15,
+    "chemicals": 17,
 }
 """Queries of each list page: two for the session and the person, one for the membership, the rest for the list."""
 
@@ -44,9 +47,13 @@ COUNTS = {
 @pytest.fixture
 def grow(owner: Membership, now: datetime, filled: Line, say: Say) -> Callable[[str], None]:
     """Return a function that adds one more row to every list."""
+    numbers: list[NumberInput] = []
+    choose_rule(actor=owner, now=now, rule="de-gefstoffv-6-12", checked_on=now.date())
 
     def add(name: str) -> None:
         make: dict[str, Any] = {"actor": owner, "now": now}
+        numbers.append(NumberInput(f"Neighbour {name}", "000 1"))
+        set_emergency_numbers(**make, numbers=numbers)
         place = create_place(actor=owner, name=f"Place {name}")
         substance = create_substance(actor=owner, name=f"Substance {name}")
         revision = RevisionInput(form="solid", lines=(LineInput(substance, "50 %"),), pictograms=("GHS07",))

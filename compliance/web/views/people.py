@@ -14,6 +14,7 @@ from chemicals.workshop.models import Membership
 from chemicals.workshop.permissions import require_owner, require_writer
 from chemicals.workshop.selectors import (
     get_member_for,
+    list_emergency_numbers_for,
     list_members_for,
     list_places_for,
     list_tokens_for,
@@ -25,11 +26,13 @@ from chemicals.workshop.services import (
     create_token,
     invite_member,
     revoke_token,
+    set_emergency_numbers,
 )
 from compliance.documents.words import grouped
 from compliance.web.door import page, show
 from compliance.web.export import Column, wanted_file
 from compliance.web.forms.people import InviteForm, MemberForm, PlaceForm, TokenForm, WorkshopForm
+from compliance.web.forms.premises import NumbersForm
 from compliance.web.views.acts import address, fill_in, sent
 
 COLUMNS = (
@@ -45,12 +48,25 @@ PLACE_COLUMNS = (
     Column("exhaust duct", lambda row: row.exhaust_duct),
 )
 
+NUMBER_COLUMNS = (
+    Column("whom to call", lambda row: row.label),
+    Column("telephone", lambda row: row.number),
+    Column("entered", lambda row: row.entered_at),
+    Column("by", lambda row: str(row.entered_by.user)),
+)
+
 
 @page()
 def index(request: HttpRequest, member: Membership) -> HttpResponseBase:
     """Show the workshop: settings, people, places, the member's own keys, the end of the chain."""
     people, places = list_members_for(member), list_places_for(member)
-    file = wanted_file(request, people=(COLUMNS, lambda: people), places=(PLACE_COLUMNS, lambda: places))
+    numbers = list_emergency_numbers_for(member)
+    file = wanted_file(
+        request,
+        people=(COLUMNS, lambda: people),
+        places=(PLACE_COLUMNS, lambda: places),
+        emergency_numbers=(NUMBER_COLUMNS, lambda: numbers),
+    )
     sequence, head = get_head(member.workshop)
     return file or show(
         request,
@@ -59,6 +75,7 @@ def index(request: HttpRequest, member: Membership) -> HttpResponseBase:
         here="workshop",
         people=people,
         places=places,
+        numbers=numbers,
         tokens=list_tokens_for(member),
         sequence=sequence,
         head=grouped(head),
@@ -79,6 +96,20 @@ def settings(request: HttpRequest, member: Membership) -> HttpResponse:
     form = WorkshopForm(sent(request), initial={name: getattr(workshop, name) for name in fields})
     words = {"heading": _("The workshop"), "button": _("Save"), "back": address("workshop", member)}
     return fill_in(request, member, form, act, here="workshop", **words)
+
+
+@page("GET", "POST", need=require_owner)
+def emergency_numbers(request: HttpRequest, member: Membership) -> HttpResponse:
+    """Change whom to call in an emergency."""
+
+    def act(form: NumbersForm) -> str:
+        set_emergency_numbers(actor=member, now=timezone.now(), numbers=form.list_numbers())
+        messages.success(request, _("Saved. Issue the emergency sheet anew."))
+        return address("workshop", member)
+
+    rows = [{"label": row.label, "number": row.number} for row in list_emergency_numbers_for(member)]
+    words = {"heading": _("Emergency numbers"), "button": _("Save"), "back": address("workshop", member)}
+    return fill_in(request, member, NumbersForm(rows, sent(request)), act, here="workshop", **words)
 
 
 @page("GET", "POST", need=require_owner)

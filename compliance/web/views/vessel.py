@@ -11,6 +11,7 @@ from chemicals.process.selectors import find_last_run, get_tank_of, list_open_an
 from chemicals.science.reactivity import REACTS_AS
 from chemicals.workshop.models import Membership
 from compliance.clearance.selectors import react_as
+from compliance.premises.selectors import list_labels_of
 from compliance.web.bench import list_bench, list_groups
 from compliance.web.door import page, show
 from compliance.web.rows import entry_rows
@@ -40,5 +41,6 @@ def vessel(request: HttpRequest, member: Membership, uuid: UUID) -> HttpResponse
         groups=list_groups(found),
         again=find_last_run(member, found),
         analyses=[pair for pair in list_open_analyses_for(member) if pair[1].vessel == str(found.uuid)],
+        papers=list_labels_of(found, member),
         rows=entry_rows(member, list_entries_naming(member, found.uuid)[:LAST]),
     )
