@@ -139,25 +139,31 @@ def find_field(verb: str, target: str) -> FieldKind | None:
     return dict(describe(kind.of)).get(part) if known and isinstance(kind, RowsField) else None
 
 
-def guess(headings: Sequence[str], kept: ColumnMap | None = None) -> ColumnMap:
-    """Return what the headings say of themselves; those of an earlier import mean what they meant then."""
+def guess(headings: Sequence[str], kept: ColumnMap | None = None, verbs: Collection[str] = tuple(VERBS)) -> ColumnMap:
+    """Return what the headings say where these verbs happened; those of an earlier import mean what they meant then."""
     kept = kept or ColumnMap({})
     columns: dict[str, str] = {}
-    labels = {target: set(map(_fold, str(label).split(" / "))) for target, label in list_targets(VERBS).items()}
+    labels = {target: set(map(fold, str(label).split(" / "))) for target, label in list_targets(verbs).items()}
     for heading in headings:
-        target = kept.used.get(heading) or _guess_target(heading, labels)
+        target = kept.used.get(heading) or _guess_target(heading, verbs, labels)
         columns[heading] = "" if target in columns.values() else target
     verb = "" if VERB in columns.values() else kept.verb
     return ColumnMap(columns, verb, kept.dates, kept.decimal)
 
 
-def _fold(text: str) -> str:
+def fold(text: str) -> str:
+    """Return words without what does not matter: case, and how they are joined."""
     return " ".join(re.sub(r"[_\-./:]", " ", text).casefold().split())
 
 
-def _guess_target(heading: str, labels: Mapping[str, Collection[str]]) -> str:
+def verb_words() -> dict[str, str]:
+    """Return every word by which a verb is known, folded: its name, and what its button says."""
+    return {fold(word): verb for verb, data in VERBS.items() for word in (verb, str(data.title))}
+
+
+def _guess_target(heading: str, verbs: Collection[str], labels: Mapping[str, Collection[str]]) -> str:
     heading, unit = split_unit(heading)
-    words = _fold(heading)
+    words = fold(heading)
     if words in GENERAL or words in OTHER_NAMES:
         return OTHER_NAMES.get(words, words)
     if words == "time" and not unit:  # a time that takes a while has a unit
@@ -165,7 +171,7 @@ def _guess_target(heading: str, labels: Mapping[str, Collection[str]]) -> str:
     underlined = words.replace(" ", "_")
     numbered = re.fullmatch(r"(\w+)_(\d{1,2})_(\w+)", underlined)
     for target in filter(None, (underlined, numbered and " ".join(numbered.groups()))):
-        if any(find_field(verb, target) for verb in VERBS):
+        if any(find_field(verb, target) for verb in verbs):
             return target
     meant = [target for target, known in labels.items() if words in known]
     return meant[0] if len(meant) == 1 else ""

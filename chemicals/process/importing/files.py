@@ -1,18 +1,22 @@
 """Files of past records as they are kept: uploaded, with what their columns mean, until they are imported."""
 
 from datetime import datetime
+from itertools import islice
 
 from django.db import transaction
 from django_scopes import scope
 
 from chemicals.journal import files
 from chemicals.journal.services import keep_file
-from chemicals.process.importing.columns import ColumnMap, as_json, from_json, guess
+from chemicals.process.importing.columns import VERB, ColumnMap, as_json, fold, from_json, guess, verb_words
 from chemicals.process.importing.table import Table, media_type_of, open_table
 from chemicals.process.models import Import
 from chemicals.workshop.errors import ConflictError
 from chemicals.workshop.models import Membership
 from chemicals.workshop.permissions import require_same_workshop, require_writer
+
+LOOKED_AT = 500
+"""How many rows are looked at for the verbs that a file names."""
 
 
 def add_import(*, actor: Membership, now: datetime, name: str, data: bytes) -> Import:
@@ -37,7 +41,19 @@ def find_map(upload: Import, table: Table) -> ColumnMap:
         return from_json(upload.mapping)
     with scope(workshop=upload.workshop):
         last = Import.objects.exclude(mapping={}).order_by("-changed_at", "-pk").first()
-    return guess(table.headings, None if last is None else from_json(last.mapping))
+    kept = None if last is None else from_json(last.mapping)
+    first = guess(table.headings, kept)
+    return guess(table.headings, kept, find_verbs(table, first) or first.verbs)
+
+
+def find_verbs(table: Table, chosen: ColumnMap) -> list[str]:
+    """Return the verbs that the first rows name: a heading may mean one thing with one verb, another with another."""
+    place = next((place for place, heading in enumerate(table.headings) if chosen.columns[heading] == VERB), None)
+    if place is None:
+        return []
+    words = verb_words()
+    cells = (str(row.cells[place]) for row in islice(table.rows(), LOOKED_AT) if row.cells)
+    return list(dict.fromkeys(words[word] for cell in cells if (word := fold(cell)) in words))
 
 
 def choose_columns(*, actor: Membership, now: datetime, upload: Import, chosen: ColumnMap) -> Import:

@@ -21,7 +21,9 @@ from chemicals.process.importing.columns import (
     WHICH,
     ColumnMap,
     find_field,
+    fold,
     split_unit,
+    verb_words,
 )
 from chemicals.process.importing.names import Names, key_of, row_of
 from chemicals.process.importing.table import Cell, Row, Table
@@ -106,7 +108,7 @@ class Reader:
             if heading in chosen.used
         ]
         self._keys: dict[str, int] = {}
-        self._verbs = {_fold(word): verb for verb, data in VERBS.items() for word in (verb, str(data.title))}
+        self._verbs = verb_words()
         self._row = 0
 
     def read(self, row: Row) -> Said | None:
@@ -152,7 +154,7 @@ class Reader:
             return None
 
         def read(cell: Cell) -> str:
-            verb = self._verbs.get(_fold(str(cell)))
+            verb = self._verbs.get(fold(str(cell)))
             if verb is None:
                 raise CellError(f'"{cell}" is nothing that can be imported. Write one of: {", ".join(VERBS)}.')
             return verb
@@ -248,7 +250,3 @@ def _find_groups(targets: Iterable[str]) -> dict[str, tuple[int, ...]]:
     for match in filter(None, map(NUMBERED.fullmatch, targets)):
         found.setdefault(match[1], set()).add(int(match[2]))
     return {name: tuple(sorted(numbers)) for name, numbers in found.items()}
-
-
-def _fold(text: str) -> str:
-    return " ".join(text.casefold().replace("-", " ").replace("_", " ").split())

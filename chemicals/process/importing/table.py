@@ -157,16 +157,15 @@ def _open_csv(data: bytes) -> Callable[[], Iterator[Line]]:
 def _decode(data: bytes) -> str:
     """Return the text: UTF-8, or UTF-16 that says so."""
     marked = data.startswith((codecs.BOM_UTF16_LE, codecs.BOM_UTF16_BE))
+    if b"\0" in data and not marked:
+        raise _refuse("This is neither a CSV nor an XLSX file. Save it as one of these.")
     try:
-        text = data.decode("utf-16" if marked else "utf-8-sig")
+        return data.decode("utf-16" if marked else "utf-8-sig")
     except UnicodeDecodeError as error:
         line = data[: error.start].count(b"\n") + 1
         raise _refuse(
             f"Line {line} holds a character that is not in UTF-8. Save the file as CSV in UTF-8, or as XLSX."
         ) from error
-    if "\0" in text:
-        raise _refuse("This is neither a CSV nor an XLSX file. Save it as one of these.")
-    return text
 
 
 def _find_separator(text: str) -> str:

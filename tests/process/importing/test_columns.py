@@ -151,3 +151,10 @@ def test_an_acceptance_needs_no_time_of_its_own() -> None:
 
 def test_a_field_of_any_verb_may_be_said_where_a_column_says_the_verb() -> None:
     assert wrong(ColumnMap({"A": "when", "B": "verb", "C": "charge", "D": "held 3 metal"})) == {}
+
+
+def test_a_heading_means_what_it_means_with_the_verbs_that_happened() -> None:
+    """A container is what is handed over, and the vessel into which something was received."""
+    assert guess(["Container"], verbs=["receipt"]).columns == {"Container": "vessel"}
+    assert guess(["Container"], verbs=["hand-over"]).columns == {"Container": "container"}
+    assert guess(["Route"], verbs=["receipt"]).columns == {"Route": ""}

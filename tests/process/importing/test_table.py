@@ -125,6 +125,7 @@ def test_a_file_of_more_than_fifty_megabytes_is_refused(monkeypatch: pytest.Monk
         (b"\xd0\xcf\x11\xe0\xa1\xb1\x1a\xe1", "Save it as XLSX"),
         (b"PK\x03\x04 no archive", "Save it anew"),
         (b"%PDF-1.4\x00\x00", "neither a CSV nor an XLSX file"),
+        (b"\x89PNG\r\n\x1a\n\x00", "neither a CSV nor an XLSX file"),
     ],
 )
 def test_other_kinds_of_files_are_refused_with_a_remedy(data: bytes, remedy: str) -> None:
