@@ -1,0 +1,154 @@
+"""Import of past records: upload a file, say what its columns mean, look at what was understood, import all of it."""
+
+import hashlib
+import json
+from itertools import islice
+from typing import Any
+from uuid import UUID
+
+from django.contrib import messages
+from django.http import HttpRequest, HttpResponse, HttpResponseBase, HttpResponseRedirect
+from django.utils import timezone
+from django.utils.translation import gettext as _
+
+from chemicals.process.importing.columns import ColumnMap, as_json
+from chemicals.process.importing.files import add_import, choose_columns, find_map, read_table
+from chemicals.process.importing.reading import RowError
+from chemicals.process.importing.table import Table
+from chemicals.process.importing.understanding import Understood
+from chemicals.process.models import Import
+from chemicals.process.selectors import get_import_for, list_imports_for
+from chemicals.workshop.errors import ConflictError, InvalidInputError
+from chemicals.workshop.models import Membership, Role
+from chemicals.workshop.permissions import require_writer
+from compliance.clearance.importing import AT_ONCE, RefusedImportError, preview_import, record_import
+from compliance.web.door import page, show
+from compliance.web.export import Column, wanted_file
+from compliance.web.forms.imports import EXAMPLES, ColumnsForm, UploadForm
+from compliance.web.imported import RowTeller
+from compliance.web.views.acts import address, fill_in, sent
+
+SHOWN_ROWS, SHOWN_ERRORS = 10, 200
+IMPORT = "import"
+COLUMNS = (
+    Column("row", lambda error: error.row or None),
+    Column("column", lambda error: error.column),
+    Column("message", lambda error: error.message),
+)
+IMPORT_COLUMNS = (
+    Column("file", lambda row: row.file.name),
+    Column("sha256", lambda row: row.file.sha256),
+    Column("changed", lambda row: row.changed_at),
+    Column("by", lambda row: str(row.changed_by.user)),
+    Column("imported", lambda row: row.imported_at),
+    Column("first entry", lambda row: row.first),
+    Column("last entry", lambda row: row.last),
+)
+
+
+@page("GET", "POST")
+def index(request: HttpRequest, member: Membership) -> HttpResponseBase:
+    """List the files of past records, and take another one."""
+
+    def act(form: UploadForm) -> str:
+        file = form.cleaned_data["file"]
+        found = add_import(actor=member, now=timezone.now(), name=file.name, data=file.read())
+        return address("import", member, found.uuid)
+
+    if request.method == "POST":
+        require_writer(member)
+    rows = list_imports_for(member)
+    file = wanted_file(request, imports=(IMPORT_COLUMNS, lambda: rows))
+    form = UploadForm(sent(request), request.FILES or None)
+    return file or fill_in(request, member, form, act, template="web/imports.html", here="entries", rows=rows)
+
+
+@page("GET", "POST")
+def upload(request: HttpRequest, member: Membership, uuid: UUID) -> HttpResponseBase:
+    """Show a file as it is understood; keep what its columns mean, or import it."""
+    found = get_import_for(member, uuid)
+    if request.method == "POST":
+        return _receive(request, member, found)
+    if found.imported_at is not None or found.waits:
+        return _show(request, member, found)
+    table = read_table(found)
+    return _look(request, member, found, table, find_map(found, table))
+
+
+def _receive(request: HttpRequest, member: Membership, found: Import) -> HttpResponseBase:
+    """Do what the form says: import what was seen, or show how it is understood now."""
+    require_writer(member)
+    table, now = read_table(found), timezone.now()
+    form = ColumnsForm(table.headings, ColumnMap({}), _first(table), request.POST)
+    if not form.is_valid():
+        return _show(request, member, found, status=400, form=form)
+    chosen = form.chosen
+    if request.POST.get("step") != IMPORT or form.cleaned_data["seen"] != _digest(chosen):
+        if found.imported_at is None and not found.waits:
+            choose_columns(actor=member, now=now, upload=found, chosen=chosen)
+        return HttpResponseRedirect(address("import", member, found.uuid))
+    try:
+        done = record_import(actor=member, now=now, upload=found, chosen=chosen)
+    except RefusedImportError:
+        return _look(request, member, found, table, chosen, status=400)
+    except (InvalidInputError, ConflictError) as error:
+        form.add_error(None, str(error))
+        return _show(request, member, found, status=409, form=form)
+    messages.success(request, _("A job imports it.") if done.imported_at is None else _("Imported."))
+    return HttpResponseRedirect(address("import", member, found.uuid))
+
+
+def _look(
+    request: HttpRequest, member: Membership, found: Import, table: Table, chosen: ColumnMap, *, status: int = 200
+) -> HttpResponseBase:
+    """Show what the columns mean, what the first rows say, and everything that is wrong."""
+    understood = preview_import(member, timezone.now(), found, chosen)
+    errors = understood.errors or tuple(RowError(*row) for row in found.errors)
+    file = wanted_file(request, errors=(COLUMNS, lambda: errors))
+    if file is not None:
+        return file
+    teller = RowTeller(member) if understood.made else None
+    rows = [teller.tell(made) for made in _in_order(understood)] if teller else []
+    return _show(
+        request,
+        member,
+        found,
+        status=status,
+        form=ColumnsForm(table.headings, chosen, _first(table), initial={"seen": _digest(chosen)}),
+        table=table,
+        understood=understood,
+        rows=rows,
+        errors=errors[:SHOWN_ERRORS],
+        wrong=understood.wrong or found.wrong,
+        more=len(errors) - SHOWN_ERRORS,
+        at_once=AT_ONCE,
+    )
+
+
+def _in_order(understood: Understood) -> Any:
+    """Return the first rows of the file that are right."""
+    return sorted(understood.made, key=lambda made: made.said.row)[:SHOWN_ROWS]
+
+
+def _first(table: Table) -> list[Any]:
+    return list(islice(table.rows(), EXAMPLES))
+
+
+def _digest(chosen: ColumnMap) -> str:
+    return hashlib.sha256(json.dumps(as_json(chosen), sort_keys=True).encode()).hexdigest()
+
+
+def _show(request: HttpRequest, member: Membership, found: Import, status: int = 200, **context: Any) -> HttpResponse:
+    heading = _("Import of %(name)s") % {"name": found.file.name}
+    may = member.role != Role.OBSERVER
+    return show(
+        request,
+        member,
+        "web/import.html",
+        here="entries",
+        status=status,
+        heading=heading,
+        upload=found,
+        may=may,
+        **context,
+    )
