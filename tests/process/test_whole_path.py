@@ -157,7 +157,10 @@ def hand_over(shop: Shop) -> None:
         container = WasteContainer.objects.select_related("vessel", "stream").get()
     container = waste.close_container(actor=member, now=now, container=container, gross=10 * KG)
     label = waste.issue_label(actor=member, now=now, key=uuid4(), container=container)
-    assert read_data(label)["contents"][0]["name"] == "copper (Cu)"
+    copper, acid = read_data(label)["contents"]
+    assert (copper["name"], acid["name"]) == ("copper (Cu)", "acid")
+    assert copper["amount"].endswith(" g")
+    assert acid["amount"].endswith("mol")
     drop_off = dropoffs.create_drop_off(
         actor=member,
         now=now,

@@ -26,6 +26,13 @@ def test_may_this_go_in_here_answers_allowed(visit: Visitor, filled: Line) -> No
     assert "NEVER" not in page
 
 
+def test_expired_stock_is_asked_for_too_after_the_tanks(visit: Visitor, filled: Line) -> None:
+    page = text_of(ask(visit, filled.drum, filled.tub.uuid))
+    assert "Salt tub into Drum 7" in page
+    assert page.index(">Copper bath (") < page.index(">Rinse (") < page.index(">Salt tub (")
+    assert "NEVER" in text_of(ask(visit, filled.cyanide_drum, filled.tub.uuid))
+
+
 def test_may_this_go_in_here_answers_never_and_writes_nothing(visit: Visitor, filled: Line) -> None:
     before = Entry._base_manager.count()
     page = text_of(ask(visit, filled.cyanide_drum, filled.bath.uuid))
@@ -39,7 +46,7 @@ def test_with_htmx_only_the_answer_comes(visit: Visitor, filled: Line) -> None:
     assert "NEVER" in text_of(page)
     assert "<html" not in text_of(page)
     nothing = ask(visit, filled.cyanide_drum, "", **{"HX-Request": "true"})
-    assert (nothing.status_code, text_of(nothing)) == (200, "<p>Choose the tank that it comes from.</p>")
+    assert (nothing.status_code, text_of(nothing)) == (200, "<p>Choose what it comes from.</p>")
 
 
 def test_nothing_chosen_is_told(visit: Visitor, filled: Line) -> None:

@@ -62,12 +62,12 @@ class CloseForm(WebForm):
 
 
 class MayForm(WebForm):
-    """From which tank?"""
+    """Out of what?"""
 
-    def __init__(self, tanks: list[tuple[Any, str]], data: Any) -> None:
+    def __init__(self, sources: list[tuple[Any, str]], data: Any) -> None:
         super().__init__(data)
         self.fields["source"] = ThingField(
-            tanks, label=_("From"), missing=_("No tank yet. Set one up on the page Tanks first.")
+            sources, label=_("From"), missing=_("No tank yet. Set one up on the page Tanks first.")
         )
 
 

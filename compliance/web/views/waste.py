@@ -9,8 +9,8 @@ from django.utils import timezone
 from django.utils.translation import gettext as _
 
 from chemicals.journal.selectors import list_entries_naming
-from chemicals.ledger.models import VesselKind
 from chemicals.ledger.selectors import get_recomputed_to, get_vessel_for, list_vessels_for, read_contents
+from chemicals.process.fields import VesselField, describe
 from chemicals.process.inputs import DrumOffInput
 from chemicals.science.reactivity import REACTS_AS
 from chemicals.workshop.errors import InvalidInputError
@@ -101,22 +101,25 @@ def _container(
         "groups": list_groups(found.vessel),
         "state": state_of(found),
         "close_form": CloseForm(),
-        "may_form": MayForm(_tanks(member), None),
+        "may_form": MayForm(_sources(member), None),
         "key": uuid4(),
     }
     return show(request, member, "web/waste-container.html", here="waste", status=status, **{**context, **more})
 
 
-def _tanks(member: Membership) -> list[tuple[UUID, str]]:
-    tanks = list_vessels_for(member, VesselKind.BATH, VesselKind.RINSE)
-    return [(vessel.uuid, f"{vessel.name} ({vessel.code})") for vessel in tanks]
+def _sources(member: Membership) -> list[tuple[UUID, str]]:
+    """Return what can be drummed off: tanks first, then stock and what stands for solids."""
+    source = dict(describe(DrumOffInput))["source"]
+    assert isinstance(source, VesselField)  # noqa: S101  (a table error, not an input error)
+    vessels = sorted(list_vessels_for(member, *source.kinds), key=lambda vessel: source.kinds.index(vessel.kind))
+    return [(vessel.uuid, f"{vessel.name} ({vessel.code})") for vessel in vessels]
 
 
 @page()
 def may_go_in(request: HttpRequest, member: Membership, uuid: UUID) -> HttpResponse:
-    """Answer whether the contents of a tank may go into a waste container. Writes nothing."""
+    """Answer whether the contents of a tank, or expired stock, may go into a waste container. Writes nothing."""
     found = get_container_for(member, uuid)
-    form = MayForm(_tanks(member), request.GET)
+    form = MayForm(_sources(member), request.GET)
     only_answer = bool(request.headers.get("HX-Request"))
     context: dict[str, Any] = {"may_form": form}
     if form.is_valid():
