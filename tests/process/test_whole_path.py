@@ -159,7 +159,7 @@ def hand_over(shop: Shop) -> None:
     label = waste.issue_label(actor=member, now=now, key=uuid4(), container=container)
     copper, acid = read_data(label)["contents"]
     assert (copper["name"], acid["name"]) == ("copper (Cu)", "acid")
-    assert copper["amount"].endswith(" g")
+    assert copper["amount"].endswith("g")
     assert acid["amount"].endswith("mol")
     drop_off = dropoffs.create_drop_off(
         actor=member,
