@@ -268,7 +268,8 @@ def get_closed_until(workshop: Workshop) -> datetime | None:
 class Recomputing:
     """The books say what happened before ``until``; a job works on the rest.
 
-    ``done`` of ``total`` entries are folded; ``failed``: the job has given up, and a person must look at it.
+    ``done`` of ``total`` entries are folded. ``failed``: the job has given up; remove the cause that it names, then run
+    `manage.py work --retry-failed`.
     """
 
     until: datetime
