@@ -9,10 +9,10 @@ from typing import Any
 from uuid import UUID
 
 from django.db.backends.base.base import BaseDatabaseWrapper
-from django.db.models import Exists, Func, OuterRef, Q, QuerySet, TextField
+from django.db.models import Exists, Func, OuterRef, Q, QuerySet, Subquery, TextField
 from django.db.models.lookups import Exact, IContains
 from django.db.models.sql.compiler import SQLCompiler
-from django_scopes import scope
+from django_scopes import scope, scopes_disabled
 
 from chemicals.books import events
 from chemicals.journal.models import Entry
@@ -102,19 +102,24 @@ def _by_columns(wanted: Search) -> Q:
 
 
 def _by_rows(wanted: Search) -> list[Q]:
-    """Return what must stand in other rows, or inside the entry."""
-    mine = {"entry": OuterRef("pk")}
-    found = []
-    if wanted.component:
-        moved = Q(Exists(Posting.objects.filter(**mine, component__code=wanted.component)))
-        noted = Q(Exists(Finding.objects.filter(**mine, component=wanted.component)))
-        found.append(moved | noted | _analysed(wanted.component))
-    if wanted.text:
-        found.append(_says(unicodedata.normalize("NFC", wanted.text)))
-    if wanted.findings:
-        found.append(Q(Exists(Finding.objects.filter(**mine))))
-    if wanted.cancelled:
-        found.append(Q(Exists(Entry.objects.filter(about=OuterRef("pk"), kind=events.Cancellation.KIND))))
+    """Return what must stand in other rows, or inside the entry.
+
+    Rows of an entry are of its workshop. That is not asked again: it would lead a query to the rows of a workshop, or
+    of a component, in place of the few of an entry.
+    """
+    mine, found = {"entry": OuterRef("pk")}, []
+    component = Subquery(Component.objects.filter(code=wanted.component).values("pk")[:1])
+    with scopes_disabled():
+        if wanted.component:
+            moved = Q(Exists(Posting.objects.filter(**mine, component=component)))
+            noted = Q(Exists(Finding.objects.filter(**mine, component=wanted.component)))
+            found.append(moved | noted | _analysed(wanted.component))
+        if wanted.text:
+            found.append(_says(unicodedata.normalize("NFC", wanted.text)))
+        if wanted.findings:
+            found.append(Q(Exists(Finding.objects.filter(**mine))))
+        if wanted.cancelled:
+            found.append(Q(Exists(Entry.objects.filter(about=OuterRef("pk"), kind=events.Cancellation.KIND))))
     return found
 
 

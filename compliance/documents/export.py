@@ -131,8 +131,9 @@ def _jsonl(table: Table) -> Chunks:
     Numbers have all their digits: what reads them as floats keeps 15.
     """
     if table.about is not None:
-        yield _object({"about": table.about})
-    line = table.line or (lambda row: _object({c.heading: _cell(c.read(row)) for c in table.columns}))
+        yield f'{{"about":{_encode(table.about)}}}\n'.encode()
+    columns = [(f"{_encode(column.heading)}:", column.read) for column in table.columns]
+    line = table.line or (lambda row: _object(columns, row))
     buffer = bytearray()
     for row in table.rows:
         buffer += line(row)
@@ -142,14 +143,16 @@ def _jsonl(table: Table) -> Chunks:
     yield bytes(buffer)
 
 
-def _object(value: Mapping[str, Any]) -> bytes:
-    return f"{_json(value)}\n".encode()
+def _object(columns: Sequence[tuple[str, Callable[[Any], object]]], row: object) -> bytes:
+    cells = ",".join([name + _literal(_cell(read(row))) for name, read in columns])
+    return f"{{{cells}}}\n".encode()
 
 
-def _json(value: Any) -> str:
-    if isinstance(value, Mapping):
-        return "{" + ",".join(f"{_json(name)}:{_json(inner)}" for name, inner in value.items()) + "}"
-    return f"{value:f}" if isinstance(value, Decimal) else json.dumps(value, ensure_ascii=False)
+_encode = json.JSONEncoder(ensure_ascii=False).encode
+
+
+def _literal(cell: Cell) -> str:
+    return f"{cell:f}" if isinstance(cell, Decimal) else _encode(cell)
 
 
 def _xlsx(table: Table) -> Chunks:
@@ -190,11 +193,13 @@ def _stored(sheet: Any, cell: Cell) -> Any:
 
     if cell is None or isinstance(cell, int) or (isinstance(cell, Decimal) and _fits(cell)):
         return cell
-    plain = cell if isinstance(cell, str) else f"{cell:f}"
+    plain = ILLEGAL_CHARACTERS_RE.sub("", cell) if isinstance(cell, str) else f"{cell:f}"
     if len(plain) > XLSX_TEXT:
-        plain = _("This is longer than a cell can hold: take the file as CSV or as JSON lines.")
-    text = WriteOnlyCell(sheet, ILLEGAL_CHARACTERS_RE.sub("", plain))
-    text.data_type = "s"  # the library takes what begins with "=" for a formula
+        return _("This is longer than a cell can hold: take the file as CSV or as JSON lines.")
+    if not plain.startswith(("=", "#")):
+        return plain
+    text = WriteOnlyCell(sheet, plain)
+    text.data_type = "s"  # the library takes what begins with "=" for a formula, and "#N/A" for an error
     return text
 
 
