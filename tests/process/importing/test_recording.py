@@ -1,97 +1,26 @@
 """Imports through their door: all of a file or nothing, once, as if its rows had been recorded one by one."""
 
-from datetime import UTC, datetime, timedelta
+from datetime import timedelta
 from random import Random
-from typing import Any
 from unittest.mock import patch
-from uuid import uuid4
 
 import pytest
-from django_scopes import scope
 
 from chemicals.books.clearance import NOT_ASKED
-from chemicals.jobs.models import State
-from chemicals.jobs.services import run_next
-from chemicals.journal.models import Entry
 from chemicals.journal.selectors import read_body
 from chemicals.journal.verify import verify_chain
-from chemicals.ledger import late
-from chemicals.ledger.models import Memory
-from chemicals.ledger.periods import close_period
-from chemicals.ledger.selectors import get_recomputed_to
 from chemicals.process.importing.columns import ColumnMap
 from chemicals.process.importing.files import add_import, choose_columns, find_map, read_table
-from chemicals.process.models import Import
 from chemicals.process.selectors import get_import_for, list_imports_for
 from chemicals.process.services import record_past
 from chemicals.workshop.errors import ConflictError, InvalidInputError, NotFoundError, NotPermittedError
-from chemicals.workshop.models import Membership, Role
+from chemicals.workshop.models import Membership
 from compliance.clearance import importing
 from compliance.clearance.importing import RefusedImportError, preview_import, record_import
 from tests.journal.test_concurrency import at_once
-from tests.process.conftest import furnish
 from tests.process.importing.sheets import lines
+from tests.process.importing.story import FILE, STORY, close, entries, record, tell_one_by_one, upload
 from tests.process.shop import Shop
-
-HEADINGS = (
-    "Key,Date,Verb,Vessel,Tank,Source,Amount,Level,Volume,Route,Charge,"
-    "ingredients 1 stock,ingredients 1 amount,Analysis,Metal,Result"
-)
-STORY = (
-    HEADINGS,
-    "r1,2026-01-05 09:00,receipt,Jar,,,5 kg,,,,,,,,,",
-    "m1,2026-01-05 10:00,make-up,,Copper,,,20 L,,,,Jar,4 kg,,,",
-    "m2,2026-01-05 10:05,make-up,,First rinse,,,10 L,,,,,,,,",
-    "p1,2026-01-06 09:00,run,,,,,,,Plate,1.8 Ah,,,,,",
-    "p2,2026-01-07 09:00,run,,,,,,,Plate,2.4 Ah,,,,,",
-    "a1,2026-01-08,analysis,Copper,,,,,,,,,,,Cu,48 g/L",
-    ",,acceptance,,,,,,,,,,,a1,,",
-    "l1,2026-01-09 09:00,level-reading,Copper,,,,,19.2 L,,,,,,,",
-    "t1,2026-01-09 09:30,top-up,,Copper,First rinse,,,0.5 L,,,,,,,",
-)
-FILE = lines(*STORY)
-
-
-def upload(shop: Shop, data: bytes = FILE, name: str = "book.csv") -> Import:
-    return add_import(actor=shop.member, now=shop.now, name=name, data=data)
-
-
-def record(shop: Shop, data: bytes = FILE, **more: Any) -> Import:
-    """Import a file as its headings say."""
-    found = upload(shop, data)
-    chosen = find_map(found, read_table(found))
-    return record_import(**{"actor": shop.member, "now": shop.now, "upload": found, "chosen": chosen, **more})
-
-
-def entries(shop: Shop) -> list[Entry]:
-    with scope(workshop=shop.member.workshop):
-        return list(Entry.objects.order_by("sequence"))
-
-
-def tell_one_by_one(shop: Shop) -> None:
-    """Record the story as if somebody had been there."""
-
-    def at(day: int, hour: int, minute: int = 0) -> float:
-        return (shop.now - datetime(2026, 1, day, hour, minute, tzinfo=UTC)) / timedelta(days=1)
-
-    shop.record("receipt", days_ago=at(5, 8), vessel="Jar", amount="5 kg")
-    made = [{"stock": "Jar", "amount": "4 kg"}]
-    shop.record("make-up", days_ago=at(5, 9), tank="Copper", ingredients=made, level="20 L")
-    shop.record("make-up", days_ago=at(5, 9, 5), tank="First rinse", level="10 L")
-    shop.record("run", days_ago=at(6, 8), route="Plate", charge="1.8 Ah")
-    shop.record("run", days_ago=at(7, 8), route="Plate", charge="2.4 Ah")
-    shop.record("analysis", days_ago=at(8, 11), label="a1", vessel="Copper", metal="Cu", result="48 g/L")
-    shop.record("acceptance", analysis="a1")
-    shop.record("level-reading", days_ago=at(9, 8), vessel="Copper", volume="19.2 L")
-    shop.record("top-up", days_ago=at(9, 8, 30), tank="Copper", source="First rinse", volume="0.5 L")
-
-
-@pytest.fixture
-def other_shop(stranger: Membership, now: datetime) -> Shop:
-    """The same shop in another workshop, of the same zone."""
-    stranger.workshop.time_zone = "Europe/Berlin"
-    stranger.workshop.save()
-    return furnish(Shop(stranger, now))
 
 
 def test_an_import_says_what_records_one_by_one_say(empty_shop: Shop, other_shop: Shop) -> None:
@@ -233,13 +162,6 @@ def test_a_period_that_was_closed_meanwhile_takes_nothing(shop: Shop) -> None:
     assert len(entries(shop)) == before
 
 
-def close(shop: Shop) -> None:
-    """Close the books until the first of February, Berlin time."""
-    Membership.objects.filter(pk=shop.member.pk).update(role=Role.OWNER)
-    shop.member.refresh_from_db()
-    close_period(actor=shop.member, now=shop.now, key=uuid4(), until=datetime(2026, 1, 31, 23, tzinfo=UTC))
-
-
 # --- what is kept between upload and import ---
 
 
@@ -293,123 +215,3 @@ def test_an_observer_imports_nothing_and_a_stranger_finds_nothing(
     with pytest.raises(NotFoundError):
         get_import_for(stranger, found.uuid)
     assert entries(empty_shop) == []
-
-
-# --- large files: a job does it ---
-
-
-@pytest.fixture
-def small_requests(monkeypatch: pytest.MonkeyPatch) -> None:
-    """Let a request read four rows and fold four entries."""
-    monkeypatch.setattr(importing, "AT_ONCE", 4)
-    monkeypatch.setattr(late, "LATE_LIMIT", 4)
-
-
-def work(shop: Shop) -> int:
-    """Let the worker do everything that is due; return how many steps it took."""
-    steps = 0
-    while run_next(now=shop.now + timedelta(minutes=1), worker="w"):
-        steps += 1
-    return steps
-
-
-@pytest.mark.usefixtures("small_requests")
-def test_a_large_file_is_left_to_a_job_and_the_books_to_another(empty_shop: Shop, other_shop: Shop) -> None:
-    left = record(empty_shop)
-    assert left.waits
-    assert entries(empty_shop) == []
-    assert record(empty_shop) == left
-    run_next(now=empty_shop.now, worker="w")
-    done = get_import_for(empty_shop.member, left.uuid)
-    assert (done.first, done.last, done.waits) == (1, 9, False)
-    assert get_recomputed_to(empty_shop.member.workshop) is not None
-    assert work(empty_shop) > 0
-    assert get_recomputed_to(empty_shop.member.workshop) is None
-    tell_one_by_one(other_shop)
-    assert empty_shop.ledger() == other_shop.ledger()
-    assert empty_shop.is_proved()
-
-
-@pytest.mark.usefixtures("small_requests")
-def test_what_may_be_in_a_vessel_is_remembered_before_the_books_are_recomputed(empty_shop: Shop) -> None:
-    record(empty_shop)
-    run_next(now=empty_shop.now, worker="w")
-    with scope(workshop=empty_shop.member.workshop):
-        marks = dict(Memory.objects.values_list("vessel__name", "poured"))
-    work(empty_shop)
-    with scope(workshop=empty_shop.member.workshop):
-        later = dict(Memory.objects.values_list("vessel__name", "poured"))
-    assert later["First rinse"] == marks["First rinse"] != []
-    assert all(set(later[name]) <= set(marks[name]) for name in later)
-
-
-@pytest.mark.usefixtures("small_requests")
-def test_a_mistake_far_below_is_found_by_the_job_and_nothing_is_recorded(empty_shop: Shop) -> None:
-    left = record(empty_shop, lines(*STORY, ",2026-01-10,receipt,Jer,,,1 kg,,,,,,,,,"))
-    work(empty_shop)
-    refused = get_import_for(empty_shop.member, left.uuid)
-    assert (refused.imported_at, refused.waits, refused.wrong) == (None, False, 1)
-    assert refused.errors == [[11, "Vessel", 'There is no vessel "Jer". Did you mean "Jar"?']]
-    assert entries(empty_shop) == []
-    chosen = find_map(refused, read_table(refused))
-    again = choose_columns(actor=empty_shop.member, now=empty_shop.now, upload=refused, chosen=chosen)
-    assert (again.errors, again.wrong) == ([], 0)
-
-
-@pytest.mark.usefixtures("small_requests")
-def test_a_mistake_near_the_top_is_said_at_once(empty_shop: Shop) -> None:
-    heading, first, *rest = STORY
-    with pytest.raises(RefusedImportError):
-        record(empty_shop, lines(heading, first.replace("Jar", "Jer"), *rest))
-    assert not list_imports_for(empty_shop.member).get().waits
-
-
-@pytest.mark.usefixtures("small_requests")
-def test_a_period_that_closes_while_the_job_waits_is_said_on_the_import(shop: Shop) -> None:
-    rows = [f"2026-01-{day},receipt,Jar,1 kg" for day in range(10, 16)]
-    left = record(shop, lines("Date,Verb,Vessel,Amount", *rows))
-    work(shop)
-    monkey = lines("Date,Verb,Vessel,Amount", *rows, "2026-01-16,receipt,Jar,1 kg")
-    waiting = record(shop, monkey)
-    close(shop)
-    before = len(entries(shop))
-    work(shop)
-    refused = get_import_for(shop.member, waiting.uuid)
-    assert get_import_for(shop.member, left.uuid).imported_at is not None
-    assert (refused.imported_at, refused.wrong) == (None, 7)
-    assert len(entries(shop)) == before
-
-
-@pytest.mark.usefixtures("small_requests")
-def test_a_period_that_closes_while_the_job_writes_is_said_too(shop: Shop) -> None:
-    rows = [f"2026-01-{day},receipt,Jar,1 kg" for day in range(10, 16)]
-    left = record(shop, lines("Date,Verb,Vessel,Amount", *rows))
-    with patch("compliance.clearance.importing.record_past", side_effect=ConflictError("Others were quicker.")):
-        work(shop)
-    refused = get_import_for(shop.member, left.uuid)
-    assert refused.errors == [[0, "", "Others were quicker."]]
-    assert refused.imported_at is None
-
-
-@pytest.mark.usefixtures("small_requests")
-def test_a_job_that_gives_up_can_be_asked_again(empty_shop: Shop) -> None:
-    left = record(empty_shop)
-    assert left.job is not None
-    left.job.state, left.job.finished_at = State.FAILED, empty_shop.now
-    left.job.save()
-    assert get_import_for(empty_shop.member, left.uuid).failed
-    again = record(empty_shop)
-    assert again.waits
-    assert again.job != left.job
-
-
-@pytest.mark.usefixtures("small_requests")
-def test_a_job_that_comes_too_late_writes_nothing(empty_shop: Shop, monkeypatch: pytest.MonkeyPatch) -> None:
-    left = record(empty_shop)
-    chosen = find_map(left, read_table(left))
-    monkeypatch.setattr(importing, "AT_ONCE", 100)
-    made = preview_import(empty_shop.member, empty_shop.now, left, chosen).made
-    importing.write_import(actor=empty_shop.member, now=empty_shop.now, upload=left, made=made)
-    work(empty_shop)
-    assert len(entries(empty_shop)) == 9
-    assert empty_shop.is_proved()
