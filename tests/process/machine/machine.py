@@ -44,8 +44,9 @@ class Machine(RuleBasedStateMachine):
         self.keys = 0
         self.seeds: Counter[int] = Counter()
 
-    @initialize(in_use=st.booleans(), limits=st.sampled_from([{}, BUSY]))
-    def open(self, in_use: bool, limits: dict[str, int]) -> None:  # noqa: FBT001  (hypothesis names its arguments)
+    @initialize(in_use=st.booleans(), limits=st.sampled_from([{}, BUSY]), seed=seeds)
+    def open(self, in_use: bool, limits: dict[str, int], seed: int) -> None:  # noqa: FBT001  (hypothesis names them)
+        self.seed = seed
         for name, limit in limits.items():
             self.patch.setattr(name, limit)
         self.at = Office(self.line, limits, self.done)
@@ -76,7 +77,7 @@ class Machine(RuleBasedStateMachine):
     def chance(self, seed: int) -> Random:
         """Return chances that are the same whatever steps were left out before, and others when a seed comes again."""
         self.seeds[seed] += 1
-        return Random(f"{seed} {self.seeds[seed]}")  # noqa: S311  (nothing is kept secret)
+        return Random(f"{self.seed} {seed} {self.seeds[seed]}")  # noqa: S311  (nothing is kept secret)
 
     def somebody(self, chance: Random) -> Membership:
         return chance.choice([self.at.owner, self.at.worker])

@@ -18,7 +18,6 @@ from chemicals.jobs import services as jobs
 from chemicals.jobs.models import Job, State
 from chemicals.journal.models import Entry
 from chemicals.ledger.followed import as_kept, read_followed
-from chemicals.ledger.models import Period
 from chemicals.ledger.periods import BooksBehindError, close_period, reopen_period
 from chemicals.ledger.projection import Names, load_state
 from chemicals.ledger.selectors import get_period_for, get_recomputed_to
@@ -227,27 +226,25 @@ class Office:
         closed = self.books.closed
         assert closed is not None
         last = get_period_for(actor, closed.uuid)
-        said = {"actor": actor, "now": self.now, "key": key, "period": last, "reason": "a drum was forgotten"}
+        self.reopen_named({"actor": actor, "key": key, "period": last, "reason": "a drum was forgotten"}, killed_at)
+
+    def reopen_named(self, said: dict[str, Any], killed_at: int = 0) -> None:
+        """Open a period again, or press the button once more."""
         try:
-            period = self.call(reopen_period, killed_at, **said)
+            period = self.call(reopen_period, killed_at, now=self.now, **said)
         except KilledError:
-            self.leave_unanswered(key, lambda: self.reopen_again(said))
+            self.leave_unanswered(said["key"], lambda: self.reopen_named(said))
             return
-        except DomainError:
-            assert actor.role != Role.OWNER
-            return
-        self.expect_reopened(period)
-
-    def reopen_again(self, said: dict[str, Any]) -> None:
-        """Press the button once more."""
-        self.expect_reopened(reopen_period(**said))
+        except NotPermittedError:
+            assert said["actor"].role != Role.OWNER
+        except InvalidInputError:  # it was not opened, and a later period was closed meanwhile
+            assert said["key"] not in self.books.entries
+            assert self.books.closed is None or self.books.closed.uuid != said["period"].closing.uuid
+        else:
+            assert period.reopening is not None
+            self.done["reopened"] += 1
+            self.books.add(period.reopening)
         self.forget(said["key"])
-
-    def expect_reopened(self, period: Period) -> None:
-        """Note that a period is open."""
-        assert period.reopening is not None
-        self.done["reopened"] += 1
-        self.books.add(period.reopening)
 
     def try_again(self, key: UUID) -> None:
         """Do again what nobody was told about."""
