@@ -44,22 +44,30 @@ def path_of(error: RowError) -> str:
     return f"columns.{error.column}" if error.column else "mapping"
 
 
-def preview_import(member: Membership, now: datetime, upload: Import, chosen: ColumnMap) -> Understood:
-    """Return what the first rows of a file say (of most files these are all), and what is wrong. Writes nothing."""
-    return understand(member, now, read_table(upload), chosen, upload.file.sha256, most=AT_ONCE)
+def preview_import(
+    member: Membership, now: datetime, upload: Import, chosen: ColumnMap, *, whole: bool = False
+) -> Understood:
+    """Return what the first rows of a file say (of most files these are all), and what is wrong. Writes nothing.
+
+    ``whole``: all rows, however many.
+    """
+    most = None if whole else AT_ONCE
+    return understand(member, now, read_table(upload), chosen, upload.file.sha256, most=most)
 
 
-def record_import(*, actor: Membership, now: datetime, upload: Import, chosen: ColumnMap) -> Import:
+def record_import(
+    *, actor: Membership, now: datetime, upload: Import, chosen: ColumnMap, whole: bool = False
+) -> Import:
     """Record all entries of a file, or none and raise RefusedImportError; leave a large file to a job.
 
-    A file that is imported, or about to be, is returned as it is.
+    ``whole``: leave nothing to a job. A file that is imported, or about to be, is returned as it is.
     """
     require_writer(actor)
     require_same_workshop(actor, upload)
     upload = get_import_for(actor, upload.uuid)
     if upload.imported_at is not None or upload.waits:
         return upload
-    understood = preview_import(actor, now, upload, chosen)
+    understood = preview_import(actor, now, upload, chosen, whole=whole)
     try:
         upload = choose_columns(actor=actor, now=now, upload=upload, chosen=chosen)
     except ConflictError:  # somebody else was quicker

@@ -12,7 +12,7 @@ from chemicals.process.importing.columns import VERB, ColumnMap, as_json, fold, 
 from chemicals.process.importing.table import Table, media_type_of, open_table
 from chemicals.process.models import Import
 from chemicals.workshop.errors import ConflictError
-from chemicals.workshop.models import Membership
+from chemicals.workshop.models import Membership, Workshop
 from chemicals.workshop.permissions import require_same_workshop, require_writer
 
 LOOKED_AT = 500
@@ -37,9 +37,12 @@ def read_table(upload: Import) -> Table:
 
 def find_map(upload: Import, table: Table) -> ColumnMap:
     """Return what the columns mean: as it was said of this file, or as headings and the last import suggest."""
-    if upload.mapping:
-        return from_json(upload.mapping)
-    with scope(workshop=upload.workshop):
+    return from_json(upload.mapping) if upload.mapping else guess_map(upload.workshop, table)
+
+
+def guess_map(workshop: Workshop, table: Table) -> ColumnMap:
+    """Return what headings and the workshop's last import suggest."""
+    with scope(workshop=workshop):
         last = Import.objects.exclude(mapping={}).order_by("-changed_at", "-pk").first()
     kept = None if last is None else from_json(last.mapping)
     first = guess(table.headings, kept)

@@ -92,8 +92,8 @@ def test_a_period_that_closes_while_the_job_waits_is_said_on_the_import(shop: Sh
     rows = [f"2026-01-{day},receipt,Jar,1 kg" for day in range(10, 16)]
     left = record(shop, lines("Date,Verb,Vessel,Amount", *rows))
     work(shop)
-    monkey = lines("Date,Verb,Vessel,Amount", *rows, "2026-01-16,receipt,Jar,1 kg")
-    waiting = record(shop, monkey)
+    more = lines("Date,Verb,Vessel,Amount", *rows, "2026-01-16,receipt,Jar,1 kg")
+    waiting = record(shop, more)
     close(shop)
     before = len(entries(shop))
     work(shop)
