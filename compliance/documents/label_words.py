@@ -71,4 +71,6 @@ def merged(sort: LabelSort) -> str:
     """Whose hazards stand on the label."""
     if sort == "tank":
         return _("Hazards of everything poured in since it was last empty, as entered; the mixture may differ.")
-    return _("Hazards as entered for the product; a dilution may differ.")
+    if sort == "bottle":
+        return _("Hazards as entered for the product.")
+    return _("Hazards as entered for what this was taken from; a dilution may differ.")
