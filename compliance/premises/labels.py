@@ -1,6 +1,6 @@
 """What the labels of vessels say, from the books and the register as they stand."""
 
-from collections.abc import Iterator
+from collections.abc import Iterator, Sequence
 from datetime import date
 from typing import Any
 
@@ -8,6 +8,7 @@ from django.conf import settings
 
 from chemicals.science.quantity import show
 from compliance.premises.hazards import list_avoided
+from compliance.premises.received import Received
 from compliance.premises.selectors import Standing, is_stock
 
 TANK_CAUTIONS = (
@@ -22,10 +23,13 @@ SECONDARY_CAUTIONS = (
 """Common practice, all of it."""
 
 
-def build_label(standing: Standing) -> dict[str, Any]:
-    """Return the frozen data of the label of a vessel: of a container of stock, or of anything else as a tank."""
+def build_label(standing: Standing, received: Sequence[Received] = ()) -> dict[str, Any]:
+    """Return the frozen data of the label of a vessel: of a container of stock, or of anything else as a tank.
+
+    ``received`` is what came into a container of stock since it was last empty.
+    """
     bottle = is_stock(standing.vessel)
-    facts = _bottle_facts(standing) if bottle else _tank_facts(standing)
+    facts = _bottle_facts(standing, received) if bottle else _tank_facts(standing)
     return {
         **_common(standing),
         "sort": "bottle" if bottle else "tank",
@@ -94,10 +98,16 @@ def _tank_facts(standing: Standing) -> Iterator[dict[str, str | None]]:
     yield _fact("place", standing.vessel.place.name if standing.vessel.place else None)
 
 
-def _bottle_facts(standing: Standing) -> Iterator[dict[str, str | None]]:
+def _bottle_facts(standing: Standing, received: Sequence[Received]) -> Iterator[dict[str, str | None]]:
     """Yield what is known of a container of stock; what nobody entered is left out."""
     for revision in standing.revisions:
         yield _fact("revision", str(revision.number))
+    lots = ", ".join(dict.fromkeys(each.lot for each in received if each.lot))
+    if lots:
+        yield _fact("lot", lots)
+    days = ", ".join(dict.fromkeys(each.day.isoformat() for each in received))
+    if days:
+        yield _fact("received", days)
     suppliers = dict.fromkeys(row.product.supplier for row in standing.revisions if row.product.supplier)
     yield from (_fact("supplier", supplier) for supplier in suppliers)
     if standing.vessel.place:

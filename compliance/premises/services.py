@@ -22,6 +22,7 @@ from compliance.premises.chemicals import build_list
 from compliance.premises.emergency import build_sheet
 from compliance.premises.labels import build_decanted_label, build_label
 from compliance.premises.models import ChosenRule
+from compliance.premises.received import list_received
 from compliance.premises.rules import find_rule
 from compliance.premises.selectors import list_standing_for, require_chosen_rule
 
@@ -55,7 +56,9 @@ def issue_labels(
 
     def build() -> dict[str, Any]:
         found = {each.vessel.uuid: each for each in list_standing_for(actor, [vessel.uuid for vessel in vessels])}
-        labels = [build_label(found[vessel.uuid]) for vessel in vessels for _copy in range(copies)]
+        received = list_received(actor, vessels)
+        said = [build_label(found[vessel.uuid], received.get(str(vessel.uuid), ())) for vessel in vessels]
+        labels = [label for label in said for _copy in range(copies)]
         return {"labels": labels, "stock": sheet.name, "start": start}
 
     return issue_paper(actor=actor, now=now, key=key, kind=PaperKind.LABELS, build=build, paper_size=sheet.page)

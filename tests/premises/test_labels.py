@@ -92,8 +92,21 @@ def test_a_rinse_that_was_dragged_into_carries_the_hazards_of_the_bath(filled: S
 def test_a_bottle_says_its_product_and_its_revision(filled: Shop) -> None:
     said = label(filled, "Acid bottle")
     assert (said["sort"], said["contents"]) == ("bottle", "Sulfuric acid")
-    assert facts(said) == {"revision": "1", "supplier": "Anyone", "place": "Bench"}
+    assert facts(said) == {"revision": "1", "received": "2026-02-21", "supplier": "Anyone", "place": "Bench"}
     assert said["url"] == f"http://bench.local:8000/c/{said['code']}"
+
+
+def test_a_bottle_says_the_lots_and_the_days_since_it_was_last_empty(filled: Shop) -> None:
+    filled.record("count", days_ago=7, vessel="Jar 3", amount="0 g")
+    filled.record("receipt", days_ago=6, vessel="Jar 3", amount="100 g", lot="B-1")
+    mistake = filled.record("receipt", days_ago=5, label="mistake", vessel="Jar 3", amount="100 g", lot="B-2")
+    filled.record("receipt", days_ago=4, vessel="Jar 3", amount="100 g", lot="B-3 µ")
+    said = facts(label(filled, "Jar 3"))
+    assert (said["lot"], said["received"]) == ("B-1, B-2, B-3 µ", "2026-02-24, 2026-02-25, 2026-02-26")
+    filled.record("cancellation", entry="mistake", reason="never came")
+    said = facts(label(filled, "Jar 3"))
+    assert (said["lot"], said["received"]) == ("B-1, B-3 µ", "2026-02-24, 2026-02-26")
+    assert mistake.kind == "receipt"
 
 
 def test_a_jar_that_nothing_was_received_into_says_what_it_is_for(shop: Shop) -> None:
