@@ -67,6 +67,7 @@ def _build(said: RevisionInput) -> ProductRevision:
         transport_class=said.transport_class,
         packing_group=said.packing_group,
         transport_unclassified=said.transport_unclassified,
+        supplier_telephone=said.supplier_telephone,
         safety_data_sheet=said.safety_data_sheet,
         sheet_language=said.sheet_language,
         sheet_date=said.sheet_date,

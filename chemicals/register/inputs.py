@@ -48,6 +48,7 @@ class RevisionInput:
     transport_class: str = ""
     packing_group: str = ""
     transport_unclassified: bool = False
+    supplier_telephone: str = ""
     safety_data_sheet: Attachment | None = None
     sheet_language: str = ""
     sheet_date: date | None = None

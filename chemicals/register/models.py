@@ -89,6 +89,7 @@ class ProductRevision(models.Model):
     transport_class = models.CharField(_("class for transport"), max_length=40, blank=True)
     packing_group = models.CharField(_("packing group"), max_length=3, blank=True)
     transport_unclassified = models.BooleanField(_("not classified for transport"), default=False)
+    supplier_telephone = models.CharField(_("supplier's telephone"), max_length=60, blank=True)
     safety_data_sheet = models.ForeignKey(Attachment, null=True, blank=True, on_delete=models.PROTECT, related_name="+")
     sheet_language = models.CharField(_("language of the sheet"), max_length=35, blank=True)
     sheet_date = models.DateField(_("revision date of the sheet"), null=True, blank=True)

@@ -110,5 +110,7 @@ def _bottle_facts(standing: Standing, received: Sequence[Received]) -> Iterator[
         yield _fact("received", days)
     suppliers = dict.fromkeys(row.product.supplier for row in standing.revisions if row.product.supplier)
     yield from (_fact("supplier", supplier) for supplier in suppliers)
+    numbers = dict.fromkeys(row.supplier_telephone for row in standing.revisions if row.supplier_telephone)
+    yield from (_fact("supplier's telephone", number) for number in numbers)
     if standing.vessel.place:
         yield _fact("place", standing.vessel.place.name)

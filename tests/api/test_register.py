@@ -51,7 +51,8 @@ def test_everything_on_a_sheet_comes_back_as_it_was_said(api: Caller, shop: Shop
     whole = {"kind": "danger", "value": "50 ppm", "source": "invented list"}
     kept = {
         "gloves": "Nitrile", "un_number": "1830", "shipping_name": "SULPHURIC ACID", "transport_class": "8 (6.1)",
-        "packing_group": "II", "sheet_language": "de-AT", "hazard_classes": ["Skin Corr. 1A"],
+        "packing_group": "II", "sheet_language": "de-AT", "supplier_telephone": "000 222",
+        "hazard_classes": ["Skin Corr. 1A"],
         "statements": ["H314", "P280 Wear gloves"], "signal_word": "Danger", "pictograms": ["GHS05"],
     }  # fmt: skip
     said = {"name": "Acid", "form": "liquid", "ph_floor": "3.5", "limits": [limit, whole], **kept}

@@ -32,6 +32,7 @@ ACID = {
     "pictograms": ("GHS05",),
     "statements": ("H314 Causes severe skin burns and eye damage.", "EUH014 Reacts violently with water.", "P280"),
     "un_number": "1830",
+    "supplier_telephone": "+49 000 222",
     "transport_class": "8",
     "packing_group": "II",
 }

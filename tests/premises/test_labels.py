@@ -92,7 +92,13 @@ def test_a_rinse_that_was_dragged_into_carries_the_hazards_of_the_bath(filled: S
 def test_a_bottle_says_its_product_and_its_revision(filled: Shop) -> None:
     said = label(filled, "Acid bottle")
     assert (said["sort"], said["contents"]) == ("bottle", "Sulfuric acid")
-    assert facts(said) == {"revision": "1", "received": "2026-02-21", "supplier": "Anyone", "place": "Bench"}
+    assert facts(said) == {
+        "revision": "1",
+        "received": "2026-02-21",
+        "supplier": "Anyone",
+        "supplier's telephone": "+49 000 222",
+        "place": "Bench",
+    }
     assert said["url"] == f"http://bench.local:8000/c/{said['code']}"
 
 

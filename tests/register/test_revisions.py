@@ -63,6 +63,7 @@ SHEET = {
     "transport_class": "8 (6.1)",
     "packing_group": "II",
     "sheet_language": "de-at",
+    "supplier_telephone": " +49 000 222 ",
 }
 
 
@@ -72,6 +73,7 @@ def test_what_stands_on_the_sheet_is_kept(worker: Membership, now: datetime, sal
     assert (made.ph_floor, made.hazard_classes) == (3500, ["Skin Corr. 1B", "Met. Corr. 1"])
     assert (made.statements, made.pictograms) == (["H314", "H290", "P280 Wear gloves"], ["GHS05"])
     assert (made.gloves, made.sheet_language) == ("Nitrile\n0.4 mm", "de-AT")
+    assert made.supplier_telephone == "+49 000 222"
     transport = (made.un_number, made.shipping_name, made.transport_class, made.packing_group)
     assert transport == ("1760", "CORROSIVE LIQUID, N.O.S.", "8 (6.1)", "II")
     assert made.contradictions == ()

@@ -46,6 +46,7 @@ def said(salt: Substance, **changes: object) -> dict[str, object]:
         "transport_class": "9",
         "packing_group": "III",
         "sheet_language": "de-at",
+        "supplier_telephone": "+49 000 222",
         **changes,
     }
 
@@ -99,7 +100,7 @@ def test_the_next_revision_begins_with_all_of_this_one(visit: Visitor, salt: Sub
     visit.post("revise-product", product.uuid, **again, ph_floor="pH 3.5")
     with scopes_disabled():
         first, second = ProductRevision._base_manager.order_by("number")
-    kept = ("ph_floor", "hazard_classes", "statements", "gloves", "un_number", "transport_class", "sheet_language")
+    kept = ("ph_floor", "hazard_classes", "statements", "gloves", "un_number", "sheet_language", "supplier_telephone")
     assert [getattr(first, name) for name in kept] == [getattr(second, name) for name in kept]
 
 

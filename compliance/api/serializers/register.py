@@ -169,6 +169,7 @@ class RevisionShape(Shape):
     transport_unclassified = serializers.BooleanField(
         help_text=_("Whether the sheet says that it is not classified for transport.")
     )
+    supplier_telephone = serializers.CharField(help_text=_("The supplier's telephone, as in section 1 of the sheet."))
     safety_data_sheet = serializers.CharField(
         source="safety_data_sheet.sha256",
         default=None,
@@ -264,6 +265,9 @@ class RevisionInput(Strict):
     )
     transport_unclassified = Flag(
         required=False, help_text=_("True if the sheet says that it is not classified for transport.")
+    )
+    supplier_telephone = Text(
+        required=False, allow_blank=True, max_length=60, help_text=_("As in section 1 of the sheet; for labels.")
     )
     safety_data_sheet = Text(
         required=False, allow_null=True, max_length=64, help_text=_("SHA-256 of a PDF uploaded to attachments.")

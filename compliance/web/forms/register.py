@@ -172,7 +172,7 @@ class RevisionForm(HazardForm):
             ("un_number", "shipping_name", "transport_class", "packing_group", "transport_unclassified"),
             folded=True,
         ),
-        Group("sheet", _("The sheet itself"), ("sheet", "sheet_language", "sheet_date")),
+        Group("sheet", _("The sheet itself"), ("sheet", "sheet_language", "sheet_date", "supplier_telephone")),
     )
     form = WordField(Form.choices, label=_("Physical form"))
     density = LineField(
@@ -208,6 +208,12 @@ class RevisionForm(HazardForm):
             label=_("Language of the sheet"), required=False, max_length=35, help_text=_("By its tag: de, en, fr-CH.")
         )
         self.fields["sheet_date"] = DayField(label=_("Revision date of the sheet"), required=False)
+        self.fields["supplier_telephone"] = LineField(
+            label=_("Supplier's telephone"),
+            required=False,
+            max_length=60,
+            help_text=_("As in section 1 of the sheet; printed on the labels of its containers."),
+        )
 
     def to_revision(self, sheet: Any) -> RevisionInput:
         """Return the revision with its kept sheet."""
@@ -226,6 +232,7 @@ class RevisionForm(HazardForm):
             safety_data_sheet=sheet,
             sheet_language=cleaned["sheet_language"],
             sheet_date=cleaned["sheet_date"],
+            supplier_telephone=cleaned["supplier_telephone"],
             **{name: cleaned[name] for name in as_typed},
             **self.hazards(),
         )
@@ -256,7 +263,7 @@ class ProductForm(RevisionForm):
 def start_from(revision: ProductRevision) -> dict[str, Any]:
     """Return the first values of a form for the next revision: those of this one."""
     as_kept = ("form", "complete", "signal_word", "pictograms", "reactivity", "gloves", *TRANSPORT)
-    more = ("transport_unclassified", "sheet_language", "sheet_date")
+    more = ("transport_unclassified", "sheet_language", "sheet_date", "supplier_telephone")
     return {
         "initial": {
             **{name: getattr(revision, name) for name in (*as_kept, *more)},

@@ -73,6 +73,7 @@ COLUMNS = (
     Column("transport class", lambda row: row.transport_class),
     Column("packing group", lambda row: row.packing_group),
     Column("not classified for transport", lambda row: "yes" if row.transport_unclassified else "no"),
+    Column("supplier's telephone", lambda row: row.supplier_telephone),
     Column("sheet language", lambda row: row.sheet_language),
     Column("sheet date", lambda row: row.sheet_date),
     Column("sheet sha256", lambda row: row.safety_data_sheet.sha256 if row.safety_data_sheet else None),
