@@ -6,6 +6,7 @@ from typing import Any
 from uuid import uuid4
 
 import pytest
+from django.core.files.uploadedfile import SimpleUploadedFile
 
 from chemicals.workshop.models import Membership
 from compliance.dropoffs.services import create_drop_off
@@ -186,6 +187,11 @@ def add_period(api: Caller, shop: Shop, number: int) -> None:
     api.post("periods/", {"until": f"2026-02-0{number + 1}"}, key=uuid4())
 
 
+def add_import(api: Caller, shop: Shop, number: int) -> None:
+    file = SimpleUploadedFile(f"book {number}.csv", f"Date,What,Vessel\n2026-01-0{number + 1},move,Bath".encode())
+    api.client.post(api.path("imports/"), {"file": file}, format="multipart")
+
+
 def add_paper(api: Caller, shop: Shop, number: int) -> None:
     api.post(f"waste-containers/{shop.drum.vessel.uuid}/label", key=uuid4())
 
@@ -196,6 +202,7 @@ LISTS = {
     "rack-types/": (add_rack_type, 1), "routes/": (add_route, 2), "entries/": (add_entry, 3),
     "waste-streams/": (add_stream, 1), "waste-containers/": (add_container, 2), "receivers/": (add_receiver, 1),
     "drop-offs/": (add_drop_off, 2), "periods/": (add_period, 1), "papers/": (add_paper, 1),
+    "imports/": (add_import, 1),
 }  # fmt: skip
 """How to add one row to each list, and how many queries its page takes besides the one that reads the token."""
 

@@ -47,3 +47,4 @@ def test_the_owner_compares_two_dates_closes_a_period_and_opens_it_again(
     page.get_by_role("button", name="Open it again").click()
     page.get_by_text("superseded").first.wait_for()
     visitor.check_page()
+    assert "superseded" in page.get_by_role("main").inner_text()
