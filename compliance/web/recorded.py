@@ -11,8 +11,9 @@ from chemicals.books import events
 from chemicals.ledger.components import dimension_of, dimension_per_litre
 from chemicals.science.quantity import pretty
 from chemicals.science.units import find_elsewhere
+from compliance.documents.words import grouped
 from compliance.web.words import Ends, component_name, in_one_unit, moment
-from compliance.web.words.fields import DIMENSIONS, LABELS, ORDER
+from compliance.web.words.fields import DIMENSIONS, LABELS, place_of
 
 REFERENCES = ("entry", "analysis", "closing")
 """Fields that hold the identifier of another entry."""
@@ -34,6 +35,7 @@ class Told:
     label: str
     text: str
     source: str = ""
+    is_hash: bool = False
 
 
 class Teller:
@@ -56,7 +58,7 @@ class Teller:
 
     def tell_all(self, part: Payload) -> Iterator[Told]:
         """Yield the lines of all fields of a part."""
-        for name in sorted(part, key=_place):
+        for name in sorted(part, key=place_of):
             yield from self.tell(name, part[name])
 
     def tell(self, name: str, value: Any) -> Iterator[Told]:
@@ -65,6 +67,8 @@ class Teller:
             return
         if name in TELLERS:
             yield from TELLERS[name](self, value)
+        elif name.endswith("sha256"):
+            yield Told(label_of(name), grouped(value), is_hash=True)
         elif name == "route" or not isinstance(value, Mapping | list):
             yield Told(label_of(name), self.word(name, value))
         elif isinstance(value, Mapping):
@@ -95,7 +99,7 @@ class Teller:
         if not isinstance(row, Mapping):
             return Told(label, self.word(name, row))
         component = row.get("component", "")
-        parts = [(inner, row[inner]) for inner in sorted(row, key=_place) if row[inner] is not None]
+        parts = [(inner, row[inner]) for inner in sorted(row, key=place_of) if row[inner] is not None]
         said = [self.word(inner, value) for inner, value in parts if not isinstance(value, Mapping)]
         figures = [
             self.figure("", inner, value, component).text for inner, value in parts if isinstance(value, Mapping)
@@ -128,10 +132,6 @@ def label_of(name: str, number: int | None = None) -> str:
     return label if number is None else f"{label} {number}"
 
 
-def _place(name: str) -> int:
-    return ORDER.get(name, len(ORDER))
-
-
 def _flag(name: str, *, value: bool) -> str:
     if name == "solid":
         return _("solid") if value else _("liquid")
@@ -158,13 +158,23 @@ def _tell_drag_out(teller: Teller, value: Any) -> Iterator[Told]:
             yield teller.figure(f"{label}, {label_of('racks')} {number}" if several else label, "drag_out", figure)
 
 
-def _tell_plating(teller: Teller, value: Any) -> Iterator[Told]:
+def _tell_deposit(teller: Teller, value: Any) -> Iterator[Told]:
     yield from teller.tell_all(value)
+
+
+def _tell_plating(teller: Teller, value: Any) -> Iterator[Told]:
+    """Yield what plates first, then what grows on racks, then what else the current does."""
+    yield from teller.tell_all(value["deposit"])
+    yield from teller.tell("anode", value["anode"])
+    if value["racks"] is not None:
+        yield Told(_("rack build-up"), teller.ends.name(value["racks"]))
+    yield from teller.tell("rack_share", value["rack_share"])
+    yield from teller.tell("conversions", value["conversions"])
 
 
 def _tell_platings(teller: Teller, value: Any) -> Iterator[Told]:
     for charge, plating in zip(teller.both["charges"], value, strict=True):
-        for line in teller.tell_all(plating):
+        for line in _tell_plating(teller, plating):
             yield replace(line, label=f"{teller.ends.name(charge['bath'])}, {line.label}")
 
 
@@ -202,7 +212,7 @@ def _tell_dissolved(teller: Teller, value: Any) -> Iterator[Told]:
 TELLERS: Mapping[str, Callable[[Teller, Any], Iterator[Told]]] = {
     "drag_out": _tell_drag_out,
     "plating": _tell_plating,
-    "deposit": _tell_plating,
+    "deposit": _tell_deposit,
     "platings": _tell_platings,
     "conversions": _tell_conversions,
     "recipe": _tell_recipe,

@@ -76,6 +76,17 @@ def test_a_finding_says_where_and_of_what() -> None:
     assert said.startswith("Copper bath, copper: The books hold less than nothing here")
 
 
+def test_findings_that_are_the_same_at_the_same_place_are_one_sentence() -> None:
+    found = [Finding("unknown-amount", code, "a", "b") for code in ("Cu", "volume")]
+    found += [Finding("unknown-amount", "Cu", "b", "parts"), Finding("unknown-contents", "", "a", "b")]
+    said = words.findings(found, ENDS)
+    assert [sentence.partition(":")[0] for sentence in said] == [
+        "Copper bath → Rinse, copper, liquid",
+        "Rinse → parts, copper",
+        "Copper bath → Rinse, anything else",
+    ]
+
+
 def test_a_day_is_shown_as_a_day() -> None:
     noon = datetime(2026, 3, 2, 11, 0, tzinfo=UTC)
     with timezone.override("Europe/Berlin"):

@@ -41,7 +41,9 @@ class EntriesForm(Shown):
             "component": WordField(components, label=_("Metal or substance"), empty=_("all"), **optional),
             "person": ThingField(people, label=_("Recorded by"), empty=_("everybody"), **optional),
             "verdict": WordField(VERDICTS.items(), label=_("May this be done?"), empty=_("any answer"), **optional),
-            "text": LineField(label=_("Words in parts, lot, receiver or reason"), max_length=80, **optional),
+            "text": LineField(
+                label=_("Words"), help_text=_("In parts, lot, receiver or reason."), max_length=80, **optional
+            ),
             "findings": FlagField(label=_("only with findings")),
             "cancelled": FlagField(label=_("only cancelled ones")),
         }

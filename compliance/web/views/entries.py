@@ -120,7 +120,7 @@ def _followed(member: Membership, found: Entry, body: Body, ends: Ends) -> dict[
     recomputing = get_recomputed_to(member.workshop)
     return {
         "follows": words.Follows.from_event(event, list_transfers_of(found), ends),
-        "findings": [words.finding(each, ends) for each in list_findings_for(member).filter(entry=found)],
+        "findings": words.findings(list_findings_for(member).filter(entry=found).order_by("pk"), ends),
         "pending": recomputing is not None and recomputing.until <= found.occurred_at,
     }
 

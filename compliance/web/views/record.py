@@ -79,7 +79,7 @@ def _preview(request: HttpRequest, form: RecordForm, status: int = 200) -> HttpR
         "form": form,
         "answer": verdict.answer,
         "follows": words.Follows.of(folded.transfers, ends),
-        "findings": [words.finding(each, ends) for each in folded.findings],
+        "findings": words.findings(folded.findings, ends),
         "pairs": hidden_pairs(request.POST, without=("csrfmiddlewaretoken", "step", "more")),
     }
     return show(request, member, "web/preview.html", status=status, **context)

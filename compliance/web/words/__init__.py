@@ -11,7 +11,7 @@ from compliance.web.words.amounts import (
 from compliance.web.words.ends import BOUNDARIES, Ends, end_name
 from compliance.web.words.kinds import BASES, KINDS, VERDICTS, verb_of
 from compliance.web.words.moments import moment
-from compliance.web.words.sentences import Follows, finding, movement, went
+from compliance.web.words.sentences import Follows, finding, findings, movement, went
 
 __all__ = [
     "BASES",
@@ -25,6 +25,7 @@ __all__ = [
     "component_name",
     "end_name",
     "finding",
+    "findings",
     "in_one_unit",
     "moment",
     "movement",

@@ -86,6 +86,15 @@ LABELS = {
 
 ORDER = {name: place for place, name in enumerate(LABELS)}
 
+BESIDE = {"recipe": "product", "plating": "metal", "platings": "metal", "deposit": "metal", "dissolved": "drag_out"}
+"""Fields without a name of their own, and in whose place they are told."""
+
+
+def place_of(name: str) -> int:
+    """Return in which place a field is told; one that nobody foresaw comes last."""
+    return ORDER.get(BESIDE.get(name, name), len(ORDER))
+
+
 DIMENSIONS = {
     "volume": "volume",
     "mass": "mass",

@@ -1,6 +1,6 @@
 """What follows from an entry as sentences: movements and findings."""
 
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Iterable, Sequence
 from dataclasses import dataclass
 
 from django.utils.translation import gettext as _
@@ -98,5 +98,15 @@ class Follows:
 
 def finding(found: Finding | FoundBefore, ends: Ends) -> str:
     """Return a finding as a sentence that says where and of what."""
-    places = list(dict.fromkeys(ends.name(end) for end in (found.source, found.target) if end))
-    return f"{' → '.join(places)}, {component_name(found.component)}: {_(FINDINGS[found.code])}"
+    return findings([found], ends)[0]
+
+
+def findings(found: Iterable[Finding | FoundBefore], ends: Ends) -> list[str]:
+    """Return findings as sentences that say where and of what: one for all that is the same at the same place."""
+    together: dict[tuple[str, str, str], list[str]] = {}
+    for each in found:
+        together.setdefault((each.source, each.target, each.code), []).append(component_name(each.component))
+    return [
+        f"{ends.names(list(dict.fromkeys(filter(None, (source, target)))))}, {', '.join(names)}: {_(FINDINGS[code])}"
+        for (source, target, code), names in together.items()
+    ]
