@@ -16,12 +16,14 @@ from chemicals.books.fold.state import Holding, State
 from chemicals.books.occurred import Occurred
 from chemicals.journal.models import Entry
 from chemicals.journal.services import add_attachment
+from chemicals.ledger.selectors import Recomputing
 from chemicals.process.inputs import AnalysisInput, LevelInput
 from chemicals.science.quantity import parse
 from chemicals.workshop.models import Membership
 from compliance.clearance.services import record
 from compliance.web import words
 from compliance.web.recorded import Teller
+from compliance.web.views import entries as entries_page
 from compliance.web.words import Ends
 from compliance.web.words.reasons import REASONS, reason
 from tests.books import examples
@@ -227,6 +229,17 @@ def test_an_entry_has_its_place_in_the_chain_and_in_time(
     assert bytes(late.previous_hash).hex()[:4] in chain
     assert "none: it is the first one" in page_of(visit, first)
     assert visit.address("entry", late.uuid) in page_of(visit, first)
+
+
+def test_while_the_books_are_worked_out_anew_the_page_says_so(
+    visit: Visitor, filled: Line, now: datetime, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    entry, words_of_it = Entry._base_manager.get(kind="drum off"), "The books are being worked out anew"
+    assert words_of_it not in page_of(visit, entry)
+    for until, told in ((now - timedelta(days=1), True), (now + timedelta(days=1), False)):
+        recomputing = Recomputing(until, uuid4(), done=1, total=2, failed=False)
+        monkeypatch.setattr(entries_page, "get_recomputed_to", lambda workshop, found=recomputing: found)
+        assert (words_of_it in page_of(visit, entry)) is told
 
 
 def test_files_of_an_entry_are_named_with_their_hash(visit: Visitor, owner: Membership, now: datetime) -> None:
