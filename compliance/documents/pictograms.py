@@ -271,10 +271,24 @@ def parts(code: Pictogram) -> tuple[Part, ...]:
 
 
 def draw_pictogram(canvas: Any, code: Pictogram, at: tuple[float, float], diagonal: float) -> None:
-    """Draw the diamond in a square of `diagonal` points whose lower left corner is `at`."""
+    """Draw the diamond in a square of `diagonal` points whose lower left corner is `at`.
+
+    A document holds each symbol once; every further one is a reference to it.
+    """
+    if not canvas.hasForm(code):
+        canvas.beginForm(code, 0, 0, 100, 100)
+        _draw_parts(canvas, code)
+        canvas.endForm()
     scale = diagonal / 100
     canvas.saveState()
-    canvas.transform(scale, 0, 0, -scale, at[0], at[1] + diagonal)
+    canvas.transform(scale, 0, 0, scale, *at)
+    canvas.doForm(code)
+    canvas.restoreState()
+
+
+def _draw_parts(canvas: Any, code: Pictogram) -> None:
+    """Draw in a box of 100 x 100 with y upwards, as PDF counts."""
+    canvas.transform(1, 0, 0, -1, 0, 100)
     canvas.setLineCap(1)
     canvas.setLineJoin(1)
     for part in parts(code):
@@ -284,7 +298,6 @@ def draw_pictogram(canvas: Any, code: Pictogram, at: tuple[float, float], diagon
         canvas.drawPath(
             _pdf_path(canvas, part.path), stroke=int(part.stroke > 0), fill=int(not part.stroke), fillMode=1
         )
-    canvas.restoreState()
 
 
 def _pdf_path(canvas: Any, path: str) -> Any:

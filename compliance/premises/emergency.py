@@ -27,6 +27,7 @@ from compliance.premises.selectors import Standing, group_by_place, is_stock, li
 from compliance.waste.label import name_of, show_held
 
 CAUTIONS = ("Acid and cyanide never in one bund, drain or duct: together they give a gas that kills within minutes.",)
+_KINDS = dict(VesselKind.choices)  # looked up once: a choice field makes them anew for each row
 IN_WATER = (VesselKind.BATH, VesselKind.RINSE)
 """Kinds of vessels whose contents have met water already."""
 
@@ -90,7 +91,7 @@ def _thing(standing: Standing) -> dict[str, Any]:
     return {
         "name": vessel.name,
         "code": vessel.code,
-        "kind": str(vessel.get_kind_display()),
+        "kind": str(_KINDS[vessel.kind]),
         "contents": contents_of(standing),
         "amount": amount.text,
         "doubt": amount.doubt,

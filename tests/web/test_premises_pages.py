@@ -128,6 +128,19 @@ def test_page_and_paper_say_the_same(visit: Visitor, filled: Line) -> None:
             assert (thing["amount"] or "amount unknown") in page
 
 
+def test_a_long_page_is_cut_and_what_must_never_meet_is_not(
+    visit: Visitor, filled: Line, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    monkeypatch.setattr("compliance.web.views.premises.PER_PAGE", 2)
+    first, second, third = (text_of(visit.get("emergency", query=f"?page={number}")) for number in (1, 2, 3))
+    assert [page.count('class="line"') for page in (first, second, third)] == [2, 2, 1]
+    names = ("Copper bath", "Acid bottle", "Drum 7", "Salt tub", "Rinse")
+    assert all(any(f">{name}</a>" in page for page in (first, second, third)) for name in names)
+    assert "Further" in first
+    assert "Before" in third
+    assert len(re.findall("<h2>How much of which hazard", first + second + third)) == 3
+
+
 def test_a_wrong_paper_size_is_told_on_the_page(visit: Visitor, filled: Line) -> None:
     answer = visit.post("emergency", key=uuid4(), paper_size="A7")
     assert answer.status_code == 400

@@ -1,7 +1,8 @@
 """What stands where: labels of vessels, the emergency sheet, the list of chemicals."""
 
-from collections.abc import Sequence
+from collections.abc import Iterable, Sequence
 from functools import partial
+from itertools import groupby
 from typing import Any
 from uuid import UUID, uuid4
 
@@ -14,7 +15,7 @@ from django.utils.translation import gettext as _
 from chemicals.ledger.selectors import get_recomputed_to, get_vessel_for
 from chemicals.workshop.models import Membership
 from chemicals.workshop.permissions import require_owner, require_writer
-from compliance.documents.emergency_words import follow_the_fire_brigade
+from compliance.documents.emergency_words import follow_the_fire_brigade, together
 from compliance.documents.models import Paper, PaperKind
 from compliance.documents.register_words import ask_about_list, columns_after, list_column, list_is_no_verdict
 from compliance.documents.selectors import list_papers_for
@@ -125,6 +126,7 @@ def emergency(request: HttpRequest, member: Membership) -> HttpResponseBase:
     said = build_sheet(member)
     rows = [(place, thing) for place in said["places"] for thing in place["things"]]
     file = wanted_file(request, things=(THING_COLUMNS, lambda: rows))
+    listed = Paginator(rows, PER_PAGE).get_page(request.GET.get("page"))
     whole = {"workshop": {"name": workshop.name, "telephone": workshop.telephone}, **said}
     return file or fill_in(
         request,
@@ -133,11 +135,19 @@ def emergency(request: HttpRequest, member: Membership) -> HttpResponseBase:
         act,
         template="web/emergency.html",
         here="register",
-        premises=describe_premises(whole),
+        premises=describe_premises({**whole, "places": _regroup(listed)}),
+        together=together(whole),  # type: ignore[arg-type]
+        listed=listed,
         follow=follow_the_fire_brigade(),
         recomputing=get_recomputed_to(workshop),
         papers=_papers(member, PaperKind.EMERGENCY),
     )
+
+
+def _regroup(rows: Iterable[tuple[dict[str, Any], dict[str, Any]]]) -> list[dict[str, Any]]:
+    """Return the places of some rows, each with its things among them."""
+    grouped = groupby(rows, key=lambda row: id(row[0]))
+    return [{**pairs[0][0], "things": [thing for _, thing in pairs]} for pairs in (list(some) for _, some in grouped)]
 
 
 @page("GET", "POST")
