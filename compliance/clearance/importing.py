@@ -34,6 +34,7 @@ class RefusedImportError(InvalidInputError):
 
     def __init__(self, understood: Understood) -> None:
         super().__init__([FieldError(path_of(error), error.message) for error in understood.errors])
+        self.args = (f"What is wrong: {understood.wrong}. Nothing was recorded.",)
         self.understood = understood
 
 

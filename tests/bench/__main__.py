@@ -12,13 +12,19 @@ django.setup()
 from django.db import connection
 from django.test.utils import setup_databases, teardown_databases
 
-from tests.bench import balances, entries, late, queries
+from tests.bench import balances, entries, imports, late, queries
 
 if __name__ == "__main__":
     old = setup_databases(verbosity=0, interactive=False)
     try:
         print(f"engine: {connection.vendor}")
-        missed = [*entries.measure(), *late.measure(), *queries.measure(), *balances.measure()]
+        missed = [
+            *entries.measure(),
+            *imports.measure(),
+            *late.measure(),
+            *queries.measure(),
+            *balances.measure(),
+        ]
     finally:
         teardown_databases(old, verbosity=0)
     for line in missed:

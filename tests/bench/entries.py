@@ -2,14 +2,15 @@
 
 import time
 from collections.abc import Iterator
-from typing import Any
 
-from django.db import connection, transaction
+from django.db import transaction
 from django_scopes import scopes_disabled
 
+from tests.bench.copies import copy_table, insert_rows, read_rows
 from tests.bench.scenario import make_bench
 
 COUNT = 300
+PREFIX = "bench"
 TABLES = ("journal_entry", "ledger_posting", "ledger_content")
 
 
@@ -31,44 +32,13 @@ def measure() -> Iterator[str]:
 
 def _replay(entries: list[int]) -> float:
     """Insert copies of the rows of each entry into bare copies of the tables; return entries per second."""
-    rows = {entry: [(table, *_rows_of(table, entry)) for table in TABLES] for entry in entries}
+    keys = {table: "id" if table == "journal_entry" else "entry_id" for table in TABLES}
+    rows = {pk: [(table, read_rows(table, f"{key} = %s", [pk])) for table, key in keys.items()] for pk in entries}
     for table in TABLES:
-        _copy_table(table)
+        copy_table(table, PREFIX)
     started = time.perf_counter()
     for parts in rows.values():
-        with transaction.atomic(), connection.cursor() as cursor:
-            for table, names, values in parts:
-                marks = ", ".join(["%s"] * len(names))
-                cursor.executemany(f"INSERT INTO bench_{table} ({', '.join(names)}) VALUES ({marks})", values)
+        with transaction.atomic():
+            for table, content in parts:
+                insert_rows(table, PREFIX, content)
     return len(rows) / (time.perf_counter() - started)
-
-
-def _copy_table(table: str) -> None:
-    """Make a bare copy with the same columns, constraints and indexes, but no triggers."""
-    like = f"CREATE TABLE bench_{table} (LIKE {table} INCLUDING INDEXES)"
-    if connection.vendor == "sqlite":
-        with connection.cursor() as reader:
-            reader.execute(
-                "SELECT sql FROM sqlite_master WHERE tbl_name = %s AND sql IS NOT NULL AND type <> 'trigger'", [table]
-            )
-            statements = [row[0] for row in reader.fetchall()]
-        for statement in statements:
-            with connection.cursor() as writer:
-                writer.execute(_renamed(statement, table))
-        return
-    with connection.cursor() as writer:
-        writer.execute(like)
-
-
-def _renamed(statement: str, table: str) -> str:
-    fresh = statement.replace(f'"{table}"', f'"bench_{table}"')
-    for kind in ("INDEX ", "UNIQUE INDEX "):
-        fresh = fresh.replace(f'CREATE {kind}"', f'CREATE {kind}"bench_')
-    return fresh
-
-
-def _rows_of(table: str, entry: int) -> tuple[list[str], list[tuple[Any, ...]]]:
-    key = "id" if table == "journal_entry" else "entry_id"
-    with connection.cursor() as cursor:
-        cursor.execute(f"SELECT * FROM {table} WHERE {key} = %s", [entry])
-        return [column[0] for column in cursor.description or ()], list(cursor.fetchall())
