@@ -75,7 +75,7 @@ def test_missing_triggers_are_named() -> None:
 
 
 def run_check(data: Path, **variables: str) -> "subprocess.CompletedProcess[str]":
-    ours = ("DATABASE_URL", "DJANGO_SETTINGS_MODULE", "BIND", "REDIS_URL")
+    ours = ("DATABASE_URL", "DJANGO_SETTINGS_MODULE", "DJANGO_ALLOW_ASYNC_UNSAFE", "BIND", "REDIS_URL")
     outer = {name: value for name, value in os.environ.items() if name not in ours}
     variables = outer | {"GRAMLEDGER_DATA": str(data), "PUBLIC_URL": "https://gramledger.example.org"} | variables
     command = [sys.executable, "manage.py", "check", "--deploy", "--fail-level", "WARNING"]
