@@ -54,6 +54,8 @@ def _database(url: str) -> dict[str, object]:
         "HOST": parts.hostname or "",
         "PORT": str(parts.port or ""),
         "CONN_MAX_AGE": 60,
+        # a cursor of the server that is collected as garbage while its connection waits locks its own thread for ever
+        "DISABLE_SERVER_SIDE_CURSORS": True,
     }
 
 
