@@ -62,7 +62,7 @@ class Attachment(models.Model):
     workshop = models.ForeignKey(Workshop, on_delete=models.PROTECT, related_name="attachments")
     sha256 = models.CharField(max_length=64)
     name = models.CharField(max_length=200)
-    media_type = models.CharField(max_length=60)
+    media_type = models.CharField(max_length=100)
     size = models.BigIntegerField()
     added_at = models.DateTimeField()
     added_by = models.ForeignKey(Membership, on_delete=models.PROTECT, related_name="+")
