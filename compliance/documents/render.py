@@ -19,6 +19,9 @@ from compliance.documents.twin import twin_context
 from compliance.documents.vessel_label import draw_labels
 from compliance.documents.words import paper_title
 
+_IN_MILLIMETRES = ("waste-label", "labels")
+"""Papers that must not be scaled to fit the page: they lie on label stock."""
+
 
 def render_pdf(kind: str, data: dict[str, Any], *, paper_size: PaperSize) -> bytes:
     """Draw the paper. Raises a `PaperError`: wrong shape, a character without a drawing, text that does not fit."""
@@ -34,6 +37,8 @@ def render_pdf(kind: str, data: dict[str, Any], *, paper_size: PaperSize) -> byt
     canvas.setTitle(paper_title(kind, data))
     canvas.setAuthor(data["workshop"]["name"])
     canvas.setProducer("Gramledger")
+    if kind in _IN_MILLIMETRES:
+        canvas.setViewerPreference("PrintScaling", "None")
     _draw(canvas, kind, data, paper_size)
     canvas.save()
     return target.getvalue()

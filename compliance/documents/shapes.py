@@ -155,7 +155,8 @@ class VesselLabelData(TypedDict):
     """One label of a vessel. ``contents`` says in words what is inside; None prints as "unknown".
 
     ``hazards`` are merged from everything poured in; ``not_entered`` names what was poured in without any; the
-    precautions are the P statements as typed, ``must_not_meet`` follows from what the contents may react as.
+    precautions are the P statements and the gloves as typed, ``must_not_meet`` follows from what the contents may
+    react as.
     """
 
     sort: LabelSort

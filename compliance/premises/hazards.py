@@ -1,11 +1,11 @@
 """The hazards of several things that were poured together, as they were entered, and what of them acts with what."""
 
 from collections.abc import Iterable, Iterator, Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass
 from typing import Any
 
 from chemicals.register.models import ProductRevision
-from chemicals.science.ghs import SIGNAL_WORDS, find_class, list_classes, split_statement
+from chemicals.science.ghs import SIGNAL_WORDS, find_class, list_classes, split_statement, standard_text
 from chemicals.science.reactivity import ACID, DANGERS, UNKNOWN, Danger, find_dangers
 from compliance.waste.models import WasteStream
 
@@ -24,6 +24,7 @@ class Part:
     pictograms: tuple[str, ...] = ()
     statements: tuple[str, ...] = ()
     classes: tuple[str, ...] = ()
+    gloves: str = ""
 
     @property
     def entered(self) -> bool:
@@ -39,6 +40,7 @@ def part_of(thing: ProductRevision | WasteStream) -> Part:
         pictograms=tuple(thing.pictograms),
         statements=tuple(thing.statements),
         classes=tuple(thing.hazard_classes) if isinstance(thing, ProductRevision) else (),
+        gloves=thing.gloves if isinstance(thing, ProductRevision) else "",
     )
 
 
@@ -50,7 +52,8 @@ class Hazards:
     pictograms: tuple[str, ...] = ()
     statements: tuple[str, ...] = ()
     precautions: tuple[str, ...] = ()
-    not_entered: tuple[str, ...] = field(default=())
+    gloves: tuple[str, ...] = ()
+    not_entered: tuple[str, ...] = ()
 
     @property
     def data(self) -> dict[str, Any]:
@@ -58,8 +61,20 @@ class Hazards:
         return {
             "signal_word": self.signal_word,
             "pictograms": list(self.pictograms),
-            "statements": list(self.statements),
+            "statements": [in_words(text) for text in self.statements],
         }
+
+    @property
+    def protection(self) -> list[str]:
+        """The P statements, and what sheets say of gloves, in one line each."""
+        gloves = ("Gloves: " + ", ".join(text.split("\n")) for text in self.gloves)
+        return [*(in_words(text) for text in self.precautions), *gloves]
+
+
+def in_words(statement: str) -> str:
+    """Return a statement as typed; one that was typed as a code alone with the standard's words for it, if known."""
+    words = standard_text(statement)
+    return f"{statement} {words}" if words else statement
 
 
 def merge(parts: Iterable[Part]) -> Hazards:
@@ -71,6 +86,7 @@ def merge(parts: Iterable[Part]) -> Hazards:
         pictograms=tuple(sorted({code for part in found for code in part.pictograms})),
         statements=tuple(text for text in statements if not text.startswith("P")),
         precautions=tuple(text for text in statements if text.startswith("P")),
+        gloves=tuple(dict.fromkeys(part.gloves for part in found if part.gloves)),
         not_entered=tuple(dict.fromkeys(part.name for part in found if not part.entered)),
     )
 
@@ -108,7 +124,7 @@ def list_hazards(parts: Iterable[Part]) -> list[str]:
             known = find_class(kind)
             found[f"{kind}: {known.hazard_class}" if known else kind] = None
         if not part.classes:
-            found |= dict.fromkeys(text for text in _once(part.statements) if not text.startswith("P"))
+            found |= dict.fromkeys(in_words(text) for text in _once(part.statements) if not text.startswith("P"))
     return list(found)
 
 

@@ -63,7 +63,7 @@ def _common(standing: Standing) -> dict[str, Any]:
         "code": standing.vessel.code,
         "url": f"{settings.PUBLIC_URL}/c/{standing.vessel.code}",
         "hazards": hazards.data,
-        "precautions": list(hazards.precautions),
+        "precautions": hazards.protection,
         "not_entered": list(hazards.not_entered),
         "must_not_meet": list_avoided(standing.kinds),
     }

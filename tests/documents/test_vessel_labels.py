@@ -64,6 +64,13 @@ def test_each_label_lies_within_its_place_and_its_code_opens_its_vessel(stock: S
             assert top + stock.safe <= corner.y / MM <= top + stock.height - stock.safe
 
 
+def test_a_sheet_of_labels_asks_not_to_be_scaled_when_it_is_printed() -> None:
+    """ISO 32000-1, table 150: PrintScaling None; else most viewers shrink a page to the printer's margins."""
+    reader = PdfReader(BytesIO(pdf_of(labels_of(SMALL))))
+    assert reader.viewer_preferences is not None
+    assert str(dict(reader.viewer_preferences)["/PrintScaling"]) == "/None"
+
+
 @pytest.mark.parametrize("stock", ALL_STOCKS, ids=lambda stock: stock.name)
 def test_all_ink_stays_within_the_label(stock: Stock) -> None:
     """Every dark or coloured pixel of a sheet with one label, by its place in millimetres."""

@@ -31,6 +31,7 @@ ACID = {
     "signal_word": "Danger",
     "pictograms": ("GHS05",),
     "statements": ("H314 Causes severe skin burns and eye damage.", "EUH014 Reacts violently with water.", "P280"),
+    "gloves": "Butyl rubber\n0.7 mm",
     "un_number": "1830",
     "supplier_telephone": "+49 000 222",
     "transport_class": "8",

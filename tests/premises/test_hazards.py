@@ -43,6 +43,13 @@ def test_a_statement_stands_once_by_its_code_and_keeps_its_text_as_typed() -> No
     assert merged.precautions == ("P280 Wear gloves",)
 
 
+def test_a_code_alone_is_told_in_the_standards_words() -> None:
+    """H302: UN GHS, annex 3. A code that nobody knows here stays a code."""
+    merged = merge([part("a", "H302", "H999", "H314 Verursacht Verätzungen.")])
+    assert merged.data["statements"] == ["H302 Harmful if swallowed", "H314 Verursacht Verätzungen.", "H999"]
+    assert merged.statements == ("H302", "H314 Verursacht Verätzungen.", "H999")
+
+
 def test_one_code_with_two_meanings_keeps_both() -> None:
     """H372 names the organ, which each sheet says for its own product (UN GHS, annex 3: state all organs affected)."""
     merged = merge([part("a", "H372 Damages the thyroid."), part("b", "H372 Damages the lungs.")])

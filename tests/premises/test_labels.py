@@ -64,13 +64,13 @@ def test_a_tank_says_what_was_poured_in_merged(filled: Shop) -> None:
         "signal_word": "Danger",
         "pictograms": ["GHS05", "GHS07", "GHS09"],
         "statements": [
-            "H302",
+            "H302 Harmful if swallowed",
             "H314 Causes severe skin burns and eye damage.",
             "H411 Toxic to aquatic life with long lasting effects.",
             "EUH014 Reacts violently with water.",
         ],
     }
-    assert said["precautions"] == ["P280"]
+    assert said["precautions"] == ["P280", "Gloves: Butyl rubber, 0.7 mm"]
     assert {other["what"] for other in said["must_not_meet"]} >= {"cyanide", "hypochlorite"}
     assert said["not_entered"] == []
 
