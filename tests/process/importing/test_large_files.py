@@ -6,10 +6,11 @@ from unittest.mock import patch
 import pytest
 from django_scopes import scope
 
+from chemicals.books import fold
 from chemicals.jobs.models import State
 from chemicals.jobs.services import run_next
 from chemicals.ledger import late
-from chemicals.ledger.models import Memory
+from chemicals.ledger.models import Books, Memory
 from chemicals.ledger.selectors import get_recomputed_to
 from chemicals.process.importing.files import choose_columns, find_map, read_table
 from chemicals.process.selectors import get_import_for, list_imports_for
@@ -136,3 +137,33 @@ def test_a_job_that_comes_too_late_writes_nothing(empty_shop: Shop, monkeypatch:
     work(empty_shop)
     assert len(entries(empty_shop)) == 9
     assert empty_shop.is_proved()
+
+
+@pytest.mark.usefixtures("small_requests")
+def test_a_small_file_waits_for_the_books_where_a_job_is_at_them(empty_shop: Shop) -> None:
+    record(empty_shop)
+    run_next(now=empty_shop.now, worker="w")
+    behind = get_recomputed_to(empty_shop.member.workshop)
+    record(empty_shop, lines("Date,Verb,Vessel,Amount", "2026-01-04,receipt,Jar,1 kg", "2026-01-20,receipt,Jar,1 kg"))
+    now_behind = get_recomputed_to(empty_shop.member.workshop)
+    assert behind is not None
+    assert now_behind is not None
+    assert now_behind.until < behind.until
+    work(empty_shop)
+    assert len(entries(empty_shop)) == 11
+    assert empty_shop.is_proved()
+
+
+def test_books_of_another_version_of_the_fold_are_folded_again_as_a_whole(shop: Shop) -> None:
+    with scope(workshop=shop.member.workshop):
+        Books.objects.update(fold_version=fold.VERSION - 1)
+        record(shop, lines("Date,Verb,Vessel,Amount", "2026-02-27,receipt,Jar,1 kg"))
+        assert Books.objects.get().fold_version == fold.VERSION
+    assert shop.is_proved()
+
+
+def test_what_moves_nothing_leaves_the_books_alone(shop: Shop) -> None:
+    before = shop.ledger()
+    record(shop, lines("Date,Verb,Vessel,Metal,Result", "2026-01-04,analysis,Copper,Cu,50 g/L"))
+    assert shop.ledger() == before
+    assert shop.is_proved()
