@@ -37,9 +37,8 @@ class RowTeller:
 
     def tell(self, made: Made) -> Told:
         """Return a row in words."""
-        data = made.said.data
         when = words.moment(made.occurred.at, made.occurred.precision)
-        return Told(made.said.row, when, str(data.title), tuple(self._tell(data)))
+        return Told(made.said.row, when, str(words.KINDS[made.event.KIND]), tuple(self._tell(made.said.data)))
 
     def _tell(self, data: Any) -> Iterator[tuple[str, str]]:
         for name, kind in describe(type(data)):

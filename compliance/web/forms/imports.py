@@ -21,7 +21,7 @@ from chemicals.process.importing.columns import (
     list_targets,
 )
 from chemicals.process.importing.table import LARGEST_FILE, Broken, Row
-from chemicals.process.inputs import INPUTS
+from compliance.web import words
 from compliance.web.forms.base import WebForm
 from compliance.web.forms.fields import REQUIRED, Text, WordField
 
@@ -98,7 +98,7 @@ class ColumnsForm(WebForm):
     ) -> None:
         super().__init__(data, **kwargs)
         self.headings = headings
-        verbs = [(verb, INPUTS[verb].title) for verb in VERBS]
+        verbs = [(verb, label) for kind, label in words.KINDS.items() if (verb := words.verb_of(kind)) in VERBS]
         self.fields["verb"] = forms.ChoiceField(
             choices=[("", _("a column says what happened")), *verbs],
             initial=chosen.verb,
