@@ -20,7 +20,7 @@ from tests.process.machine.office import Office, Said
 from tests.process.machine.people import THINGS, VESSELS, Line, begin
 from tests.process.machine.said import Names, draw_words
 
-COMMON = ("run", "move", "top-up", "level-reading", "analysis", "acceptance", "acceptance", "cancellation")
+COMMON = ("run", "dummy", "strip", "move", "top-up", "analysis", "acceptance", "acceptance", "correction")
 VERBS = (*INPUTS, *COMMON, *COMMON)
 MOST_WRITES = 15
 BUSY = {"chemicals.ledger.late.LATE_LIMIT": 2, "chemicals.ledger.recompute.STRETCH": 3}
@@ -109,7 +109,7 @@ class Machine(RuleBasedStateMachine):
         """Return when it happened: now, earlier, in a minute of which something is known, some day."""
         now, days, how_late = self.at.now, chance.randint(0, 9), chance.choice(HOW_LATE)
         if how_late == "same minute" and self.at.books.rows:
-            return Occurred(chance.choice(list(self.at.books.rows.values())).occurred_at)
+            return Occurred(chance.choice(list(self.at.rows)).occurred_at)
         if how_late == "some day":
             zone = self.at.workshop.zone
             return Occurred.on_day(now.astimezone(zone).date() - timedelta(days=days), zone)

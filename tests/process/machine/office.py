@@ -1,7 +1,7 @@
 """What people do in a workshop, and what they must be told."""
 
 from collections import Counter
-from collections.abc import Callable
+from collections.abc import Callable, Collection
 from dataclasses import dataclass, fields
 from datetime import datetime, timedelta
 from typing import Any, TypeVar
@@ -21,7 +21,7 @@ from chemicals.ledger.followed import as_kept, read_followed
 from chemicals.ledger.periods import BooksBehindError, close_period, reopen_period
 from chemicals.ledger.projection import Names, load_state
 from chemicals.ledger.selectors import get_period_for, get_recomputed_to
-from chemicals.process.inputs import AcceptanceInput, CancellationInput, Input
+from chemicals.process.inputs import AcceptanceInput, CancellationInput, CorrectionInput, Input
 from chemicals.workshop.errors import ConflictError, DomainError, InvalidInputError, NotPermittedError
 from chemicals.workshop.models import Membership, Role
 from compliance.clearance.selectors import Preview, preview
@@ -73,6 +73,11 @@ class Office:
     def stands(self) -> bool:
         """Say whether no job is at the books."""
         return get_recomputed_to(self.workshop) is None
+
+    @property
+    def rows(self) -> Collection[Entry]:
+        """Return the entries that somebody was told of."""
+        return self.books.rows.values()
 
     def call(self, service: Callable[..., T], killed_at: int, **said: Any) -> T:
         """Call a service, in a process that may be killed if so wished; what is refused is refused here too."""
@@ -135,7 +140,7 @@ class Office:
             assert refusal.reasons
         else:
             assert isinstance(refusal, ConflictError)
-            assert isinstance(said.data, AcceptanceInput | CancellationInput)
+            assert isinstance(said.data, AcceptanceInput | CancellationInput | CorrectionInput)
 
     def expect_entry(self, said: Said, entry: Entry) -> None:
         """Fail if the entry is not what was said, or its period was closed."""
@@ -170,13 +175,13 @@ class Office:
         return told
 
     def record_as_shown(self, said: Said) -> None:
-        """Look first: what is recorded is what was shown."""
+        """Look first: what is recorded is what was shown, if nothing is dated later: the day that is noon to come."""
         before, told = self.now, self.look(said)
         entry = self.record(said)
         assert self.now == before
         if told is None or (told.answer.reasons and not said.already_happened):
             assert entry is None
-        elif entry is not None and said.occurred is None and self.stands and entry.kind != "acceptance":
+        elif entry is not None and self.stands and entry.occurred_at == max(row.occurred_at for row in self.rows):
             self.done["as shown"] += 1
             assert self.followed(entry) == as_kept(told.trial.folded)
 

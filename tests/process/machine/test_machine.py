@@ -19,7 +19,7 @@ def test_whatever_two_people_and_kill_9_do_the_books_are_what_was_acknowledged(
     done: Counter[str] = Counter()
     monkeypatch.setattr(Machine, "line", line, raising=False)
     monkeypatch.setattr(Machine, "done", done, raising=False)
-    run_state_machine_as_test(Machine, settings=settings(max_examples=6, stateful_step_count=25))
+    run_state_machine_as_test(Machine, settings=settings(max_examples=6, stateful_step_count=20))
     assert done["steps"] > 50
     assert done["killed"] > 0
     assert len(done.keys() & INPUTS.keys()) > 5
