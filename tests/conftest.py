@@ -18,6 +18,11 @@ settings.load_profile("suite")
 NOW = datetime(2026, 3, 2, 15, 0, tzinfo=UTC)
 
 
+def pytest_make_parametrize_id(val: object, argname: str) -> str | None:
+    """Name bytes by their argument: those of a file may differ between two processes that share the suite."""
+    return argname if isinstance(val, bytes) else None
+
+
 @pytest.fixture(scope="session", autouse=True)
 def _flush_without_triggers() -> Iterator[None]:
     """Let the test suite's own flush empty the journal; product code has no such switch."""
