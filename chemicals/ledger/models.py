@@ -5,6 +5,7 @@ then, and proved by its digest. Amounts are integers: micrograms, nanolitres.
 """
 
 import uuid
+from collections.abc import Iterable
 from datetime import datetime
 
 from django.db import models
@@ -17,6 +18,7 @@ from chemicals.journal.models import Entry
 from chemicals.ledger.fields import ExactIntegerField
 from chemicals.register.models import Product
 from chemicals.workshop.models import Membership, Place, Workshop
+from chemicals.workshop.searched import Searched
 
 LARGEST = 10**15
 """The largest amount: a tonne of metal, or a thousand cubic metres."""
@@ -38,8 +40,12 @@ class VesselKind(models.TextChoices):
     WASTE = "waste", _("waste container")
 
 
-class Vessel(models.Model):
-    """Anything that holds matter. ``code`` is short, typed or scanned, and unique everywhere."""
+class Vessel(Searched):
+    """Anything that holds matter. ``code`` is short, typed or scanned, and unique everywhere.
+
+    Of a stock container also when it was opened and until when what is in it keeps. One that is ``gone`` stands nowhere
+    any more. What changes here is noted as `VesselChange`.
+    """
 
     uuid = models.UUIDField(default=uuid.uuid4, unique=True, editable=False)
     workshop = models.ForeignKey(Workshop, on_delete=models.PROTECT, related_name="vessels")
@@ -49,6 +55,9 @@ class Vessel(models.Model):
     place = models.ForeignKey(Place, null=True, blank=True, on_delete=models.PROTECT, related_name="vessels")
     product = models.ForeignKey(Product, null=True, blank=True, on_delete=models.PROTECT, related_name="vessels")
     capacity = models.BigIntegerField(_("capacity"), null=True, blank=True)
+    opened_on = models.DateField(_("opened"), null=True, blank=True)
+    expires_on = models.DateField(_("keeps until"), null=True, blank=True)
+    gone_at = models.DateTimeField(_("gone since"), null=True, blank=True)
     created_at = models.DateTimeField()
     created_by = models.ForeignKey(Membership, on_delete=models.PROTECT, related_name="+")
 
@@ -62,6 +71,41 @@ class Vessel(models.Model):
 
     def __str__(self) -> str:
         return self.name
+
+    def search_texts(self) -> Iterable[str]:
+        return (self.name, self.code)
+
+
+class VesselFact(models.TextChoices):
+    """What of a vessel may change without anything being poured."""
+
+    NAME = "name", _("name")
+    PLACE = "place", _("place")
+    OPENED = "opened", _("opened")
+    EXPIRES = "expires", _("keeps until")
+    GONE = "gone", _("gone")
+
+
+class VesselChange(models.Model):
+    """Who changed what of a vessel, and when: before and after as people read them, empty where nothing was."""
+
+    workshop = models.ForeignKey(Workshop, on_delete=models.PROTECT, related_name="vessel_changes")
+    vessel = models.ForeignKey(Vessel, on_delete=models.PROTECT, related_name="changes")
+    fact = models.CharField(max_length=8, choices=VesselFact.choices)
+    before = models.CharField(max_length=80, blank=True)
+    after = models.CharField(max_length=80, blank=True)
+    changed_at = models.DateTimeField()
+    changed_by = models.ForeignKey(Membership, on_delete=models.PROTECT, related_name="+")
+
+    objects: "models.Manager[VesselChange]" = ScopedManager(workshop="workshop")
+
+    class Meta:
+        constraints = [
+            models.CheckConstraint(condition=models.Q(fact__in=VesselFact.values), name="vessel_change_fact")
+        ]
+
+    def __str__(self) -> str:
+        return f"{self.vessel}: {self.get_fact_display()}"
 
 
 class ComponentKind(models.TextChoices):

@@ -26,6 +26,7 @@ from chemicals.ledger.models import (
     Period,
     Posting,
     Vessel,
+    VesselChange,
     VesselKind,
 )
 from chemicals.workshop.errors import NotFoundError
@@ -131,6 +132,20 @@ def _per_litre(metal: Held, volume: Held | None) -> HeldMetal:
         return HeldMetal(metal.component, metal.amount, metal.sd, None, 0)
     per_litre, sd = quotient(metal.amount, metal.sd, volume.amount, volume.sd, NANOLITRES_PER_LITRE)
     return HeldMetal(metal.component, metal.amount, metal.sd, per_litre, sd)
+
+
+def is_known_empty(vessel: Vessel) -> bool:
+    """Say whether the books know that a vessel holds nothing: everything known, and none of it left. Two queries."""
+    if read_memory(vessel)[0]:
+        return False
+    return all(row.amount is not None and row.amount <= 0 for row in list_held(vessel))
+
+
+def list_changes_of(vessel: Vessel) -> QuerySet[VesselChange]:
+    """Return what was changed of a vessel without anything being poured, the latest first. One query."""
+    with scope(workshop=vessel.workshop):
+        changes = VesselChange.objects.filter(vessel=vessel).select_related("changed_by__user")
+        return changes.order_by("-changed_at", "-pk")
 
 
 def read_memory(vessel: Vessel) -> tuple[bool, frozenset[str]]:

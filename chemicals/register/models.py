@@ -1,6 +1,7 @@
 """The catalogue: substances, products and their immutable revisions. No amounts."""
 
 import uuid
+from collections.abc import Iterable
 
 from django.db import models
 from django.utils.translation import gettext_lazy as _
@@ -10,12 +11,13 @@ from chemicals.journal.models import Attachment
 from chemicals.science.ghs import Contradiction, find_contradictions
 from chemicals.science.identity import PACKING_GROUPS
 from chemicals.workshop.models import Membership, Workshop
+from chemicals.workshop.searched import Searched
 
 MOST_PH = 14_000
 """The highest pH that a sheet's floor may have, in thousandths."""
 
 
-class Substance(models.Model):
+class Substance(Searched):
     """A chemical species: CAS and EC number, formula, synonyms; molar mass and metals follow from the formula.
 
     One that is declared ``inert`` reacts with nothing here: it is balanced by its formula, like a metal.
@@ -38,8 +40,11 @@ class Substance(models.Model):
     def __str__(self) -> str:
         return self.name
 
+    def search_texts(self) -> Iterable[str]:
+        return (self.name, *map(str, self.synonyms), self.cas_number, self.ec_number, self.formula)
 
-class Product(models.Model):
+
+class Product(Searched):
     """What is bought. Everything that may change stands in its revisions."""
 
     uuid = models.UUIDField(default=uuid.uuid4, unique=True, editable=False)
@@ -55,12 +60,16 @@ class Product(models.Model):
     def __str__(self) -> str:
         return self.name
 
+    def search_texts(self) -> Iterable[str]:
+        return (self.name, self.supplier)
+
 
 class Form(models.TextChoices):
     """The physical form of a product as bought."""
 
     SOLID = "solid", _("solid")
     LIQUID = "liquid", _("liquid")
+    GAS = "gas", _("gas")
 
 
 class ProductRevision(models.Model):

@@ -119,7 +119,7 @@ def build_recipe(revision: ProductRevision) -> Recipe:
         product=revision.product.uuid,
         revision=revision.number,
         name=revision.product.name,
-        solid=revision.form == Form.SOLID,
+        solid=revision.form != Form.LIQUID,
         complete=revision.complete,
         shares=tuple(shares),
         density=density,

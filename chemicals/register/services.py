@@ -124,7 +124,7 @@ def add_starter_substances(*, actor: Membership) -> list[Substance]:
     """Add the usual substances of plating by name, CAS number and formula, no hazards; those here stay as they are."""
     require_writer(actor)
     with scope(workshop=actor.workshop):
-        return Substance.objects.bulk_create(
+        rows = [
             Substance(
                 workshop=actor.workshop,
                 name=row.name,
@@ -133,7 +133,10 @@ def add_starter_substances(*, actor: Membership) -> list[Substance]:
                 synonyms=list(row.synonyms),
             )
             for row in list_missing_starters(list_substances_for(actor))
-        )
+        ]
+        for row in rows:
+            row.note_searched()
+        return Substance.objects.bulk_create(rows)
 
 
 def _check_formula(substance: Substance) -> Iterator[FieldError]:

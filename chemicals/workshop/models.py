@@ -1,6 +1,7 @@
 """People and premises: users, workshops, memberships, places, tokens of the API."""
 
 import uuid
+from collections.abc import Iterable
 from typing import ClassVar
 from zoneinfo import ZoneInfo, available_timezones
 
@@ -11,6 +12,8 @@ from django.db import models
 from django.db.models.functions import Lower
 from django.utils.translation import gettext_lazy as _
 from django_scopes import ScopedManager
+
+from chemicals.workshop.searched import Searched
 
 
 class UserManager(BaseUserManager["User"]):
@@ -118,7 +121,7 @@ class Membership(models.Model):
         return f"{self.user} ({self.role})"
 
 
-class Place(models.Model):
+class Place(Searched):
     """A room, cupboard, shelf or bench; it may say which bund and which exhaust duct it shares."""
 
     uuid = models.UUIDField(default=uuid.uuid4, unique=True, editable=False)
@@ -134,6 +137,9 @@ class Place(models.Model):
 
     def __str__(self) -> str:
         return self.name
+
+    def search_texts(self) -> Iterable[str]:
+        return (self.name,)
 
 
 class EmergencyNumber(models.Model):

@@ -13,6 +13,12 @@ def tidy(text: str) -> str:
     return unicodedata.normalize("NFC", text.strip())
 
 
+def searchable(*texts: str) -> str:
+    """Return texts as they are searched: without case and accents, a line each, so that no word spans two of them."""
+    lines = (" ".join(unicodedata.normalize("NFKD", text).casefold().split()) for text in texts)
+    return "\n".join("".join(char for char in line if not unicodedata.combining(char)) for line in lines if line)
+
+
 def find_unwritable(value: Any, field: str = "") -> Iterator[FieldError]:
     """Yield an error for every text with control characters, by the path of its field ("held.0.amount")."""
     if isinstance(value, str):

@@ -116,7 +116,7 @@ def test_the_usual_substances_are_added_once(api: Caller, shop: Shop) -> None:
 
 
 def test_everything_wrong_with_a_product_is_named(api: Caller, shop: Shop) -> None:
-    shape = api.post("products/", {"form": "gas", "pictograms": ["GHS10"], "reactivity": ["lava"], "density": 1.2})
+    shape = api.post("products/", {"form": "plasma", "pictograms": ["GHS10"], "reactivity": ["lava"], "density": 1.2})
     assert set(errors_of(shape, 400)) == {"name", "form", "pictograms.0", "reactivity.0", "density"}
     lines = [{"substance": str(uuid4()), "content": "98 %"}, {"substance": str(shop.sulfate.uuid), "content": "98 %"}]
     absent = api.post("products/", {"name": "Salt", "form": "solid", "lines": lines, "safety_data_sheet": "ab" * 32})

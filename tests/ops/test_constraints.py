@@ -13,7 +13,7 @@ from django.db.models import CheckConstraint, Model, UniqueConstraint
 from chemicals.jobs.models import Job, Schedule
 from chemicals.journal import triggers
 from chemicals.journal.models import Attachment, Entry
-from chemicals.ledger.models import ClosingHolding, Component, Finding, Period, Vessel
+from chemicals.ledger.models import ClosingHolding, Component, Finding, Period, Vessel, VesselChange
 from chemicals.process.models import Import
 from compliance.ops.verify import our_models
 from tests.ops.conftest import LOADED_AT
@@ -94,7 +94,7 @@ EXAMPLES: dict[str, dict[str, Change]] = {
         "revision_number_once": twice,
         "revision_density_above_zero": {"density": 0},
         "revision_ph_floor_range": {"ph_floor": -1},
-        "revision_form": {"form": "gas"},
+        "revision_form": {"form": "plasma"},
         "revision_packing_group": {"packing_group": "IV", "transport_unclassified": False},
         "revision_transport_or_none": {"transport_unclassified": True, "un_number": "1830"},
     },
@@ -105,6 +105,7 @@ EXAMPLES: dict[str, dict[str, Change]] = {
     },
     "register.ExposureLimit": {"exposure_limit_kind": {"kind": "weekly"}},
     "ledger.Vessel": {"vessel_name_once": twice, "vessel_kind": {"kind": "bucket"}},
+    "ledger.VesselChange": {"vessel_change_fact": {"fact": "colour"}},
     "ledger.Component": {"component_code_once": twice, "component_kind": {"kind": "spirit"}},
     "ledger.Posting": {
         "posting_vessel_once": lambda row: after(row, vessel_id=a_vessel(), boundary=""),
@@ -168,6 +169,13 @@ def first_row(model: type[Model]) -> Model:
             "until": LOADED_AT,
             "sequence": 1,
             "fold_version": 1,
+        },
+        VesselChange: {
+            "workshop_id": entry.workshop_id,
+            "vessel_id": a_vessel(),
+            "fact": "place",
+            "changed_at": LOADED_AT,
+            "changed_by_id": entry.member_id,
         },
         Import: {
             "workshop_id": entry.workshop_id,

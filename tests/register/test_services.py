@@ -87,7 +87,7 @@ def revision(**said: Any) -> RevisionInput:
 @pytest.mark.parametrize(
     ("said", "fields"),
     [
-        ({"form": "gas"}, ["form"]),
+        ({"form": "plasma"}, ["form"]),
         ({"density": "1,500 g/mL"}, ["density"]),
         ({"density": "0 g/mL"}, ["density"]),
         ({"signal_word": "Caution"}, ["signal_word"]),
@@ -95,7 +95,7 @@ def revision(**said: Any) -> RevisionInput:
         ({"reactivity": ("water",)}, ["reactivity"]),
         ({"statements": ("H302 Harmful", "harmful")}, ["statements"]),
         ({"statements": ("H302 a\x1bb",)}, ["statements"]),
-        ({"form": "gas", "density": "x", "signal_word": "Oh"}, ["form", "signal_word", "density"]),
+        ({"form": "plasma", "density": "x", "signal_word": "Oh"}, ["form", "signal_word", "density"]),
     ],
 )
 def test_a_revision_is_refused_by_field(
@@ -127,7 +127,7 @@ def test_a_composition_is_refused_by_line(salt: Substance, form: str, contents: 
 
 def test_all_that_is_wrong_with_a_product_is_said_at_once(worker: Membership, now: datetime) -> None:
     with pytest.raises(InvalidInputError) as caught:
-        create_product(actor=worker, now=now, name="", supplier="a\x00", revision=revision(form="gas"))
+        create_product(actor=worker, now=now, name="", supplier="a\x00", revision=revision(form="plasma"))
     assert fields_of(caught.value) == ["supplier", "name", "form"]
 
 
