@@ -15,14 +15,12 @@ from django_scopes import scope
 from chemicals.balance.selectors import Amount, sum_up
 from chemicals.books.events import BOUNDARIES
 from chemicals.books.fold.arithmetic import root
-from chemicals.books.fold.state import EVERY, UNKNOWN_AMOUNT, UNKNOWN_CONTENTS, Holding
-from chemicals.ledger.models import Component, ComponentKind, Content, Finding, Posting, Vessel
+from chemicals.books.fold.state import UNKNOWN_AMOUNT, UNKNOWN_CONTENTS, Holding
+from chemicals.ledger.models import Content, Finding, Posting, Vessel
 from chemicals.ledger.projection import load_state_before
+from chemicals.ledger.selectors import list_components_for
 from chemicals.workshop.errors import NotFoundError
 from chemicals.workshop.models import Membership, Workshop
-
-ORDER = [kind.value for kind in ComponentKind]
-"""In which order the kinds of components stand: metals first."""
 
 
 @dataclass(frozen=True)
@@ -82,13 +80,6 @@ class Difference:
 
 def _less(one: Amount, other: Amount) -> int | None:
     return None if one.value is None or other.value is None else one.value - other.value
-
-
-def list_components_for(member: Membership) -> list[str]:
-    """Return the codes of everything that the books of the member's workshop count, metals first. One query."""
-    with scope(workshop=member.workshop):
-        rows = Component.objects.exclude(code=EVERY).values_list("kind", "code")
-        return [code for _kind, code in sorted(rows, key=lambda row: (ORDER.index(row[0]), row[1]))]
 
 
 def get_differences_for(

@@ -81,12 +81,6 @@ def find_postings(member: Membership, wanted: Search) -> QuerySet[Posting]:
         return postings.filter(component__code=wanted.component) if wanted.component else postings
 
 
-def list_components_for(member: Membership) -> list[str]:
-    """Return the codes of all that is balanced in the member's workshop, by kind and name. One query."""
-    with scope(workshop=member.workshop):
-        return list(Component.objects.exclude(code="").order_by("kind", "code").values_list("code", flat=True))
-
-
 def _by_columns(wanted: Search) -> Q:
     """Return what the entry's own columns must say."""
     time = "recorded_at" if wanted.by == RECORDED else "occurred_at"

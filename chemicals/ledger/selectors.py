@@ -19,6 +19,8 @@ from chemicals.ledger.codes import tidy_code
 from chemicals.ledger.models import (
     Books,
     ClosingHolding,
+    Component,
+    ComponentKind,
     Content,
     Finding,
     Holding,
@@ -33,6 +35,8 @@ from chemicals.workshop.errors import NotFoundError
 from chemicals.workshop.models import Membership, Workshop
 
 NANOLITRES_PER_LITRE = 10**9
+ORDER = [kind.value for kind in ComponentKind]
+"""In which order the kinds of components stand: metals first."""
 
 
 def list_vessels_for(member: Membership, *kinds: VesselKind) -> QuerySet[Vessel]:
@@ -153,6 +157,13 @@ def read_memory(vessel: Vessel) -> tuple[bool, frozenset[str]]:
     with scope(workshop=vessel.workshop):
         memory = Memory.objects.filter(vessel=vessel).first()
     return (False, frozenset()) if memory is None else (memory.incomplete, frozenset(memory.poured))
+
+
+def list_components_for(member: Membership) -> list[str]:
+    """Return the codes of everything that the books of the member's workshop count, metals first. One query."""
+    with scope(workshop=member.workshop):
+        rows = Component.objects.exclude(code=EVERY).values_list("kind", "code")
+        return [code for _kind, code in sorted(rows, key=lambda row: (ORDER.index(row[0]), row[1]))]
 
 
 def list_findings_for(member: Membership) -> QuerySet[Finding]:

@@ -13,6 +13,7 @@ from chemicals.journal.selectors import find_cancelled, read_event
 from chemicals.ledger.selectors import list_vessels_for
 from chemicals.register.selectors import list_products_for
 from chemicals.workshop.models import Membership
+from compliance.documents.models import PaperKind
 from compliance.web.words import Ends, component_name, moment
 
 
@@ -46,7 +47,7 @@ def names_of(member: Membership) -> Ends:
 def summarise(entry: Entry, event: Event, ends: Ends) -> str:
     """Return one line: where, and what was measured, or why."""
     if isinstance(event, events.Paper):
-        return f"{event.paper.replace('-', ' ')} {event.number}"
+        return f"{PaperKind(event.paper).label} {event.number}"
     if isinstance(event, events.PeriodClosing):
         return _("everything before %(until)s") % {"until": moment(event.until)}
     if isinstance(event, events.Cancellation | events.Correction | events.PeriodReopening):

@@ -5,8 +5,9 @@ from typing import Any
 
 import pytest
 
-from chemicals.balance.difference import Difference, get_differences_for, list_components_for
+from chemicals.balance.difference import Difference, get_differences_for
 from chemicals.balance.selectors import get_book_balance
+from chemicals.ledger.selectors import list_components_for
 from chemicals.workshop.errors import NotFoundError
 from chemicals.workshop.models import Membership
 from tests.balance.test_selectors import run_a_month

@@ -11,8 +11,8 @@ from django.test.utils import CaptureQueriesContext
 from chemicals.books.fold.state import EVERY
 from chemicals.ledger.dated import list_balances_before
 from chemicals.ledger.models import Vessel
-from chemicals.ledger.search import RECORDED, Search, find_entries, find_postings, list_components_for
-from chemicals.ledger.selectors import get_balances_before
+from chemicals.ledger.search import RECORDED, Search, find_entries, find_postings
+from chemicals.ledger.selectors import get_balances_before, list_components_for
 from chemicals.workshop.models import Membership
 from tests.process.shop import G, L, Shop
 
@@ -171,4 +171,4 @@ def test_what_is_unknown_on_a_date_has_no_amount(told: Shop) -> None:
 
 
 def test_components_are_listed_metals_first(told: Shop) -> None:
-    assert list_components_for(told.member) == ["gross mass", "Cu", "volume"]
+    assert list_components_for(told.member) == ["Cu", "volume", "gross mass"]

@@ -210,3 +210,8 @@ def test_what_is_where_and_the_list_are_files_too(visit: Visitor, filled: Line, 
         assert answer.status_code == 200
         assert len(answer.getvalue()) > 100
         assert answer.headers["Content-Disposition"].startswith("attachment; ")
+
+
+def test_an_entry_of_a_paper_calls_it_by_its_name(visit: Visitor, filled: Line) -> None:
+    ask_for_labels(visit, filled.bath)
+    assert "labels of vessels 1" in text_of(visit.get("entries"))

@@ -9,8 +9,8 @@ from django.forms.boundfield import BoundField
 from django.http import QueryDict
 from django.utils.translation import gettext_lazy as _
 
-from chemicals.ledger.search import OCCURRED, RECORDED, Search, list_components_for
-from chemicals.ledger.selectors import list_vessels_for
+from chemicals.ledger.search import OCCURRED, RECORDED, Search
+from chemicals.ledger.selectors import list_components_for, list_vessels_for
 from chemicals.workshop.models import Membership
 from chemicals.workshop.selectors import list_members_for
 from compliance.web.forms.base import Shown

@@ -12,12 +12,11 @@ from chemicals.balance.difference import (
     Explained,
     VesselDifference,
     get_differences_for,
-    list_components_for,
 )
 from chemicals.balance.selectors import Amount, find_main_metal_for
 from chemicals.books.events import UNACCOUNTED
 from chemicals.ledger.components import dimension_of
-from chemicals.ledger.selectors import get_recomputed_to
+from chemicals.ledger.selectors import get_recomputed_to, list_components_for
 from chemicals.workshop.models import Membership
 from compliance.web import words
 from compliance.web.contents import IN_FILES

@@ -10,13 +10,12 @@ from django.http import HttpRequest, HttpResponseBase
 from django.utils import timezone
 from django.utils.translation import gettext as _
 
-from chemicals.balance.difference import list_components_for
 from chemicals.journal.models import Entry
 from chemicals.journal.selectors import read_event
 from chemicals.ledger.components import dimension_of
 from chemicals.ledger.models import Vessel, VesselKind
 from chemicals.ledger.running import Line, Movement, Running, VesselLedger, get_vessel_ledger, list_components_of
-from chemicals.ledger.selectors import get_recomputed_to, get_vessel_for
+from chemicals.ledger.selectors import get_recomputed_to, get_vessel_for, list_components_for
 from chemicals.workshop.models import Membership
 from compliance.web import words
 from compliance.web.contents import IN_FILES
