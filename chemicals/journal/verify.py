@@ -20,26 +20,38 @@ class Problem:
     message: str
 
 
+STRETCHES = 5
+"""How often the walk goes on because the chain grew meanwhile."""
+
+
 def verify_chain(workshop: Workshop) -> list[Problem]:
-    """Return what is wrong with a workshop's entries and their head, in order of the chain."""
+    """Return what is wrong with a workshop's entries and their head, in order of the chain.
+
+    The head is read after the entries: where it has moved on, so does the walk.
+    """
     with scope(workshop=workshop):
-        walk = Walk(workshop, frozenset(Attachment.objects.values_list("sha256", flat=True)))
+        walk = Walk(workshop)
         found = []
         rows = Entry.objects.order_by("sequence").select_related("member", "about")
         try:
-            for entry in rows.iterator(chunk_size=2000):
-                found += walk.step(entry)
+            for _stretch in range(STRETCHES):
+                begun = walk.sequence
+                for entry in rows.filter(sequence__gt=begun).iterator(chunk_size=2000):
+                    found += walk.step(entry)
+                head = Head.objects.filter(workshop=workshop).first()
+                if walk.sequence == begun or head is None or head.sequence <= walk.sequence:
+                    break
         except (ValueError, TypeError) as error:  # a column that holds what its type cannot
             return [*found, Problem(walk.sequence + 1, f"The row cannot be read: {error}")]
-        return [*found, *walk.end(Head.objects.filter(workshop=workshop).first())]
+        return [*found, *walk.end(head)]
 
 
 class Walk:
     """Goes along the chain, entry by entry."""
 
-    def __init__(self, workshop: Workshop, listed: frozenset[str]) -> None:
+    def __init__(self, workshop: Workshop) -> None:
         self.workshop = workshop
-        self.listed = listed
+        self.listed = frozenset(Attachment.objects.values_list("sha256", flat=True))
         self.checked: dict[str, str | None] = {}
         """What is wrong with each file that an entry named so far: many entries may name the same one."""
         self.sequence = 0
@@ -60,8 +72,9 @@ class Walk:
         body = yield from _check_entry(self.workshop, entry)
         for sha256 in () if body is None else body.attachments:
             if sha256 not in self.checked:
+                listed = sha256 in self.listed or Attachment.objects.filter(sha256=sha256).exists()  # added meanwhile
                 gone = f"The file {sha256} is not listed any more."
-                self.checked[sha256] = _check_file(sha256) if sha256 in self.listed else gone
+                self.checked[sha256] = _check_file(sha256) if listed else gone
             message = self.checked[sha256]
             if message:
                 yield message

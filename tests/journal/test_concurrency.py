@@ -13,13 +13,14 @@ import pytest
 from django.db import connection
 from django_scopes import scope
 
+from chemicals.journal import verify
 from chemicals.journal.models import Entry
-from chemicals.journal.services import append
+from chemicals.journal.services import add_attachment, append
 from chemicals.journal.verify import verify_chain
 from chemicals.workshop.errors import ConflictError
 from chemicals.workshop.models import Membership
 from tests.jobs.processes import database_url
-from tests.journal.conftest import ALLOWED, hand_over
+from tests.journal.conftest import ALLOWED, Note, hand_over
 
 ROOT = Path(__file__).resolve().parents[2]
 pytestmark = pytest.mark.django_db(transaction=True)
@@ -45,6 +46,23 @@ def at_once(count: int, work: Callable[[int], None]) -> None:
     for thread in threads:
         thread.join(30)
     assert errors == []
+
+
+def test_what_is_appended_during_a_proof_is_not_missing(
+    note: Note, worker: Membership, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    note()
+    step = verify.Walk.step
+
+    def while_somebody_records(walk: verify.Walk, entry: Entry) -> list[verify.Problem]:
+        if entry.sequence < 3:
+            file = add_attachment(actor=worker, now=entry.recorded_at, name="a.pdf", data=b"%%PDF-%d" % entry.sequence)
+            note(attachments=(file.sha256,))
+        return step(walk, entry)
+
+    monkeypatch.setattr(verify.Walk, "step", while_somebody_records)
+    assert verify_chain(worker.workshop) == []
+    assert sequences(worker) == [1, 2, 3]
 
 
 def sequences(member: Membership) -> list[int]:
