@@ -4,6 +4,7 @@ from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 from datetime import date, datetime
 from enum import Enum
+from uuid import UUID
 
 from django.db import IntegrityError, transaction
 from django_scopes import scope, scopes_disabled
@@ -34,8 +35,14 @@ def create_vessel(
     place: Place | None = None,
     product: Product | None = None,
     capacity: int | None = None,
+    opened_on: date | None = None,
+    expires_on: date | None = None,
+    uuid: UUID | None = None,
 ) -> Vessel:
-    """Create a vessel with a fresh code. ``capacity`` in nanolitres."""
+    """Create a vessel with a fresh code. ``capacity`` in nanolitres; only what holds something as bought has days.
+
+    ``uuid`` where the caller must know it again, else a fresh one.
+    """
     require_writer(actor)
     require_same_workshop(actor, *(thing for thing in (place, product) if thing is not None))
     vessel = Vessel(
@@ -46,11 +53,15 @@ def create_vessel(
         place=place,
         product=product,
         capacity=capacity,
+        opened_on=opened_on,
+        expires_on=expires_on,
         created_at=now,
         created_by=actor,
     )
+    if uuid is not None:
+        vessel.uuid = uuid
     with scope(workshop=actor.workshop):
-        errors = check_row(vessel, leave_out=["code"], unique=True)
+        errors = [*check_row(vessel, leave_out=["code"], unique=True), *_check_days(vessel, now)]
         if capacity is not None and capacity <= 0:
             errors.append(
                 FieldError("capacity", "A vessel holds more than nothing. Write its capacity, or leave it out.")
@@ -154,14 +165,20 @@ def _check_care(vessel: Vessel, care: CareInput, now: datetime) -> Iterator[Fiel
     """Yield what is wrong with a vessel once it has changed."""
     if care.name is not KEEP:
         yield from check_row(vessel, leave_out=["code"], unique=True)
-    today = now.astimezone(vessel.workshop.zone).date()
     dated = isinstance(care.opened_on, date) or isinstance(care.expires_on, date) or care.gone is True
-    if dated and vessel.kind not in CONTAINERS:
-        yield FieldError("vessels", f"{vessel.name} holds nothing as bought. Leave it out.")
-    if isinstance(care.opened_on, date) and care.opened_on > today:
-        yield FieldError("opened_on", "This day is still to come. Write when it was opened.")
+    if dated:
+        yield from _check_days(vessel, now)
     if care.gone is True and not is_known_empty(vessel):
         yield FieldError("vessels", f"{vessel.name} is not known to be empty. Count it, or record where it went.")
+
+
+def _check_days(vessel: Vessel, now: datetime) -> Iterator[FieldError]:
+    """Yield what is wrong with the days of a vessel: when it was opened, until when it keeps, since when it is gone."""
+    dated = any(day is not None for day in (vessel.opened_on, vessel.expires_on, vessel.gone_at))
+    if dated and vessel.kind not in CONTAINERS:
+        yield FieldError("vessels", f"{vessel.name} holds nothing as bought. Leave it out.")
+    if vessel.opened_on is not None and vessel.opened_on > now.astimezone(vessel.workshop.zone).date():
+        yield FieldError("opened_on", "This day is still to come. Write when it was opened.")
 
 
 def project_entry(entry: Entry, event: events.Event) -> fold.Folded:

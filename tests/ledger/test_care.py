@@ -2,13 +2,14 @@
 
 from collections.abc import Iterator
 from datetime import date, timedelta
+from typing import Any
 
 import pytest
 from django_scopes import scope
 
-from chemicals.ledger.models import Vessel, VesselChange
+from chemicals.ledger.models import Vessel, VesselChange, VesselKind
 from chemicals.ledger.selectors import list_changes_of
-from chemicals.ledger.services import CareInput, change_vessels
+from chemicals.ledger.services import CareInput, change_vessels, create_vessel
 from chemicals.register.models import Product
 from chemicals.workshop.errors import InvalidInputError, NotPermittedError
 from chemicals.workshop.models import Membership
@@ -41,6 +42,16 @@ def test_all_jars_change_alike_and_each_change_is_noted(shop: Shop, jars: list[V
     assert ("place", "", "Shelf", shop.member) in told
     assert ("opened", "", day.isoformat(), shop.member) in told
     assert len(told) == 3
+
+
+def test_only_what_holds_something_as_bought_begins_with_days(shop: Shop) -> None:
+    made: Any = {"actor": shop.member, "now": shop.now, "name": "Sludge tub", "kind": VesselKind.SLUDGE}
+    with pytest.raises(InvalidInputError) as caught:
+        create_vessel(**made, expires_on=date(2027, 1, 1))
+    assert [error.field for error in caught.value.errors] == ["vessels"]
+    with pytest.raises(InvalidInputError) as caught:
+        create_vessel(**{**made, "kind": VesselKind.STOCK}, opened_on=shop.now.date() + timedelta(days=1))
+    assert [error.field for error in caught.value.errors] == ["opened_on"]
 
 
 def test_what_stays_as_it_is_is_not_noted(shop: Shop, jars: list[Vessel]) -> None:
