@@ -8,9 +8,9 @@ from django.utils.translation import gettext_lazy as _
 from django_scopes import ScopedManager
 
 from chemicals.jobs.models import Job, State
-from chemicals.journal.models import Attachment
+from chemicals.journal.models import Attachment, Entry
 from chemicals.ledger.models import Vessel
-from chemicals.workshop.models import Membership, Workshop
+from chemicals.workshop.models import Membership, Place, Workshop
 
 
 class AnodeKind(models.TextChoices):
@@ -130,15 +130,24 @@ class RouteStep(models.Model):
         return f"{self.position} {self.vessel}"
 
 
-class Import(models.Model):
-    """A file of past records. ``mapping`` says what its columns mean, and who said so when; it is imported once.
+class Subject(models.TextChoices):
+    """What is in a file: entries of the past, or the register with its containers."""
 
-    ``errors`` are rows of (row, column, message) that a job found, the first of ``wrong``. ``first`` and ``last`` are
-    the sequences of its entries.
+    ENTRIES = "entries", _("entries of the past")
+    REGISTER = "register", _("the register: products and containers")
+
+
+class Import(models.Model):
+    """A file of past records or of the register. ``mapping`` says what its columns mean, and who said so when.
+
+    It is imported once. ``errors`` are rows of (row, column, message) that a job found, the first of ``wrong``.
+    ``first`` and ``last`` are the sequences of its entries, None where a file of the register names no amounts;
+    ``made`` counts what such a file made.
     """
 
     uuid = models.UUIDField(default=uuid.uuid4, unique=True, editable=False)
     workshop = models.ForeignKey(Workshop, on_delete=models.PROTECT, related_name="imports")
+    subject = models.CharField(_("what is in the file"), max_length=8, choices=Subject.choices, default=Subject.ENTRIES)
     file = models.ForeignKey(Attachment, on_delete=models.PROTECT, related_name="+")
     mapping = models.JSONField(default=dict)
     changed_at = models.DateTimeField()
@@ -149,15 +158,18 @@ class Import(models.Model):
     imported_at = models.DateTimeField(null=True)
     first = models.BigIntegerField(null=True)
     last = models.BigIntegerField(null=True)
+    made = models.JSONField(default=dict)
 
     objects: "models.Manager[Import]" = ScopedManager(workshop="workshop")
 
     class Meta:
         constraints = [
-            models.UniqueConstraint(fields=["workshop", "file"], name="import_file_once"),
+            models.UniqueConstraint(fields=["workshop", "file", "subject"], name="import_file_once"),
+            models.CheckConstraint(condition=models.Q(subject__in=Subject.values), name="import_subject"),
             models.CheckConstraint(
                 condition=models.Q(imported_at=None, first=None, last=None)
-                | models.Q(imported_at__isnull=False, first__isnull=False, last__gte=models.F("first")),
+                | models.Q(imported_at__isnull=False, first__isnull=False, last__gte=models.F("first"))
+                | models.Q(imported_at__isnull=False, first=None, last=None, subject=Subject.REGISTER),
                 name="import_with_its_entries",
             ),
         ]
@@ -174,3 +186,95 @@ class Import(models.Model):
     def failed(self) -> bool:
         """Say whether the job gave up."""
         return self.job is not None and self.job.state == State.FAILED
+
+
+class CountDay(models.Model):
+    """Somebody walks along the shelves of a ``place`` (None: of the whole workshop) and says what is there.
+
+    It is over once it is finished, or ``abandoned`` without an entry. ``unseen`` names what nobody had seen by then.
+    """
+
+    uuid = models.UUIDField(default=uuid.uuid4, unique=True, editable=False)
+    workshop = models.ForeignKey(Workshop, on_delete=models.PROTECT, related_name="count_days")
+    place = models.ForeignKey(Place, null=True, blank=True, on_delete=models.PROTECT, related_name="+")
+    note = models.CharField(_("note"), max_length=200, blank=True)
+    started_at = models.DateTimeField()
+    started_by = models.ForeignKey(Membership, on_delete=models.PROTECT, related_name="+")
+    finished_at = models.DateTimeField(null=True)
+    finished_by = models.ForeignKey(Membership, null=True, on_delete=models.PROTECT, related_name="+")
+    abandoned = models.BooleanField(default=False)
+    unseen = models.JSONField(default=list)
+
+    objects: "models.Manager[CountDay]" = ScopedManager(workshop="workshop")
+
+    class Meta:
+        constraints = [
+            models.UniqueConstraint(
+                fields=["workshop", "place"], condition=models.Q(finished_at=None), name="count_day_open_once_at_place"
+            ),
+            models.UniqueConstraint(
+                fields=["workshop"], condition=models.Q(finished_at=None, place=None), name="count_day_open_once_of_all"
+            ),
+            models.CheckConstraint(
+                condition=models.Q(finished_at=None, finished_by=None, abandoned=False)
+                | models.Q(finished_at__isnull=False, finished_by__isnull=False),
+                name="count_day_finished_by_somebody",
+            ),
+        ]
+
+    def __str__(self) -> str:
+        return f"{self.place or self.workshop}: {self.started_at}"
+
+
+class Seen(models.TextChoices):
+    """What was said of a container on a count day: an amount, that the books are right, or that it is not there."""
+
+    AMOUNT = "amount", _("counted")
+    AGREES = "agrees", _("as the books say")
+    MISSING = "missing", _("not there")
+
+
+class CountLine(models.Model):
+    """A container was seen on a count day, or was not there. What is said again takes the earlier line back.
+
+    ``base`` and its standard uncertainty ``sd`` in micrograms or nanolitres, as the ``dimension`` says; ``typed`` and
+    ``typed_sd`` are what somebody wrote. ``entry`` is the count that followed once the day was finished.
+    """
+
+    uuid = models.UUIDField(default=uuid.uuid4, unique=True, editable=False)
+    day = models.ForeignKey(CountDay, on_delete=models.PROTECT, related_name="lines")
+    vessel = models.ForeignKey(Vessel, on_delete=models.PROTECT, related_name="count_lines")
+    said = models.CharField(max_length=8, choices=Seen.choices)
+    typed = models.CharField(max_length=60, blank=True)
+    dimension = models.CharField(max_length=8, blank=True)
+    base = models.BigIntegerField(null=True)
+    typed_sd = models.CharField(max_length=60, blank=True)
+    sd = models.BigIntegerField(null=True)
+    remark = models.CharField(_("remark"), max_length=200, blank=True)
+    seen_at = models.DateTimeField()
+    seen_by = models.ForeignKey(Membership, on_delete=models.PROTECT, related_name="+")
+    taken_back_at = models.DateTimeField(null=True)
+    taken_back_by = models.ForeignKey(Membership, null=True, on_delete=models.PROTECT, related_name="+")
+    entry = models.OneToOneField(Entry, null=True, on_delete=models.PROTECT, related_name="count_line")
+
+    objects: "models.Manager[CountLine]" = ScopedManager(workshop="day__workshop")
+
+    class Meta:
+        constraints = [
+            models.UniqueConstraint(
+                fields=["day", "vessel"], condition=models.Q(taken_back_at=None), name="count_line_once"
+            ),
+            models.CheckConstraint(
+                condition=models.Q(said=Seen.AMOUNT, base__gte=0, dimension__in=("mass", "volume"))
+                | models.Q(said__in=(Seen.AGREES, Seen.MISSING), base=None, sd=None, dimension=""),
+                name="count_line_amount_or_word",
+            ),
+            models.CheckConstraint(
+                condition=models.Q(taken_back_at=None, taken_back_by=None)
+                | models.Q(taken_back_at__isnull=False, taken_back_by__isnull=False, entry=None),
+                name="count_line_taken_back_by_somebody",
+            ),
+        ]
+
+    def __str__(self) -> str:
+        return f"{self.vessel}: {self.typed or self.get_said_display()}"
