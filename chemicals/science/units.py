@@ -107,6 +107,19 @@ _ALL: Final = (
     ),
     Dimension("ph", "a pH", "0.001 pH", "permille", "4.5 pH", (("pH", 0),)),
     Dimension("voltage", "a voltage", "uV", "uV", "3.5 V", (("V", 10**5), ("mV", 10**3), ("uV", 0))),
+    Dimension("speed", "a speed", "um/s", "um/s", "0.5 m/s", (("m/s", 10**4), ("mm/s", 10**3), ("um/s", 0))),
+    Dimension("surface_tension", "a surface tension", "uN/m", "uN/m", "45 mN/m", (("mN/m", 10**3), ("uN/m", 0))),
+    Dimension("baume", "degrees Baumé", "0.001 degBe", "permille", "32 degBe", (("degBe", 0),)),
+    Dimension(
+        "rational_baume",
+        "degrees Baumé (144.3)",
+        "0.001 degBe",
+        "permille",
+        "32 rational degBe",
+        (("rational degBe", 0),),
+    ),
+    Dimension("temperature_difference", "a difference of temperature", "mK", "mK", "0.5 K", (("K", 0),)),
+    Dimension("flow", "a flow", "nL/h", "nL/h", "1 L/h", (("L/h", 10**9), ("mL/h", 10**6), ("nL/h", 0))),
     Dimension("length", "a length", "nm", "nm", "10 um", (("m", 10**9), ("mm", 10**6), ("um", 10**3), ("nm", 0))),
 )
 

@@ -123,6 +123,16 @@ def test_each_calculation_has_the_schema_of_its_table(schema: Json) -> None:
         assert set(schema["components"]["schemas"][answer]["properties"]) == {spec.name for spec in calculation.outputs}
 
 
+def test_groups_lists_and_tables_of_calculations_are_described(schema: Json) -> None:
+    known = schema["components"]["schemas"]
+    assert set(known["TitrationInputSd"]["properties"]) >= {"titrant", "volume", "sample"}
+    assert known["TitrationInputSd"]["additionalProperties"] is False
+    assert known["TitrationInputSd"]["properties"]["volume"]["type"] == ["string", "number", "null"]
+    assert known["TitrationOutput"]["properties"]["budget"]["items"]["$ref"].endswith("/TitrationOutputBudget")
+    assert set(known["TitrationOutputBudget"]["properties"]) == {"quantity", "share"}
+    assert known["RinseOutput"]["properties"]["stage_concentrations_g_per_L"]["items"]["type"] == "number"
+
+
 def test_names_of_operations_are_words(schema: Json) -> None:
     names = [operation["operationId"] for _path, _method, operation in operations(schema)]
     assert len(names) == len(set(names))

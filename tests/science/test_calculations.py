@@ -12,7 +12,12 @@ from chemicals.science.calculation import InputField
 from chemicals.science.calculations import CALCULATIONS, CalculationErrors, calculate
 from chemicals.science.units import DIMENSIONS, find
 
-FIELDS = [(name, spec) for name, calculation in CALCULATIONS.items() for spec in calculation.inputs]
+FIELDS = [
+    (name, spec)
+    for name, calculation in CALCULATIONS.items()
+    for field in calculation.inputs
+    for spec in (field, *field.parts)
+]
 COPPER = {"element": "Cu", "valence": 2}
 RINSE = {"volume": "20 L", "drag_out_per_dip": "10 mL", "bath": "60 g/L"}
 LIMIT = {"value": 1.9, "sd": 0.1, "limit": 2.07}
@@ -48,9 +53,28 @@ def test_the_contract_of_names() -> None:
                 "basis",
             ],
         ),
+        "rinse": (
+            ["arrangement", "stages", "bath", "target", "drag_out"],
+            [
+                "dilution_ratio",
+                "water_L_per_h",
+                "water_per_drag_out",
+                "stage_concentrations_g_per_L",
+                "approximate_water_L_per_h",
+                "basis",
+            ],
+        ),
         "static-rinse": (
             ["volume", "drag_out_per_dip", "bath", "start", "dips", "target"],
             ["concentration_g_per_L", "dips", "metal_g", "basis"],
+        ),
+        "drag-out": (
+            ["rinse_volume", "dips", "rise", "bath", "area_per_dip"],
+            ["drag_out_mL_per_dip", "drag_out_mL_per_m2", "simple_mL_per_dip", "basis"],
+        ),
+        "titration": (
+            ["analyte", "titrant", "titre", "volume", "blank", "sample", "mole_ratio", "sd"],
+            ["concentration_g_per_L", "sd_g_per_L", "budget", "basis"],
         ),
         "limit": (
             ["value", "sd", "limit", "direction", "risk", "distribution"],
@@ -170,6 +194,7 @@ def test_limit() -> None:
         ("limit", LIMIT | {"risk": 0.6}, {"risk"}),
         ("limit", LIMIT | {"direction": "sideways", "distribution": "triangular"}, {"direction", "distribution"}),
         ("limit", {"value": -1, "sd": 1, "limit": 0, "distribution": "lognormal"}, {"value", "limit"}),
+        ("limit", {"value": -1, "sd": -1, "limit": 0, "distribution": "lognormal"}, {"value", "sd", "limit"}),
     ],
 )
 def test_bad_input_is_refused_by_field_all_at_once(name: str, data: Any, fields: set[str]) -> None:
@@ -218,13 +243,13 @@ def test_the_example_of_each_calculation_runs(name: str) -> None:
 
 @pytest.mark.parametrize(("name", "spec"), FIELDS, ids=lambda value: getattr(value, "name", value))
 def test_each_input_is_described_and_its_example_is_read(name: str, spec: InputField) -> None:
-    assert spec.kind in {"quantity", "number", "integer", "choice", "text"}
+    assert spec.kind in {"quantity", "number", "integer", "choice", "text", "deviation", "group"}
     assert all((name, spec.label, spec.help.endswith("."), spec.example))
-    assert spec.read(spec.example, spec) is not None
+    assert spec.read({} if spec.parts else spec.example, spec) is not None
     assert spec.default is None or not spec.required
     if spec.default is not None:
         assert spec.read(spec.default, spec) is not None
-    if spec.kind == "quantity":
+    if spec.dimension:
         assert DIMENSIONS[spec.dimension]
         assert find(spec.unit, spec.dimension)
         if spec.unit != "1":
@@ -233,9 +258,10 @@ def test_each_input_is_described_and_its_example_is_read(name: str, spec: InputF
 
 @pytest.mark.parametrize("name", CALCULATIONS)
 def test_each_output_is_described(name: str) -> None:
-    for spec in CALCULATIONS[name].outputs:
-        assert spec.label
-        assert spec.help.endswith(".")
+    for output in CALCULATIONS[name].outputs:
+        for spec in (output, *output.columns):
+            assert spec.label
+            assert spec.help.endswith(".")
 
 
 @given(st.floats(0.001, 1000), st.sampled_from([str, float, Decimal]))
@@ -244,7 +270,10 @@ def test_text_float_and_decimal_are_read_alike(value: float, kind: type) -> None
     assert calculate("faraday", COPPER | {"current": kind(repr(value)), "time": 3600}) == expected
 
 
-json_values = st.one_of(st.none(), st.booleans(), st.integers(), st.floats(), st.text(max_size=10), st.just("1 A"))
+json_scalars = st.one_of(st.none(), st.booleans(), st.integers(), st.floats(), st.text(max_size=10), st.just("1 A"))
+json_values = st.one_of(
+    json_scalars, st.lists(json_scalars, max_size=1), st.dictionaries(st.sampled_from(["volume"]), json_scalars)
+)
 
 
 @given(st.sampled_from(sorted(CALCULATIONS)), st.data())
@@ -255,5 +284,6 @@ def test_whatever_is_sent_is_calculated_or_refused_by_field(name: str, data: st.
     try:
         understood = bool(json.dumps(calculate(name, sent), allow_nan=False))
     except CalculationErrors as caught:
-        understood = all(error["field"] in {*names, "other"} and error["message"] for error in caught.errors)
+        known = {*names, "other", "sd.volume"}
+        understood = all(error["field"] in known and error["message"] for error in caught.errors)
     assert understood

@@ -204,7 +204,7 @@ class WebForm(Shown):
                 if int(path[0]) < len(filled) and path[1] in filled[int(path[0])].fields:
                     filled[int(path[0])].add_error(path[1], each.message)
                     continue
-            self.add_error(name if name in self.fields else None, each.message)
+            self.add_error(next((known for known in (each.field, name) if known in self.fields), None), each.message)
 
 
 class KeyForm(WebForm):
