@@ -20,7 +20,7 @@ _FACTS = {
     "lot": gettext_lazy("lot"),
     "received": gettext_lazy("received"),
     "opened": gettext_lazy("opened"),
-    "use by": gettext_lazy("use by"),
+    "keeps until": gettext_lazy("keeps until"),
     "decanted": gettext_lazy("decanted"),
     "decanted by": gettext_lazy("decanted by"),
     "mark": gettext_lazy("volume at the mark"),

@@ -132,8 +132,8 @@ class ManifestData(TypedDict):
 
 LabelSort = Literal["tank", "bottle", "secondary container"]
 Fact = Literal[
-    "note", "revision", "lot", "received", "opened", "use by", "decanted", "decanted by", "mark", "place", "supplier",
-    "supplier's telephone",
+    "note", "revision", "lot", "received", "opened", "keeps until", "decanted", "decanted by", "mark", "place",
+    "supplier", "supplier's telephone",
 ]  # fmt: skip
 
 

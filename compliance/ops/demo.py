@@ -16,6 +16,7 @@ from django_scopes import scope
 
 from chemicals.books.occurred import Occurred
 from chemicals.journal.services import add_attachment
+from chemicals.ledger.care import CareInput, change_vessels
 from chemicals.ledger.models import VesselKind
 from chemicals.ledger.periods import close_period
 from chemicals.ledger.services import create_vessel
@@ -177,6 +178,7 @@ class Demo:
 
     def create_vessel(self, row: Row) -> Any:
         """Create a stock container, an anode set, or what stands for solids."""
+        keeps_days = row.get("keeps_days")
         return create_vessel(
             actor=self.owner,
             now=self.begins,
@@ -185,6 +187,7 @@ class Demo:
             place=self.find("places", row.get("place")),
             product=self.find("products", row.get("product")),
             capacity=_base(row, "capacity", "volume"),
+            expires_on=None if keeps_days is None else self.moment(f"{-keeps_days} 00:00").date(),
         )
 
     def create_tank(self, row: Row) -> Any:
@@ -243,6 +246,7 @@ class Demo:
             self.things["entries"][label or str(done.entry.uuid)] = done.entry
         else:
             steps = {
+                "open containers": self.open_containers,
                 "close container": self.close_container,
                 "label container": self.label_container,
                 "pack drop-off": self.pack_drop_off,
@@ -254,6 +258,12 @@ class Demo:
                 "close period": self.close_period,
             }
             steps[verb](actor, now, said)
+
+    def open_containers(self, actor: Membership, now: datetime, said: Row) -> None:
+        """Note that containers were opened that day."""
+        vessels = [self.find_vessel(name) for name in said["vessels"]]
+        care = CareInput(opened_on=now.astimezone(self.zone).date())
+        change_vessels(actor=actor, now=now, vessels=vessels, care=care)
 
     def close_container(self, actor: Membership, now: datetime, said: Row) -> None:
         """Close a container with its gross weight."""

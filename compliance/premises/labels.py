@@ -108,6 +108,8 @@ def _bottle_facts(standing: Standing, received: Sequence[Received]) -> Iterator[
     days = ", ".join(dict.fromkeys(each.day.isoformat() for each in received))
     if days:
         yield _fact("received", days)
+    known = {"opened": standing.vessel.opened_on, "keeps until": standing.vessel.expires_on}
+    yield from (_fact(what, day.isoformat()) for what, day in known.items() if day is not None)
     suppliers = dict.fromkeys(row.product.supplier for row in standing.revisions if row.product.supplier)
     yield from (_fact("supplier", supplier) for supplier in suppliers)
     numbers = dict.fromkeys(row.supplier_telephone for row in standing.revisions if row.supplier_telephone)

@@ -62,7 +62,7 @@ def bottle(**other: Any) -> Data:
         facts=[
             {"what": "revision", "value": "3"},
             {"what": "lot", "value": "A-118"},
-            {"what": "use by", "value": "2028-02-01"},
+            {"what": "keeps until", "value": "2028-02-01"},
             {"what": "supplier", "value": "Invented Supplies"},
             {"what": "supplier's telephone", "value": "000 222"},
         ],

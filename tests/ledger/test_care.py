@@ -7,9 +7,10 @@ from typing import Any
 import pytest
 from django_scopes import scope
 
+from chemicals.ledger.care import CareInput, change_vessels
 from chemicals.ledger.models import Vessel, VesselChange, VesselKind
 from chemicals.ledger.selectors import list_changes_of
-from chemicals.ledger.services import CareInput, change_vessels, create_vessel
+from chemicals.ledger.services import create_vessel
 from chemicals.register.models import Product
 from chemicals.workshop.errors import InvalidInputError, NotPermittedError
 from chemicals.workshop.models import Membership

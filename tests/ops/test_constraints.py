@@ -13,7 +13,7 @@ from django.db.models import CheckConstraint, Model, UniqueConstraint
 from chemicals.jobs.models import Job, Schedule
 from chemicals.journal import triggers
 from chemicals.journal.models import Attachment, Entry
-from chemicals.ledger.models import ClosingHolding, Component, Finding, Period, Vessel, VesselChange
+from chemicals.ledger.models import ClosingHolding, Component, Finding, Period, Vessel
 from chemicals.process.models import Import
 from compliance.ops.verify import our_models
 from tests.ops.conftest import LOADED_AT
@@ -138,6 +138,16 @@ EXAMPLES: dict[str, dict[str, Change]] = {
         "import_file_once": twice,
         "import_with_its_entries": lambda row: {"file_id": another_file(row).pk, "imported_at": LOADED_AT},
     },
+    "process.CountDay": {
+        "count_day_open_once_at_place": twice,
+        "count_day_open_once_of_all": {"place_id": None},
+        "count_day_finished_by_somebody": {"finished_at": LOADED_AT, "finished_by_id": None},
+    },
+    "process.CountLine": {
+        "count_line_once": twice,
+        "count_line_amount_or_word": {"said": "amount", "base": None},
+        "count_line_taken_back_by_somebody": {"taken_back_at": LOADED_AT},
+    },
     "documents.Paper": {"paper_number_once": on_another_entry, "paper_kind": {"kind": "poem"}},
     "premises.ChosenRule": {"chosen_rule_named": {"rule": ""}},
     "waste.WasteStream": {"waste_stream_name_once": twice},
@@ -169,13 +179,6 @@ def first_row(model: type[Model]) -> Model:
             "until": LOADED_AT,
             "sequence": 1,
             "fold_version": 1,
-        },
-        VesselChange: {
-            "workshop_id": entry.workshop_id,
-            "vessel_id": a_vessel(),
-            "fact": "place",
-            "changed_at": LOADED_AT,
-            "changed_by_id": entry.member_id,
         },
         Import: {
             "workshop_id": entry.workshop_id,

@@ -1,7 +1,7 @@
 """Labels of vessels, issued from the books: what they say, that they are numbered and stay as they are."""
 
 import hashlib
-from datetime import timedelta
+from datetime import date, timedelta
 from typing import Any
 from uuid import uuid4
 
@@ -12,6 +12,7 @@ from django.test.utils import CaptureQueriesContext
 from django_scopes import scope
 
 from chemicals.journal.models import Entry
+from chemicals.ledger.care import CareInput, change_vessels
 from chemicals.ledger.models import Vessel
 from chemicals.process.models import Tank
 from chemicals.register.models import ProductRevision
@@ -100,6 +101,16 @@ def test_a_bottle_says_its_product_and_its_revision(filled: Shop) -> None:
         "place": "Bench",
     }
     assert said["url"] == f"http://bench.local:8000/c/{said['code']}"
+
+
+def test_a_bottle_says_when_it_was_opened_and_until_when_it_keeps(filled: Shop) -> None:
+    with scope(workshop=filled.member.workshop):
+        jar = Vessel.objects.get(name="Jar 3")
+    assert not {"opened", "keeps until"} & facts(label(filled, "Jar 3")).keys()
+    care = CareInput(opened_on=date(2026, 2, 22), expires_on=date(2028, 1, 31))
+    change_vessels(actor=filled.member, now=filled.now, vessels=[jar], care=care)
+    said = facts(label(filled, "Jar 3"))
+    assert (said["opened"], said["keeps until"]) == ("2026-02-22", "2028-01-31")
 
 
 def test_a_bottle_says_the_lots_and_the_days_since_it_was_last_empty(filled: Shop) -> None:

@@ -18,7 +18,7 @@ from tests.web.conftest import Line, Visitor, text_of
 
 WRITING = (
     "add-product", "add-substance", "add-anode", "add-holder", "add-rack-type", "add-route", "add-stream",
-    "add-container",
+    "add-container", "new-jar", "change-containers",
     "add-drop-off", "add-receiver", "add-place", "add-token",
 )  # fmt: skip
 OWNING = ("workshop-settings", "invite")
@@ -42,6 +42,7 @@ def reading(line: Line, owner: Membership) -> Iterator[tuple[str, tuple[object, 
     names = (
         "today",
         "register",
+        "jars",
         "substances",
         "tanks",
         "entries",
@@ -65,7 +66,8 @@ def writing(line: Line) -> Iterator[tuple[str, tuple[object, ...]]]:
     yield from ((name, ()) for name in WRITING)
     yield "add-tank", ("bath",)
     yield "add-tank", ("rinse",)
-    yield "add-stock", (line.salt.uuid,)
+    yield "care", (line.tub.uuid,)
+    yield "care", (line.bath.uuid,)
     yield "revise-product", (line.salt.uuid,)
 
 

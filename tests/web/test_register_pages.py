@@ -109,14 +109,6 @@ def test_a_substance_is_checked(visit: Visitor) -> None:
     assert visit.post("add-substance", name="Nickel sulfate", formula="NiSO4.6H2O").status_code == 302
 
 
-def test_a_container_is_set_up_for_a_product(visit: Visitor, line: Line) -> None:
-    page = visit.post("add-stock", line.salt.uuid, name="Salt tub 2", capacity="5 L")
-    vessel = Vessel._base_manager.get(name="Salt tub 2")
-    assert page.headers["Location"] == visit.address("vessel", vessel.uuid)
-    assert (vessel.product_id, vessel.capacity) == (line.salt.pk, 5 * LITRE)
-    assert visit.post("add-stock", line.salt.uuid, name="Salt tub 2").status_code == 400
-
-
 def test_a_bath_is_set_up_with_figures_as_typed(visit: Visitor, line: Line) -> None:
     visit.post("add-anode", name="Anodes")
     anode = Vessel._base_manager.get(name="Anodes")
@@ -183,7 +175,6 @@ def test_things_of_another_workshop_are_not_found(stranger: Membership, line: Li
     assert visitor.get("product", line.salt.uuid).status_code == 404
     assert visitor.get("vessel", line.bath.uuid).status_code == 404
     assert visitor.get("waste-container", line.drum.vessel.uuid).status_code == 404
-    assert visitor.post("add-stock", line.salt.uuid, name="Mine").status_code == 404
 
 
 def test_a_file_too_large_for_a_sheet_is_refused(visit: Visitor, monkeypatch: pytest.MonkeyPatch) -> None:

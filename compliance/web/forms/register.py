@@ -22,7 +22,6 @@ from compliance.documents.pictograms import SYMBOLS
 from compliance.documents.words import symbol_name
 from compliance.web.forms.base import Group, Row, Rows, WebForm
 from compliance.web.forms.fields import (
-    AmountField,
     DayField,
     FlagField,
     LineField,
@@ -285,16 +284,6 @@ def start_from(revision: ProductRevision) -> dict[str, Any]:
             ],
         },
     }
-
-
-class StockForm(WebForm):
-    """A container of a product."""
-
-    def __init__(self, member: Membership, data: Any = None, *, name: str = "") -> None:
-        super().__init__(data, initial={"name": name})
-        self.fields["name"] = LineField(label=_("Name"), max_length=80, help_text=_("As written on the container."))
-        self.fields["place"] = place_field(member)
-        self.fields["capacity"] = AmountField(["volume"], example="2.5 L", label=_("Holds at most"), required=False)
 
 
 def place_field(member: Membership) -> ThingField:

@@ -12,7 +12,6 @@ from django.utils.translation import ngettext
 from chemicals.journal.models import Attachment
 from chemicals.ledger.models import VesselKind
 from chemicals.ledger.selectors import list_contents_for, list_vessels_for
-from chemicals.process.setup import create_holder
 from chemicals.register.selectors import (
     get_current_revision,
     get_product_for,
@@ -35,7 +34,6 @@ from chemicals.science.quantity import show as show_amount
 from chemicals.science.reactivity import REACTS_AS, declared
 from chemicals.workshop.models import Membership
 from chemicals.workshop.permissions import require_writer
-from chemicals.workshop.selectors import get_place_for
 from compliance.web.catalogue import Described, HazardLines, limit_words, sheet_mark
 from compliance.web.contents import CONTENT_COLUMNS, parts_of
 from compliance.web.door import page, show
@@ -43,7 +41,6 @@ from compliance.web.export import Column, wanted_file
 from compliance.web.forms.register import (
     ProductForm,
     RevisionForm,
-    StockForm,
     SubstanceForm,
     start_from,
     start_substance,
@@ -220,30 +217,3 @@ def revise(request: HttpRequest, member: Membership, uuid: UUID) -> HttpResponse
     words = {"heading": _("Revise %(product)s") % {"product": found}, "button": _("Write the next revision")}
     back = address("product", member, found.uuid)
     return fill_in(request, member, form, act, here="register", back=back, **words)
-
-
-@page("GET", "POST", need=require_writer)
-def add_stock(request: HttpRequest, member: Membership, uuid: UUID) -> HttpResponse:
-    """Set up a container for a product."""
-    found = get_product_for(member, uuid)
-
-    def act(form: StockForm) -> str:
-        cleaned = form.cleaned_data
-        vessel = create_holder(
-            actor=member,
-            now=timezone.now(),
-            kind=VesselKind.STOCK,
-            name=cleaned["name"],
-            product=found,
-            place=cleaned["place"] and get_place_for(member, cleaned["place"]),
-            capacity=cleaned["capacity"] and cleaned["capacity"].base,
-        )
-        return address("vessel", member, vessel.uuid)
-
-    form = StockForm(member, sent(request), name=found.name)
-    words = {
-        "heading": _("A container for %(product)s") % {"product": found},
-        "button": _("Set up the container"),
-        "intro": _("It is empty until something is received into it."),
-    }
-    return fill_in(request, member, form, act, here="register", back=address("product", member, found.uuid), **words)

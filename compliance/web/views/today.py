@@ -1,11 +1,13 @@
 """Today: what happened last, what is full, what must be looked at."""
 
 from django.http import HttpRequest, HttpResponse
+from django.utils import timezone
 
 from chemicals.journal.selectors import list_entries_for, list_incidents_for
 from chemicals.ledger.selectors import get_recomputed_to, list_findings_for
 from chemicals.process.selectors import list_open_analyses_for
 from chemicals.workshop.models import Membership
+from compliance.premises.expiry import list_running_out
 from compliance.waste.selectors import list_filling_for
 from compliance.web import words
 from compliance.web.door import page, show
@@ -13,6 +15,7 @@ from compliance.web.rows import ends_of, entry_rows
 
 LAST = 8
 """How many entries and findings the first page shows."""
+MOST_RUNNING_OUT = 10
 
 
 @page()
@@ -30,5 +33,6 @@ def today(request: HttpRequest, member: Membership) -> HttpResponse:
         findings=[(found.entry, words.finding(found, ends)) for found in findings],
         analyses=[(entry, event, ends.name(event.vessel)) for entry, event in list_open_analyses_for(member)],
         filling=list_filling_for(member),
+        running_out=list_running_out(member, timezone.localdate(), MOST_RUNNING_OUT),
         recomputing=get_recomputed_to(member.workshop),
     )

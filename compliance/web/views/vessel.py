@@ -1,33 +1,48 @@
 """The page of a vessel: what it holds, and what is done most at a bench."""
 
+from typing import Any
 from uuid import UUID
 
-from django.http import HttpRequest, HttpResponse, HttpResponseRedirect
+from django.http import HttpRequest, HttpResponseBase, HttpResponseRedirect
+from django.utils import timezone
 
 from chemicals.journal.selectors import list_entries_naming
-from chemicals.ledger.models import VesselKind
-from chemicals.ledger.selectors import get_recomputed_to, get_vessel_for, read_contents
+from chemicals.ledger.care import CONTAINERS
+from chemicals.ledger.models import Vessel, VesselKind
+from chemicals.ledger.selectors import get_recomputed_to, get_vessel_for, list_changes_of, read_contents
 from chemicals.process.selectors import find_last_run, get_tank_of, list_open_analyses_for
 from chemicals.science.reactivity import REACTS_AS
 from chemicals.workshop.models import Membership
 from compliance.clearance.selectors import react_as
-from compliance.premises.selectors import list_labels_of
+from compliance.premises.expiry import Keeping
+from compliance.premises.received import list_received
+from compliance.premises.selectors import list_labels_of, list_standing_for
 from compliance.web.bench import list_bench, list_groups
 from compliance.web.door import page, show
+from compliance.web.export import Column, wanted_file
 from compliance.web.rows import entry_rows
 from compliance.web.views.acts import address
 
 LAST = 10
-"""How many entries the page of a vessel shows."""
+"""How many entries, and how many changes, the page of a vessel shows."""
+CHANGE_COLUMNS = (
+    Column("changed", lambda row: row.changed_at),
+    Column("by", lambda row: str(row.changed_by.user)),
+    Column("what", lambda row: row.fact),
+    Column("before", lambda row: row.before),
+    Column("after", lambda row: row.after),
+)
 
 
 @page()
-def vessel(request: HttpRequest, member: Membership, uuid: UUID) -> HttpResponse:
+def vessel(request: HttpRequest, member: Membership, uuid: UUID) -> HttpResponseBase:
     """Show a vessel; the code on it opens this page."""
     found = get_vessel_for(member, uuid)
     if found.kind == VesselKind.WASTE:
         return HttpResponseRedirect(address("waste-container", member, found.uuid))
-    return show(
+    changes = list_changes_of(found)
+    file = wanted_file(request, changes=(CHANGE_COLUMNS, lambda: changes), about=found.code)
+    return file or show(
         request,
         member,
         "web/vessel.html",
@@ -43,4 +58,18 @@ def vessel(request: HttpRequest, member: Membership, uuid: UUID) -> HttpResponse
         analyses=[pair for pair in list_open_analyses_for(member) if pair[1].vessel == str(found.uuid)],
         papers=list_labels_of(found, member),
         rows=entry_rows(member, list_entries_naming(member, found.uuid)[:LAST]),
+        changes=changes[:LAST],
+        **_known(member, found),
     )
+
+
+def _known(member: Membership, found: Vessel) -> dict[str, Any]:
+    """Return what is known of a container beside what it holds."""
+    if found.kind not in CONTAINERS:
+        return {}
+    return {
+        "is_container": True,
+        "standing": list_standing_for(member, [found.uuid])[0],
+        "received": list_received(member, [found]).get(str(found.uuid), ()),
+        "keeping": Keeping.of(found, timezone.localdate()),
+    }
