@@ -2,7 +2,8 @@
 
 data/ghs_labels.csv: for each statement what a label shows (CLP annex III; acute toxicity as read in annex I table
 3.1.3). data/classified_substances.csv: whole classifications with their labels, two of them read on International
-Chemical Safety Cards, the rest from memory of CLP annex VI.
+Chemical Safety Cards, the rest from memory of CLP annex VI. data/pictograms_by_class.csv: which classes have which
+pictogram, as a public list prints it. data/label_tables.csv: signal words and statements of CLP annex I, as read.
 """
 
 import csv
@@ -21,6 +22,8 @@ def rows(name: str) -> list[dict[str, str]]:
 
 LABELS = rows("ghs_labels.csv")
 CLASSIFIED = rows("classified_substances.csv")
+PICTURED = rows("pictograms_by_class.csv")
+TABLES = rows("label_tables.csv")
 
 
 @pytest.mark.parametrize("row", LABELS, ids=lambda row: str(row["code"]))
@@ -38,6 +41,27 @@ def test_no_class_is_left_out_of_the_printed_list() -> None:
     printed = {row["code"] for row in LABELS}
     combined = {"H360Fd", "H360Df", "H361fd"}  # joined from two statements of the list (CLP annex III, memory)
     assert {code for each in list_classes() for code in each.codes} - printed == combined
+
+
+@pytest.mark.parametrize("kind", sorted({row["class"] for row in PICTURED}))
+def test_a_class_has_the_pictograms_of_the_printed_list(kind: str) -> None:
+    known = find_class(kind)
+    assert known is not None
+    assert set(known.pictograms) == {row["pictogram"] for row in PICTURED if row["class"] == kind}
+
+
+@pytest.mark.parametrize("row", TABLES, ids=lambda row: str(row["class"]))
+def test_a_class_has_the_signal_word_and_the_statements_of_its_table(row: dict[str, str]) -> None:
+    known = find_class(row["class"])
+    assert known is not None
+    assert (known.signal_word, set(known.codes)) == (row["signal_word"], set(row["statements"].split()))
+
+
+def test_a_poster_that_gives_chronic_category_3_a_pictogram_is_wrong() -> None:
+    # psse-stalowawola.pl, "Produkty chemiczne", lists chronic categories 1, 2, 3 under GHS09; the table has none for 3
+    known = find_class("Aquatic Chronic 3")
+    assert known is not None
+    assert known.pictograms == frozenset()
 
 
 @pytest.mark.parametrize("row", CLASSIFIED, ids=lambda row: str(row["name"]))
