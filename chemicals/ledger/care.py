@@ -8,12 +8,14 @@ from enum import Enum
 from django.db import transaction
 from django_scopes import scope
 
-from chemicals.ledger.models import Vessel, VesselChange, VesselFact, VesselKind
+from chemicals.ledger import gone
+from chemicals.ledger.models import LONGEST_NOTE, Vessel, VesselChange, VesselFact, VesselKind
 from chemicals.ledger.selectors import is_known_empty
 from chemicals.workshop.errors import FieldError, InvalidInputError
 from chemicals.workshop.models import Membership, Place
 from chemicals.workshop.permissions import require_same_workshop, require_writer
 from chemicals.workshop.rows import check_row
+from chemicals.workshop.texts import find_bad_lines, tidy
 
 
 class Keep(Enum):
@@ -36,6 +38,8 @@ class CareInput:
     opened_on: date | Keep | None = KEEP
     expires_on: date | Keep | None = KEEP
     gone: bool | Keep = KEEP
+    note: str = ""
+    """Why, or how: kept beside what changes."""
 
 
 def change_vessels(*, actor: Membership, now: datetime, vessels: Sequence[Vessel], care: CareInput) -> list[Vessel]:
@@ -50,6 +54,7 @@ def change_vessels(*, actor: Membership, now: datetime, vessels: Sequence[Vessel
         rows = Vessel.objects.select_for_update(of=("self",)).select_related("place", "workshop", "product")
         found = list(rows.filter(pk__in=[vessel.pk for vessel in vessels]).order_by("name"))
         errors = [] if found else [FieldError("vessels", "Nothing is named. Choose what shall change.")]
+        errors += _check_note(care.note)
         notes = [note for vessel in found for note in _change(vessel, care, actor, now)]
         errors += [error for vessel in found for error in _check_care(vessel, care, now)]
         if errors:
@@ -62,15 +67,15 @@ def change_vessels(*, actor: Membership, now: datetime, vessels: Sequence[Vessel
 
 def _change(vessel: Vessel, care: CareInput, actor: Membership, now: datetime) -> Iterator[VesselChange]:
     """Put what is said into a row, and yield a note of everything that differs."""
-    gone: datetime | Keep | None = care.gone if isinstance(care.gone, Keep) else (now if care.gone else None)
-    if vessel.gone_at is not None and gone is not None:
-        gone = KEEP
+    left: datetime | Keep | None = care.gone if isinstance(care.gone, Keep) else (now if care.gone else None)
+    if vessel.gone_at is not None and left is not None:
+        left = KEEP
     said = {
         VesselFact.NAME: ("name", care.name),
         VesselFact.PLACE: ("place", care.place),
         VesselFact.OPENED: ("opened_on", care.opened_on),
         VesselFact.EXPIRES: ("expires_on", care.expires_on),
-        VesselFact.GONE: ("gone_at", gone),
+        VesselFact.GONE: ("gone_at", left),
     }
     for fact, (field, value) in said.items():
         before = getattr(vessel, field)
@@ -83,6 +88,7 @@ def _change(vessel: Vessel, care: CareInput, actor: Membership, now: datetime) -
             fact=fact,
             before=_tell(before, vessel),
             after=_tell(value, vessel),
+            note=tidy(care.note),
             changed_at=now,
             changed_by=actor,
         )
@@ -104,6 +110,15 @@ def _check_care(vessel: Vessel, care: CareInput, now: datetime) -> Iterator[Fiel
         yield from check_days(vessel, now)
     if care.gone is True and not is_known_empty(vessel):
         yield FieldError("vessels", f"{vessel.name} is not known to be empty. Count it, or record where it went.")
+    if care.gone is False and gone.is_handed_over(vessel):
+        message = f"{vessel.name} was handed over. Cancel that entry, if it never left; else set up another container."
+        yield FieldError("vessels", message)
+
+
+def _check_note(note: str) -> Iterator[FieldError]:
+    yield from find_bad_lines(note=note)
+    if len(note) > LONGEST_NOTE:
+        yield FieldError("note", f"This is too long. Write it in at most {LONGEST_NOTE} characters.")
 
 
 def check_days(vessel: Vessel, now: datetime) -> Iterator[FieldError]:

@@ -17,7 +17,7 @@ from chemicals.jobs.services import enqueue
 from chemicals.journal import selectors as journal
 from chemicals.journal.models import Entry, Head
 from chemicals.journal.services import lock_head
-from chemicals.ledger import projection, recompute
+from chemicals.ledger import gone, projection, recompute
 from chemicals.ledger.followed import components_of
 from chemicals.ledger.models import Books
 from chemicals.ledger.projection import Names, Order
@@ -37,8 +37,8 @@ def find_start(entry: Entry, event: events.Event) -> Order | None:
     """
     if isinstance(event, events.Cancellation):
         accepted = Q(about=entry.about, kind=events.Acceptance.KIND)
-        gone = Entry.objects.filter(Q(uuid=event.entry) | accepted, kind__in=recompute.folding_kinds())
-        first = gone.order_by("occurred_at", "sequence").first()
+        removed = Entry.objects.filter(Q(uuid=event.entry) | accepted, kind__in=recompute.folding_kinds())
+        first = removed.order_by("occurred_at", "sequence").first()
         return None if first is None else order_of(first)
     if type(event) not in fold.FOLDS:
         return None
@@ -147,6 +147,7 @@ def _go_on(books: Books, state: State, stretch: Stretch, done: int) -> Step | No
     if stretch.beyond is None:
         projection.replace_holdings(books.workshop, state, names)
         recompute.stand(books.workshop)
+        gone.settle()
         return None
     projection.add_missing_holdings(books.workshop, state, names)
     books.recomputed_to, books.recomputed_sequence = stretch.beyond

@@ -22,6 +22,8 @@ from chemicals.workshop.searched import Searched
 
 LARGEST = 10**15
 """The largest amount: a tonne of metal, or a thousand cubic metres."""
+LONGEST_NOTE = 200
+"""Characters that may be said of a change."""
 
 
 class VesselKind(models.TextChoices):
@@ -87,13 +89,17 @@ class VesselFact(models.TextChoices):
 
 
 class VesselChange(models.Model):
-    """Who changed what of a vessel, and when: before and after as people read them, empty where nothing was."""
+    """Who changed what of a vessel, and when: before and after as people read them, empty where nothing was.
+
+    ``note`` says why, or how.
+    """
 
     workshop = models.ForeignKey(Workshop, on_delete=models.PROTECT, related_name="vessel_changes")
     vessel = models.ForeignKey(Vessel, on_delete=models.PROTECT, related_name="changes")
     fact = models.CharField(max_length=8, choices=VesselFact.choices)
     before = models.CharField(max_length=80, blank=True)
     after = models.CharField(max_length=80, blank=True)
+    note = models.CharField(max_length=LONGEST_NOTE, blank=True, default="")
     changed_at = models.DateTimeField()
     changed_by = models.ForeignKey(Membership, on_delete=models.PROTECT, related_name="+")
 

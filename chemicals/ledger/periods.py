@@ -21,7 +21,7 @@ from chemicals.books.fold.state import State
 from chemicals.journal import services as journal
 from chemicals.journal.models import Entry
 from chemicals.journal.selectors import get_head
-from chemicals.ledger import late, projection, recompute
+from chemicals.ledger import gone, late, projection, recompute
 from chemicals.ledger.models import Period
 from chemicals.workshop.errors import ConflictError, FieldError, InvalidInputError
 from chemicals.workshop.models import Membership, Workshop
@@ -172,8 +172,9 @@ def reopen_period(*, actor: Membership, now: datetime, key: UUID, period: Period
             raise InvalidInputError.of("period", "Only the last closed period can be opened again. Open that one.")
         period.reopening = _append(actor, now, key, events.PeriodReopening(period.closing.uuid, reason))
         period.save(update_fields=["reopening"])
-        if period.fold_version != fold.VERSION:
-            late.fold_again(actor.workshop, now, recompute.start_after(recompute.get_last_close()))
+        start = recompute.start_after(recompute.get_last_close())
+        if period.fold_version != fold.VERSION and late.fold_again(actor.workshop, now, start):
+            gone.settle()
         return period
 
 

@@ -11,7 +11,7 @@ from chemicals.books import events, fold
 from chemicals.books.events import BOUNDARIES
 from chemicals.journal.models import Entry
 from chemicals.journal.services import lock_head
-from chemicals.ledger import late, periods, projection, recompute
+from chemicals.ledger import gone, late, periods, projection, recompute
 from chemicals.ledger.care import check_days
 from chemicals.ledger.codes import make_code
 from chemicals.ledger.followed import NOTHING, components_of, read_followed, write_followed
@@ -23,6 +23,9 @@ from chemicals.workshop.errors import FieldError, InvalidInputError
 from chemicals.workshop.models import Membership, Place, Workshop
 from chemicals.workshop.permissions import require_same_workshop, require_writer
 from chemicals.workshop.rows import check_row
+
+BATCH = 500
+"""Vessels that are written at once."""
 
 
 def create_vessel(
@@ -72,6 +75,34 @@ def create_vessel(
     return vessel
 
 
+def check_vessel(vessel: Vessel, now: datetime) -> list[FieldError]:
+    """Return everything that is wrong with a vessel that is not written yet, but whether its name is free."""
+    others = ["code", "workshop", "place", "product", "created_by"]
+    return [*check_row(vessel, leave_out=others), *check_days(vessel, now)]
+
+
+def create_vessels(*, actor: Membership, now: datetime, vessels: Sequence[Vessel]) -> None:
+    """Write vessels of the actor's own workshop that were checked, each with a fresh code; a few queries for all.
+
+    Raises IntegrityError where a name was taken meanwhile.
+    """
+    require_writer(actor)
+    for vessel, code in zip(vessels, _free_codes(len(vessels)), strict=True):
+        vessel.code, vessel.created_at, vessel.created_by = code, now, actor
+        vessel.note_searched()
+    with transaction.atomic(), scope(workshop=actor.workshop):
+        Vessel.objects.bulk_create(vessels, batch_size=BATCH)
+
+
+def _free_codes(count: int) -> list[str]:
+    free: set[str] = set()
+    with scopes_disabled():
+        while len(free) < count:
+            fresh = {make_code() for _ in range(min(BATCH, count - len(free)))}
+            free |= fresh - set(Vessel.objects.filter(code__in=fresh).values_list("code", flat=True))
+    return list(free)
+
+
 def _free_code() -> str:
     with scopes_disabled():
         for _ in range(20):
@@ -98,10 +129,13 @@ def project_entry(entry: Entry, event: events.Event) -> fold.Folded:
         if books.position is None and books.fold_version != fold.VERSION:
             refold(entry.workshop)
         elif books.position is None and start == recompute.order_of(entry) and not late.count_later(start):
-            return _fold_at_the_end(entry, event)
+            folded = _fold_at_the_end(entry, event)
+            gone.settle(gone.concerned([(entry, event)]))
+            return folded
         elif not late.fold_again(entry.workshop, entry.recorded_at, start):
             late.remember_meanwhile(entry.workshop, entry, event)
             return NOTHING
+        gone.settle(gone.concerned([(entry, event)]))
         return read_followed([entry], projection.Names(entry.workshop, ()))[entry.pk] or NOTHING
 
 
@@ -123,6 +157,7 @@ def project_entries(workshop: Workshop, now: datetime, recorded: Sequence[tuple[
         elif not late.fold_again(workshop, now, recompute.order_of(first[0])):
             remember_all(workshop, recorded)
             return False
+        gone.settle(gone.concerned(recorded))
         return True
 
 
@@ -144,6 +179,7 @@ def refold(workshop: Workshop) -> None:
         last = recompute.get_last_close()
         recompute.get_books(workshop)
         recompute.refold_from(workshop, projection.load_closing_state(last), recompute.start_after(last))
+        gone.settle()
 
 
 def refold_outdated() -> list[Workshop]:

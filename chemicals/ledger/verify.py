@@ -20,9 +20,9 @@ from chemicals.jobs import models as jobs
 from chemicals.journal import selectors as journal
 from chemicals.journal.models import Entry
 from chemicals.journal.verify import Problem
-from chemicals.ledger import projection, recompute
+from chemicals.ledger import gone, projection, recompute
 from chemicals.ledger.followed import NOTHING, as_kept, read_followed
-from chemicals.ledger.models import Books, Period
+from chemicals.ledger.models import Books, Period, Vessel
 from chemicals.ledger.periods import as_columns
 from chemicals.ledger.projection import Names, Order
 from chemicals.workshop.models import Workshop
@@ -157,6 +157,7 @@ class Proof:
         yield from self._compare(followed, wanted)
         if position is None:
             yield from self._compare_holdings(state)
+            yield from self._compare_gone()
 
     def _compare(self, followed: Mapping[UUID, Folded], wanted: set[UUID]) -> Iterator[Problem]:
         """Yield the wanted entries whose rows are not what followed."""
@@ -175,6 +176,15 @@ class Proof:
         for vessel in sorted(set(now.vessels) | set(state.vessels)):
             if now.vessels.get(vessel) != state.vessels.get(vessel):
                 yield Problem(None, f"What was poured into vessel {vessel} is not what the entries say.")
+
+
+    def _compare_gone(self) -> Iterator[Problem]:
+        """Yield what was handed over and is said to be here, or gone since another moment, or the reverse."""
+        told = gone.tell()
+        for vessel in Vessel.objects.filter(uuid__in=told).order_by("pk"):
+            said = told[str(vessel.uuid)]
+            if vessel.gone_at != said.wanted(vessel):
+                yield Problem(said.sequence, f"Since when vessel {vessel.uuid} is gone is not what its entries say.")
 
 
 def _tell_closings(told: Iterable[fold.Entry]) -> Iterator[Closing]:

@@ -1,6 +1,7 @@
 """Turns what a person says into names and rows, and collects everything that is wrong with it."""
 
 from collections.abc import Callable, Hashable
+from datetime import datetime
 from typing import Any, TypeVar
 from uuid import UUID
 
@@ -21,6 +22,12 @@ from chemicals.workshop.models import Membership
 
 WATER = Figure(998_200, 2_000, "water at 20 °C, 0.9982 g/mL (CRC Handbook); hotter or colder is within the uncertainty")
 """Density of water in ug/mL."""
+
+
+GONE = (
+    "%(vessel)s is gone since %(day)s. If it stands here again, say so on its page; if it was never handed over, "
+    "cancel that entry; else set up another container."
+)
 
 
 Row = TypeVar("Row", bound=Model)
@@ -64,6 +71,8 @@ class Draft:
         self.member = member
         self.known = known or Known()
         self.errors: list[FieldError] = []
+        self.vessels: list[tuple[str, Vessel]] = []
+        """Every vessel that was named, under its field."""
 
     def refuse(self, field: str, message: str) -> None:
         """Note what is wrong with a field and how to mend it."""
@@ -87,7 +96,17 @@ class Draft:
         if vessel is None or vessel.kind not in kind.kinds:
             self.refuse(under + field, "There is no such vessel here. Choose one from the list.")
             return None
+        self.vessels.append((under + field, vessel))
         return vessel
+
+    def find_gone(self, at: datetime) -> tuple[FieldError, ...]:
+        """Return what is wrong with the named vessels that are gone at a moment."""
+        zone = self.member.workshop.zone
+        return tuple(
+            FieldError(field, GONE % {"vessel": vessel, "day": vessel.gone_at.astimezone(zone).date().isoformat()})
+            for field, vessel in self.vessels
+            if vessel.gone_at is not None and vessel.gone_at <= at
+        )
 
     def component(self, field: str, said: str, *, bulk: bool = False) -> str | None:
         """Return what is balanced by its code: a metal, a species, a solute declared inert; ``bulk``: as a whole."""

@@ -37,6 +37,7 @@ def try_out(member: Membership, now: datetime, data: Input, occurred: Occurred |
     """Return what recording the input would do. Writes nothing; raises InvalidInputError as recording would."""
     with scope(workshop=member.workshop):
         built = build(member, now, data, occurred)
+        built.require_here()
         state = ledger.load_state(member.workshop, built.event.vessels())
         return Trial(built.event, built.occurred, fold.fold_event(state, built.event))
 

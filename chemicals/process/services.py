@@ -49,6 +49,7 @@ def record_matter(
             attachments=attachments,
         )
         if appended.is_new:
+            built.require_here()
             if appended.entry.about is not None:
                 require_possible(appended.entry.about, built.event, but=appended.entry)
             project_entry(appended.entry, built.event)

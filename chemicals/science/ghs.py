@@ -25,6 +25,8 @@ _BESIDE: Final = "H229"  # stands beside another statement of its class, never i
 _INCLUDED: Final = {"H318": "H314", "H400": "H410"}  # left out where the other one stands: it says it as well
 _IRRITANTS: Final = ("Skin Irrit.", "Eye Irrit.")
 _MANY_CATEGORIES: Final = ("Specific target organ toxicity", "Explosives")  # by organ; by packing
+_VERY_TOXIC_CODES: Final = frozenset({"H300", "H310", "H330"})
+_VERY_TOXIC_CLASSES: Final = ("Acute Tox. 1", "Acute Tox. 2")
 
 MESSAGES: Final = {
     "statement-missing": "%(kind)s calls for %(codes)s, which is not among the statements.",
@@ -130,6 +132,36 @@ def split_codes(line: str) -> list[str]:
         return [line]
     joined = re.sub(r"\s*\+\s*", "+", line)
     return [statement for statement in re.split(r"[\s,;/]+", joined) if statement]
+
+
+def find_very_toxic(statements: Iterable[str], classes: Iterable[str]) -> tuple[str, ...]:
+    """What of these says very toxic: acutely toxic of category 1 or 2 by any route, each class and code once.
+
+    UN GHS chapter 3.1, table 3.1.3: both categories carry H300 (swallowed), H310 (skin), H330 (inhaled); Regulation
+    (EC) 1272/2008 annex I 3.1 says the same. What the law asks of what held it differs, for example 40 CFR
+    261.7(b)(3) on containers of acute hazardous waste, or code 15 01 10* of the European list of wastes (all from
+    memory): local rules decide.
+    """
+    kinds = [kind for kind in classes if kind.startswith(_VERY_TOXIC_CLASSES)]
+    codes = [code for text in statements for code in split_statement(text)[0] if code in _VERY_TOXIC_CODES]
+    return tuple(dict.fromkeys([*kinds, *codes]))
+
+
+@cache
+def list_families() -> tuple[str, ...]:
+    """Every hazard class without its categories, such as "Flammable liquids", physical hazards first."""
+    return tuple(dict.fromkeys(each.hazard_class for each in list_classes()))
+
+
+def families_of(classes: Iterable[str], statements: Iterable[str]) -> frozenset[str]:
+    """The hazard classes without their categories of what was entered.
+
+    Where no class is known, those to which the statements may belong: of H272 that is oxidising liquids and solids.
+    """
+    known = [found for kind in classes if (found := find_class(kind))]
+    codes = (code for text in statements for code in split_statement(text)[0])
+    said = known or [each for code in codes for each in _owners().get(code, ())]
+    return frozenset(each.hazard_class for each in said)
 
 
 @dataclass(frozen=True)

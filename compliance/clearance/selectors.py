@@ -17,7 +17,14 @@ from chemicals.register.selectors import list_reactivity
 from chemicals.science.reactivity import ACID, CYANIDE, HYPOCHLORITE, OXIDISER, UNKNOWN, Danger, declared, find_dangers
 from chemicals.workshop.models import Membership, Workshop
 from compliance.clearance.meetings import find_fillings, find_meetings, find_opened
-from compliance.clearance.texts import FIRST_STEPS, ONLY_IN_A_LICENSED_PLAN, SEWER, SPILL_STEPS, TREATMENT_CAUTIONS
+from compliance.clearance.texts import (
+    FIRST_STEPS,
+    ONLY_IN_A_LICENSED_PLAN,
+    OTHER_PRODUCT,
+    SEWER,
+    SPILL_STEPS,
+    TREATMENT_CAUTIONS,
+)
 from compliance.waste.selectors import find_obstacles, find_seal, get_declared_reactivity
 
 LIQUID_PATH = frozenset(VesselKind) - {VesselKind.STOCK, VesselKind.WASTE}
@@ -74,18 +81,33 @@ def preview(member: Membership, now: datetime, data: Input, occurred: Occurred |
 def ask(workshop: Workshop, event: events.Event, at: datetime) -> Answer:
     """Return whether something may be done, or might have been done at that moment."""
     with scope(workshop=workshop):
-        rows = Vessel.objects.filter(uuid__in=event.vessels()).select_related("workshop")
+        rows = Vessel.objects.filter(uuid__in=event.vessels()).select_related("workshop", "product")
         vessels = {str(vessel.uuid): vessel for vessel in rows}
     dangers = tuple(dict.fromkeys(_find_dangers(vessels, event)))
     spilled = isinstance(event, events.Spill)
     return Answer(
         dangers=dangers,
         obstacles=tuple(_find_obstacles(vessels, event, at)),
-        questions=(SEWER,) if isinstance(event, events.Discharge) else (),
+        questions=tuple(_find_questions(vessels, event)),
         cautions=TREATMENT_CAUTIONS if isinstance(event, events.Treatment) else (),
         first_steps=(FIRST_STEPS if dangers else ()) + (SPILL_STEPS if spilled else ()),
         happened=spilled,
     )
+
+
+def _find_questions(vessels: Mapping[str, Vessel], event: events.Event) -> Iterator[str]:
+    """Yield what only a person can answer: may it go to the sewer, shall a label become wrong."""
+    if isinstance(event, events.Discharge):
+        yield SEWER
+    if type(event) is events.Move:
+        source, target = vessels[event.source], vessels[event.target]
+        if None not in (source.product, target.product) and source.product != target.product:
+            yield OTHER_PRODUCT % {
+                "source": source.name,
+                "product": source.product,
+                "target": target.name,
+                "other": target.product,
+            }
 
 
 def _find_obstacles(vessels: Mapping[str, Vessel], event: events.Event, at: datetime) -> Iterator[str]:

@@ -33,3 +33,9 @@ SEWER = (
     "Dilution never counts."
 )
 """What a person answers for who discharges."""
+
+OTHER_PRODUCT = (
+    "%(source)s is a container of %(product)s, %(target)s one of %(other)s: its label would be wrong, and what "
+    "is in it may react. Set up a container for %(product)s instead, and label it. Shall it be poured in all the same?"
+)
+"""Asked before one product is poured into a container of another."""

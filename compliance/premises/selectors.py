@@ -4,12 +4,12 @@ from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
 from uuid import UUID
 
-from django.db.models import OuterRef, Q, QuerySet, Subquery
+from django.db.models import Exists, OuterRef, Q, QuerySet, Subquery
 from django_scopes import scope
 
 from chemicals.books.events import UNKNOWN_LIQUID
 from chemicals.ledger.codes import tidy_code
-from chemicals.ledger.models import Memory, Vessel, VesselKind
+from chemicals.ledger.models import Holding, Memory, Vessel, VesselKind
 from chemicals.ledger.selectors import Contents, Held, list_contents_for, list_vessels_for
 from chemicals.process.models import Tank
 from chemicals.process.selectors import list_tanks_for
@@ -92,11 +92,17 @@ class Standing:
 
 
 def list_standing_for(member: Membership, vessels: Iterable[UUID] | None = None) -> list[Standing]:
-    """Return every vessel of the member's workshop, or those named, by name. Eight queries."""
+    """Return every vessel of the member's workshop, or those named, by name. Eight queries.
+
+    What is gone stands nowhere, unless it is named, or holds something by the books: that must not be hidden.
+    """
     with scope(workshop=member.workshop):
         rows = list_vessels_for(member)
         if vessels is not None:
             rows = rows.filter(uuid__in=list(vessels))
+        else:
+            something = Holding.objects.filter(Q(amount=None) | Q(amount__gt=0), vessel=OuterRef("pk"))
+            rows = rows.filter(Q(gone_at=None) | Exists(something))
         found = list(rows)
         poured = dict(Memory.objects.filter(vessel__in=rows.order_by()).values_list("vessel_id", "poured"))
         revisions = _read_revisions(rows, poured)

@@ -1,6 +1,6 @@
-"""Issuing labels of vessels, the emergency sheet and the list of chemicals; choosing the rule of that list."""
+"""Labels, emergency sheet and list of chemicals are issued, the rule of that list is chosen, empties are put away."""
 
-from collections.abc import Sequence
+from collections.abc import Iterator, Sequence
 from datetime import date, datetime
 from typing import Any
 from uuid import UUID
@@ -8,8 +8,11 @@ from uuid import UUID
 from django.db import transaction
 from django_scopes import scope
 
+from chemicals.journal.services import lock_chain
+from chemicals.ledger.care import CareInput, change_vessels
 from chemicals.ledger.models import Vessel, VesselKind
-from chemicals.workshop.errors import FieldError, InvalidInputError
+from chemicals.ledger.selectors import get_recomputed_to
+from chemicals.workshop.errors import ConflictError, FieldError, InvalidInputError
 from chemicals.workshop.models import Membership, Workshop
 from chemicals.workshop.permissions import require_owner, require_same_workshop, require_writer
 from chemicals.workshop.rows import check_row
@@ -20,6 +23,7 @@ from compliance.documents.shapes import PaperSize
 from compliance.documents.stock import ALL_STOCKS, Stock
 from compliance.premises.chemicals import build_list
 from compliance.premises.emergency import build_sheet
+from compliance.premises.empties import Empty, list_empties_for
 from compliance.premises.labels import build_decanted_label, build_label
 from compliance.premises.models import ChosenRule
 from compliance.premises.received import list_received
@@ -164,3 +168,43 @@ def choose_rule(*, actor: Membership, now: datetime, rule: str, checked_on: date
         ChosenRule.objects.all().delete()
         row.save()
         return row
+
+
+def put_away(
+    *, actor: Membership, now: datetime, vessels: Sequence[Vessel], note: str = "", confirmed: bool = False
+) -> list[Vessel]:
+    """Note that empty stock containers are gone: rinsed, reused, rubbish, returned, as the ``note`` says. All or none.
+
+    ``confirmed``: somebody looked at what the hazards of the contents were, where none are entered. Raises
+    InvalidInputError for what is not known to be empty, and for what stays a waste until it is handed over.
+    """
+    require_writer(actor)
+    require_same_workshop(actor, *vessels)
+    with transaction.atomic(), scope(workshop=actor.workshop):
+        lock_chain(actor)  # nothing is poured in between the answer and the note
+        if get_recomputed_to(actor.workshop) is not None:
+            raise ConflictError("The books are being recomputed: nobody knows yet what is empty. Try again later.")
+        errors = [
+            FieldError("vessels", f"{vessel.name} is no stock container. Leave it out.")
+            for vessel in vessels
+            if vessel.kind != VesselKind.STOCK
+        ]
+        empties = list_empties_for(actor, [vessel.uuid for vessel in vessels])
+        errors += [error for empty in empties for error in _check_empty(empty, confirmed=confirmed)]
+        if errors:
+            raise InvalidInputError(errors)
+        return change_vessels(actor=actor, now=now, vessels=vessels, care=CareInput(gone=True, note=note))
+
+
+def _check_empty(empty: Empty, *, confirmed: bool) -> Iterator[FieldError]:
+    if empty.stays_waste:
+        remedy = "Put it on a drop-off, or hand it over."
+        yield FieldError("vessels", f"{empty.vessel.name} stays here. {empty.why} {remedy}")
+    elif empty.must_ask and not confirmed:
+        remedy = "Enter its hazards, or confirm that you read label and sheet and that it was not very toxic."
+        yield FieldError("confirmed", f"{empty.vessel.name} stays here. {empty.why} {remedy}")
+
+
+def bring_back(*, actor: Membership, now: datetime, vessels: Sequence[Vessel]) -> list[Vessel]:
+    """Note that containers that were put away are here again. What was handed over comes back by cancelling that."""
+    return change_vessels(actor=actor, now=now, vessels=vessels, care=CareInput(gone=False))

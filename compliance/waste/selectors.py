@@ -15,7 +15,7 @@ from chemicals.workshop.errors import NotFoundError
 from chemicals.workshop.models import Membership
 from compliance.waste.models import WasteContainer, WasteStream
 
-OPEN, CLOSED = "open", "closed"
+OPEN, CLOSED, GONE = "open", "closed", "gone"
 NEARLY_FULL = 80
 """Percent of the capacity; headspace is kept for warmth and gas (common practice)."""
 
@@ -61,11 +61,13 @@ def get_container_for(member: Membership, uuid: UUID) -> WasteContainer:
 
 
 def state_of(container: WasteContainer) -> str:
-    """Return how far a listed container is, without a query: open, closed, or the state of its drop-off."""
+    """Return how far a listed container is, without a query: open, closed, gone, or the state of its drop-off."""
     goes_along = getattr(container.vessel, "drop_off_container", None)
     if goes_along is not None:
         state: str = goes_along.drop_off.state
         return state
+    if container.vessel.gone_at is not None:
+        return GONE
     return OPEN if container.closed_at is None else CLOSED
 
 
@@ -89,7 +91,10 @@ class Fill:
 
 def list_filling_for(member: Membership) -> list[tuple[WasteContainer, Fill]]:
     """Return the containers that are on no drop-off yet with their fill, the fullest first. Two queries."""
-    rows = [(row, read_fill(row)) for row in list_containers_for(member).filter(vessel__drop_off_container=None)]
+    rows = [
+        (row, read_fill(row))
+        for row in list_containers_for(member).filter(vessel__drop_off_container=None, vessel__gone_at=None)
+    ]
     return sorted(rows, key=lambda pair: -(pair[1].percent or 0))
 
 

@@ -12,6 +12,7 @@ from chemicals.science.ghs import (
     SIGNAL_WORDS,
     find_class,
     find_contradictions,
+    find_very_toxic,
     list_classes,
     split_codes,
     split_statement,
@@ -179,3 +180,28 @@ def test_the_standard_s_words_stand_in_for_a_code_without_text() -> None:
 def test_every_statement_of_a_class_has_its_words() -> None:
     assert [code for each in list_classes() for code in each.codes if not standard_text(code)] == []
     assert all(re.fullmatch(r"(EU)?H\d{3}[A-Za-z]{0,2}", code) for each in list_classes() for code in each.codes)
+
+
+@pytest.mark.parametrize(
+    ("statements", "classes", "found"),
+    [
+        ("H300 Fatal if swallowed.", "", ("H300",)),
+        ("H300+H310+H330 Fatal if swallowed, in contact with skin or if inhaled.", "", ("H300", "H310", "H330")),
+        ("H310", "Acute Tox. 1 dermal", ("Acute Tox. 1 dermal", "H310")),
+        ("", "Acute Tox. 2 inhalation", ("Acute Tox. 2 inhalation",)),
+        ("H301 Toxic if swallowed.", "Acute Tox. 3 oral", ()),
+        ("H302", "Acute Tox. 4 oral", ()),
+        ("H400; EUH032 Contact with acids liberates very toxic gas.", "Aquatic Acute 1", ()),
+        ("P310 Immediately call a doctor.", "", ()),
+        ("", "", ()),
+    ],
+)
+def test_very_toxic_is_fatal_by_any_way_in(statements: str, classes: str, found: tuple[str, ...]) -> None:
+    """UN GHS table 3.1.3: categories 1 and 2 carry H300, H310, H330 (from memory)."""
+    assert find_very_toxic(statements.split("; "), [classes] if classes else []) == found
+
+
+def test_very_toxic_are_the_classes_that_call_for_a_fatal_statement() -> None:
+    fatal = {each.kind for each in list_classes() if {"H300", "H310", "H330"} & set(each.codes)}
+    assert {kind for kind in KINDS if find_very_toxic([], [kind])} == fatal
+    assert len(fatal) == 6

@@ -10,7 +10,7 @@ from chemicals.books.events.base import Event, Measured
 
 @dataclass(frozen=True)
 class HandOver(Event):
-    """A waste container went to a receiver, all of it."""
+    """A container went to a receiver, with all that is in it."""
 
     KIND = "hand-over"
     container: str

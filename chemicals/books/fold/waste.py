@@ -11,5 +11,5 @@ def fold_drum_off(folding: Folding, event: DrumOff) -> None:
 
 
 def fold_hand_over(folding: Folding, event: HandOver) -> None:
-    """Waste container -> receiver: everything, and the container remembers nothing."""
+    """Container -> receiver: everything that is in it, if anything is, and it remembers nothing."""
     folding.pour_all(event.container, RECEIVER)

@@ -36,6 +36,7 @@ from chemicals.process.build.upkeep import (
     build_treatment,
 )
 from chemicals.process.draft import Draft, Known
+from chemicals.workshop.errors import FieldError, InvalidInputError
 from chemicals.workshop.models import Membership
 
 Builder = Callable[[Draft, datetime, Any], Event | None]
@@ -73,10 +74,19 @@ BUILDERS: Mapping[type[inputs.Input], Builder] = {
 
 @dataclass(frozen=True)
 class Built:
-    """An event ready to be recorded, and the time it must have if it may not be chosen."""
+    """An event ready to be recorded, and the time it must have if it may not be chosen.
+
+    ``gone`` speaks of vessels that are gone by then: such an event is not recorded, unless it is recorded already.
+    """
 
     event: Event
     occurred: Occurred | None
+    gone: tuple[FieldError, ...] = ()
+
+    def require_here(self) -> None:
+        """Refuse what names a vessel that is gone."""
+        if self.gone:
+            raise InvalidInputError(list(self.gone))
 
 
 def build(
@@ -90,7 +100,10 @@ def build(
     event = BUILDERS[type(data)](draft, now, data)
     draft.finish()
     assert event is not None  # noqa: S101  (a builder that returns nothing has refused)
-    return Built(event, _occurred(draft, event, occurred))
+    when = _occurred(draft, event, occurred)
+    # a correction sets right what the books say of the time before
+    gone = () if isinstance(event, events.Correction) else draft.find_gone(now if when is None else when.at)
+    return Built(event, when, gone)
 
 
 def _occurred(draft: Draft, event: Event, occurred: Occurred | None) -> Occurred | None:

@@ -114,10 +114,10 @@ class DischargeInput(Input):
 
 @dataclass(frozen=True, kw_only=True)
 class HandOverInput(Input):
-    """A waste container went to its receiver."""
+    """A waste container, an empty stock container or expired stock went to its receiver, all that is in it too."""
 
     verb = "hand-over"
     title = _("Hand over")
-    container: UUID = use(VesselField(_("Container"), kinds=(WASTE,)))
+    container: UUID = use(VesselField(_("Container"), kinds=(WASTE, STOCK)))
     receiver: str = use(TextField(_("Receiver"), longest=120))
     gross: Quantity | None = if_known(_("Gross weight"), "", "mass", example="22.4 kg")
