@@ -14,14 +14,15 @@ LONGEST = 80
 
 
 def list_free_names(member: Membership, stem: str, start: int = 1) -> Iterator[str]:
-    """Yield names that no vessel of the workshop has: the stem with running numbers from a start on. One query.
-
-    A stem that is too long gives way to the number.
-    """
+    """Yield numbered names that no vessel of the workshop has. One query."""
     with scope(workshop=member.workshop):
         taken = set(Vessel.objects.filter(name__startswith=stem[: LONGEST // 2]).values_list("name", flat=True))
-    names = (f"{stem[: LONGEST - 1 - len(str(number))].rstrip()} {number}" for number in count(start))
-    return (name for name in names if name not in taken)
+    return (name for name in number_names(stem, start) if name not in taken)
+
+
+def number_names(stem: str, start: int = 1) -> Iterator[str]:
+    """Yield the stem with running numbers from a start on; one that is too long gives way to the number."""
+    return (f"{stem[: LONGEST - 1 - len(str(number))].rstrip()} {number}" for number in count(start))
 
 
 def split_number(name: str) -> tuple[str, int]:

@@ -1,22 +1,34 @@
-"""What is wrong with a product before its revision is written: everything at once, each under its field."""
+"""What is wrong with a product or a substance before it is written: everything at once, each under its field."""
 
-from collections.abc import Callable, Iterator
+from collections.abc import Callable, Iterator, Sequence
 from dataclasses import dataclass
 
 from chemicals.register.hazards import check_hazards
 from chemicals.register.inputs import RevisionInput
-from chemicals.register.models import MOST_PH, CompositionLine, ExposureLimit, Form, ProductRevision
+from chemicals.register.models import MOST_PH, CompositionLine, ExposureLimit, Form, ProductRevision, Substance
+from chemicals.register.selectors import solute_code
 from chemicals.register.sheets import read_language
 from chemicals.science.content import ALL, Content, read_content
 from chemicals.science.errors import TextError
+from chemicals.science.formula import METALS, FormulaError, parse_formula
 from chemicals.science.ghs import split_codes
-from chemicals.science.identity import PACKING_GROUPS, read_divisions, read_un_number
+from chemicals.science.identity import (
+    PACKING_GROUPS,
+    read_cas_number,
+    read_divisions,
+    read_ec_number,
+    read_un_number,
+)
 from chemicals.science.quantity import Measure, QuantityError, measure, parse
+from chemicals.science.species import moles_of
 from chemicals.workshop.errors import FieldError
 from chemicals.workshop.rows import check_row
-from chemicals.workshop.texts import tidy
+from chemicals.workshop.texts import find_bad_lines, tidy
 
-LONGEST_GLOVES = 1000
+LONGEST_GLOVES, LONGEST_CONTENT = 1000, 80
+LONGEST_CODE = 40
+"""Characters of a component's code in the ledger."""
+LONGEST_NAME, MOST_SYNONYMS = 120, 30
 TRANSPORT = ("un_number", "shipping_name", "transport_class", "packing_group")
 _SET_LATER = ("product", "number", "created_at", "created_by", "safety_data_sheet")
 
@@ -39,6 +51,8 @@ def check_revision(said: RevisionInput) -> tuple[Checked, list[FieldError]]:
             lines.append((number, line.substance, read_content(line.content)))
         except TextError as error:
             errors.append(FieldError(f"lines.{number}.content", error.message))
+        if len(tidy(line.content)) > LONGEST_CONTENT:
+            errors.append(FieldError(f"lines.{number}.content", f"Write it in at most {LONGEST_CONTENT} characters."))
     contents = [(number, content) for number, _, content in lines]
     errors += _check_composition(said, contents)
     for number, limit in enumerate(said.limits):
@@ -144,7 +158,7 @@ def _check_composition(said: RevisionInput, contents: list[tuple[int, Content]])
         for number, content in contents:
             if content.per == "L":
                 yield FieldError(f"lines.{number}.content", "A solid has no litres. Write % of its mass.")
-    if len({line.substance.pk for line in said.lines}) < len(said.lines):
+    if len({line.substance.uuid for line in said.lines}) < len(said.lines):
         yield FieldError("lines", "A substance stands twice in the list. Add the two together.")
     if sum(content.low for _, content in contents if content.per == "kg") > ALL:
         yield FieldError("lines", "The parts add up to more than 100 %.")
@@ -171,3 +185,48 @@ def read_limit(text: str) -> Measure:
             return measure(text, "fraction")
         except QuantityError:
             raise error from None
+
+
+def check_substance(substance: Substance, cas_number: str, ec_number: str, synonyms: Sequence[str]) -> list[FieldError]:
+    """Put numbers and synonyms into a row in their usual form; return everything that is wrong with the row."""
+    substance.cas_number, substance.ec_number = cas_number, ec_number
+    substance.synonyms = list(dict.fromkeys(name for text in synonyms if (name := tidy(text))))
+    errors = check_row(substance, leave_out=["workshop"])
+    for field, read in (("cas_number", read_cas_number), ("ec_number", read_ec_number)):
+        number = getattr(substance, field)
+        if number and not any(error.field == field for error in errors):
+            try:
+                setattr(substance, field, read(number))
+            except TextError as error:
+                errors.append(FieldError(field, error.message))
+    return [*errors, *_check_formula(substance), *_check_synonyms(substance.synonyms)]
+
+
+def _check_synonyms(synonyms: Sequence[str]) -> Iterator[FieldError]:
+    if len(synonyms) > MOST_SYNONYMS:
+        yield FieldError("synonyms", f"These are more than {MOST_SYNONYMS} names. Leave some out.")
+    for name in synonyms:
+        yield from find_bad_lines(synonyms=name)
+        if len(name) > LONGEST_NAME:
+            yield FieldError("synonyms", f'"{name[:20]}…" is too long. Write it in at most {LONGEST_NAME} characters.')
+
+
+def _check_formula(substance: Substance) -> Iterator[FieldError]:
+    if substance.formula:
+        try:
+            parse_formula(substance.formula)
+        except FormulaError as error:
+            yield FieldError("formula", str(error))
+            return
+    if not substance.inert:
+        return
+    code = solute_code(substance.formula)
+    if not code:
+        yield FieldError("formula", "What is inert is balanced by its formula. Write the formula.")
+    elif code in METALS:
+        yield FieldError("inert", "A metal is balanced in any case. Leave this out.")
+    elif moles_of(substance.formula):
+        kinds = ", ".join(moles_of(substance.formula))
+        yield FieldError("inert", f"This brings {kinds}, which reacts. Leave this out.")
+    elif len(code) > LONGEST_CODE:
+        yield FieldError("formula", f"The formula of what is inert has at most {LONGEST_CODE} characters.")

@@ -108,12 +108,13 @@ def _with_parts(revisions: QuerySet[ProductRevision]) -> QuerySet[ProductRevisio
     return revisions.select_related("product", "safety_data_sheet", "created_by__user").prefetch_related(lines, limits)
 
 
-def build_recipe(revision: ProductRevision) -> Recipe:
-    """Return the revision as an entry relies on it, per kilogram or litre.
+def build_recipe(revision: ProductRevision, lines: Iterable[CompositionLine] | None = None) -> Recipe:
+    """Return the revision as an entry relies on it, per kilogram or litre; ``lines`` where they are at hand.
 
     Micrograms of each metal and of each solute declared inert, nanomoles of each species that reacts.
     """
-    shares = [share for line in revision.lines.all() for share in _shares(line)]
+    found = revision.lines.all() if lines is None else lines
+    shares = [share for line in found for share in _shares(line)]
     density = None if revision.density is None else Figure(revision.density, 0, f"{revision}")
     return Recipe(
         product=revision.product.uuid,

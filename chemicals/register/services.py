@@ -1,6 +1,6 @@
 """Writes of the catalogue: substances, products, revisions."""
 
-from collections.abc import Iterator, Sequence
+from collections.abc import Sequence
 from datetime import datetime
 
 from django.db import transaction
@@ -8,19 +8,14 @@ from django_scopes import scope
 
 from chemicals.journal import services as journal
 from chemicals.journal.models import Attachment
-from chemicals.register.checks import Checked, check_revision
+from chemicals.register.checks import Checked, check_revision, check_substance
 from chemicals.register.inputs import LimitInput, LineInput, RevisionInput
 from chemicals.register.models import CompositionLine, ExposureLimit, Product, ProductRevision, Substance
-from chemicals.register.selectors import list_missing_starters, list_substances_for, solute_code
-from chemicals.science.errors import TextError
-from chemicals.science.formula import METALS, FormulaError, parse_formula
-from chemicals.science.identity import read_cas_number, read_ec_number
-from chemicals.science.species import moles_of
+from chemicals.register.selectors import list_missing_starters, list_substances_for
 from chemicals.workshop.errors import FieldError, InvalidInputError
 from chemicals.workshop.models import Membership
 from chemicals.workshop.permissions import require_same_workshop, require_writer
 from chemicals.workshop.rows import check_row
-from chemicals.workshop.texts import find_bad_lines, tidy
 
 __all__ = [
     "LimitInput",
@@ -33,10 +28,6 @@ __all__ = [
     "keep_sheet",
     "revise_product",
 ]
-
-LONGEST_CODE = 40
-"""Characters of a component's code in the ledger."""
-LONGEST_NAME, MOST_SYNONYMS = 120, 30
 
 
 def create_substance(
@@ -52,7 +43,7 @@ def create_substance(
     """Create a substance; its numbers and its formula are checked if given. An inert one is balanced by its formula."""
     require_writer(actor)
     substance = Substance(workshop=actor.workshop, name=name, formula=formula, inert=inert)
-    errors = _say(substance, cas_number, ec_number, synonyms)
+    errors = check_substance(substance, cas_number, ec_number, synonyms)
     with transaction.atomic(), scope(workshop=actor.workshop):
         _finish(substance, errors)
         substance.save()
@@ -77,37 +68,13 @@ def change_substance(
         row = Substance.objects.select_for_update().get(pk=substance.pk)
         before = (row.formula, row.inert)
         row.name, row.formula, row.inert = name, formula, inert
-        errors = _say(row, cas_number, ec_number, synonyms)
+        errors = check_substance(row, cas_number, ec_number, synonyms)
         if before != (row.formula, row.inert) and CompositionLine.objects.filter(substance=row).exists():
             field = "formula" if before[0] != row.formula else "inert"
             errors.append(FieldError(field, "A composition relies on this. Add another substance, revise the product."))
         _finish(row, errors)
         row.save()
     return row
-
-
-def _say(substance: Substance, cas_number: str, ec_number: str, synonyms: Sequence[str]) -> list[FieldError]:
-    """Put numbers and synonyms into a row in their usual form; return everything that is wrong with the row."""
-    substance.cas_number, substance.ec_number = cas_number, ec_number
-    substance.synonyms = list(dict.fromkeys(name for text in synonyms if (name := tidy(text))))
-    errors = check_row(substance)
-    for field, read in (("cas_number", read_cas_number), ("ec_number", read_ec_number)):
-        number = getattr(substance, field)
-        if number and not any(error.field == field for error in errors):
-            try:
-                setattr(substance, field, read(number))
-            except TextError as error:
-                errors.append(FieldError(field, error.message))
-    return [*errors, *_check_formula(substance), *_check_synonyms(substance.synonyms)]
-
-
-def _check_synonyms(synonyms: Sequence[str]) -> Iterator[FieldError]:
-    if len(synonyms) > MOST_SYNONYMS:
-        yield FieldError("synonyms", f"These are more than {MOST_SYNONYMS} names. Leave some out.")
-    for name in synonyms:
-        yield from find_bad_lines(synonyms=name)
-        if len(name) > LONGEST_NAME:
-            yield FieldError("synonyms", f'"{name[:20]}…" is too long. Write it in at most {LONGEST_NAME} characters.')
 
 
 def _finish(substance: Substance, errors: list[FieldError]) -> None:
@@ -137,27 +104,6 @@ def add_starter_substances(*, actor: Membership) -> list[Substance]:
         for row in rows:
             row.note_searched()
         return Substance.objects.bulk_create(rows)
-
-
-def _check_formula(substance: Substance) -> Iterator[FieldError]:
-    if substance.formula:
-        try:
-            parse_formula(substance.formula)
-        except FormulaError as error:
-            yield FieldError("formula", str(error))
-            return
-    if not substance.inert:
-        return
-    code = solute_code(substance.formula)
-    if not code:
-        yield FieldError("formula", "What is inert is balanced by its formula. Write the formula.")
-    elif code in METALS:
-        yield FieldError("inert", "A metal is balanced in any case. Leave this out.")
-    elif moles_of(substance.formula):
-        kinds = ", ".join(moles_of(substance.formula))
-        yield FieldError("inert", f"This brings {kinds}, which reacts. Leave this out.")
-    elif len(code) > LONGEST_CODE:
-        yield FieldError("formula", f"The formula of what is inert has at most {LONGEST_CODE} characters.")
 
 
 def keep_sheet(*, actor: Membership, now: datetime, name: str, data: bytes) -> Attachment:

@@ -1,4 +1,4 @@
-"""The door for past records: nobody is asked about what happened long ago, and every entry says so."""
+"""The door for files: nobody is asked about what has happened, or stands there already; every entry says so."""
 
 from collections.abc import Iterable
 from datetime import datetime
@@ -6,19 +6,22 @@ from datetime import datetime
 from django.db import transaction
 from django_scopes import scope
 
-from chemicals.books.clearance import not_asked
 from chemicals.jobs.services import enqueue
 from chemicals.journal.services import Fact, lock_chain
 from chemicals.process.importing.columns import ColumnMap
 from chemicals.process.importing.files import choose_columns, read_table
 from chemicals.process.importing.reading import RowError
+from chemicals.process.importing.register.plan import Plan, RegisterUnderstood
+from chemicals.process.importing.register.understanding import understand_register
+from chemicals.process.importing.table import Table
 from chemicals.process.importing.understanding import Made, Understood, understand
-from chemicals.process.models import Import
+from chemicals.process.models import Import, Subject
 from chemicals.process.selectors import get_import_for
 from chemicals.process.services import record_past
 from chemicals.workshop.errors import ConflictError, FieldError, InvalidInputError
 from chemicals.workshop.models import Membership
 from chemicals.workshop.permissions import require_same_workshop, require_writer
+from compliance.clearance.registering import imported_from, write_plan
 
 AT_ONCE = 5000
 """Rows of a file that are checked, or recorded, in a request; a larger file is left to a job."""
@@ -32,7 +35,7 @@ TASK = "import-entries"
 class RefusedImportError(InvalidInputError):
     """Rows of a file are wrong: nothing of it was recorded."""
 
-    def __init__(self, understood: Understood) -> None:
+    def __init__(self, understood: Understood | RegisterUnderstood) -> None:
         super().__init__([FieldError(path_of(error), error.message) for error in understood.errors])
         self.args = (f"What is wrong: {understood.wrong}. Nothing was recorded.",)
         self.understood = understood
@@ -47,19 +50,36 @@ def path_of(error: RowError) -> str:
 
 def preview_import(
     member: Membership, now: datetime, upload: Import, chosen: ColumnMap, *, whole: bool = False
-) -> Understood:
+) -> Understood | RegisterUnderstood:
     """Return what the first rows of a file say (of most files these are all), and what is wrong. Writes nothing.
 
     ``whole``: all rows, however many.
     """
-    most = None if whole else AT_ONCE
-    return understand(member, now, read_table(upload), chosen, upload.file.sha256, most=most)
+    subject, most = Subject(upload.subject), None if whole else AT_ONCE
+    table, sha256 = read_table(upload), upload.file.sha256
+    return read_file(member, now, table, chosen, subject=subject, sha256=sha256, most=most)
+
+
+def read_file(
+    member: Membership,
+    now: datetime,
+    table: Table,
+    chosen: ColumnMap,
+    *,
+    subject: Subject,
+    sha256: str,
+    most: int | None = None,
+) -> Understood | RegisterUnderstood:
+    """Return what the rows of a file say of its subject, at most so many of them. Writes nothing."""
+    if subject == Subject.REGISTER:
+        return understand_register(member, now, table, chosen, sha256, most=most)
+    return understand(member, now, table, chosen, sha256, most=most)
 
 
 def record_import(
     *, actor: Membership, now: datetime, upload: Import, chosen: ColumnMap, whole: bool = False
 ) -> Import:
-    """Record all entries of a file, or none and raise RefusedImportError; leave a large file to a job.
+    """Record all that a file says, or nothing and raise RefusedImportError; leave a large file to a job.
 
     ``whole``: leave nothing to a job. A file that is imported, or about to be, is returned as it is.
     """
@@ -93,23 +113,31 @@ def _leave_to_job(actor: Membership, now: datetime, upload: Import) -> None:
             found.save(update_fields=["job"])
 
 
-def write_import(*, actor: Membership, now: datetime, upload: Import, made: Iterable[Made]) -> None:
-    """Record the entries of a file, unless they are there already."""
+def write_import(*, actor: Membership, now: datetime, upload: Import, made: Iterable[Made] | Plan) -> None:
+    """Record what a file says, unless it is there already.
+
+    Raises ConflictError if somebody has written to the register meanwhile what the file writes.
+    """
     sha256 = upload.file.sha256
-    facts = [_as_fact(each, sha256) for each in made]
     with transaction.atomic(), scope(workshop=actor.workshop):
         lock_chain(actor)
         upload = Import.objects.get(pk=upload.pk)
         if upload.imported_at is not None:
             return
-        entries = record_past(actor=actor, now=now, facts=facts)
-        upload.imported_at, upload.first, upload.last = now, entries[0].sequence, entries[-1].sequence
-        upload.save(update_fields=["imported_at", "first", "last"])
+        if isinstance(made, Plan):
+            facts = write_plan(actor=actor, now=now, plan=made, sha256=sha256)
+            upload.made = made.counts
+        else:
+            facts = [_as_fact(each, sha256) for each in made]
+        entries = record_past(actor=actor, now=now, facts=facts) if facts else []
+        upload.imported_at = now
+        if entries:
+            upload.first, upload.last = entries[0].sequence, entries[-1].sequence
+        upload.save(update_fields=["imported_at", "first", "last", "made"])
 
 
 def _as_fact(made: Made, sha256: str) -> Fact:
-    clearance = not_asked(f"imported from row {made.said.row} of the file {sha256}: nobody was asked")
-    return Fact(made.said.key, made.event, made.occurred, clearance, (sha256,))
+    return Fact(made.said.key, made.event, made.occurred, imported_from(made.said.row, sha256), (sha256,))
 
 
 def refuse_import(upload: Import, errors: Iterable[RowError], wrong: int) -> None:

@@ -136,6 +136,7 @@ EXAMPLES: dict[str, dict[str, Change]] = {
     "process.RouteStep": {"route_position_once": twice},
     "process.Import": {
         "import_file_once": twice,
+        "import_subject": {"subject": "recipes"},
         "import_with_its_entries": lambda row: {"file_id": another_file(row).pk, "imported_at": LOADED_AT},
     },
     "process.CountDay": {

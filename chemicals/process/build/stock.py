@@ -1,9 +1,12 @@
 """From what was said of stock and of baths made from it to events: opening, count, receipt, make-up, top-up."""
 
 from datetime import datetime
+from math import isqrt
 
-from chemicals.books import events
-from chemicals.books.events import UNKNOWN_LIQUID, WATER_SUPPLY, Figure, Measured, Recipe
+from chemicals.books import events, fold
+from chemicals.books.events import UNKNOWN_LIQUID, WATER_SUPPLY, Figure, Held, Measured, Recipe
+from chemicals.books.fold.state import State
+from chemicals.ledger.components import dimension_of
 from chemicals.ledger.models import Vessel
 from chemicals.process import inputs
 from chemicals.process.build.figures import LIQUID_BRINGS_ITS_OWN, SOLUTION_DENSITY
@@ -14,6 +17,7 @@ from chemicals.register.models import Form, Per, Product, ProductRevision
 from chemicals.register.selectors import build_recipe, get_current_revision, recipe_key
 from chemicals.science.quantity import Quantity
 from chemicals.science.solution import swelling_of_mixture
+from chemicals.science.units import DIMENSIONS
 
 NL_PER_L = 10**9
 
@@ -80,6 +84,38 @@ def build_receipt(draft: Draft, now: datetime, data: inputs.ReceiptInput) -> eve
         lot=data.lot,
         recipe=_recipe(draft, vessel.product),
     )
+
+
+def build_found(vessel: Vessel, amount: Quantity, recipe: Recipe) -> events.Opening:
+    """Return the event of a container of a product that was found with so much in it, as if that had just arrived."""
+    name = str(vessel.uuid)
+    mass, volume = by_dimension(amount, "mass"), by_dimension(amount, "volume")
+    state = State()
+    fold.fold_event(state, events.Receipt(vessel=name, mass=mass, volume=volume, lot="", recipe=recipe))
+    found = {component: held for (_, component), held in state.holdings.items()}
+    known = {
+        component: Measured(amount.typed, base_unit_of(component), held.amount, isqrt(held.variance))
+        for component, held in sorted(found.items())
+        if held.amount is not None
+    }
+    return events.Opening(
+        vessel=name,
+        complete=recipe.complete and len(known) == len(found),
+        volume=volume or known.get(events.VOLUME),
+        mass=mass or known.get(events.GROSS_MASS),
+        held=tuple(
+            Held(component, held)
+            for component, held in known.items()
+            if component not in (events.VOLUME, events.GROSS_MASS)
+        ),
+        density=None,
+        poured=(recipe.key,),
+    )
+
+
+def base_unit_of(component: str) -> str:
+    """Return the unit in which a component is counted."""
+    return DIMENSIONS[dimension_of(component)].base_unit
 
 
 def current_revision(draft: Draft, product: Product) -> ProductRevision:

@@ -2,7 +2,7 @@
 
 import re
 from collections import Counter
-from collections.abc import Collection, Iterable, Iterator, Mapping, Sequence
+from collections.abc import Callable, Collection, Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass
 from typing import Any
 
@@ -48,6 +48,8 @@ DATES: Mapping[str, Text] = {
 }
 POINT, COMMA = "point", "comma"
 DECIMALS: Mapping[str, Text] = {POINT: _("1.5: a point"), COMMA: _("1,5: a comma")}
+TEXT_OPTIONS, FLAG_OPTIONS = ("verb", "dates", "decimal"), ("revise", "add_places")
+"""What a column map says besides what columns mean."""
 MOST_NUMBERED = 30
 """How many groups of fields a row may have: held 1 metal, held 2 metal and so on."""
 
@@ -60,13 +62,16 @@ class ColumnMap:
     """What each column says, by heading; "" and columns that are not named are left out.
 
     ``verb`` is what happened in every row; if it is empty a column says so. ``dates`` is one of DATES, ``decimal`` one
-    of DECIMALS.
+    of DECIMALS. Of a file of the register: ``revise`` lets rows that say something else revise products that are here,
+    ``add_places`` lets them name places that are not.
     """
 
     columns: Mapping[str, str]
     verb: str = ""
     dates: str = ISO
     decimal: str = POINT
+    revise: bool = False
+    add_places: bool = False
 
     @property
     def used(self) -> dict[str, str]:
@@ -81,21 +86,25 @@ class ColumnMap:
 
 def as_json(chosen: ColumnMap) -> dict[str, Any]:
     """Return what is kept, and written by hand, of a column map."""
-    return {"verb": chosen.verb, "dates": chosen.dates, "decimal": chosen.decimal, "columns": dict(chosen.used)}
+    flags = {name: True for name in FLAG_OPTIONS if getattr(chosen, name)}
+    return {**{name: getattr(chosen, name) for name in TEXT_OPTIONS}, **flags, "columns": dict(chosen.used)}
 
 
 def from_json(said: object) -> ColumnMap:
     """Return the column map that was kept or written by hand. Raises InvalidInputError by the field ``mapping``."""
-    options = {"verb", "dates", "decimal", "columns"}
+    options = {"columns", *TEXT_OPTIONS, *FLAG_OPTIONS}
     if not isinstance(said, dict) or not set(said) <= options:
         raise InvalidInputError.of("mapping", f"Write a JSON object with {', '.join(sorted(options))}.")
     columns = said.get("columns", {})
-    texts = [said.get(name, "") for name in options - {"columns"}]
+    texts = [said.get(name, "") for name in TEXT_OPTIONS]
+    flags = {name: said.get(name, False) for name in FLAG_OPTIONS}
+    if not all(isinstance(flag, bool) for flag in flags.values()):
+        raise InvalidInputError.of("mapping", f"Write true or false for {' and '.join(FLAG_OPTIONS)}.")
     if isinstance(columns, dict):
         texts += [*columns, *columns.values()]
     if not isinstance(columns, dict) or not all(isinstance(text, str) for text in texts):
         raise InvalidInputError.of("mapping", "Write headings and targets as texts: {columns: {Date: when, ...}}.")
-    return ColumnMap(columns, said.get("verb", ""), said.get("dates", ISO), said.get("decimal", POINT))
+    return ColumnMap(columns, said.get("verb", ""), said.get("dates", ISO), said.get("decimal", POINT), **flags)
 
 
 def split_unit(heading: str) -> tuple[str, str]:
@@ -181,24 +190,31 @@ def check_map(chosen: ColumnMap, headings: Sequence[str]) -> list[FieldError]:
     """Return everything that is wrong with a column map, by heading (or ``mapping``, where no single one is meant)."""
     if chosen.verb and chosen.verb not in VERBS:
         return [FieldError("mapping", f'"{chosen.verb}" cannot be imported. Choose one of: {", ".join(VERBS)}.')]
-    errors = [
-        FieldError("mapping", f'"{word}" is no choice. Choose one of: {", ".join(known)}.')
-        for word, known in ((chosen.dates, DATES), (chosen.decimal, DECIMALS))
-        if word not in known
-    ]
-    errors += [FieldError(h, "There is no such column in the file.") for h in chosen.used if h not in headings]
-    errors += [FieldError(heading, message) for heading, message in _check_targets(chosen)]
+
+    def is_target(target: str) -> bool:
+        return target in GENERAL or any(find_field(verb, target) for verb in chosen.verbs)
+
+    errors = [*check_columns(chosen, headings, is_target)]
+    errors += [FieldError(heading, message) for heading, message in _check_verb(chosen)]
     return errors + [FieldError("mapping", message) for message in _find_missing(chosen)]
 
 
-def _check_targets(chosen: ColumnMap) -> Iterator[tuple[str, str]]:
+def check_columns(chosen: ColumnMap, headings: Sequence[str], is_target: Callable[[str], bool]) -> Iterator[FieldError]:
+    """Yield what is wrong with a column map of any file: unknown choices, headings and targets, two columns alike."""
+    for word, known in ((chosen.dates, DATES), (chosen.decimal, DECIMALS)):
+        if word not in known:
+            yield FieldError("mapping", f'"{word}" is no choice. Choose one of: {", ".join(known)}.')
+    yield from (FieldError(h, "There is no such column in the file.") for h in chosen.used if h not in headings)
     counts = Counter(chosen.used.values())
     for heading, target in chosen.used.items():
-        if target not in GENERAL and not any(find_field(verb, target) for verb in chosen.verbs):
-            yield heading, f'"{target}" is nothing that can be said here. Choose from the list.'
+        if not is_target(target):
+            yield FieldError(heading, f'"{target}" is nothing that can be said here. Choose from the list.')
         if counts[target] > 1:
-            yield heading, f'Two columns say "{target}". Leave one of them out.'
-    if chosen.verb and VERB in counts:
+            yield FieldError(heading, f'Two columns say "{target}". Leave one of them out.')
+
+
+def _check_verb(chosen: ColumnMap) -> Iterator[tuple[str, str]]:
+    if chosen.verb and VERB in chosen.used.values():
         yield _heading_of(chosen, VERB), "Either this column says what happened, or it is the same in every row."
 
 

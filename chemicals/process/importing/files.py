@@ -1,4 +1,4 @@
-"""Files of past records as they are kept: uploaded, with what their columns mean, until they are imported."""
+"""Files to import as they are kept: uploaded, with what their columns mean, until they are imported."""
 
 from datetime import datetime
 from itertools import islice
@@ -9,8 +9,9 @@ from django_scopes import scope
 from chemicals.journal import files
 from chemicals.journal.services import keep_file
 from chemicals.process.importing.columns import VERB, ColumnMap, as_json, fold, from_json, guess, verb_words
+from chemicals.process.importing.register.columns import guess_register
 from chemicals.process.importing.table import Table, media_type_of, open_table
-from chemicals.process.models import Import
+from chemicals.process.models import Import, Subject
 from chemicals.workshop.errors import ConflictError
 from chemicals.workshop.models import Membership, Workshop
 from chemicals.workshop.permissions import require_same_workshop, require_writer
@@ -19,14 +20,17 @@ LOOKED_AT = 500
 """How many rows are looked at for the verbs that a file names."""
 
 
-def add_import(*, actor: Membership, now: datetime, name: str, data: bytes) -> Import:
-    """Keep a CSV or XLSX file of past records; the same bytes are the same import. Nothing is recorded yet."""
+def add_import(
+    *, actor: Membership, now: datetime, name: str, data: bytes, subject: Subject = Subject.ENTRIES
+) -> Import:
+    """Keep a CSV or XLSX file; the same bytes are the same import of a subject. Nothing is recorded yet."""
     require_writer(actor)
     open_table(data)
     with transaction.atomic(), scope(workshop=actor.workshop):
         file = keep_file(actor=actor, now=now, name=name, data=data, media_type=media_type_of(data))
         defaults = {"changed_at": now, "changed_by": actor}
-        found, _ = Import.objects.get_or_create(workshop=actor.workshop, file=file, defaults=defaults)
+        key = {"workshop": actor.workshop, "file": file, "subject": subject}
+        found, _ = Import.objects.get_or_create(**key, defaults=defaults)
         return found
 
 
@@ -37,14 +41,16 @@ def read_table(upload: Import) -> Table:
 
 def find_map(upload: Import, table: Table) -> ColumnMap:
     """Return what the columns mean: as it was said of this file, or as headings and the last import suggest."""
-    return from_json(upload.mapping) if upload.mapping else guess_map(upload.workshop, table)
+    return from_json(upload.mapping) if upload.mapping else guess_map(upload.workshop, table, Subject(upload.subject))
 
 
-def guess_map(workshop: Workshop, table: Table) -> ColumnMap:
-    """Return what headings and the workshop's last import suggest."""
+def guess_map(workshop: Workshop, table: Table, subject: Subject = Subject.ENTRIES) -> ColumnMap:
+    """Return what headings and the workshop's last import of the subject suggest."""
     with scope(workshop=workshop):
-        last = Import.objects.exclude(mapping={}).order_by("-changed_at", "-pk").first()
+        last = Import.objects.filter(subject=subject).exclude(mapping={}).order_by("-changed_at", "-pk").first()
     kept = None if last is None else from_json(last.mapping)
+    if subject == Subject.REGISTER:
+        return guess_register(table.headings, kept)
     first = guess(table.headings, kept)
     return guess(table.headings, kept, find_verbs(table, first) or first.verbs)
 

@@ -72,6 +72,19 @@ def is_entry(kind: FieldKind) -> bool:
     return isinstance(kind, kinds.ReferenceField) and kind.to == "analysis"
 
 
+@dataclass(frozen=True, kw_only=True)
+class Outcome:
+    """What came of reading a file: how many rows were read, the first ``errors`` of ``wrong``.
+
+    ``all_read``: no further rows were left out.
+    """
+
+    rows: int
+    errors: tuple[RowError, ...]
+    wrong: int
+    all_read: bool
+
+
 class Errors:
     """Collects what is wrong; the first of it is kept, all of it is counted."""
 
@@ -84,6 +97,10 @@ class Errors:
         self.count += 1
         if len(self.kept) < MOST_ERRORS:
             self.kept.append(RowError(row, column, message))
+
+    def in_order(self) -> tuple[RowError, ...]:
+        """Return what is kept, by row."""
+        return tuple(sorted(self.kept, key=lambda error: error.row))
 
 
 @dataclass(frozen=True)

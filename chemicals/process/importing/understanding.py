@@ -4,6 +4,7 @@ from collections.abc import Iterable, Iterator, Sequence
 from dataclasses import dataclass
 from datetime import datetime
 from itertools import islice
+from typing import Any
 from uuid import UUID
 
 from django_scopes import scope
@@ -18,7 +19,7 @@ from chemicals.ledger.recompute import get_last_close
 from chemicals.process.build import build
 from chemicals.process.draft import Known
 from chemicals.process.importing.columns import KEY, WHEN, ColumnMap, check_map
-from chemicals.process.importing.reading import Errors, Reader, RowError, Said
+from chemicals.process.importing.reading import Errors, Outcome, Reader, RowError, Said
 from chemicals.process.importing.table import Table
 from chemicals.process.inputs import AcceptanceInput
 from chemicals.process.services import require_possible
@@ -38,20 +39,15 @@ class Made:
     occurred: Occurred
 
 
-@dataclass(frozen=True)
-class Understood:
+@dataclass(frozen=True, kw_only=True)
+class Understood(Outcome):
     """What a file says.
 
     ``made`` are the entries of the rows that are right, in order of time, those of the same moment in the order of the
-    file; an acceptance comes after its analysis. ``errors`` are the first of ``wrong``. ``all_read``: no further rows
-    were left out.
+    file; an acceptance comes after its analysis.
     """
 
-    rows: int
-    made: tuple[Made, ...]
-    errors: tuple[RowError, ...]
-    wrong: int
-    all_read: bool
+    made: tuple[Made, ...] = ()
 
 
 def understand(
@@ -64,14 +60,16 @@ def understand(
     """
     problems = check_map(chosen, table.headings)
     if problems:
-        errors = tuple(RowError(0, _column(problem), problem.message) for problem in problems)
-        return Understood(0, (), errors, len(errors), all_read=False)
+        return Understood(**refuse_map(problems))
     with scope(workshop=member.workshop):
         return _Understanding(member, now, Reader(member, table, chosen, sha256)).run(table, most)
 
 
-def _column(problem: FieldError) -> str:
-    return "" if problem.field == "mapping" else problem.field
+def refuse_map(problems: Sequence[FieldError]) -> dict[str, Any]:
+    """Return the outcome of a file of which nothing was read, because of what was said of its columns."""
+    columns = ("" if problem.field == "mapping" else problem.field for problem in problems)
+    errors = tuple(RowError(0, column, problem.message) for column, problem in zip(columns, problems, strict=True))
+    return {"rows": 0, "errors": errors, "wrong": len(errors), "all_read": False}
 
 
 class _Understanding:
@@ -98,8 +96,13 @@ class _Understanding:
         made = [*self._build(each for each in said if not each.refers)]
         made += self._build(each for each in said if each.refers)
         made.sort(key=lambda each: (each.occurred.at, each.said.refers, each.said.row))
-        kept = sorted(self.errors.kept, key=lambda error: error.row)
-        return Understood(count, tuple(made), tuple(kept), self.errors.count, next(rows, None) is None)
+        return Understood(
+            rows=count,
+            made=tuple(made),
+            errors=self.errors.in_order(),
+            wrong=self.errors.count,
+            all_read=next(rows, None) is None,
+        )
 
     def _refuse_known(self, said: Sequence[Said]) -> None:
         """Refuse rows whose entries are there already: by an earlier file with the same keys."""
@@ -126,6 +129,7 @@ class _Understanding:
         if isinstance(said.data, AcceptanceInput):
             self._require_analysis(said.data.analysis)
         built = build(self.member, self.now, said.data, said.occurred, self.known)
+        built.require_here()
         event, occurred = built.event, built.occurred
         assert occurred is not None  # noqa: S101  (read, or that of the analysis)
         if lies_ahead(self.member.workshop, self.now, occurred):

@@ -21,6 +21,7 @@ CLOCK_TEXT = r"(?P<clock>\d{1,2}:\d{2}(?::\d{2})?)"
 ISO_TEXT = re.compile(rf"(\d{{4}})-(\d\d)-(\d\d)(?:[T ]{CLOCK_TEXT}(?P<offset>Z|[+-]\d\d:\d\d)?)?")
 OTHER_TEXT = re.compile(rf"(\d{{1,2}})([./-])(\d{{1,2}})\2(\d{{4}})(?:,? {CLOCK_TEXT})?")
 NUMBER = re.compile(r"[+-]?[\d.,' ]*\d")
+NUMBERS = re.compile(r"\d[\d.,]*\d")
 YES, NO = ("yes", "true", "x", "1"), ("no", "false", "0")
 
 
@@ -139,6 +140,22 @@ def _with_point(typed: str) -> str:
     if "." in number[0]:
         raise CellError(f'A comma is the decimal sign here, so "{number[0]}" is unclear. Write it without points.')
     return number[0].replace(",", ".") + typed[number.end() :]
+
+
+def read_figure(cell: Cell, unit: str, decimal: str) -> str:
+    """Return the text of one figure, or of a range of them, with points for decimal signs and a unit behind it."""
+    text = read_name(cell)
+    if decimal == COMMA and not isinstance(cell, Plain):
+        text = NUMBERS.sub(lambda found: _with_point(found[0]), text)
+    return f"{text} {unit}" if unit and text[-1:].isdecimal() else text
+
+
+def read_day(cell: Cell, dates: str) -> date:
+    """Return a day of which no time of day is told."""
+    found = read_clocked(cell, dates)
+    if found.clock not in (None, time()):
+        raise CellError("Write the day alone, without a time.")
+    return found.day
 
 
 def read_flag(cell: Cell) -> bool:

@@ -1,4 +1,4 @@
-"""Files of past records: the upload, and what each column means."""
+"""Files to import: the upload, and what each column means."""
 
 from collections.abc import Iterator, Mapping, Sequence
 from typing import Any
@@ -20,10 +20,12 @@ from chemicals.process.importing.columns import (
     ColumnMap,
     list_targets,
 )
+from chemicals.process.importing.register.columns import OF_CONTAINER, list_register_targets
 from chemicals.process.importing.table import LARGEST_FILE, Broken, Row
+from chemicals.process.models import Subject
 from compliance.web import words
 from compliance.web.forms.base import WebForm
-from compliance.web.forms.fields import REQUIRED, Text, WordField
+from compliance.web.forms.fields import NO_CHOICE, REQUIRED, FlagField, Text, WordField
 
 EXAMPLES = 3
 """How many cells of a column are shown beside it."""
@@ -50,11 +52,16 @@ def _check_size(upload: Any) -> None:
 class UploadForm(WebForm):
     """A file to look at."""
 
+    subject = forms.ChoiceField(
+        choices=Subject.choices,
+        required=False,
+        label=gettext_lazy("What is in the file"),
+        error_messages={"invalid_choice": NO_CHOICE},
+        help_text=gettext_lazy("Each row is an entry, or a product with one of its containers."),
+    )
     file = TableField(
         label=gettext_lazy("File"),
-        help_text=gettext_lazy(
-            "CSV in UTF-8, or XLSX, up to 50 MB: one row for each entry, the headings of the columns in the first row."
-        ),
+        help_text=gettext_lazy("CSV in UTF-8, or XLSX, up to 50 MB, the headings of the columns in the first row."),
     )
 
 
@@ -86,7 +93,7 @@ class TargetSelect(forms.Select):
 
 
 class ColumnsForm(WebForm):
-    """What happened in every row, how dates and numbers are written, and what each column says.
+    """How dates and numbers are written, what each column says, and what is the same for every row.
 
     ``seen`` is the column map that the preview on the page was made with.
     """
@@ -98,16 +105,10 @@ class ColumnsForm(WebForm):
     ) -> None:
         super().__init__(data, **kwargs)
         self.headings = headings
-        verbs = [(verb, label) for kind, label in words.KINDS.items() if (verb := words.verb_of(kind)) in VERBS]
-        self.fields["verb"] = forms.ChoiceField(
-            choices=[("", _("a column says what happened")), *verbs],
-            initial=chosen.verb,
-            required=False,
-            label=_("In every row"),
-        )
+        self.fields.update(self.ask_of_all(chosen))
         self.fields["dates"] = WordField(DATES.items(), initial=chosen.dates, label=_("Dates are written as"))
         self.fields["decimal"] = WordField(DECIMALS.items(), initial=chosen.decimal, label=_("Decimals are written as"))
-        groups = _group_targets(chosen, data)
+        groups = self.group_targets(chosen, data)
         known = {value: label for options in groups.values() for value, label in options.items()}
         for place, heading in enumerate(headings):
             self.fields[f"column-{place}"] = forms.ChoiceField(
@@ -125,17 +126,59 @@ class ColumnsForm(WebForm):
         """Return the column map that the valid form describes."""
         said = self.cleaned_data
         columns = {heading: said[f"column-{place}"] for place, heading in enumerate(self.headings)}
-        return ColumnMap(columns, said["verb"], said["dates"] or ISO, said["decimal"] or POINT)
+        of_all = {name: said[name] for name in self.ask_of_all(ColumnMap({}))}
+        return ColumnMap(columns, dates=said["dates"] or ISO, decimal=said["decimal"] or POINT, **of_all)
+
+    def ask_of_all(self, chosen: ColumnMap) -> dict[str, forms.Field]:
+        """Return the questions about all rows, by the names that they have in a column map."""
+        verbs = [(verb, label) for kind, label in words.KINDS.items() if (verb := words.verb_of(kind)) in VERBS]
+        every = forms.ChoiceField(
+            choices=[("", _("a column says what happened")), *verbs],
+            initial=chosen.verb,
+            required=False,
+            label=_("In every row"),
+        )
+        return {"verb": every}
+
+    def group_targets(self, chosen: ColumnMap, data: Any) -> dict[Text, dict[str, Text]]:
+        """Return what a column may say: of the verb that is chosen, else of all of them."""
+        verb = chosen.verb if data is None else data.get("verb", "")
+        targets = list_targets([verb] if verb in VERBS else VERBS)
+        for target in chosen.used.values():  # more groups of fields than are offered
+            targets.setdefault(target, target)
+        fields = {target: label for target, label in targets.items() if target not in GENERAL}
+        return {_("Every file"): dict(GENERAL), _("What was written down"): fields}
 
 
-def _group_targets(chosen: ColumnMap, data: Any) -> dict[Text, dict[str, Text]]:
-    """Return what a column may say: of the verb that is chosen, else of all of them."""
-    verb = chosen.verb if data is None else data.get("verb", "")
-    targets = list_targets([verb] if verb in VERBS else VERBS)
-    for target in chosen.used.values():  # more groups of fields than are offered
-        targets.setdefault(target, target)
-    fields = {target: label for target, label in targets.items() if target not in GENERAL}
-    return {_("Every file"): dict(GENERAL), _("What was written down"): fields}
+class RegisterColumnsForm(ColumnsForm):
+    """The same of a file of the register: what rows may do to what is here."""
+
+    def ask_of_all(self, chosen: ColumnMap) -> dict[str, forms.Field]:
+        """Return the questions about all rows."""
+        return {
+            "revise": FlagField(
+                label=_("Rows may revise products that are here"),
+                help_text=_("Without this, a row that says something else than the register is refused."),
+                initial=chosen.revise,
+            ),
+            "add_places": FlagField(
+                label=_("Rows may name places that are not here yet"),
+                help_text=_("They are added. Without this, a place that is not here is refused."),
+                initial=chosen.add_places,
+            ),
+        }
+
+    def group_targets(self, chosen: ColumnMap, data: Any) -> dict[Text, dict[str, Text]]:
+        """Return what a column may say: of the product, and of a container of it."""
+        targets = list_register_targets()
+        for target in chosen.used.values():  # more parts of a composition than are offered
+            targets.setdefault(target, target)
+        product = {target: label for target, label in targets.items() if target not in OF_CONTAINER}
+        return {_("Of the product"): product, _("Of a container"): dict(OF_CONTAINER)}
+
+
+FORMS: Mapping[str, type[ColumnsForm]] = {Subject.ENTRIES: ColumnsForm, Subject.REGISTER: RegisterColumnsForm}
+"""Forms by what is in the file."""
 
 
 def _show_cells(rows: Sequence[Row], place: int) -> str:

@@ -1,4 +1,4 @@
-"""Import of past records: upload a file, say what its columns mean, look at what was understood, import all of it."""
+"""Imports: upload a file, say what its columns mean, look at what was understood, import all of it."""
 
 import hashlib
 import json
@@ -14,9 +14,10 @@ from django.utils.translation import gettext as _
 from chemicals.process.importing.columns import ColumnMap, as_json
 from chemicals.process.importing.files import add_import, choose_columns, find_map, read_table
 from chemicals.process.importing.reading import RowError
+from chemicals.process.importing.register.plan import RegisterUnderstood
 from chemicals.process.importing.table import Table
 from chemicals.process.importing.understanding import Understood
-from chemicals.process.models import Import
+from chemicals.process.models import Import, Subject
 from chemicals.process.selectors import get_import_for, list_imports_for
 from chemicals.workshop.errors import ConflictError, InvalidInputError
 from chemicals.workshop.models import Membership, Role
@@ -24,8 +25,8 @@ from chemicals.workshop.permissions import require_writer
 from compliance.clearance.importing import AT_ONCE, RefusedImportError, preview_import, record_import
 from compliance.web.door import page, show
 from compliance.web.export import Column, wanted_file
-from compliance.web.forms.imports import EXAMPLES, ColumnsForm, UploadForm
-from compliance.web.imported import RowTeller
+from compliance.web.forms.imports import EXAMPLES, FORMS, UploadForm
+from compliance.web.imported import RowTeller, Told, tell_register
 from compliance.web.views.acts import address, fill_in, sent
 
 SHOWN_ROWS, SHOWN_ERRORS = 10, 200
@@ -43,24 +44,31 @@ IMPORT_COLUMNS = (
     Column("imported", lambda row: row.imported_at),
     Column("first entry", lambda row: row.first),
     Column("last entry", lambda row: row.last),
+    Column("subject", lambda row: row.subject),
 )
 
 
 @page("GET", "POST")
 def index(request: HttpRequest, member: Membership) -> HttpResponseBase:
-    """List the files of past records, and take another one."""
+    """List the files of past records and of the register, and take another one."""
 
     def act(form: UploadForm) -> str:
-        file = form.cleaned_data["file"]
-        found = add_import(actor=member, now=timezone.now(), name=file.name, data=file.read())
+        file, subject = form.cleaned_data["file"], Subject(form.cleaned_data["subject"] or Subject.ENTRIES)
+        found = add_import(actor=member, now=timezone.now(), name=file.name, data=file.read(), subject=subject)
         return address("import", member, found.uuid)
 
     if request.method == "POST":
         require_writer(member)
     rows = list_imports_for(member)
     file = wanted_file(request, imports=(IMPORT_COLUMNS, lambda: rows))
-    form = UploadForm(sent(request), request.FILES or None)
-    return file or fill_in(request, member, form, act, template="web/imports.html", here="entries", rows=rows)
+    about = request.GET.get("subject", Subject.ENTRIES)
+    form = UploadForm(sent(request), request.FILES or None, initial={"subject": about})
+    return file or fill_in(request, member, form, act, template="web/imports.html", here=_here(about), rows=rows)
+
+
+def _here(subject: str) -> str:
+    """Return the part of the site to which a file belongs."""
+    return "register" if subject == Subject.REGISTER else "entries"
 
 
 @page("GET", "POST")
@@ -79,7 +87,7 @@ def _receive(request: HttpRequest, member: Membership, found: Import) -> HttpRes
     """Do what the form says: import what was seen, or show how it is understood now."""
     require_writer(member)
     table, now = read_table(found), timezone.now()
-    form = ColumnsForm(table.headings, ColumnMap({}), _first(table), request.POST)
+    form = FORMS[found.subject](table.headings, ColumnMap({}), _first(table), request.POST)
     if not form.is_valid():
         return _show(request, member, found, status=400, form=form)
     chosen = form.chosen
@@ -107,17 +115,17 @@ def _look(
     file = wanted_file(request, errors=(COLUMNS, lambda: errors))
     if file is not None:
         return file
-    teller = RowTeller(member) if understood.made else None
-    rows = [teller.tell(made) for made in _in_order(understood)] if teller else []
     return _show(
         request,
         member,
         found,
         status=status,
-        form=ColumnsForm(table.headings, chosen, _first(table), initial={"seen": _digest(chosen)}),
+        form=FORMS[found.subject](table.headings, chosen, _first(table), initial={"seen": _digest(chosen)}),
         table=table,
         understood=understood,
-        rows=rows,
+        rows=_tell(member, understood),
+        remarks=getattr(understood, "remarks", ())[:SHOWN_ERRORS],
+        counts=_count(understood),
         errors=errors[:SHOWN_ERRORS],
         wrong=understood.wrong or found.wrong,
         more=len(errors) - SHOWN_ERRORS,
@@ -125,9 +133,19 @@ def _look(
     )
 
 
-def _in_order(understood: Understood) -> Any:
-    """Return the first rows of the file that are right."""
-    return sorted(understood.made, key=lambda made: made.said.row)[:SHOWN_ROWS]
+def _tell(member: Membership, understood: Understood | RegisterUnderstood) -> list[Told]:
+    """Return the first rows of the file that are right, in words."""
+    if isinstance(understood, RegisterUnderstood):
+        return tell_register(understood.made, SHOWN_ROWS)
+    if not understood.made:
+        return []
+    teller = RowTeller(member)
+    return [teller.tell(made) for made in sorted(understood.made, key=lambda made: made.said.row)[:SHOWN_ROWS]]
+
+
+def _count(understood: Understood | RegisterUnderstood) -> dict[str, int]:
+    """Return how many things of each kind a file of the register makes; of entries it is their number that counts."""
+    return understood.made.counts if isinstance(understood, RegisterUnderstood) else {}
 
 
 def _first(table: Table) -> list[Any]:
@@ -145,7 +163,7 @@ def _show(request: HttpRequest, member: Membership, found: Import, status: int =
         request,
         member,
         "web/import.html",
-        here="entries",
+        here=_here(found.subject),
         status=status,
         heading=heading,
         upload=found,

@@ -1,9 +1,9 @@
-"""Import of past records without a browser."""
+"""Imports without a browser: of past records here, of the register by `import_register`."""
 
 import hashlib
 import json
 from argparse import ArgumentParser
-from collections.abc import Iterable
+from collections.abc import Iterable, Mapping
 from pathlib import Path
 from typing import Any
 from uuid import UUID
@@ -15,16 +15,18 @@ from chemicals.ledger.selectors import get_recomputed_to
 from chemicals.process.importing.columns import ColumnMap, as_json, from_json
 from chemicals.process.importing.files import add_import, guess_map
 from chemicals.process.importing.reading import RowError
+from chemicals.process.importing.register.plan import RegisterUnderstood
 from chemicals.process.importing.table import open_table
-from chemicals.process.importing.understanding import understand
+from chemicals.process.models import Subject
 from chemicals.workshop.errors import DomainError
 from chemicals.workshop.models import Membership, Role
-from compliance.clearance.importing import RefusedImportError, record_import
+from compliance.clearance.importing import RefusedImportError, read_file, record_import
 
 
 class Command(BaseCommand):
-    """Record all rows of a CSV or XLSX file as entries, or say everything that is wrong and record nothing."""
+    """Record all rows of a CSV or XLSX file, or say everything that is wrong and record nothing."""
 
+    subject = Subject.ENTRIES
     help = "Import past records from FILE, a CSV or XLSX file in which each row is an entry: all of them or none."
 
     def add_arguments(self, parser: ArgumentParser) -> None:
@@ -51,23 +53,33 @@ class Command(BaseCommand):
     def look(self, member: Membership, data: bytes, chosen: ColumnMap | None) -> None:
         """Say how the file is understood."""
         table = open_table(data)
-        chosen = chosen or guess_map(member.workshop, table)
+        chosen = chosen or guess_map(member.workshop, table, self.subject)
         self.stdout.write(json.dumps(as_json(chosen), ensure_ascii=False, indent=2))
-        understood = understand(member, timezone.now(), table, chosen, hashlib.sha256(data).hexdigest())
+        sha256 = hashlib.sha256(data).hexdigest()
+        understood = read_file(member, timezone.now(), table, chosen, subject=self.subject, sha256=sha256)
         if understood.wrong:
             self.refuse(understood.errors, understood.wrong)
-        self.stdout.write(f"{understood.rows} rows, {len(understood.made)} entries. Nothing was recorded.")
+        if isinstance(understood, RegisterUnderstood):
+            for remark in understood.remarks:
+                self.stdout.write(f"row {remark.row}: {remark.message}")
+            made = tell_counts(understood.made.counts)
+        else:
+            made = f"{len(understood.made)} entries"
+        self.stdout.write(f"{understood.rows} rows, {made}. Nothing was recorded.")
 
     def record(self, member: Membership, name: str, data: bytes, chosen: ColumnMap | None) -> None:
         """Record all of it."""
         now = timezone.now()
-        chosen = chosen or guess_map(member.workshop, open_table(data))
-        upload = add_import(actor=member, now=now, name=name, data=data)
+        chosen = chosen or guess_map(member.workshop, open_table(data), self.subject)
+        upload = add_import(actor=member, now=now, name=name, data=data, subject=self.subject)
         done = record_import(actor=member, now=now, upload=upload, chosen=chosen, whole=True)
         if done.imported_at is None:
             raise CommandError("A job is about to import this file.")
         before = "" if upload.imported_at is None else "This file was imported before. "
-        self.stdout.write(f"{before}Entries {done.first} to {done.last}.")
+        if done.made:
+            before += f"{tell_counts(done.made)}. "
+        entries = f"Entries {done.first} to {done.last}." if done.first else "No entries."
+        self.stdout.write(f"{before}{entries}")
         if get_recomputed_to(member.workshop) is not None:
             self.stdout.write("The books are being recomputed by a job: manage.py work")
 
@@ -77,6 +89,11 @@ class Command(BaseCommand):
             where = ", ".join(filter(None, (f"row {error.row}" if error.row else "", error.column))) or "the file"
             self.stderr.write(f"{where}: {error.message}")
         raise CommandError(f"What is wrong: {wrong}. Nothing was recorded.")
+
+
+def tell_counts(counts: Mapping[str, int]) -> str:
+    """Return how many things of each kind a file of the register makes: "2 products, 0 revisions, 3 containers"."""
+    return ", ".join(f"{count} {kind}" for kind, count in counts.items())
 
 
 def find_member(workshop: UUID, email: str) -> Membership:

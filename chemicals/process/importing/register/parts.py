@@ -1,0 +1,74 @@
+"""The composition in one cell: "CuSO4.5H2O 98 %; NaCl < 2 %", or the content alone where a number names the substance.
+
+Where the name ends and the content begins is found by what is known: a name of the register, and a content that can be
+read. What could be read in two ways is refused.
+"""
+
+import re
+from collections.abc import Callable, Iterator
+from dataclasses import dataclass
+
+from chemicals.process.importing.values import CellError, read_figure
+from chemicals.science.content import read_content
+from chemicals.science.errors import TextError
+
+EXAMPLE = "CuSO4.5H2O 98 %; NaCl < 2 %"
+_GAP = re.compile(r"\s+|(?=[<>≤≥])|(?<=[:=])")
+_UNFINISHED = re.compile(r"(?:[<>≤≥=‐‑‒–—−-]|\.\.|\bto)$")
+"""What begins a range, or an end of one: no name ends so."""
+
+
+@dataclass(frozen=True)
+class Part:
+    """A substance by what it was called ("": it was not), and how much of it there is."""
+
+    name: str
+    content: str
+
+
+def split_parts(text: str, decimal: str, is_known: Callable[[str], bool]) -> list[Part]:
+    """Return the parts of a composition. Raises CellError."""
+    return [_split(part.strip(), decimal, is_known) for part in re.split(r"[;\n]", text) if part.strip()]
+
+
+def _split(text: str, decimal: str, is_known: Callable[[str], bool]) -> Part:
+    whole = _read(text, decimal)
+    if isinstance(whole, str):
+        return Part("", whole)
+    pairs = list(_list_pairs(text))
+    read = [(name, _read(content, decimal)) for name, content in pairs]
+    found = [Part(name, content) for name, content in read if isinstance(content, str)]
+    named = [part for part in found if is_known(part.name)]
+    chosen = named or found
+    if len(chosen) == 1:
+        return chosen[0]
+    if chosen:
+        ways = " or ".join(f'{part.content} of "{part.name}"' for part in chosen)
+        raise CellError(f'"{text}" can be read in two ways: {ways}. Write a colon between substance and content.')
+    if is_known(text):
+        raise CellError(f'How much of "{text}" is in it? Write it behind the name: {EXAMPLE}.')
+    reasons = (error for (_, content), (_, error) in zip(pairs, read, strict=True) if re.match(r"[<>≤≥=.\d]", content))
+    reason = next((f" ({error})" for error in reasons), "")
+    raise CellError(f'"{text}" is no substance with its content{reason}. Write them like {EXAMPLE}.')
+
+
+def _list_pairs(text: str) -> Iterator[tuple[str, str]]:
+    """Yield every way to cut a text into a name and the rest; of a colon only that one."""
+    name, colon, rest = text.rpartition(":")
+    if colon and name.strip():
+        yield name.strip(), rest.strip()
+        return
+    for gap in _GAP.finditer(text):
+        name, rest = text[: gap.start()].rstrip(" ="), text[gap.end() :].strip()
+        if name and rest and not _UNFINISHED.search(name):
+            yield name, rest
+
+
+def _read(text: str, decimal: str) -> str | TextError | CellError:
+    """Return a content as it is kept, or why it is none."""
+    try:
+        figure = read_figure(text, "", decimal)
+        read_content(figure)
+    except (TextError, CellError) as error:
+        return error
+    return figure
