@@ -62,6 +62,14 @@ def between(where: str, least: int, most: int, **numbers: int) -> None:
             raise CanonicalError(f"{where}.{name}: {number} is not between {least} and {most}.")
 
 
+def not_above(where: str, **ends: int | None) -> None:
+    """Refuse a lower end above the upper one, in the order in which they are named; None stands for no end."""
+    known = [(name, end) for name, end in ends.items() if end is not None]
+    for (_, lower), (name, upper) in pairwise(known):
+        if lower > upper:
+            raise CanonicalError(f"{where}.{name}: {upper} is less than {lower}.")
+
+
 def at_most_one(where: str, **values: object) -> None:
     """Refuse more than one value that is not None."""
     given = [name for name, value in values.items() if value is not None]

@@ -10,8 +10,8 @@ from django.utils.functional import Promise
 from chemicals.books.events import GROSS_MASS, SPECIES, VOLUME
 from chemicals.ledger.models import VesselKind
 from chemicals.science.formula import METALS
-from chemicals.science.quantity import Quantity, QuantityError, parse
-from chemicals.science.units import DIMENSIONS
+from chemicals.science.quantity import Quantity
+from chemicals.science.reading import parse_in
 
 Text = str | Promise
 
@@ -47,6 +47,15 @@ class ReferenceField(FieldKind):
     """One row of the workshop: product, rack type, route, receiver or entry (by its kind)."""
 
     to: str = ""
+
+
+@dataclass(frozen=True)
+class InstrumentField(ReferenceField):
+    """One instrument of the workshop that measures one of these; ``by`` names the field that says which of them."""
+
+    to: str = "instrument"
+    measures: tuple[str, ...] = ()
+    by: str = ""
 
 
 @dataclass(frozen=True)
@@ -125,22 +134,4 @@ def read_amount(kind: AmountField, typed: str, unit: str | None = None) -> Quant
 
     A bare number is taken in the ``unit``, if one is given.
     """
-    errors = []
-    for dimension in kind.dimensions:
-        try:
-            return parse(typed, dimension, default_unit=unit)
-        except QuantityError as error:
-            errors.append(error)
-    raise _join(kind, errors)
-
-
-def _join(kind: AmountField, errors: Sequence[QuantityError]) -> QuantityError:
-    """Return one error that speaks of all dimensions of the field."""
-    first = errors[0]
-    if first.code == "wrong_dimension":
-        needed = " or ".join(DIMENSIONS[dimension].noun for dimension in kind.dimensions)
-        return QuantityError(first.code, **{**first.params, "needed": needed, "example": kind.example})
-    if first.code == "unknown_unit":
-        known = ", ".join(error.params["known"] for error in errors)
-        return QuantityError(first.code, **{**first.params, "known": known})
-    return first
+    return parse_in(typed, kind.dimensions, example=kind.example, default_unit=unit)

@@ -31,8 +31,10 @@ from chemicals.books.events import (
     Event,
     Figure,
     Filter,
+    Gauge,
     Held,
     Ingredient,
+    LevelMark,
     LevelReading,
     MakeUp,
     Measured,
@@ -41,7 +43,9 @@ from chemicals.books.events import (
     PeriodClosing,
     Plating,
     Racks,
+    Reading,
     Resin,
+    Result,
     Run,
     Sample,
     Share,
@@ -50,6 +54,7 @@ from chemicals.books.events import (
     Strip,
     Treatment,
 )
+from chemicals.books.events.readings import QUANTITIES
 
 texts = st.text(st.characters(exclude_categories=("Cc", "Cs"), include_characters="\n"), max_size=12).map(
     lambda text: unicodedata.normalize("NFC", text)
@@ -105,6 +110,10 @@ FIELDS: dict[type, dict[str, Values]] = {
     },
     Correction: {"changes": st.just(())},
     PeriodClosing: {"after": st.none()},
+    Result: {"least": st.integers(0, 10**6), "most": st.none() | st.integers(10**6, 10**9), "sd": st.none() | amounts},
+    Gauge: {"sd": amounts, "relative_sd": amounts},
+    LevelMark: {"height": st.none() | amounts, "volume": amounts},
+    Reading: {"quantity": st.sampled_from(QUANTITIES)},
     LevelReading: {"lost_to": st.sampled_from([AIR, SPILL])},
 }
 """Fields that may not hold everything their type allows."""

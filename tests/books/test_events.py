@@ -29,6 +29,7 @@ from chemicals.books.events import (
     Move,
     Plating,
     Racks,
+    Result,
     Run,
     Sample,
     Share,
@@ -153,6 +154,22 @@ def test_an_older_version_is_lifted_step_by_step(monkeypatch: pytest.MonkeyPatch
     assert old == {"observed": {}, "used": {}}
 
 
+def test_an_old_level_reading_was_of_a_volume_and_by_nothing_that_was_named() -> None:
+    old = json.loads(golden_file("level reading", 1).read_text(encoding="utf-8"))["body"]
+    found = decode("level reading", 1, decode_body(old.encode()).payload)
+    assert isinstance(found, LevelReading)
+    assert (found.volume.typed, found.hot, found.marks, found.instrument, found.gauge) == ("9.2", False, (), None, None)
+
+
+@pytest.mark.parametrize(
+    ("least", "most", "told"),
+    [(None, None, "this is needed"), (2, 1, "less than 2"), (-1, 3, "less than nothing")],
+)
+def test_a_result_has_one_end_at_least_and_the_lower_one_first(least: int | None, most: int | None, told: str) -> None:
+    with pytest.raises(CanonicalError, match=told):
+        Result("as typed", "mg/L", least, most, None)
+
+
 def test_every_step_between_versions_has_its_upcaster() -> None:
     steps = {(kind, version) for kind in KINDS for version in range(1, CURRENT[kind].VERSION)}
     assert set(events.UPCASTERS) == steps
@@ -168,7 +185,7 @@ def test_what_was_observed_and_what_was_used_stand_apart() -> None:
 def test_an_event_names_the_vessels_it_may_change(kind: str) -> None:
     event = EXAMPLES[kind]
     assert all(UUID(vessel) for vessel in event.vessels())  # no boundary among them
-    assert bool(event.vessels()) is (type(event) in FOLDS or kind == "analysis")
+    assert bool(event.vessels()) is (type(event) in FOLDS or kind in ("analysis", "reading"))
 
 
 def test_an_event_names_the_entry_it_speaks_of() -> None:

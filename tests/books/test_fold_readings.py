@@ -8,6 +8,8 @@ from chemicals.books.events import (
     DensityReading,
     Figure,
     Measured,
+    Reading,
+    Result,
     WeightReading,
 )
 from chemicals.books.fold.state import TOO_MUCH, UNKNOWN_LEVEL, WAS_UNKNOWN, Finding
@@ -88,3 +90,9 @@ def test_without_a_volume_a_density_says_nothing_of_the_mass() -> None:
     assert folded.transfers == ()
     assert folded.findings == (Finding(UNKNOWN_LEVEL, GROSS_MASS, "drum", UNACCOUNTED),)
     assert books.holds("drum", GROSS_MASS) == 12 * KG
+
+
+def test_a_reading_of_anything_else_moves_nothing() -> None:
+    books = a_drum()
+    folded = books.record(Reading("drum", "pH", "", Result("4.2", "pH", 4_200, 4_200, 100)))
+    assert (folded.transfers, folded.findings, folded.contents) == ((), (), ())

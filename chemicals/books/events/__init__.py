@@ -40,6 +40,7 @@ from chemicals.books.events.base import (
     WATER_SUPPLY,
     Event,
     Figure,
+    Gauge,
     Held,
     Ingredient,
     Measured,
@@ -47,6 +48,7 @@ from chemicals.books.events.base import (
     Share,
     Used,
     is_metal,
+    read_by_nothing,
 )
 from chemicals.books.events.books import (
     Cancellation,
@@ -70,7 +72,17 @@ from chemicals.books.events.plating import (
     Strip,
     join_plating,
 )
-from chemicals.books.events.readings import Acceptance, Analysis, DensityReading, LevelReading, WeightReading
+from chemicals.books.events.readings import (
+    Acceptance,
+    Analysis,
+    DensityReading,
+    LevelMark,
+    LevelReading,
+    Reading,
+    Result,
+    WeightReading,
+    read_as_volume,
+)
 from chemicals.books.events.stock import Count, MakeUp, Opening, Receipt, TopUp, swell_nothing
 from chemicals.books.events.upkeep import Carbon, CleanOut, Dissolved, Filter, Resin, Sludge, Treatment, Uptake
 
@@ -124,9 +136,11 @@ __all__ = [
     "Event",
     "Figure",
     "Filter",
+    "Gauge",
     "HandOver",
     "Held",
     "Ingredient",
+    "LevelMark",
     "LevelReading",
     "MakeUp",
     "Measured",
@@ -137,9 +151,11 @@ __all__ = [
     "PeriodReopening",
     "Plating",
     "Racks",
+    "Reading",
     "Receipt",
     "Recipe",
     "Resin",
+    "Result",
     "Run",
     "Sample",
     "Share",
@@ -159,7 +175,7 @@ __all__ = [
 
 EVENTS: tuple[type[Event], ...] = (
     Opening, Count, Receipt, MakeUp, TopUp, Run, DaySheet, Dummy, Strip, Move, DrumOff, Sample, Spill, Discharge,
-    LevelReading, WeightReading, DensityReading, Analysis, Acceptance, Filter, Carbon, Resin, Sludge, CleanOut,
+    LevelReading, WeightReading, DensityReading, Reading, Analysis, Acceptance, Filter, Carbon, Resin, Sludge, CleanOut,
     Treatment, HandOver, Cancellation, Correction, PeriodClosing, PeriodReopening, Paper,
 )  # fmt: skip
 CURRENT: Mapping[str, type[Event]] = {event.KIND: event for event in EVENTS}
@@ -167,6 +183,11 @@ Upcaster = Callable[[dict[str, Any]], dict[str, Any]]
 UPCASTERS: Mapping[tuple[str, int], Upcaster] = {
     (MakeUp.KIND, 1): swell_nothing,
     (Run.KIND, 1): join_plating,
+    (Run.KIND, 2): read_by_nothing,
+    (LevelReading.KIND, 1): read_as_volume,
+    (WeightReading.KIND, 1): read_by_nothing,
+    (DensityReading.KIND, 1): read_by_nothing,
+    (Analysis.KIND, 1): read_by_nothing,
     (Move.KIND, 1): weigh_nothing,
     (DrumOff.KIND, 1): weigh_nothing,
 }

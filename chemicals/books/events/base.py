@@ -2,7 +2,7 @@
 
 import re
 from dataclasses import dataclass
-from typing import Annotated, ClassVar, TypeVar
+from typing import Annotated, Any, ClassVar, TypeVar
 from uuid import UUID
 
 from chemicals.books import checks
@@ -61,6 +61,23 @@ class Figure:
 
     def __post_init__(self) -> None:
         checks.not_negative("Figure", base=self.base, sd=self.sd)
+
+
+@dataclass(frozen=True)
+class Gauge:
+    """An instrument as relied on: its name, its standard uncertainty in base units and as a share in ppm.
+
+    Either may be 0. ``calibrated_on`` is an ISO date, empty where nobody said so: readings of one calibration share
+    what is wrong with it.
+    """
+
+    name: str
+    sd: int
+    relative_sd: int
+    calibrated_on: str
+
+    def __post_init__(self) -> None:
+        checks.not_negative("Gauge", sd=self.sd, relative_sd=self.relative_sd)
 
 
 @dataclass(frozen=True)
@@ -135,3 +152,11 @@ def is_metal(component: str) -> bool:
 def only_vessels(*ends: str | None) -> tuple[str, ...]:
     """Return those ends of a movement that are vessels."""
     return tuple(end for end in ends if end is not None and end not in BOUNDARIES)
+
+
+def read_by_nothing(payload: dict[str, Any]) -> dict[str, Any]:
+    """Make a payload one that may name an instrument: none was named."""
+    return {
+        "observed": {**payload["observed"], "instrument": None},
+        "used": {**payload["used"], "gauge": None},
+    }

@@ -2,9 +2,20 @@
 
 from dataclasses import dataclass
 from typing import Any
+from uuid import UUID
 
 from chemicals.books import checks
-from chemicals.books.events.base import BOUNDARIES, PARTS, SPECIES, Event, Figure, Measured, Used, only_vessels
+from chemicals.books.events.base import (
+    BOUNDARIES,
+    PARTS,
+    SPECIES,
+    Event,
+    Figure,
+    Gauge,
+    Measured,
+    Used,
+    only_vessels,
+)
 
 
 @dataclass(frozen=True)
@@ -60,11 +71,11 @@ class Run(Event):
     """A load went through a route of tanks; the first one plated it. Weights, where taken, tell the mass.
 
     ``plating`` is None for a load that is only dipped. ``drag_out`` is what the load drags out of each tank of the
-    route, in nanolitres.
+    route, in nanolitres. ``instrument`` is the balance of both weights.
     """
 
     KIND = "run"
-    VERSION = 2
+    VERSION = 3
     parts: str
     route: tuple[str, ...]
     charge: Measured | None
@@ -75,6 +86,8 @@ class Run(Event):
     plating: Used[Plating | None]
     rack: Used[str]
     drag_out: Used[tuple[Figure, ...]]
+    instrument: UUID | None = None
+    gauge: Used[Gauge | None] = None
 
     def __post_init__(self) -> None:
         checks.as_many("Run", self.route, drag_out=self.drag_out)

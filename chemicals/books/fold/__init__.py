@@ -58,7 +58,7 @@ FOLDS: Mapping[type[events.Event], Callable[[Folding, Any], None]] = {
     events.Treatment: treatment.fold_treatment,
     events.Correction: correction.fold_correction,
 }
-"""Kinds that are not listed post nothing: analysis, cancellation, closing and reopening a period, paper."""
+"""Kinds that are not listed post nothing: reading, analysis, cancellation, closing and reopening a period, paper."""
 
 
 @dataclass(frozen=True)
