@@ -1,0 +1,1 @@
+"""Count days: somebody walks along the shelves and says what is there; differences become entries."""
