@@ -310,6 +310,11 @@ def _as_dict(detail: Any) -> dict[str, Any]:
 
 def read(kind: type[Strict], data: Any) -> dict[str, Any]:
     """Return what a request says, or raise ValidationError with everything that is wrong. What is null was left out."""
+    return {name: value for name, value in read_nulls(kind, data).items() if value is not None}
+
+
+def read_nulls(kind: type[Strict], data: Any) -> dict[str, Any]:
+    """Return what a request says as ``read`` does, but where null says something: take it away."""
     found = kind(data=data)
     found.is_valid(raise_exception=True)
-    return {name: value for name, value in found.validated_data.items() if value is not None}
+    return dict(found.validated_data)

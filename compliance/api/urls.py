@@ -5,6 +5,7 @@ from django.urls import URLPattern, include, path, register_converter
 from compliance.api.views import (
     books,
     calculations,
+    containers,
     doors,
     entries,
     exports,
@@ -52,6 +53,10 @@ WORKSHOP: list[URLPattern] = [
     path("imports/<uuid:uuid>/record", imports.ImportRecordView.as_view(), name="api-import-record"),
     path("vessels/", vessels.VesselsView.as_view(), name="api-vessels"),
     path("vessels/<uuid:uuid>/", vessels.VesselView.as_view(), name="api-vessel"),
+    path("vessels/<uuid:uuid>/care", containers.CareView.as_view(), name="api-care"),
+    path("vessels/<uuid:uuid>/changes/", containers.ChangesView.as_view(), name="api-vessel-changes"),
+    path("containers/receive", containers.ReceiveView.as_view(), name="api-receive-containers"),
+    path("containers/change", containers.ChangeManyView.as_view(), name="api-change-containers"),
     path("vessels/<uuid:uuid>/ledger/", books.VesselLedgerView.as_view(), name="api-vessel-ledger"),
     path("vessels/<uuid:uuid>/decanted-label", premises.DecantedLabelView.as_view(), name="api-decanted-label"),
     path("labels", premises.LabelsView.as_view(), name="api-labels"),

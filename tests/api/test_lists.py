@@ -1,5 +1,6 @@
 """Lists: pages that stay where they are, filters, and query counts that do not grow with the rows."""
 
+import re
 from collections.abc import Callable
 from datetime import datetime
 from typing import Any
@@ -196,13 +197,17 @@ def add_paper(api: Caller, shop: Shop, number: int) -> None:
     api.post(f"waste-containers/{shop.drum.vessel.uuid}/label", key=uuid4())
 
 
+def add_change(api: Caller, shop: Shop, number: int) -> None:
+    api.post(f"vessels/{shop.stock.uuid}/care", {"expires_on": f"2027-01-0{number + 1}"})
+
+
 LISTS = {
     "places/": (add_place, 1), "substances/": (add_substance, 1), "products/": (add_product, 3),
     "products/{product}/revisions/": (add_revision, 5), "vessels/": (add_vessel, 1), "tanks/": (add_tank, 1),
     "rack-types/": (add_rack_type, 1), "routes/": (add_route, 2), "entries/": (add_entry, 3),
     "waste-streams/": (add_stream, 1), "waste-containers/": (add_container, 2), "receivers/": (add_receiver, 1),
     "drop-offs/": (add_drop_off, 2), "periods/": (add_period, 1), "papers/": (add_paper, 1),
-    "imports/": (add_import, 1),
+    "imports/": (add_import, 1), "vessels/{stock}/changes/": (add_change, 3),
 }  # fmt: skip
 """How to add one row to each list, and how many queries its page takes besides the one that reads the token."""
 
@@ -212,7 +217,7 @@ def test_a_page_takes_as_many_queries_for_one_row_as_for_three(
     address: str, api: Caller, shop: Shop, django_assert_num_queries: Asserts
 ) -> None:
     add, count = LISTS[address]
-    path = address.format(product=shop.product.uuid)
+    path = address.format(product=shop.product.uuid, stock=shop.stock.uuid)
     add(api, shop, 0)
     before = len(api.get(path).json()["results"])
     with django_assert_num_queries(count + 1):
@@ -231,7 +236,7 @@ def test_every_list_is_counted() -> None:
     lists = {
         str(each.pattern) for each in WORKSHOP if issubclass(getattr(each.callback, "view_class", object), ListView)
     }
-    assert lists == {address.replace("{product}", "<uuid:uuid>") for address in LISTS}
+    assert lists == {re.sub(r"\{\w+\}", "<uuid:uuid>", address) for address in LISTS}
 
 
 def test_a_drop_off_and_a_label_made_below_the_api_are_listed(

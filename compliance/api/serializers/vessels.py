@@ -27,6 +27,11 @@ class VesselShape(Shape):
     place = Named(allow_null=True, help_text=_("Where it stands; null where that is not said."))
     product = Named(allow_null=True, help_text=_("The product that arrives in it; null for tanks and waste."))
     capacity = Figure(dimension="volume", allow_null=True, help_text=_("What it can hold; null where not said."))
+    opened_on = serializers.DateField(allow_null=True, help_text=_("When it was opened; null where not said."))
+    expires_on = serializers.DateField(allow_null=True, help_text=_("Until when it keeps; null where not said."))
+    gone_at = serializers.DateTimeField(
+        allow_null=True, help_text=_("Since when it is gone: put away, or handed over; null while it is here.")
+    )
     created_at = serializers.DateTimeField(help_text=_("When it was set up."))
 
 
