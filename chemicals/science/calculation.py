@@ -360,7 +360,8 @@ def _read_one(sent: Any, spec: InputField) -> Any:
     if sent is None and not spec.required:
         return None
     if sent is None:
-        raise InputError(f"This field is needed: write for example {spec.example}.")
+        remedy = f"one of {', '.join(spec.choices)}" if spec.choices else f"for example {spec.example}"
+        raise InputError(f"This field is needed: write {remedy}.")
     if isinstance(sent, bool) or not isinstance(sent, str | int | float | Decimal):
         raise InputError(f"This is neither text nor a number: write for example {spec.example}.")
     if isinstance(sent, int) and sent.bit_length() > 256:

@@ -143,6 +143,7 @@ class CalculationFieldSchema(OpenApiSerializerFieldExtension):  # type: ignore[n
         number = {"integer": "integer"}.get(spec.kind, "number")
         types = ["string"] if spec.kind in ("text", "choice") else ["string", number]
         schema: dict[str, Any] = {"type": types, "examples": [spec.example]}
+        schema |= {} if spec.default is None else {"default": spec.default}
         return {**schema, "enum": list(spec.choices)} if spec.choices else schema
 
 

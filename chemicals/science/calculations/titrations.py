@@ -57,16 +57,20 @@ class TitrationInput:
         float,
         quantity(
             "volume", "mL", "Blank", "Titrant without a sample, or to the end point before. A bare number is in mL.",
-            "0 mL", above_zero=False, default="0 mL",
+            "0.05 mL", above_zero=False, default="0 mL",
         ),
     ]  # fmt: skip
     sample: Annotated[float, quantity("volume", "mL", "Sample", "Bath in the flask. A bare number is in mL.", "5 mL")]
     mole_ratio: Annotated[
-        float, quantity("fraction", "1", "Mole ratio", "Moles of analyte per mole of titrant.", "1", default="1")
+        float, quantity("fraction", "1", "Mole ratio", "Moles of analyte per mole of titrant.", "0.5", default="1")
     ]
     sd: Annotated[
         TitrationDeviations,
-        group("Standard uncertainties", "Of the inputs, by their names; left out: exact.", TitrationDeviations),
+        group(
+            "Standard uncertainties",
+            "What is left out counts as exact. With none at all, that of the result is unknown.",
+            TitrationDeviations,
+        ),
     ]
 
 

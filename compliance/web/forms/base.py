@@ -82,6 +82,7 @@ class Group:
     label: Text
     parts: Sequence[str]
     folded: bool = False
+    help: Text = ""
 
 
 @dataclass(frozen=True)

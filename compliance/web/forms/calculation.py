@@ -19,7 +19,11 @@ class CalculationForm(WebForm):
             for name, part in _parts(spec).items():
                 self.fields[name] = _build(part)
                 self.fields[name].widget.is_required = part.required
-        self.groups = [Group(spec.name, spec.label, [*_parts(spec)], folded=True) for spec in self.specs if spec.parts]
+        self.groups = [
+            Group(spec.name, spec.label, [*_parts(spec)], folded=True, help=spec.help)
+            for spec in self.specs
+            if spec.parts
+        ]
 
     def given(self) -> dict[str, Any]:
         """Return what was typed, the parts of a group by their own names."""
@@ -42,11 +46,15 @@ def _build(spec: InputField) -> forms.Field:
         return forms.ChoiceField(
             choices=choices, label=spec.label, help_text=spec.help, required=False, initial=spec.default
         )
-    example = f" {spec.example}" if spec.example not in spec.help else ""
+    helps = [spec.help]
+    if spec.example not in spec.help:
+        helps.append(_("For example %s.") % spec.example)
+    if spec.default is not None:
+        helps.append(_("Left empty: %s.") % spec.default)
     attrs = {"autocomplete": "off", "autocapitalize": "off", "spellcheck": "false"}
     return forms.CharField(
         label=spec.label,
-        help_text=f"{spec.help}{f' For example{example}.' if example else ''}",
+        help_text=" ".join(map(str, helps)),
         required=False,
         widget=forms.TextInput(attrs=attrs),
     )

@@ -1,5 +1,6 @@
 """The calculations: one page for all of them, generated from their table."""
 
+from dataclasses import dataclass
 from typing import Any
 
 from django.http import Http404, HttpRequest, HttpResponse
@@ -36,23 +37,52 @@ def calculation(request: HttpRequest, name: str) -> HttpResponse:
     return show(request, None, "web/calculation.html", status=status, **context)
 
 
-def _results(calculation: Calculation, values: dict[str, Any]) -> list[tuple[Output, Any, list[tuple[Any, Any]]]]:
-    """Return (description, value, parts) of each result that is no table; parts are shown in place of the value."""
+@dataclass(frozen=True)
+class Cell:
+    """One value of a result, as a page shows it: numbers stand to the right."""
+
+    value: Any
+
+    @property
+    def is_number(self) -> bool:
+        return isinstance(self.value, int | float)
+
+
+@dataclass(frozen=True)
+class Table:
+    """A result in rows."""
+
+    output: Output
+    rows: list[list[Cell]]
+
+    @property
+    def heads(self) -> list[tuple[Output, bool]]:
+        """Return each column, and whether numbers stand in it."""
+        return [(column, cell.is_number) for column, cell in zip(self.output.columns, self.rows[0], strict=True)]
+
+
+def _results(calculation: Calculation, values: dict[str, Any]) -> list[tuple[Output, str, Cell]]:
+    """Return (description, name of the part, value) of each result that is no table, its parts one by one."""
     shown = [(output, values[output.name]) for output in calculation.outputs if not output.columns]
-    return [(output, value, _parts_of(value)) for output, value in shown if value is not None]
+    return [
+        (output, name, Cell(part))
+        for output, value in shown
+        if value is not None
+        for name, part in _parts_of(value).items()
+    ]
 
 
-def _parts_of(value: Any) -> list[tuple[Any, Any]]:
-    if isinstance(value, dict):
-        return list(value.items())
-    return list(enumerate(value, 1)) if isinstance(value, list) else []
+def _parts_of(value: Any) -> dict[str, Any]:
+    if isinstance(value, list):
+        return {str(number): part for number, part in enumerate(value, 1)}
+    return value if isinstance(value, dict) else {"": value}
 
 
-def _tables(calculation: Calculation, values: dict[str, Any]) -> list[tuple[Output, list[list[Any]]]]:
-    """Return (description, rows) of each result that is a table; a cell that names an input shows its label."""
+def _tables(calculation: Calculation, values: dict[str, Any]) -> list[Table]:
+    """Return each result that is a table; a cell that names an input shows its label."""
     labels = {spec.name: spec.label for spec in calculation.inputs}
     return [
-        (output, [[labels.get(str(cell), cell) for cell in row.values()] for row in values[output.name]])
+        Table(output, [[Cell(labels.get(str(cell), cell)) for cell in row.values()] for row in values[output.name]])
         for output in calculation.outputs
         if output.columns and values[output.name]
     ]
