@@ -14,7 +14,7 @@ from django_scopes import scope
 
 from chemicals.workshop.errors import FieldError, InvalidInputError, NotFoundError
 from chemicals.workshop.models import ApiToken, EmergencyNumber, Membership, Place, Role, User, Workshop
-from chemicals.workshop.permissions import require_owner, require_writer
+from chemicals.workshop.permissions import require_owner, require_same_workshop, require_writer
 from chemicals.workshop.rows import check_row
 
 
@@ -111,6 +111,20 @@ def create_place(*, actor: Membership, name: str, bund: str = "", exhaust_duct: 
     with transaction.atomic():
         place.save()
     return place
+
+
+@transaction.atomic
+def change_place(*, actor: Membership, place: Place, name: str, bund: str = "", exhaust_duct: str = "") -> Place:
+    """Change a place's name, and which bund and exhaust duct it shares. What stands there stays."""
+    require_writer(actor)
+    require_same_workshop(actor, place)
+    with scope(workshop=actor.workshop):
+        found = Place.objects.select_for_update().get(pk=place.pk)
+    found.name, found.bund, found.exhaust_duct = name.strip(), bund.strip(), exhaust_duct.strip()
+    _check(found)
+    with scope(workshop=actor.workshop):
+        found.save(update_fields=["name", "bund", "exhaust_duct"])
+    return found
 
 
 MOST_EMERGENCY_NUMBERS = 12
