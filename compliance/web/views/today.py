@@ -5,8 +5,10 @@ from django.utils import timezone
 
 from chemicals.journal.selectors import list_entries_for, list_incidents_for
 from chemicals.ledger.selectors import get_recomputed_to, list_findings_for
+from chemicals.process.counting.selectors import list_open_counts_for
 from chemicals.process.selectors import list_open_analyses_for
 from chemicals.workshop.models import Membership
+from compliance.premises.empties import list_empties_for
 from compliance.premises.expiry import list_running_out
 from compliance.waste.selectors import list_filling_for
 from compliance.web import words
@@ -23,6 +25,7 @@ def today(request: HttpRequest, member: Membership) -> HttpResponse:
     """Show the first page of a workshop."""
     ends = ends_of(member)
     findings = list(list_findings_for(member)[:LAST])
+    empties = list_empties_for(member)
     return show(
         request,
         member,
@@ -34,5 +37,8 @@ def today(request: HttpRequest, member: Membership) -> HttpResponse:
         analyses=[(entry, event, ends.name(event.vessel)) for entry, event in list_open_analyses_for(member)],
         filling=list_filling_for(member),
         running_out=list_running_out(member, timezone.localdate(), MOST_RUNNING_OUT),
+        wasted=sum(each.stays_waste for each in empties),
+        asked=sum(each.must_ask for each in empties),
+        counts=list_open_counts_for(member),
         recomputing=get_recomputed_to(member.workshop),
     )

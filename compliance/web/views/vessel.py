@@ -8,12 +8,15 @@ from django.utils import timezone
 
 from chemicals.journal.selectors import list_entries_naming
 from chemicals.ledger.care import CONTAINERS
+from chemicals.ledger.gone import is_handed_over
 from chemicals.ledger.models import Vessel, VesselKind
-from chemicals.ledger.selectors import get_recomputed_to, get_vessel_for, list_changes_of, read_contents
+from chemicals.ledger.selectors import get_recomputed_to, get_vessel_for, is_known_empty, list_changes_of, read_contents
+from chemicals.process.counting.selectors import COUNTABLE, find_last_seen, list_open_counts_for
 from chemicals.process.selectors import find_last_run, get_tank_of, list_open_analyses_for
 from chemicals.science.reactivity import REACTS_AS
 from chemicals.workshop.models import Membership
 from compliance.clearance.selectors import react_as
+from compliance.premises.empties import find_empty
 from compliance.premises.expiry import Keeping
 from compliance.premises.received import list_received
 from compliance.premises.selectors import list_labels_of, list_standing_for
@@ -31,6 +34,7 @@ CHANGE_COLUMNS = (
     Column("what", lambda row: row.fact),
     Column("before", lambda row: row.before),
     Column("after", lambda row: row.after),
+    Column("note", lambda row: row.note),
 )
 
 
@@ -59,8 +63,19 @@ def vessel(request: HttpRequest, member: Membership, uuid: UUID) -> HttpResponse
         papers=list_labels_of(found, member),
         rows=entry_rows(member, list_entries_naming(member, found.uuid)[:LAST]),
         changes=changes[:LAST],
+        **_counts(member, found),
+        handed_over=found.gone_at is not None and is_handed_over(found),
+        is_empty=found.kind == VesselKind.STOCK and found.gone_at is None and is_known_empty(found),
+        empty=find_empty(member, found),
         **_known(member, found),
     )
+
+
+def _counts(member: Membership, found: Vessel) -> dict[str, Any]:
+    """Return when it was last seen on a count, and the counts that are open."""
+    if found.kind not in COUNTABLE:
+        return {}
+    return {"countable": True, "last_seen": find_last_seen(member, found), "counts": list_open_counts_for(member)}
 
 
 def _known(member: Membership, found: Vessel) -> dict[str, Any]:
