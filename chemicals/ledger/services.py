@@ -77,7 +77,7 @@ def create_vessel(
 
 def check_vessel(vessel: Vessel, now: datetime) -> list[FieldError]:
     """Return everything that is wrong with a vessel that is not written yet, but whether its name is free."""
-    others = ["code", "workshop", "place", "product", "created_by"]
+    others = ["code", "workshop", "place", "product", "created_at", "created_by"]
     return [*check_row(vessel, leave_out=others), *check_days(vessel, now)]
 
 

@@ -11,6 +11,7 @@ from chemicals.ledger.models import Vessel, VesselKind
 from chemicals.ledger.selectors import list_vessels_for
 from chemicals.process.fields import ReferenceField, VesselField
 from chemicals.process.importing.values import CellError
+from chemicals.process.instruments import list_instruments_for
 from chemicals.process.selectors import list_rack_types_for, list_routes_for
 from chemicals.register.selectors import list_products_for
 from chemicals.workshop.models import Membership
@@ -36,7 +37,7 @@ class Names:
         return uuid
 
     def reference(self, kind: ReferenceField, text: str) -> UUID:
-        """Return what a name means: product, route or rack type; of an entry its number (#17) or the key of its row."""
+        """Return what a name means: product, route, rack type or instrument; of an entry its number (#17) or the key of its row."""
         if kind.to in self._tables:
             return _one(self._tables[kind.to](), text, kind.to)
         if text.startswith("#"):
@@ -54,7 +55,12 @@ class Names:
 
     @property
     def _tables(self) -> Mapping[str, Callable[[], ByName]]:
-        return {"product": lambda: self._products, "route": lambda: self._routes, "rack type": lambda: self._racks}
+        return {
+            "product": lambda: self._products,
+            "route": lambda: self._routes,
+            "rack type": lambda: self._racks,
+            "instrument": lambda: self._instruments,
+        }
 
     @cached_property
     def _vessels(self) -> ByName:
@@ -82,6 +88,10 @@ class Names:
     @cached_property
     def _racks(self) -> ByName:
         return _by_name((row.name, row.uuid) for row in list_rack_types_for(self.member))
+
+    @cached_property
+    def _instruments(self) -> ByName:
+        return _by_name((row.name, row.uuid) for row in list_instruments_for(self.member))
 
     @cached_property
     def _entries(self) -> Mapping[int, UUID]:

@@ -252,6 +252,7 @@ READERS: Mapping[type[FieldKind], Callable[[Reader, Any, Cell, str], Any]] = {
     ),
     kinds.VesselField: lambda reader, kind, cell, _unit: reader.names.vessel(kind, values.read_name(cell)),
     kinds.ReferenceField: lambda reader, kind, cell, _unit: reader.names.reference(kind, values.read_name(cell)),
+    kinds.InstrumentField: lambda reader, kind, cell, _unit: reader.names.reference(kind, values.read_name(cell)),
     kinds.ComponentField: lambda _reader, kind, cell, _unit: values.read_component(kind, cell),
     kinds.WholeField: lambda _reader, kind, cell, _unit: values.read_whole(kind, cell),
     kinds.ChoiceField: lambda _reader, kind, cell, _unit: values.read_choice(kind, cell),

@@ -56,8 +56,8 @@ OF_CONTAINER: Final[Mapping[str, Text]] = {
     COUNT: _("Containers alike"),
 }
 
-PART = re.compile(r"part (\d{1,2}) (substance|content)")
-PART_LABELS: Final[Mapping[str, Text]] = {"substance": _("substance"), "content": _("content")}
+PART = re.compile(r"part (\d{1,2}) (name|content)")
+PART_LABELS: Final[Mapping[str, Text]] = {"name": _("substance"), "content": _("content")}
 
 OTHER_NAMES: Final[Mapping[str, str]] = {
     **dict.fromkeys(("name", "product name", "chemical"), PRODUCT),
@@ -134,5 +134,5 @@ def _check_parts(chosen: ColumnMap) -> Iterator[FieldError]:
         part = PART.fullmatch(target)
         if part is not None and COMPOSITION in said:
             yield FieldError(heading, "The composition has a column of its own. Leave one of the two out.")
-        elif part is not None and f"part {part[1]} {'content' if part[2] == 'substance' else 'substance'}" not in said:
+        elif part is not None and f"part {part[1]} {'content' if part[2] == 'name' else 'name'}" not in said:
             yield FieldError(heading, "A substance needs a content beside it. Choose the column of the other, too.")

@@ -8,6 +8,7 @@ import re
 from collections.abc import Callable, Iterator
 from dataclasses import dataclass
 
+from chemicals.process.importing.table import Cell
 from chemicals.process.importing.values import CellError, read_figure
 from chemicals.science.content import read_content
 from chemicals.science.errors import TextError
@@ -35,10 +36,11 @@ def _split(text: str, decimal: str, is_known: Callable[[str], bool]) -> Part:
     whole = _read(text, decimal)
     if isinstance(whole, str):
         return Part("", whole)
-    pairs = list(_list_pairs(text))
+    pairs = list(dict.fromkeys(_list_pairs(text)))
     read = [(name, _read(content, decimal)) for name, content in pairs]
     found = [Part(name, content) for name, content in read if isinstance(content, str)]
     named = [part for part in found if is_known(part.name)]
+    found = [part for part in found if "%" not in part.name]  # two parts without a semicolon between them
     chosen = named or found
     if len(chosen) == 1:
         return chosen[0]
@@ -64,11 +66,19 @@ def _list_pairs(text: str) -> Iterator[tuple[str, str]]:
             yield name, rest
 
 
-def _read(text: str, decimal: str) -> str | TextError | CellError:
-    """Return a content as it is kept, or why it is none."""
+def read_share(cell: Cell, unit: str, decimal: str) -> str:
+    """Return a content as it is kept. Raises CellError."""
+    figure = read_figure(cell, unit, decimal)
     try:
-        figure = read_figure(text, "", decimal)
         read_content(figure)
-    except (TextError, CellError) as error:
-        return error
+    except TextError as error:
+        raise CellError(error.message) from error
     return figure
+
+
+def _read(text: str, decimal: str) -> str | CellError:
+    """Return a content, or why it is none."""
+    try:
+        return read_share(text, "", decimal)
+    except CellError as error:
+        return error

@@ -6,14 +6,23 @@ from typing import Any
 
 from chemicals.process.importing.columns import ColumnMap
 from chemicals.process.importing.reading import NEEDED
-from chemicals.process.importing.register.columns import CAS, COMPOSITION, EC, FORMULA, LIMITS, OF_PRODUCT, PART
+from chemicals.process.importing.register.columns import (
+    CAS,
+    COMPOSITION,
+    EC,
+    FORMULA,
+    LIMITS,
+    OF_PRODUCT,
+    PART,
+    PRODUCT,
+)
 from chemicals.process.importing.register.composition import Composer, TargetError
-from chemicals.process.importing.register.plan import Planned, State
+from chemicals.process.importing.register.plan import Planned
 from chemicals.process.importing.register.reading import Said
 from chemicals.process.importing.register.substances import Substances
 from chemicals.process.importing.values import CellError
 from chemicals.register.checks import Checked, check_revision
-from chemicals.register.inputs import RevisionInput, say_again
+from chemicals.register.inputs import LineInput, RevisionInput, say_again
 from chemicals.register.models import CompositionLine, Product, ProductRevision
 from chemicals.science.quantity import show
 from chemicals.workshop.models import Membership
@@ -23,8 +32,11 @@ OF_SUBSTANCE = (COMPOSITION, CAS, EC, FORMULA)
 AMOUNTS = {"density": "density", "ph_floor": "ph"}
 DIFFERS = 'In the register it says "%s". Choose that rows revise what is here, or leave this empty.'
 
+Problem = tuple[int, str, str]
+"""What is wrong: row, target, message."""
+
 Refuse = Callable[[int, str, str], None]
-"""Notes what is wrong: row, target, message."""
+"""Notes a problem."""
 
 
 @dataclass
@@ -64,59 +76,81 @@ class Planner:
 
     def plan(self, group: Group, current: ProductRevision | None) -> Planned | None:
         """Return the product as it would stand after the import. None if something is wrong with it."""
-        problems = list(self._plan_errors(group, current))
+        problems: list[Problem] = []
+        lines = self._compose(group, current, problems)
+        checked, errors = check_revision(_say(group, current, lines))
+        wrong = [(group.row_of(target), target, message) for target, message in _by_target(group, errors)]
+        if current is None:
+            planned = self._begin(group, checked)
+            problems += self._check_new(group, planned)
+            wrong = [each for each in wrong if each[1] != "form" or "form" in group.said]
+            problems += wrong
+        else:
+            differing = list(_find_differing(group, current, checked, said_lines=lines is not None))
+            planned = _follow(group, current, checked if differing else None)
+            problems += wrong if differing else ()
+            if not self.chosen.revise:
+                problems += [(group.row_of(target), target, DIFFERS % shown) for target, shown in differing]
+        for row, target, message in problems:
+            self.refuse(row, target, message)
         if problems:
-            for row, target, message in problems:
-                self.refuse(row, target, message)
             return None
-        return self._planned
+        if planned.checked is not None:
+            self._remark_on(group, planned)
+        return planned
 
-    def _plan_errors(self, group: Group, current: ProductRevision | None) -> Iterator[tuple[int, str, str]]:
-        """Yield what is wrong; leave the plan in ``_planned``."""
+    def _compose(
+        self, group: Group, current: ProductRevision | None, problems: list[Problem]
+    ) -> tuple[LineInput, ...] | None:
+        """Return the lines that rows say, None where they say nothing new of them or something is wrong."""
         try:
-            lines = self.composer.compose(group.first.name, group.said, current)
+            return self.composer.compose(group.first.name, group.said, current)
         except CellError as error:
             target = error.target if isinstance(error, TargetError) else COMPOSITION
-            yield group.row_of(target), target, str(error)
-            lines = None
-        base = RevisionInput(form="", complete=False) if current is None else say_again(current)
-        fields = {target: value for target, value in group.said.items() if target not in OF_SUBSTANCE}
-        said = replace(base, **fields, lines=base.lines if lines is None else lines)
-        checked, errors = check_revision(said)
-        product = Product(workshop=self.member.workshop, name=group.first.name, supplier=group.first.supplier)
-        if current is None:
-            problems = check_row(product, leave_out=["workshop"])
-            yield from ((group.first.row, "product" if e.field == "name" else e.field, e.message) for e in problems)
-            if not said.form:
-                errors = [error for error in errors if error.field != "form"]
-                yield group.first.row, "form", NEEDED
-        differing = (
-            [] if current is None else list(_find_differing(group, current, checked, said_lines=lines is not None))
-        )
-        if current is None or differing:
-            yield from ((group.row_of(t), t, message) for t, message in _by_target(group, errors))
-        if differing and not self.chosen.revise:
-            yield from ((group.row_of(target), target, DIFFERS % shown) for target, shown in differing)
-        if current is not None and not differing:
-            self._planned = Planned(group.first.row, "here", current, tuple(current.lines.all()), None)
-            return
-        state: State = "new" if current is None else "revised"
-        checked.revision.product = product if current is None else current.product
-        checked.revision.number = 1 if current is None else current.number + 1
-        self._planned = Planned(group.first.row, state, checked.revision, checked.lines, checked)
-        self._remark_on(group, checked.revision, checked.lines)
+            problems.append((group.row_of(target), target, str(error)))
+            return None
 
-    def _remark_on(self, group: Group, revision: ProductRevision, lines: Sequence[CompositionLine]) -> None:
+    def _begin(self, group: Group, checked: Checked) -> Planned:
+        """Return a new product with its first revision."""
+        first, revision = group.first, checked.revision
+        revision.product = Product(workshop=self.member.workshop, name=first.name, supplier=first.supplier)
+        revision.number = 1
+        return Planned(first.row, "new", revision, checked.lines, checked)
+
+    def _check_new(self, group: Group, planned: Planned) -> Iterator[Problem]:
+        for error in check_row(planned.revision.product, leave_out=["workshop"]):
+            yield group.first.row, PRODUCT if error.field == "name" else error.field, error.message
+        if "form" not in group.said and "form" in self.chosen.used.values():
+            yield group.first.row, "form", NEEDED
+        elif "form" not in group.said:
+            yield 0, "form", "No column says it, and new products need it. Add one with solid, liquid or gas."
+
+    def _remark_on(self, group: Group, planned: Planned) -> None:
         """Note what a person should look at: hazards that contradict each other, substances that are new."""
         for target, message in self.composer.remarks:
             self.remark(group.row_of(target), target, message)
-        for contradiction in revision.contradictions:
+        for contradiction in planned.revision.contradictions:
             self.remark(group.first.row, "", contradiction.message)
-        for line in lines:
+        for line in planned.lines:
             remark = self.substances.remarks.get(line.substance.name)
             if remark and line.substance.name not in self._told:
                 self._told.add(line.substance.name)
                 self.remark(group.row_of(COMPOSITION), COMPOSITION, remark)
+
+
+def _say(group: Group, current: ProductRevision | None, lines: tuple[LineInput, ...] | None) -> RevisionInput:
+    """Return what the rows say over what the register says."""
+    base = RevisionInput(form="", complete=False) if current is None else say_again(current)
+    fields = {target: value for target, value in group.said.items() if target not in OF_SUBSTANCE}
+    return replace(base, **fields, lines=base.lines if lines is None else lines)
+
+
+def _follow(group: Group, current: ProductRevision, checked: Checked | None) -> Planned:
+    """Return a product of the register with its next revision, or as it is."""
+    if checked is None:
+        return Planned(group.first.row, "here", current, tuple(current.lines.all()), None)
+    checked.revision.product, checked.revision.number = current.product, current.number + 1
+    return Planned(group.first.row, "revised", checked.revision, checked.lines, checked)
 
 
 def _by_target(group: Group, errors: Sequence[Any]) -> Iterator[tuple[str, str]]:

@@ -1,7 +1,7 @@
 """From the rows of a file to what they say of products and containers: every error with its row and its column."""
 
 import re
-from collections.abc import Callable, Iterator, Mapping
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass, field
 from datetime import date
 from typing import Any
@@ -24,12 +24,13 @@ from chemicals.process.importing.register.columns import (
     OF_CONTAINER,
     OPENED,
     PART,
+    PART_LABELS,
     PLACE,
     PRODUCT,
     RECEIVED,
     SUPPLIER,
 )
-from chemicals.process.importing.register.parts import Part, split_parts
+from chemicals.process.importing.register.parts import Part, read_share, split_parts
 from chemicals.process.importing.register.substances import Substances
 from chemicals.process.importing.table import Cell, Row, Table
 from chemicals.process.importing.values import CellError
@@ -72,7 +73,7 @@ class Holder:
 class Said:
     """What a row says: a product by name and supplier, by target what it is, and perhaps a container.
 
-    ``shown`` are the cells as they were typed.
+    ``shown`` are the cells as they were typed, ``broken`` the targets of those that could not be read.
     """
 
     row: int
@@ -81,6 +82,7 @@ class Said:
     product: Mapping[str, Any]
     holder: Holder | None
     shown: Mapping[str, str] = field(default_factory=dict)
+    broken: frozenset[str] = frozenset()
 
 
 class Reader:
@@ -96,13 +98,13 @@ class Reader:
         ]
 
     def read(self, row: Row) -> Said | None:
-        """Return what a row says, or None with everything that is wrong noted."""
-        before = self.errors.count
+        """Return what a row says as far as it can be read; None without a product. What is wrong is noted."""
         if row.problem:
             self.errors.add(row.number, "", row.problem)
             return None
         said: dict[str, Any] = {}
         shown: dict[str, str] = {}
+        broken = set()
         parts: dict[int, dict[str, str]] = {}
         for place, heading, unit, target in self._places:
             cell = _unguarded(row.cells[place])
@@ -112,33 +114,36 @@ class Reader:
             part = PART.fullmatch(target)
             try:
                 if part is not None:
-                    read = self._read_content if part[2] == "content" else READERS[SUPPLIER]
-                    parts.setdefault(int(part[1]), {})[part[2]] = read(self, cell, unit)
+                    parts.setdefault(int(part[1]), {})[part[2]] = self._read_part(part[2], cell, unit)
                 else:
                     said[target] = READERS[target](self, cell, unit)
             except CellError as error:
+                broken.add(COMPOSITION if part else target)
                 self.errors.add(row.number, heading, str(error))
-        if parts:
-            said[COMPOSITION] = list(self._join(row.number, parts))
+        if parts and self._are_whole(row.number, parts, broken):
+            said[COMPOSITION] = [Part(**parts[number]) for number in sorted(parts)]
         if PRODUCT not in shown:
             self.errors.add(row.number, self.columns[PRODUCT], NEEDED)
-        if self.errors.count > before:
+        if PRODUCT not in said or SUPPLIER in broken:
             return None
         name, supplier = said.pop(PRODUCT), said.pop(SUPPLIER, "")
         holder = {target: said.pop(target) for target in OF_CONTAINER if target in said}
         if CONTAINER in holder:
             holder["name"] = holder.pop(CONTAINER)
-        return Said(row.number, name, supplier, said, Holder(**holder) if holder else None, shown)
+        return Said(row.number, name, supplier, said, Holder(**holder) if holder else None, shown, frozenset(broken))
 
-    def _read_content(self, _reader: "Reader", cell: Cell, unit: str) -> str:
-        return values.read_figure(cell, unit, self.chosen.decimal)
+    def _read_part(self, name: str, cell: Cell, unit: str) -> str:
+        return _line(cell) if name == "name" else read_share(cell, unit, self.chosen.decimal)
 
-    def _join(self, row: int, parts: Mapping[int, Mapping[str, str]]) -> Iterator[Part]:
-        for number in sorted(parts):
-            for name in ("substance", "content"):
-                if name not in parts[number]:
-                    self.errors.add(row, self.columns[f"part {number} {name}"], NEEDED)
-            yield Part(parts[number].get("substance", ""), parts[number].get("content", ""))
+    def _are_whole(self, row: int, parts: Mapping[int, Mapping[str, str]], broken: set[str]) -> bool:
+        """Say whether every part of a composition has its substance and its content; note what is missing."""
+        missing = [
+            f"part {number} {name}" for number in sorted(parts) for name in PART_LABELS if name not in parts[number]
+        ]
+        for target in missing if COMPOSITION not in broken else ():
+            self.errors.add(row, self.columns[target], NEEDED)
+        broken |= {COMPOSITION} if missing else set()
+        return COMPOSITION not in broken
 
     def read_day(self, cell: Cell, _unit: str) -> date:
         """Return a day."""

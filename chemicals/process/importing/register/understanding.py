@@ -76,10 +76,17 @@ class _Understanding:
         self.new_places: dict[str, None] = {}
         self.taken = dict.fromkeys(list_vessels_for(member).values_list("name", flat=True), 0)
         self.closed = get_last_close()
+        self.broken: set[tuple[int, str]] = set()
 
     def refuse(self, row: int, target: str, message: str) -> None:
-        """Note what is wrong with what a row says; where no column says it, by what it would be called."""
-        self.errors.add(row, self._heading(target), message)
+        """Note what is wrong with what a row says; where no column says it, by what it would be called.
+
+        What could not be read was told already.
+        """
+        if (row, target) not in self.broken:
+            self.errors.add(row, self._heading(target), message)
+        if not row:
+            self.broken.add((row, target))  # once is enough
 
     def remark(self, row: int, target: str, message: str) -> None:
         """Note what is only odd."""
@@ -97,6 +104,7 @@ class _Understanding:
             found = self.reader.read(row)
             if found is not None:
                 said.append(found)
+                self.broken |= {(found.row, target) for target in found.broken}
         if not count:
             self.errors.add(0, "", "There is no row below the headings. Choose another file.")
         plan = self._plan(said)
