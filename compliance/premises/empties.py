@@ -84,7 +84,8 @@ def list_empties_for(member: Membership, vessels: Iterable[UUID] | None = None) 
     Those that stay a waste come first. Three queries.
     """
     with scope(workshop=member.workshop):
-        rows = _emptied(list_vessels_for(member, VesselKind.STOCK).filter(gone_at=None))
+        rows = keep_emptied(list_vessels_for(member, VesselKind.STOCK).filter(gone_at=None))
+        rows = rows.select_related("place", "product", "drop_off_container")
         if vessels is not None:
             rows = rows.filter(uuid__in=list(vessels))
         found = list(rows)
@@ -104,7 +105,7 @@ def list_empties_for(member: Membership, vessels: Iterable[UUID] | None = None) 
     return sorted(empties, key=lambda each: (not each.stays_waste, not each.must_ask))
 
 
-def _emptied(vessels: QuerySet[Vessel]) -> QuerySet[Vessel]:
+def keep_emptied(vessels: QuerySet[Vessel]) -> QuerySet[Vessel]:
     """Return those that ever held something, and of which the books know that nothing is left."""
     something = Q(amount=None) | Q(amount__gt=0)
     mine = {"vessel": OuterRef("pk")}

@@ -190,10 +190,10 @@ def test_today_lists_ten_and_asks_once_whatever_runs_out(
 ) -> None:
     keep("Jar", -1)
     visit.get("today")
-    with django_assert_num_queries(16):
+    with django_assert_num_queries(19):
         visit.get("today")
     for number in range(11):
         keep(f"Jar {number}", number)
-    with django_assert_num_queries(16):
+    with django_assert_num_queries(19):
         visit.get("today")
     assert len(running_out(visit)) == 10

@@ -9,6 +9,7 @@ from django.utils import timezone
 from django.utils.translation import gettext as _
 
 from chemicals.journal.selectors import list_entries_naming
+from chemicals.ledger.gone import is_handed_over
 from chemicals.ledger.selectors import get_recomputed_to, get_vessel_for, list_vessels_for, read_contents
 from chemicals.process.fields import VesselField, describe
 from chemicals.process.inputs import DrumOffInput
@@ -19,6 +20,7 @@ from chemicals.workshop.permissions import require_writer
 from chemicals.workshop.selectors import get_place_for
 from compliance.clearance.selectors import preview, react_as
 from compliance.documents.selectors import list_papers_naming
+from compliance.premises.empties import list_empties_for
 from compliance.waste.models import WasteContainer
 from compliance.waste.selectors import (
     get_container_for,
@@ -49,6 +51,15 @@ COLUMNS = (
     Column("gross (g)", lambda row: grams(row.gross)),
     Column("closed", lambda row: row.closed_at),
     Column("state", state_of),
+    Column("gone since", lambda row: row.vessel.gone_at),
+)
+EMPTY_COLUMNS = (
+    Column("container", lambda row: row.vessel.name),
+    Column("code", lambda row: row.vessel.code),
+    Column("place", lambda row: row.vessel.place.name if row.vessel.place else ""),
+    Column("held", lambda row: "; ".join(row.names)),
+    Column("stays a waste", lambda row: "yes" if row.stays_waste else "ask" if row.must_ask else "no"),
+    Column("why", lambda row: row.why),
 )
 STREAM_COLUMNS = (
     Column("stream", lambda row: row.name),
@@ -73,9 +84,24 @@ def index(request: HttpRequest, member: Membership) -> HttpResponseBase:
     """List containers with their fill, and the streams."""
     containers = list_containers_for(member)
     streams = list_streams_for(member)
-    file = wanted_file(request, containers=(COLUMNS, lambda: containers), streams=(STREAM_COLUMNS, lambda: streams))
-    rows = [(row, read_fill(row), state_of(row)) for row in containers]
-    return file or show(request, member, "web/waste.html", here="waste", rows=rows, streams=streams)
+    file = wanted_file(
+        request,
+        containers=(COLUMNS, lambda: containers),
+        streams=(STREAM_COLUMNS, lambda: streams),
+        empties=(EMPTY_COLUMNS, lambda: list_empties_for(member)),
+    )
+    return file or show(request, member, "web/waste.html", here="waste", streams=streams, **_standing(member))
+
+
+def _standing(member: Membership) -> dict[str, Any]:
+    """Return what still stands here: waste containers with their fill, and empty stock containers."""
+    containers = list_containers_for(member).filter(vessel__gone_at=None)
+    empties = list_empties_for(member)
+    return {
+        "rows": [(row, read_fill(row), state_of(row)) for row in containers],
+        "staying": [each for each in empties if each.stays_waste],
+        "others": [each for each in empties if not each.stays_waste],
+    }
 
 
 @page()
@@ -100,6 +126,7 @@ def _container(
         "papers": list_papers_naming(member, found.vessel.code),
         "groups": list_groups(found.vessel),
         "state": state_of(found),
+        "handed_over": found.vessel.gone_at is not None and is_handed_over(found.vessel),
         "close_form": CloseForm(),
         "may_form": MayForm(_sources(member), None),
         "key": uuid4(),
@@ -111,7 +138,9 @@ def _sources(member: Membership) -> list[tuple[UUID, str]]:
     """Return what can be drummed off: tanks first, then stock and what stands for solids."""
     source = dict(describe(DrumOffInput))["source"]
     assert isinstance(source, VesselField)  # noqa: S101  (a table error, not an input error)
-    vessels = sorted(list_vessels_for(member, *source.kinds), key=lambda vessel: source.kinds.index(vessel.kind))
+    vessels = sorted(
+        list_vessels_for(member, *source.kinds).filter(gone_at=None), key=lambda vessel: source.kinds.index(vessel.kind)
+    )
     return [(vessel.uuid, f"{vessel.name} ({vessel.code})") for vessel in vessels]
 
 
