@@ -21,6 +21,7 @@ from chemicals.ledger.models import VesselKind
 from chemicals.ledger.periods import close_period
 from chemicals.ledger.services import create_vessel
 from chemicals.process import setup
+from chemicals.process.counting.services import note_line, start_count
 from chemicals.process.importing.files import add_import, choose_columns, find_map, read_table
 from chemicals.process.inputs import INPUTS
 from chemicals.register.services import LimitInput, LineInput, RevisionInput, create_product, create_substance
@@ -35,10 +36,11 @@ from chemicals.workshop.services import (
     invite_member,
     set_emergency_numbers,
 )
+from compliance.clearance.counting import finish_count
 from compliance.clearance.services import record
 from compliance.dropoffs import services as dropoffs
 from compliance.dropoffs.models import DropOff
-from compliance.ops.demo_reader import read_input
+from compliance.ops.demo_reader import read_input, read_seen
 from compliance.ops.demo_sheet import draw_sheet
 from compliance.premises import services as premises
 from compliance.waste import services as waste
@@ -247,6 +249,7 @@ class Demo:
         else:
             steps = {
                 "open containers": self.open_containers,
+                "count day": self.count,
                 "close container": self.close_container,
                 "label container": self.label_container,
                 "pack drop-off": self.pack_drop_off,
@@ -264,6 +267,16 @@ class Demo:
         vessels = [self.find_vessel(name) for name in said["vessels"]]
         care = CareInput(opened_on=now.astimezone(self.zone).date())
         change_vessels(actor=actor, now=now, vessels=vessels, care=care)
+
+    def count(self, actor: Membership, now: datetime, said: Row) -> None:
+        """Walk along the shelves, a container a minute; finish, or leave the count open."""
+        day = start_count(actor=actor, now=now, place=self.find("places", said.get("place")), note=said.get("note", ""))
+        for row in said["lines"]:
+            now += timedelta(minutes=1)
+            vessel = self.find_vessel(row["vessel"])
+            note_line(actor=actor, now=now, day=day, vessel=vessel, seen=read_seen(row))
+        if said.get("finished", False):
+            finish_count(actor=actor, now=now + timedelta(minutes=1), day=day)
 
     def close_container(self, actor: Membership, now: datetime, said: Row) -> None:
         """Close a container with its gross weight."""

@@ -4,7 +4,9 @@ from collections.abc import Callable, Mapping
 from typing import Any
 from uuid import UUID
 
+from chemicals.process.counting.services import SeenInput
 from chemicals.process.fields import AmountField, FieldKind, ReferenceField, RowsField, VesselField, describe
+from chemicals.process.models import Seen
 from chemicals.science.quantity import Quantity, QuantityError, parse
 
 TABLES = {
@@ -14,6 +16,7 @@ TABLES = {
     "receiver": "receivers",
     "analysis": "entries",
     "entry": "entries",
+    "instrument": "instruments",
 }
 """What a reference names -> the table of the scenario in which the name stands."""
 
@@ -37,6 +40,12 @@ def _read(field: FieldKind, value: Any, find: Find) -> Any:
     if isinstance(field, ReferenceField):
         return find(TABLES[field.to], value)
     return value
+
+
+def read_seen(said: Mapping[str, Any]) -> SeenInput:
+    """Return what was seen of a container on a count day; where no amount stands, one of the words."""
+    amounts = {name: read_amount(said[name], ("mass", "volume")) for name in ("amount", "sd") if name in said}
+    return SeenInput(said=Seen(said.get("said", Seen.AMOUNT)), remark=said.get("remark", ""), **amounts)
 
 
 def read_amount(text: str, dimensions: tuple[str, ...]) -> Quantity:

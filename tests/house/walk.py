@@ -12,7 +12,9 @@ from chemicals.balance.selectors import list_metals_for
 from chemicals.journal.models import Attachment
 from chemicals.journal.selectors import list_entries_for
 from chemicals.ledger.selectors import list_periods_for, list_vessels_for
+from chemicals.process.counting.selectors import list_count_days_for, list_lines_of
 from chemicals.process.inputs import INPUTS
+from chemicals.process.models import CountDay
 from chemicals.process.selectors import list_imports_for, list_rack_types_for, list_routes_for, list_tanks_for
 from chemicals.register.selectors import list_products_for, list_substances_for
 from chemicals.science.calculations import CALCULATIONS
@@ -69,6 +71,9 @@ def things(member: Membership, sha256: str) -> Mapping[str, list[Any]]:
         "receivers": [row.uuid for row in list_receivers_for(member)[:1]],
         "drop-offs": [row.uuid for row in list_drop_offs_for(member)[:1]],
         "periods": [row.closing.uuid for row in list_periods_for(member)[:1]],
+        "count": [row.uuid for row in list_open_counts(member)],
+        "count-days": [row.uuid for row in list_open_counts(member)],
+        "line": [list_lines_of(member, row)[0].uuid for row in list_open_counts(member)],
         "imports": [row.uuid for row in list_imports_for(member)[:1]],
         "papers": [row.uuid for row in {row.kind: row for row in list_papers_for(member)}.values()],
         "people": [row.uuid for row in list_members_for(member)[:1]],
@@ -86,6 +91,11 @@ def things(member: Membership, sha256: str) -> Mapping[str, list[Any]]:
         "uidb64": ["MQ"],
         "token": ["set-password"],
     }
+
+
+def list_open_counts(member: Membership) -> list[CountDay]:
+    """Return the counts that are open: a line of one is named with it."""
+    return list(list_count_days_for(member).filter(finished_at=None)[:1])
 
 
 PARAMETER = re.compile(r"<(?:\w+:)?(\w+)>")

@@ -75,12 +75,10 @@ def count(request: HttpRequest, member: Membership, uuid: UUID) -> HttpResponseB
     if request.method == "POST":
         require_writer(member)
         return _note(request, member, day)
-    reckoning = reckon_count(member, day)
-    said = list_lines_of(member, day)
     file = wanted_file(
         request,
-        lines=(COLUMNS, lambda: reckoning.rows),
-        said=(SAID_COLUMNS, lambda: said),
+        lines=(COLUMNS, lambda: reckon_count(member, day).rows),
+        said=(SAID_COLUMNS, lambda: list_lines_of(member, day)),
         about=timezone.localdate(day.started_at).isoformat(),
     )
     if file is not None:
