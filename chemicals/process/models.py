@@ -10,7 +10,11 @@ from django_scopes import ScopedManager
 from chemicals.jobs.models import Job, State
 from chemicals.journal.models import Attachment, Entry
 from chemicals.ledger.models import Vessel
+from chemicals.science.reading import MEASURED
 from chemicals.workshop.models import Membership, Place, Workshop
+
+LONGEST_TYPED = 40
+"""Characters of a mark, and of an uncertainty as typed."""
 
 
 class AnodeKind(models.TextChoices):
@@ -72,6 +76,100 @@ class Tank(models.Model):
 
     def __str__(self) -> str:
         return self.vessel.name
+
+
+class TankChange(models.Model):
+    """Who changed what of how a tank is set up, and when: before and after as people read them. ``note`` says why."""
+
+    tank = models.ForeignKey(Tank, on_delete=models.PROTECT, related_name="changes")
+    fact = models.CharField(max_length=16)
+    before = models.CharField(max_length=80, blank=True)
+    after = models.CharField(max_length=80, blank=True)
+    note = models.CharField(max_length=200, blank=True, default="")
+    changed_at = models.DateTimeField()
+    changed_by = models.ForeignKey(Membership, on_delete=models.PROTECT, related_name="+")
+
+    objects: "models.Manager[TankChange]" = ScopedManager(workshop="tank__vessel__workshop")
+
+    def __str__(self) -> str:
+        return f"{self.tank}: {self.fact}"
+
+
+class LevelMark(models.Model):
+    """A row of a tank's level table: a height, or a mark with a name, and the volume that it stands for at 20 °C.
+
+    ``height`` in nanometres, None where the ``mark`` has a name only; ``volume`` in nanolitres. ``hot`` rows are for
+    liquid at its working temperature, the others for cold.
+    """
+
+    vessel = models.ForeignKey(Vessel, on_delete=models.PROTECT, related_name="level_marks")
+    hot = models.BooleanField(default=False)
+    mark = models.CharField(_("height or mark"), max_length=LONGEST_TYPED)
+    height = models.BigIntegerField(null=True)
+    volume = models.BigIntegerField(_("volume"))
+    entered_at = models.DateTimeField()
+    entered_by = models.ForeignKey(Membership, on_delete=models.PROTECT, related_name="+")
+
+    objects: "models.Manager[LevelMark]" = ScopedManager(workshop="vessel__workshop")
+
+    class Meta:
+        constraints = [
+            models.UniqueConstraint(fields=["vessel", "hot", "mark"], name="level_mark_once"),
+            models.UniqueConstraint(fields=["vessel", "hot", "height"], name="level_mark_height_once"),
+            models.CheckConstraint(
+                condition=models.Q(volume__gte=0) & (models.Q(height=None) | models.Q(height__gte=0)),
+                name="level_mark_not_negative",
+            ),
+        ]
+
+    def __str__(self) -> str:
+        return f"{self.vessel}: {self.mark}"
+
+
+class Instrument(models.Model):
+    """What something is measured with, or by which method, and how sure it is.
+
+    It ``measures`` one quantity of science.reading; a meter of three is entered three times, for each has its own
+    uncertainty. That is ``sd`` in base units, or ``relative_sd`` in parts per million, or both; what was typed stays
+    beside it. Entries keep the figures that they relied on.
+    """
+
+    uuid = models.UUIDField(default=uuid.uuid4, unique=True, editable=False)
+    workshop = models.ForeignKey(Workshop, on_delete=models.PROTECT, related_name="instruments")
+    name = models.CharField(_("name"), max_length=80)
+    measures = models.CharField(_("measures"), max_length=16, choices=[(name, name) for name in MEASURED])
+    sd_typed = models.CharField(_("standard uncertainty"), max_length=LONGEST_TYPED, blank=True)
+    sd = models.BigIntegerField(null=True, blank=True)
+    relative_typed = models.CharField(_("standard uncertainty as a share"), max_length=LONGEST_TYPED, blank=True)
+    relative_sd = models.BigIntegerField(null=True, blank=True)
+    calibrated_on = models.DateField(_("calibrated on"), null=True, blank=True)
+    valid_until = models.DateField(_("calibration valid until"), null=True, blank=True)
+    picture = models.ForeignKey(Attachment, null=True, blank=True, on_delete=models.PROTECT, related_name="+")
+    retired = models.BooleanField(_("retired"), default=False)
+    changed_at = models.DateTimeField()
+    changed_by = models.ForeignKey(Membership, on_delete=models.PROTECT, related_name="+")
+
+    objects: "models.Manager[Instrument]" = ScopedManager(workshop="workshop")
+
+    class Meta:
+        constraints = [
+            models.UniqueConstraint(fields=["workshop", "name"], name="instrument_name_once"),
+            models.CheckConstraint(condition=models.Q(measures__in=list(MEASURED)), name="instrument_measures"),
+            models.CheckConstraint(
+                condition=(models.Q(sd=None, sd_typed="") | models.Q(sd__gte=0))
+                & (models.Q(relative_sd=None, relative_typed="") | models.Q(relative_sd__gte=0)),
+                name="instrument_uncertainty_as_typed",
+            ),
+            models.CheckConstraint(
+                condition=models.Q(calibrated_on=None)
+                | models.Q(valid_until=None)
+                | models.Q(valid_until__gte=models.F("calibrated_on")),
+                name="instrument_days_in_order",
+            ),
+        ]
+
+    def __str__(self) -> str:
+        return self.name
 
 
 class RackType(models.Model):

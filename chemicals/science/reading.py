@@ -73,13 +73,19 @@ class Span:
         """Return the number, if it is one."""
         return self.least if self.least == self.most else None
 
+    @property
+    def middle(self) -> int:
+        """Return the number, the middle of a range, or the one end there is."""
+        ends = [end for end in (self.least, self.most) if end is not None]
+        return sum(ends) // len(ends)
+
 
 _BELOW: Final = re.compile(r"(?:<|≤|below|under|less than|not detected below)\s*(?=\S)", re.IGNORECASE)
 _ABOVE: Final = re.compile(r"(?:>|≥|above|over|more than)\s*(?=\S)", re.IGNORECASE)
 _RANGE: Final = re.compile(r"(?P<low>[+-]?[\d.]+)(?P<unit>[^\d]*?)\s*(?:to|…|\.\.\.?|–|-)\s*(?P<high>[+-]?\d.*)")
 
 
-def parse_span(text: str, dimensions: Sequence[str]) -> Span:
+def parse_span(text: str, dimensions: Sequence[str], *, example: str = "") -> Span:
     """Return what a result says in one of the dimensions.
 
     Raises QuantityError or ReadingError. A range may leave the unit of its lower end out.
@@ -87,11 +93,11 @@ def parse_span(text: str, dimensions: Sequence[str]) -> Span:
     typed = " ".join(text.split())
     for pattern, is_below in ((_BELOW, True), (_ABOVE, False)):
         if found := pattern.match(typed):
-            end = parse_in(typed[found.end() :], dimensions)
+            end = parse_in(typed[found.end() :], dimensions, example=example)
             ends = (None, end.base) if is_below else (end.base, None)
             return Span(typed, end.unit, end.dimension, *ends)
     try:
-        number = parse_in(typed, dimensions)
+        number = parse_in(typed, dimensions, example=example)
     except QuantityError:
         found = _RANGE.fullmatch(re.sub(r"^pH\s*", "", typed) if tuple(dimensions) == ("ph",) else typed)
         if found is None:

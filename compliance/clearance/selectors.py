@@ -12,6 +12,7 @@ from chemicals.books.occurred import Occurred
 from chemicals.ledger.models import Vessel, VesselKind
 from chemicals.ledger.selectors import read_memory
 from chemicals.process.inputs import Input
+from chemicals.process.instruments import find_expired_instrument
 from chemicals.process.selectors import Trial, try_out
 from chemicals.register.selectors import list_reactivity
 from chemicals.science.reactivity import ACID, CYANIDE, HYPOCHLORITE, OXIDISER, UNKNOWN, Danger, declared, find_dangers
@@ -19,6 +20,7 @@ from chemicals.workshop.models import Membership, Workshop
 from compliance.clearance.meetings import find_fillings, find_meetings, find_opened
 from compliance.clearance.texts import (
     FIRST_STEPS,
+    NOT_CALIBRATED,
     ONLY_IN_A_LICENSED_PLAN,
     OTHER_PRODUCT,
     SEWER,
@@ -29,6 +31,9 @@ from compliance.waste.selectors import find_obstacles, find_seal, get_declared_r
 
 LIQUID_PATH = frozenset(VesselKind) - {VesselKind.STOCK, VesselKind.WASTE}
 """Kinds of vessels that hold what loads, filters and cells carried there from a tank."""
+
+Marks = Mapping[str, frozenset[str]]
+"""What each thing in a vessel reacts as."""
 
 
 @dataclass(frozen=True)
@@ -89,10 +94,18 @@ def ask(workshop: Workshop, event: events.Event, at: datetime) -> Answer:
         dangers=dangers,
         obstacles=tuple(_find_obstacles(vessels, event, at)),
         questions=tuple(_find_questions(vessels, event)),
-        cautions=TREATMENT_CAUTIONS if isinstance(event, events.Treatment) else (),
+        cautions=tuple(_find_cautions(workshop, event, at)),
         first_steps=(FIRST_STEPS if dangers else ()) + (SPILL_STEPS if spilled else ()),
         happened=spilled,
     )
+
+
+def _find_cautions(workshop: Workshop, event: events.Event, at: datetime) -> Iterator[str]:
+    if isinstance(event, events.Treatment):
+        yield from TREATMENT_CAUTIONS
+    expired = find_expired_instrument(workshop, event, at)
+    if expired is not None:
+        yield NOT_CALIBRATED % {"instrument": expired, "until": expired.valid_until}
 
 
 def _find_questions(vessels: Mapping[str, Vessel], event: events.Event) -> Iterator[str]:
@@ -148,7 +161,11 @@ def find_dangers_between(one: Vessel, other: Vessel) -> list[Danger]:
     """
     left, right = read_marks(one), read_marks(other)
     nested = left.keys() <= right.keys() or right.keys() <= left.keys()
-    own_rinse = nested and {one.kind, other.kind} <= LIQUID_PATH
+    return compare_marks(left, right, own_rinse=nested and {one.kind, other.kind} <= LIQUID_PATH)
+
+
+def compare_marks(left: Marks, right: Marks, *, own_rinse: bool = False) -> list[Danger]:
+    """Return every danger between things of two lists, each once; what stands in both is no danger to itself."""
     found = {
         (danger.gives, danger.harm): danger
         for key, kinds in sorted(left.items())

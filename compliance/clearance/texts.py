@@ -39,3 +39,9 @@ OTHER_PRODUCT = (
     "is in it may react. Set up a container for %(product)s instead, and label it. Shall it be poured in all the same?"
 )
 """Asked before one product is poured into a container of another."""
+
+NOT_CALIBRATED = (
+    "The calibration of %(instrument)s was valid until %(until)s. The reading is kept as it is; check the instrument "
+    "before anything is decided by it."
+)
+"""Said of a reading with an instrument whose calibration ran out."""

@@ -24,10 +24,13 @@ BENCH: Mapping[str, Sequence[str]] = {
 """What is done most at a vessel of each kind."""
 
 GROUPS: Sequence[tuple[Text, Sequence[str]]] = (
-    (_("Read and count"), ("level-reading", "weight-reading", "density-reading", "count", "analysis", "sample")),
+    (
+        _("Read and count"),
+        ("reading", "level-reading", "weight-reading", "density-reading", "count", "analysis", "sample"),
+    ),
     (_("Load and current"), ("run", "day-sheet", "dummy", "strip")),
     (_("Make up and keep up"), ("make-up", "top-up", "filter", "carbon", "resin", "sludge", "clean-out", "treatment")),
-    (_("Move and waste"), ("move", "drum-off", "discharge", "spill")),
+    (_("Move and waste"), ("move", "drum-off", "hand-over", "discharge", "spill")),
     (_("Start and set right"), ("opening", "correction")),
 )
 """Everything else, by what it is about."""

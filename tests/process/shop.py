@@ -16,7 +16,7 @@ from chemicals.ledger.verify import verify_projection
 from chemicals.process import setup
 from chemicals.process.build import build
 from chemicals.process.inputs import INPUTS, Input
-from chemicals.process.models import RackType, Route
+from chemicals.process.models import Instrument, RackType, Route
 from chemicals.register.models import Product
 from chemicals.register.services import LineInput, RevisionInput, create_product, create_substance
 from chemicals.science.quantity import parse
@@ -119,7 +119,13 @@ class Shop:
         """Return what a form would send for a name."""
         if table == "entries":
             return self.entries[name].uuid
-        tables: dict[str, Any] = {"vessels": Vessel, "routes": Route, "products": Product, "rack_types": RackType}
+        tables: dict[str, Any] = {
+            "vessels": Vessel,
+            "routes": Route,
+            "products": Product,
+            "rack_types": RackType,
+            "instruments": Instrument,
+        }
         with scope(workshop=self.member.workshop):
             uuid: UUID = tables[table]._default_manager.get(name=name).uuid
             return uuid

@@ -5,7 +5,8 @@ from typing import Any
 import pytest
 from django_scopes import scope
 
-from chemicals.books.events import CHROMIUM_VI, FREE_CYANIDE
+from chemicals.books.events import CHROMIUM_VI, FREE_CYANIDE, Reading
+from chemicals.journal.selectors import read_event
 from chemicals.ledger.models import Component, ComponentKind, Vessel
 from tests.process.shop import KG, G, L, Shop
 
@@ -45,6 +46,46 @@ def test_the_scale_sets_the_weight_alone_and_the_container_is_taken_off(shop: Sh
 def test_a_density_makes_the_weight(shop: Shop) -> None:
     shop.record("density-reading", vessel="Copper", density="1.13 g/mL", sd="0.005 g/mL")
     assert holds(shop, "Copper")["gross mass"] == pytest.approx(20 * 1.13 * KG)
+
+
+@pytest.mark.parametrize(
+    ("typed", "grams_per_litre"), [("32 °Bé", 1281.9), ("32 Be", 1281.9), ("32 °Bé rational", 1283.8)]
+)
+def test_degrees_baume_are_a_density_as_typed(shop: Shop, typed: str, grams_per_litre: float) -> None:
+    """145/(145 - 32) x 0.999016 and 144.3/(144.3 - 32) x 0.9991."""
+    event = shop.event("density-reading", vessel="Copper", density=typed, sd="0.01 g/mL")
+    assert event.density.typed == typed
+    assert event.density.base == pytest.approx(1000 * grams_per_litre, abs=60)
+    shop.record("density-reading", vessel="Copper", density=typed)
+    assert holds(shop, "Copper")["gross mass"] == pytest.approx(20 * event.density.base * 1000)
+
+
+def test_half_a_degree_of_doubt_is_a_doubt_of_the_density(shop: Shop) -> None:
+    """The slope at 32 degrees is 145/113^2 x 0.999016 g/mL a degree."""
+    event = shop.event("density-reading", vessel="Copper", density="32 °Bé", sd="0.5 °Bé")
+    assert event.density.sd == pytest.approx(0.5 * 145 / 113**2 * 999_016, abs=1)
+
+
+def test_a_reading_is_kept_as_it_was_read_and_moves_nothing(shop: Shop) -> None:
+    before = holds(shop, "Copper")
+    entry = shop.record(
+        "reading", vessel="Copper", quantity="temperature", result="75 °F", sd="0.9 °F", remark=" stirred "
+    )
+    event = read_event(entry)
+    assert isinstance(event, Reading)
+    assert (event.result.typed, event.result.unit, event.remark) == ("75 °F", "degF", "stirred")
+    assert event.result.least == event.result.most == 297_039
+    assert event.result.sd == 500
+    assert (holds(shop, "Copper"), shop.findings()) == (before, [])
+
+
+def test_a_strip_shows_a_range_or_less_than_something(shop: Shop) -> None:
+    event = shop.event(
+        "reading", vessel="First rinse", quantity="test strip", shows="copper", result="10 to 25 mg/L", sd="5 mg/L"
+    )
+    assert (event.shows, event.result.least, event.result.most, event.result.sd) == ("copper", 10_000, 25_000, 5_000)
+    none = shop.event("reading", vessel="First rinse", quantity="test strip", shows="chlorine", result="<0.5 mg/L")
+    assert (none.result.least, none.result.most, none.result.sd) == (None, 500, None)
 
 
 Expressed = tuple[str, str, str, float]
@@ -134,6 +175,25 @@ WRONG: list[Wrong] = [
     ("count", {"vessel": "Jar", "amount": "1 kg", "sd": "1 mL"}, {"sd": "same kind"}),
     ("weight-reading", {"vessel": "Drum", "mass": "1 kg", "tare": "2 kg"}, {"mass": "less than the empty"}),
     ("density-reading", {"vessel": "Copper", "density": "0 g/mL"}, {"density": "more than zero"}),
+    ("density-reading", {"vessel": "Copper", "density": "90 °Bé"}, {"density": "ends at 80 degrees"}),
+    ("density-reading", {"vessel": "Copper", "density": "1.1 g/mL", "sd": "1 °Bé"}, {"sd": "same kind"}),
+    ("reading", {"vessel": "Copper", "quantity": "pH", "result": "4 V"}, {"result": "a pH is needed"}),
+    ("reading", {"vessel": "Copper", "quantity": "luck", "result": "4"}, {"quantity": "from the list"}),
+    (
+        "reading",
+        {"vessel": "Copper", "quantity": "voltage", "result": "3", "sd": "1 K", "shows": "copper"},
+        {"result": "has no unit", "shows": "Only a test strip"},
+    ),
+    (
+        "reading",
+        {"vessel": "Copper", "quantity": "voltage", "result": "3 V", "sd": "1 K"},
+        {"sd": "a voltage is needed"},
+    ),
+    (
+        "reading",
+        {"vessel": "Copper", "quantity": "test strip", "result": "5 to 1 mg/L"},
+        {"shows": "what the strip shows", "result": "lower end first"},
+    ),
     (
         "analysis",
         {"vessel": "Copper", "metal": "free cyanide", "result": "5 g/L"},

@@ -7,9 +7,12 @@ from django.http import QueryDict
 
 from chemicals.process.fields import describe
 from chemicals.process.inputs import INPUTS, MakeUpInput, RunInput
+from chemicals.process.instruments import InstrumentInput, create_instrument
+from chemicals.science.reading import MEASURED
 from chemicals.workshop.errors import FieldError, InvalidInputError
 from chemicals.workshop.models import Membership
 from compliance.waste.services import close_container
+from compliance.web.forms.fields import ThingField
 from compliance.web.forms.prefill import prefill
 from compliance.web.forms.record import UNDATED, RecordForm
 from tests.conftest import NOW
@@ -22,13 +25,42 @@ def sent(**said: object) -> QueryDict:
     return data
 
 
+def enter_instruments(owner: Membership) -> None:
+    """Enter an instrument for everything that can be measured."""
+    for measures in MEASURED:
+        said = InstrumentInput(name=f"One for {measures}", measures=measures)
+        create_instrument(actor=owner, now=NOW, instrument=said)
+
+
 @pytest.mark.parametrize("verb", INPUTS)
 def test_every_field_of_every_verb_is_on_its_form(verb: str, owner: Membership, line: Line) -> None:
+    enter_instruments(owner)
     form = RecordForm(owner, verb)
     described = [name for name, _ in describe(INPUTS[verb])]
     shown = [part.name for part in form.all_parts]
     assert shown == described + ([] if verb in UNDATED else ["occurred"])
     assert [str(part.label) for part in form.all_parts if not part.label] == []
+
+
+def test_who_has_no_instrument_is_not_asked_for_one(owner: Membership, line: Line) -> None:
+    assert "instrument" not in RecordForm(owner, "level-reading").fields
+    enter_instruments(owner)
+    assert "instrument" in RecordForm(owner, "level-reading").fields
+
+
+def test_only_instruments_that_measure_it_are_offered(owner: Membership, line: Line) -> None:
+    enter_instruments(owner)
+    create_instrument(actor=owner, now=NOW, instrument=InstrumentInput(name="Broken", measures="pH", retired=True))
+
+    def offered(verb: str, **query: str) -> list[str]:
+        field = RecordForm(owner, verb, initial=query).fields["instrument"]
+        assert isinstance(field, ThingField)
+        return list(map(str, field.labels.values()))
+
+    assert offered("reading", quantity="pH") == ["One for pH"]
+    assert offered("level-reading") == ["One for level"]
+    assert "One for temperature (temperature)" in offered("reading")
+    assert "One for density" not in " ".join(offered("reading"))
 
 
 def test_everything_that_is_wrong_is_said_at_once(owner: Membership, line: Line) -> None:

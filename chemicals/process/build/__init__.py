@@ -24,6 +24,7 @@ from chemicals.process.build.readings import (
     build_analysis,
     build_density,
     build_level,
+    build_reading,
     build_weight,
 )
 from chemicals.process.build.stock import build_count, build_make_up, build_opening, build_receipt, build_top_up
@@ -59,6 +60,7 @@ BUILDERS: Mapping[type[inputs.Input], Builder] = {
     inputs.LevelInput: build_level,
     inputs.WeightInput: build_weight,
     inputs.DensityInput: build_density,
+    inputs.ReadingInput: build_reading,
     inputs.AnalysisInput: build_analysis,
     inputs.AcceptanceInput: build_acceptance,
     inputs.FilterInput: build_filter,

@@ -8,9 +8,12 @@ from chemicals.ledger.models import Vessel
 from chemicals.ledger.selectors import list_held
 from chemicals.process import inputs
 from chemicals.process.build.current import check_charge, check_told, find_plating, plating_onto
+from chemicals.process.build.instruments import NONE, Used, find_instrument
 from chemicals.process.draft import Draft, measured, vessel_name
 from chemicals.process.models import RackType, Route, RouteStep
 from chemicals.science.formula import METALS
+from chemicals.science.quantity import Quantity
+from chemicals.science.reading import WEIGHT
 
 
 def build_run(draft: Draft, now: datetime, data: inputs.RunInput) -> events.Run | None:
@@ -19,7 +22,9 @@ def build_run(draft: Draft, now: datetime, data: inputs.RunInput) -> events.Run 
     rack = _rack(draft, "rack", data.rack, route)
     current = _current(draft, data, rack)
     by_current = data.current is not None or data.current_density is not None
-    before, after = measured(data.weight_before, data.weight_sd), measured(data.weight_after, data.weight_sd)
+    weights = data.weight_before, data.weight_after
+    used = NONE if weights == (None, None) else find_instrument(draft, data.instrument, WEIGHT)
+    before, after = (_weighed(weight, data.weight_sd, used) for weight in weights)
     check_charge(draft, charge=data.charge, by_current=by_current, time=data.time, before=before, after=after)
     if draft.errors or route is None or rack is None:
         return None
@@ -40,7 +45,16 @@ def build_run(draft: Draft, now: datetime, data: inputs.RunInput) -> events.Run 
         plating=plating,
         rack=rack.name,
         drag_out=(_drag_out(rack),) * len(vessels),
+        instrument=used.instrument,
+        gauge=used.gauge,
     )
+
+
+def _weighed(weight: Quantity | None, sd: Quantity | None, used: Used) -> Measured | None:
+    """Return a weight with its uncertainty: as said, else the balance's."""
+    if weight is None:
+        return None
+    return Measured(weight.typed, weight.unit, weight.base, used.doubt(weight.base, sd))
 
 
 def _rack(draft: Draft, field: str, uuid: object, route: Route | None) -> RackType | None:

@@ -37,7 +37,7 @@ class Names:
         return uuid
 
     def reference(self, kind: ReferenceField, text: str) -> UUID:
-        """Return what a name means: product, route, rack type or instrument; of an entry its number (#17) or the key of its row."""
+        """Return what a name means; of an entry its number (#17) or the key of its row."""
         if kind.to in self._tables:
             return _one(self._tables[kind.to](), text, kind.to)
         if text.startswith("#"):

@@ -11,7 +11,14 @@ from chemicals.process.inputs.moving import (
     SpillInput,
 )
 from chemicals.process.inputs.plating import ChargeRow, DaySheetInput, DummyInput, RacksRow, RunInput, StripInput
-from chemicals.process.inputs.readings import AcceptanceInput, AnalysisInput, DensityInput, LevelInput, WeightInput
+from chemicals.process.inputs.readings import (
+    AcceptanceInput,
+    AnalysisInput,
+    DensityInput,
+    LevelInput,
+    ReadingInput,
+    WeightInput,
+)
 from chemicals.process.inputs.stock import CountInput, MakeUpInput, OpeningInput, ReceiptInput, TopUpInput
 from chemicals.process.inputs.upkeep import (
     CarbonInput,
@@ -50,6 +57,7 @@ __all__ = [
     "MoveInput",
     "OpeningInput",
     "RacksRow",
+    "ReadingInput",
     "ReceiptInput",
     "ResinInput",
     "RunInput",
@@ -68,8 +76,8 @@ INPUTS: dict[str, type[Input]] = {
     for data in (
         OpeningInput, CountInput, ReceiptInput, MakeUpInput, TopUpInput, RunInput, DaySheetInput, DummyInput,
         StripInput, MoveInput, DrumOffInput, SampleInput, SpillInput, DischargeInput, HandOverInput, LevelInput,
-        WeightInput, DensityInput, AnalysisInput, AcceptanceInput, FilterInput, CarbonInput, ResinInput, SludgeInput,
-        CleanOutInput, TreatmentInput, CancellationInput, CorrectionInput,
+        WeightInput, DensityInput, ReadingInput, AnalysisInput, AcceptanceInput, FilterInput, CarbonInput, ResinInput,
+        SludgeInput, CleanOutInput, TreatmentInput, CancellationInput, CorrectionInput,
     )
 }  # fmt: skip
 """Every verb that records matter."""

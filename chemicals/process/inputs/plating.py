@@ -5,7 +5,16 @@ from uuid import UUID
 
 from django.utils.translation import gettext_lazy as _
 
-from chemicals.process.fields import AmountField, ReferenceField, RowsField, TextField, VesselField, WholeField, use
+from chemicals.process.fields import (
+    AmountField,
+    InstrumentField,
+    ReferenceField,
+    RowsField,
+    TextField,
+    VesselField,
+    WholeField,
+    use,
+)
 from chemicals.process.inputs.base import (
     BATH,
     RACKS,
@@ -17,6 +26,7 @@ from chemicals.process.inputs.base import (
     metal_choice,
 )
 from chemicals.science.quantity import Quantity
+from chemicals.science.reading import WEIGHT
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -41,6 +51,9 @@ class RunInput(Input):
     time: Quantity | None = if_known(_("Time"), "", "time", example="4 h")
     weight_before: Quantity | None = if_known(_("Weight before"), "", "mass", example="5.6 g")
     weight_after: Quantity | None = if_known(_("Weight after"), "", "mass", example="7.7 g")
+    instrument: UUID | None = use(
+        InstrumentField(_("Weighed with"), _("Both weights."), required=False, detail=True, measures=(WEIGHT,))
+    )
     weight_sd: Quantity | None = if_known(_("Uncertainty of a weight"), UNCERTAINTY_HELP, "mass", example="0.01 g")
 
 

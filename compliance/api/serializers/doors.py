@@ -43,6 +43,7 @@ REFERENCES = {
     "route": _("a route"),
     "analysis": _("the entry of an analysis"),
     "entry": _("an entry"),
+    "instrument": _("an instrument"),
 }
 """What a reference may name, in words."""
 
@@ -114,6 +115,7 @@ BUILDERS: Mapping[type[kinds.FieldKind], Callable[[Any, dict[str, Any]], Any]] =
     kinds.MomentField: lambda kind, options: Moment(**options),
     kinds.VesselField: lambda kind, options: Identifier(**options),
     kinds.ReferenceField: lambda kind, options: Identifier(**options),
+    kinds.InstrumentField: lambda kind, options: Identifier(**options),
     kinds.RowsField: lambda kind, options: rows(_build_rows(kind.of), most=MOST_ROWS, **options),
 }
 """Which field takes which kind."""

@@ -1,6 +1,6 @@
 """Form fields of the trade: amounts as typed, moments of the workshop's zone, choices of its things."""
 
-from collections.abc import Iterable, Sequence
+from collections.abc import Iterable, Mapping, Sequence
 from datetime import date, time
 from typing import Any
 from uuid import UUID
@@ -174,6 +174,17 @@ class ThingField(forms.TypedChoiceField):
             error_messages={"required": NO_CHOICE, "invalid_choice": NO_CHOICE},
             **kwargs,
         )
+
+
+class PictureSelect(forms.RadioSelect):
+    """One of several things, each with its picture where there is one: value -> address."""
+
+    def __init__(self, pictures: Mapping[str, str]) -> None:
+        super().__init__()
+        self.pictures = pictures
+
+    def create_option(self, name: str, value: Any, *args: Any, **kwargs: Any) -> dict[str, Any]:
+        return {**super().create_option(name, value, *args, **kwargs), "picture": self.pictures.get(str(value), "")}
 
 
 class WordField(forms.ChoiceField):

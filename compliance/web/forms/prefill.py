@@ -9,8 +9,9 @@ from chemicals.books.events import Measured, Run
 from chemicals.journal.selectors import get_entry_for, read_event
 from chemicals.ledger.models import Vessel, VesselKind
 from chemicals.ledger.selectors import get_vessel_for
-from chemicals.process.fields import VesselField, describe
+from chemicals.process.fields import InstrumentField, VesselField, describe
 from chemicals.process.inputs import INPUTS, RunInput, WeightInput
+from chemicals.process.instruments import find_last_instrument
 from chemicals.process.selectors import list_routes_for, list_routes_through
 from chemicals.science.units import find
 from chemicals.workshop.errors import NotFoundError
@@ -23,7 +24,8 @@ def prefill(member: Membership, verb: str, query: Mapping[str, str]) -> dict[str
     """Return the first values of a form from its address: ``vessel``, ``again``, or fields by their own names."""
     known = {name: query[name] for name, _ in describe(INPUTS[verb]) if name in query}
     with suppress(NotFoundError, ValueError):
-        known = {**_from_vessel(member, verb, get_vessel_for(member, UUID(query.get("vessel", "")))), **known}
+        vessel = get_vessel_for(member, UUID(query.get("vessel", "")))
+        known = {**_from_vessel(member, verb, vessel), **_instrument(member, verb, vessel, query), **known}
     with suppress(NotFoundError, ValueError):
         known = {**known, **_from_entry(member, verb, UUID(query.get("again", "")))}
     return known
@@ -37,6 +39,15 @@ def _from_vessel(member: Membership, verb: str, vessel: Vessel) -> dict[str, Any
     for name, kind in describe(INPUTS[verb]):
         if isinstance(kind, VesselField) and vessel.kind in kind.kinds:
             return {name: str(vessel.uuid), **_tare(member, verb, vessel)}
+    return {}
+
+
+def _instrument(member: Membership, verb: str, vessel: Vessel, query: Mapping[str, str]) -> dict[str, str]:
+    """Return the instrument that was used last for this at the vessel."""
+    for name, kind in describe(INPUTS[verb]):
+        if isinstance(kind, InstrumentField):
+            found = find_last_instrument(member, vessel, verb.replace("-", " "), query.get(kind.by, ""))
+            return {} if found is None else {name: str(found)}
     return {}
 
 

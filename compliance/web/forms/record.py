@@ -7,6 +7,7 @@ from typing import Any
 from uuid import UUID, uuid4
 
 from django import forms
+from django.urls import reverse
 from django.utils.translation import gettext as _
 from django.utils.translation import gettext_lazy
 
@@ -18,7 +19,10 @@ from chemicals.ledger.models import Vessel, VesselKind
 from chemicals.ledger.selectors import list_vessels_for
 from chemicals.process import fields as kinds
 from chemicals.process.fields import FieldKind, describe
-from chemicals.process.inputs import INPUTS, Input
+from chemicals.process.inputs import INPUTS, Input, LevelInput
+from chemicals.process.instruments import list_instruments_for
+from chemicals.process.levels import has_level_tables
+from chemicals.process.models import Instrument
 from chemicals.process.selectors import list_open_analyses_for, list_rack_types_for, list_routes_for
 from chemicals.register.selectors import list_products_for, list_solutes
 from chemicals.science.quantity import Quantity, echo
@@ -32,6 +36,7 @@ from compliance.web.forms.fields import (
     FlagField,
     LineField,
     MomentField,
+    PictureSelect,
     ThingField,
     WholeField,
     WordField,
@@ -74,7 +79,11 @@ class RecordForm(WebForm):
         super().__init__(data, initial=initial, **kwargs)
         self.member, self.verb, self.input = member, verb, INPUTS[verb]
         self.details = frozenset(name for name, kind in describe(self.input) if kind.detail)
+        if self.input is LevelInput and has_level_tables(member):
+            self.details -= {"mark", "hot"}
         for name, kind in describe(self.input):
+            if isinstance(kind, kinds.InstrumentField) and not self.offer(kind):
+                continue  # whoever has no instrument is not asked
             if isinstance(kind, kinds.RowsField):
                 make = partial(InputRow, self, kind.of)
                 self.add_rows(Rows(name, kind.label, kind.help, make, kind.blank_rows))
@@ -91,6 +100,17 @@ class RecordForm(WebForm):
     def build(self, name: str, kind: FieldKind) -> forms.Field:
         """Return the form field of a described field."""
         return BUILDERS[type(kind)](self, name, kind)
+
+    def offer(self, kind: kinds.InstrumentField) -> list[Instrument]:
+        """Return the instruments in use that measure what is read."""
+        read = "" if self.is_bound else str(self.initial.get(kind.by, ""))
+        measures = (read,) if read in kind.measures else kind.measures
+        return [row for row in self.instruments if row.measures in measures]
+
+    @cached_property
+    def instruments(self) -> Sequence[Instrument]:
+        """Return the instruments in use, once for all fields of the form."""
+        return list(list_instruments_for(self.member, retired=False))
 
     @cached_property
     def vessels(self) -> Sequence[Vessel]:
@@ -175,10 +195,13 @@ def _build_amount(form: RecordForm, name: str, kind: kinds.AmountField) -> forms
 
 
 def _build_vessel(form: RecordForm, name: str, kind: kinds.VesselField) -> forms.Field:
+    chosen = str(form.initial.get(name, "") or form.data.get(name, ""))
     things = [
         (vessel.uuid, f"{vessel.name} ({vessel.code})")
         for vessel in form.vessels
-        if vessel.kind in kind.kinds and not (kind.fills and vessel.uuid in form.closed)
+        if vessel.kind in kind.kinds
+        and not (kind.fills and vessel.uuid in form.closed)
+        and (vessel.gone_at is None or str(vessel.uuid) == chosen)
     ]
     missing = next(text for some, text in MISSING_VESSELS if some & set(kind.kinds)) if kind.required else ""
     return ThingField(things, missing=missing, label=kind.label, help_text=kind.help, required=kind.required)
@@ -188,6 +211,25 @@ def _build_reference(form: RecordForm, name: str, kind: kinds.ReferenceField) ->
     things = REFERENCES[kind.to](form, str(form.initial.get(name, "") or form.data.get(name, "")))
     missing = MISSING[kind.to] if kind.required else ""
     return ThingField(things, missing=missing, label=kind.label, help_text=kind.help, required=kind.required)
+
+
+def _build_instrument(form: RecordForm, name: str, kind: kinds.InstrumentField) -> forms.Field:
+    rows = form.offer(kind)
+    several = len({row.measures for row in rows}) > 1
+    things = [(row.uuid, f"{row.name} ({row.measures})" if several else row.name) for row in rows]
+    pictures = {
+        str(row.uuid): reverse("file", args=[form.member.workshop.uuid, row.picture.sha256])
+        for row in rows
+        if row.picture is not None
+    }
+    return ThingField(
+        things,
+        empty=_("none of these"),
+        label=kind.label,
+        help_text=kind.help,
+        required=False,
+        widget=PictureSelect(pictures),
+    )
 
 
 def _build_choice(form: RecordForm, name: str, kind: kinds.ChoiceField) -> forms.Field:
@@ -226,6 +268,7 @@ BUILDERS: Mapping[type[FieldKind], Callable[[RecordForm, str, Any], forms.Field]
     kinds.AmountField: _build_amount,
     kinds.VesselField: _build_vessel,
     kinds.ReferenceField: _build_reference,
+    kinds.InstrumentField: _build_instrument,
     kinds.ChoiceField: _build_choice,
     kinds.ComponentField: _build_component,
     kinds.WholeField: _build_whole,

@@ -34,6 +34,7 @@ KINDS = {
     events.LevelReading.KIND: gettext_lazy("level reading"),
     events.WeightReading.KIND: gettext_lazy("weight reading"),
     events.DensityReading.KIND: gettext_lazy("density reading"),
+    events.Reading.KIND: gettext_lazy("reading"),
     events.Analysis.KIND: gettext_lazy("analysis"),
     events.Acceptance.KIND: gettext_lazy("acceptance"),
     events.Filter.KIND: gettext_lazy("filter"),
