@@ -6,6 +6,7 @@ and its own rinse, filter or cell, of which one holds nothing else than the othe
 
 from collections.abc import Callable, Hashable, Iterable, Sequence
 from dataclasses import dataclass, field
+from functools import cached_property
 
 from compliance.premises.sorts import Nature
 
@@ -28,7 +29,7 @@ class Stander:
     in_line: bool = False
     is_bath: bool = False
 
-    @property
+    @cached_property
     def likeness(self) -> Hashable:
         """Return what all vessels have in common that meet the same others."""
         return self.recipe, self.in_line, self.is_bath

@@ -2,6 +2,7 @@
 
 from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
+from functools import cached_property
 from uuid import UUID
 
 from django.db.models import Exists, OuterRef, Q, QuerySet, Subquery
@@ -17,7 +18,8 @@ from chemicals.register.models import ProductRevision
 from chemicals.register.selectors import recipe_key
 from chemicals.science.reactivity import UNKNOWN, declared
 from chemicals.workshop.errors import ConflictError, InvalidInputError
-from chemicals.workshop.models import Membership
+from chemicals.workshop.models import Membership, Place
+from chemicals.workshop.selectors import list_places_for
 from compliance.documents.models import Paper, PaperKind
 from compliance.documents.selectors import list_papers_for, list_papers_naming, read_data
 from compliance.documents.stock import ALL_STOCKS
@@ -29,6 +31,8 @@ from compliance.waste.selectors import list_containers_for
 
 UNNAMED = "a liquid that nobody can name"
 MOST_SHOWN = 5
+BRIEF = ("uuid", "workshop", "code", "kind", "name", "place", "product")
+"""Columns of a vessel."""
 FIRST_STOCK = "8 per A4"
 """What is offered before a workshop has printed any label: large enough for what most labels say."""
 
@@ -75,7 +79,7 @@ class Standing:
         """The names of the products in it, each once, in order."""
         return sorted({revision.product.name for revision in self.revisions})
 
-    @property
+    @cached_property
     def held(self) -> list[Held]:
         """What the books say of volume, mass and the rest, in this order."""
         if self.contents is None:
@@ -83,18 +87,25 @@ class Standing:
         first = [part for part in (self.contents.volume, self.contents.mass) if part is not None]
         return [*first, *self.contents.metals]
 
-    @property
+    @cached_property
     def is_here(self) -> bool:
         """Whether it holds something, or may: unknown is not nothing, and nor is a product nobody measured."""
         if not self.held:
-            return self.vessel.product is not None or (self.contents is not None and self.contents.incomplete)
+            return self.vessel.product_id is not None or (self.contents is not None and self.contents.incomplete)
         return any(part.amount is None or part.amount > 0 for part in self.held)
 
 
-def list_standing_for(member: Membership, vessels: Iterable[UUID] | None = None) -> list[Standing]:
+def list_standing_for(
+    member: Membership,
+    vessels: Iterable[UUID] | None = None,
+    *,
+    brief: bool = False,
+) -> list[Standing]:
     """Return every vessel of the member's workshop, or those named, by name. Eight queries.
 
-    What is gone stands nowhere, unless it is named, or holds something by the books: that must not be hidden.
+    What is gone stands nowhere, unless it is named, or holds something by the books: that must not be hidden. With
+    ``brief`` no more of a vessel is read than by which name and code it stands where, and what it is for: three times
+    as fast, for one query more.
     """
     with scope(workshop=member.workshop):
         rows = list_vessels_for(member)
@@ -103,23 +114,32 @@ def list_standing_for(member: Membership, vessels: Iterable[UUID] | None = None)
         else:
             something = Holding.objects.filter(Q(amount=None) | Q(amount__gt=0), vessel=OuterRef("pk"))
             rows = rows.filter(Q(gone_at=None) | Exists(something))
-        found = list(rows)
+        found = list(rows.select_related(None).only(*BRIEF) if brief else rows)
         poured = dict(Memory.objects.filter(vessel__in=rows.order_by()).values_list("vessel_id", "poured"))
         revisions = _read_revisions(rows, poured)
         tanks = {tank.vessel_id: tank for tank in list_tanks_for(member).filter(vessel__in=rows.order_by())}
-    contents = list_contents_for(member)
+        if brief:
+            _join(found, {place.pk: place for place in list_places_for(member)}, revisions)
+    contents = list_contents_for(member, None if vessels is None else [vessel.pk for vessel in found])
     streams = _read_streams(member)
     return [
         Standing(
             vessel=vessel,
             contents=contents.get(vessel.pk),
-            revisions=revisions.of(vessel, poured.get(vessel.pk, [])),
-            unnamed=any(key.startswith(UNKNOWN_LIQUID) for key in poured.get(vessel.pk, [])),
+            revisions=revisions.of(vessel, poured.get(vessel.pk, ())),
+            unnamed=any(key.startswith(UNKNOWN_LIQUID) for key in poured.get(vessel.pk, ())),
             stream=streams.get(vessel.pk),
             tank=tanks.get(vessel.pk),
         )
         for vessel in found
     ]
+
+
+def _join(vessels: Iterable[Vessel], places: Mapping[int, Place], revisions: "_Revisions") -> None:
+    """Give each vessel its place and product; one object of each serves all, where a join would make one for each."""
+    for vessel in vessels:
+        vessel.place = None if vessel.place_id is None else places[vessel.place_id]
+        vessel.product = None if vessel.product_id is None else revisions.current[vessel.product_id].product
 
 
 @dataclass(frozen=True)
@@ -131,9 +151,11 @@ class _Revisions:
 
     def of(self, vessel: Vessel, poured: Iterable[str]) -> tuple[ProductRevision, ...]:
         """Return what was poured into a vessel; else, of a stock container, what it is set up for."""
-        found = [self.by_key[key] for key in sorted(poured) if key in self.by_key]
+        found = [self.by_key[key] for key in poured if key in self.by_key]
         if not found and vessel.product_id is not None:
             found = [self.current[vessel.product_id]]
+        if len(found) < 2:
+            return tuple(found)
         return tuple(sorted(found, key=lambda row: (row.product.name, row.number)))
 
 

@@ -124,9 +124,9 @@ def list_violations_for(
 ) -> list[Violation]:
     """Return everything that is wrong or not known of where things stand, the worst first, assessed ones after.
 
-    Eleven queries; three with what stands where (`list_standing_for`) read already.
+    Twelve queries; three with what stands where (`list_standing_for`) read already.
     """
-    found = list_standing_for(member) if standing is None else standing
+    found = list_standing_for(member, brief=True) if standing is None else standing
     today = now.astimezone(member.workshop.zone).date()
     premises = _Premises([each for each in found if each.is_here], today)
     lines, limits = list(list_keep_apart_for(member)), list(list_limits_for(member))
@@ -168,7 +168,15 @@ class _Premises:
     _natures: dict[object, Nature] = field(default_factory=dict)
 
     def nature(self, standing: Standing) -> Nature:
-        """Return the nature of a vessel's contents; alike for all that were filled alike."""
+        """Return the nature of a vessel's contents."""
+        return self.natures[standing.vessel.pk]
+
+    @cached_property
+    def natures(self) -> dict[int, Nature]:
+        """Return the nature of every vessel's contents by primary key; one for all that were filled alike."""
+        return {each.vessel.pk: self._look_up(each) for each in self.here}
+
+    def _look_up(self, standing: Standing) -> Nature:
         key = (standing.stream, standing.unnamed, *(row.pk for row in standing.revisions))
         if key not in self._natures:
             self._natures[key] = nature_of(standing.parts, standing.kinds)
@@ -230,8 +238,11 @@ class _Premises:
         for reach, cell in ((Reach.PLACE, None), (Reach.BUND, _place_of), (Reach.DUCT, _bund_or_place_of)):
             for group in self.group(reach):
                 said: set[object] = set()
+                sorts = frozenset[str]().union(*{each.nature.sorts for each in group[2]})
                 for danger in DANGERS:
                     first, second = reacting(danger.first), reacting(danger.second)
+                    if not {first, second} <= sorts:
+                        continue
                     ones, others = find_apart(group[2], first, second, cell)
                     alike = (danger.danger, *(each.name for each in ones), "", *(each.name for each in others))
                     if ones and alike not in said:
