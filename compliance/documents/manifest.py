@@ -86,7 +86,7 @@ def _dangers(data: ManifestData) -> Iterator[Block]:
 
 def _container(container: ManifestContainerData) -> Group:
     title, header = _container_title(container, ""), _contents_header()
-    lines = [_content(line) for line in container["contents"]] or [Text(words.no_contents(), _SMALL)]
+    lines = [_content(line) for line in container["contents"]] or [Text(words.nothing_listed(container), _SMALL)]
     contents = Stack([header, *lines[:_BESIDE]])
     beside = Columns([contents, Stack(list(_hazards(container)))], [_CONTENTS_SHARE, 1 - _CONTENTS_SHARE], gap=10)
     more: list[Block] = [
@@ -103,13 +103,12 @@ def _container_title(container: ManifestContainerData, suffix: str) -> Block:
         "gross": words.gross_kg(container["gross_kg"]),
     }
     name = Columns([Text(f"{container['code']}{suffix}", _HEADING), Text(container["stream"], _HEADING)], [0.35, 0.65])
-    origin = _("from: %s") % words.known(container["origin"])
     codes = _("codes: %s") % (", ".join(container["codes"]) or _("none stated"))
     return Stack(
         [
             Rule(0.8, 4, 2),
             Columns([name, Text(measure, _STRONG, align=1.0)], [0.6, 0.4]),
-            Columns([Text(origin, _SMALL), Text(codes, _SMALL, align=1.0)], [0.6, 0.4]),
+            Columns([Text(words.origin(container), _SMALL), Text(codes, _SMALL, align=1.0)], [0.6, 0.4]),
             Gap(2),
         ]
     )

@@ -100,7 +100,10 @@ class ManifestContentData(TypedDict):
 
 
 class ManifestContainerData(TypedDict):
-    """One waste container of the load; `gross_kg` is a decimal number of kilograms as a string."""
+    """One container of the load; `gross_kg` is a decimal number of kilograms as a string.
+
+    ``stream`` of a stock container is its product, and ``note`` says that it is one: empty, or as bought.
+    """
 
     code: str
     stream: str
@@ -111,6 +114,7 @@ class ManifestContainerData(TypedDict):
     hazards: HazardData
     codes: list[str]
     must_not_meet: list[str]
+    note: NotRequired[str]
 
 
 class ManifestData(TypedDict):

@@ -94,6 +94,7 @@ def _container(container: ManifestContainerData) -> dict[str, Any]:
     ]
     return {
         "data": container,
+        "nothing_listed": words.nothing_listed(container),
         "gross": words.gross_kg(container["gross_kg"]),
         "hazards": _hazards(container["hazards"]),
         "contents": contents,

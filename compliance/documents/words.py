@@ -73,6 +73,16 @@ def no_contents() -> str:
     return _("Contents unknown: treat as if they could react with anything.")
 
 
+def origin(container: ManifestContainerData) -> str:
+    """Where a container's waste comes from; of a stock container what it is."""
+    return container.get("note") or _("from: %s") % known(container["origin"])
+
+
+def nothing_listed(container: ManifestContainerData) -> str:
+    """Said of a container of which nothing is listed: of a stock container its note says what it is."""
+    return _("Nothing by the books; what is left in it is as hazardous.") if "note" in container else no_contents()
+
+
 def nothing_to_avoid() -> str:
     """Said where nothing was named that must not meet."""
     return _("nothing named: ask before adding or mixing anything")
@@ -115,11 +125,16 @@ def load(containers: Sequence[ManifestContainerData]) -> str:
     """The headline over the containers: how many, how heavy."""
     total = total_gross(containers)
     count = len(containers)
-    text = ngettext(
-        "The load: %(count)d waste container, gross %(total)s",
-        "The load: %(count)d waste containers, gross %(total)s",
-        count,
-    )
+    if any("note" in each for each in containers):
+        text = ngettext(
+            "The load: %(count)d container, gross %(total)s", "The load: %(count)d containers, gross %(total)s", count
+        )
+    else:
+        text = ngettext(
+            "The load: %(count)d waste container, gross %(total)s",
+            "The load: %(count)d waste containers, gross %(total)s",
+            count,
+        )
     return text % {"count": count, "total": total}
 
 

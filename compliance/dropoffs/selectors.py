@@ -31,7 +31,9 @@ def list_drop_offs_for(member: Membership) -> QuerySet[DropOff]:
     with scope(workshop=member.workshop):
         containers = Prefetch(
             "containers",
-            DropOffContainer.objects.select_related("vessel__waste_container__stream").order_by("vessel__name"),
+            DropOffContainer.objects.select_related("vessel__waste_container__stream", "vessel__product").order_by(
+                "vessel__name"
+            ),
         )
         return (
             DropOff.objects.select_related("receiver", "manifest")
@@ -50,4 +52,6 @@ def get_drop_off_for(member: Membership, uuid: UUID) -> DropOff:
 
 def list_ready_containers_for(member: Membership) -> QuerySet[WasteContainer]:
     """Return the closed containers that are on no drop-off yet, by name. Two queries."""
-    return list_containers_for(member).filter(closed_at__isnull=False, vessel__drop_off_container=None)
+    return list_containers_for(member).filter(
+        closed_at__isnull=False, vessel__drop_off_container=None, vessel__gone_at=None
+    )

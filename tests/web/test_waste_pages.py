@@ -138,7 +138,7 @@ def test_what_must_not_share_a_load_is_not_packed(visit: Visitor, filled: Line) 
 
 
 def test_a_drop_off_needs_a_closed_container(visit: Visitor, filled: Line) -> None:
-    assert "No container is closed yet" in text_of(visit.get("add-drop-off"))
+    assert "Nothing waits for a drop-off" in text_of(visit.get("add-drop-off"))
     visit.post("add-receiver", name="County collection point")
     said = {"receiver": Receiver._base_manager.get().uuid, "mode": "brought", "planned_for": "2026-03-05"}
     assert visit.post("add-drop-off", **said).status_code == 400

@@ -127,13 +127,27 @@ class PaperNumber(Shape):
 
 
 class LoadRow(Shape):
-    """A waste container on a drop-off."""
+    """A waste container, or a stock container, on a drop-off."""
 
     vessel = serializers.UUIDField(source="vessel.uuid", help_text=_("The container, by its vessel."))
     name = serializers.CharField(source="vessel.name", help_text=_("Its name."))
-    stream = serializers.CharField(source="vessel.waste_container.stream.name", help_text=_("Its waste stream."))
+    stream = serializers.CharField(
+        source="vessel.waste_container.stream.name",
+        default=None,
+        allow_null=True,
+        help_text=_("Its waste stream; null of a stock container."),
+    )
+    product = serializers.CharField(
+        source="vessel.product.name",
+        default=None,
+        allow_null=True,
+        help_text=_("The product of a stock container; null of a waste container."),
+    )
     gross = Figure(
-        source="vessel.waste_container.gross", allow_null=True, help_text=_("What it weighed when it was closed.")
+        source="vessel.waste_container.gross",
+        default=None,
+        allow_null=True,
+        help_text=_("What it weighed when it was closed; null of a stock container."),
     )
 
 
@@ -157,7 +171,14 @@ class DropOffInput(Strict):
     mode = Choice(choices=Mode.choices, required=False, help_text=_("How they get there; brought if left out."))
     planned_for = Day(help_text=_("The day it is planned for."))
     containers = Words(
-        child=Identifier(help_text=_("A closed waste container, by its vessel.")), help_text=_("What goes along.")
+        child=Identifier(help_text=_("A closed waste container, by its vessel.")),
+        required=False,
+        help_text=_("Which waste containers go along."),
+    )
+    stock = Words(
+        child=Identifier(help_text=_("A stock container, empty or not.")),
+        required=False,
+        help_text=_("Which stock containers go along: empties that stay a waste, what has kept long enough."),
     )
 
 

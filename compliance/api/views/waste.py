@@ -7,6 +7,7 @@ from django.db.models import QuerySet
 from rest_framework.request import Request
 from rest_framework.response import Response
 
+from chemicals.ledger.selectors import get_vessel_for
 from chemicals.workshop.selectors import get_place_for
 from compliance.api.keys import read_key
 from compliance.api.pagination import NewestFirst
@@ -137,7 +138,8 @@ class DropOffsView(ListCreateView):
         """Draft a drop-off."""
         lookup = Lookup(self.member)
         receiver = lookup.find("receiver", get_receiver_for, said["receiver"])
-        containers = lookup.find_all("containers", get_container_for, said["containers"])
+        containers = lookup.find_all("containers", get_container_for, said.get("containers", ()))
+        stock = lookup.find_all("stock", get_vessel_for, said.get("stock", ()))
         lookup.finish()
         assert receiver is not None  # noqa: S101  (else finish has raised)
         made = create_drop_off(
@@ -147,6 +149,7 @@ class DropOffsView(ListCreateView):
             mode=said.get("mode", Mode.BROUGHT),
             planned_for=said["planned_for"],
             containers=containers,
+            stock=stock,
         )
         return get_drop_off_for(self.member, made.uuid)
 

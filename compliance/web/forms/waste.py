@@ -1,12 +1,17 @@
 """Forms of waste: streams, containers, closing, receivers, drop-offs."""
 
+from collections.abc import Iterable
+from contextlib import suppress
 from datetime import date
 from typing import Any
+from uuid import UUID
 
 from django import forms
 from django.utils.translation import gettext_lazy as _
 
+from chemicals.ledger.models import Vessel
 from chemicals.workshop.models import Membership
+from compliance.dropoffs.load import list_ready_stock_for
 from compliance.dropoffs.models import Mode
 from compliance.dropoffs.selectors import list_ready_containers_for, list_receivers_for
 from compliance.waste.selectors import list_streams_for
@@ -84,24 +89,46 @@ class ReceiverForm(WebForm):
 class DropOffForm(WebForm):
     """A drop-off."""
 
-    def __init__(self, member: Membership, today: date, data: Any = None) -> None:
-        super().__init__(data)
+    def __init__(self, member: Membership, today: date, data: Any = None, *, vessel: str = "") -> None:
+        super().__init__(data, initial={"stock": [vessel]})
         receivers = [(receiver.uuid, receiver.name) for receiver in list_receivers_for(member)]
         self.ready = {str(row.vessel.uuid): row for row in list_ready_containers_for(member)}
         labels = [(key, f"{row.vessel.name} ({row.vessel.code}), {row.stream}") for key, row in self.ready.items()]
+        stock = list_ready_stock_for(member, today, _uuids([vessel, *(data.getlist("stock") if data else [])]))
+        self.ready_stock = {str(row.uuid): row for row, _why in stock}
+        told = [(str(row.uuid), f"{row.name} ({row.code}): {why}") for row, why in stock]
         fields: dict[str, forms.Field] = {
             "receiver": ThingField(
                 receivers, label=_("Receiver"), missing=_("No receiver yet. Add one on the page Drop-offs first.")
             ),
             "mode": WordField(Mode.choices, label=_("Brought or picked up"), initial=Mode.BROUGHT),
             "planned_for": DayField(label=_("Planned for"), initial=today),
-            "containers": WordsField(labels, label=_("Closed containers"), required=True),
+            "containers": WordsField(labels, label=_("Closed containers")),
         }
+        if told:
+            fields["stock"] = WordsField(
+                told,
+                label=_("Stock containers"),
+                help_text=_("Empty ones that must not go any other way, and stock that has kept long enough."),
+            )
         self.fields.update(fields)
 
     def containers(self) -> list[Any]:
         """Return the chosen containers."""
         return [self.ready[key] for key in self.cleaned_data["containers"]]
+
+    def stock(self) -> list[Vessel]:
+        """Return the chosen stock containers."""
+        return [self.ready_stock[key] for key in self.cleaned_data.get("stock", ())]
+
+
+def _uuids(texts: Iterable[str]) -> list[UUID]:
+    """Return those of the texts that may name a container; whatever else was sent names none."""
+    found = []
+    for text in texts:
+        with suppress(ValueError):
+            found.append(UUID(text))
+    return found
 
 
 class HandOverForm(WebForm):

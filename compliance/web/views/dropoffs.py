@@ -71,11 +71,13 @@ def add(request: HttpRequest, member: Membership) -> HttpResponse:
             mode=form.cleaned_data["mode"],
             planned_for=form.cleaned_data["planned_for"],
             containers=form.containers(),
+            stock=form.stock(),
         )
         return address("drop-off", member, made.uuid)
 
-    form = DropOffForm(member, timezone.localdate(), sent(request))
-    intro = "" if form.ready else _("No container is closed yet: weigh and close one on its page first.")
+    form = DropOffForm(member, timezone.localdate(), sent(request), vessel=request.GET.get("vessel", ""))
+    none = _("Nothing waits for a drop-off: weigh and close a waste container on its page first.")
+    intro = "" if form.ready or form.ready_stock else none
     words = {"heading": _("Draft a drop-off"), "button": _("Draft it"), "intro": intro}
     return fill_in(request, member, form, act, here="drop-offs", back=address("drop-offs", member), **words)
 
