@@ -4,6 +4,7 @@ import re
 from typing import Any
 from uuid import uuid4
 
+import pytest
 from django_scopes import scopes_disabled
 
 from chemicals.journal.models import Entry
@@ -11,6 +12,7 @@ from chemicals.ledger.models import Vessel
 from chemicals.ledger.selectors import read_contents
 from chemicals.register.models import Product
 from chemicals.workshop.models import Membership
+from compliance.web.forms import jar as jar_forms
 from tests.web.conftest import GRAM, LITRE, Line, Visitor, text_of
 
 
@@ -94,6 +96,22 @@ def test_without_any_product_the_new_one_is_asked_at_once(visit: Visitor) -> Non
     page = text_of(visit.get("new-jar"))
     assert '<details class="group" id="group-new" open>' in page
     assert '<details class="group" id="group-more">' in page
+
+
+def test_of_too_many_products_only_the_chosen_one_is_listed(
+    visit: Visitor, line: Line, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    monkeypatch.setattr(jar_forms, "MOST_OFFERED", 1)
+    page = text_of(visit.get("new-jar"))
+    assert "find it in the register" in page
+    assert "Blue salt" not in page
+    assert '<details class="group" id="group-new" open>' in page
+    page = text_of(visit.get("new-jar", query=f"?product={line.salt.uuid}"))
+    assert "Blue salt · Invented Supply</option>" in page
+    assert "Acid" not in page
+    assert visit.post("new-jar", **said(product=line.salt.uuid, amount="1 kg")).status_code == 302
+    assert visit.post("new-jar", **said(product=uuid4(), amount="1 kg")).status_code == 400
+    assert visit.get("new-jar", query="?product=nonsense").status_code == 200
 
 
 def test_what_is_of_another_workshop_is_not_there(line: Line, stranger: Membership) -> None:

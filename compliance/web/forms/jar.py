@@ -1,7 +1,9 @@
 """The form of containers that come in."""
 
+from collections.abc import Mapping
 from datetime import date
 from typing import Any
+from uuid import UUID
 
 from django import forms
 from django.forms.boundfield import BoundField
@@ -9,7 +11,7 @@ from django.utils.text import format_lazy
 from django.utils.translation import gettext_lazy as _
 
 from chemicals.ledger.naming import LONGEST, list_free_names
-from chemicals.register.models import Form
+from chemicals.register.models import Form, Product
 from chemicals.register.selectors import get_product_for, list_products_for
 from chemicals.workshop.errors import FieldError, InvalidInputError
 from chemicals.workshop.models import Membership
@@ -23,20 +25,34 @@ NEW = {f"new_product.{name}": f"new_{name}" for name in ("name", "supplier", "fo
 """What the service calls the parts of a new product, and what the form does."""
 
 
+MOST_OFFERED = 300
+"""Products of a list to choose from."""
+
+
 class JarForm(WebForm):
     """Containers of one product, as they came in."""
 
     key = forms.UUIDField(widget=forms.HiddenInput)
+    too_many = False
+    """Whether the register holds too many products for a list on a phone."""
 
     def __init__(self, member: Membership, today: date, data: Any = None, **kwargs: Any) -> None:
         super().__init__(data, **kwargs)
         self.member = member
-        self.products = {str(row.uuid): row for row in list_products_for(member)}
+        self.products = self._list_offered()
         self.groups = (
             Group("new", _("It is not in the register yet"), tuple(NEW.values()), folded=bool(self.products)),
             Group("more", _("Opened before, or a size to keep in mind"), ("opened_on", "capacity"), folded=True),
         )
         self.fields.update({**self._product_fields(), **self._container_fields(today)})
+
+    def _list_offered(self) -> dict[str, Product]:
+        """Return what can be chosen: every product, or of too many only the one that is chosen already."""
+        rows = list(list_products_for(self.member)[: MOST_OFFERED + 1])
+        if len(rows) > MOST_OFFERED:
+            self.too_many = True
+            rows = _find(self.member, self.data if self.is_bound else self.initial)
+        return {str(row.uuid): row for row in rows}
 
     def _product_fields(self) -> dict[str, forms.Field]:
         products = [(row.uuid, f"{row.name} · {row.supplier}".rstrip(" ·")) for row in self.products.values()]
@@ -110,3 +126,12 @@ class JarForm(WebForm):
     def add_domain_errors(self, error: InvalidInputError) -> None:
         own = [FieldError(NEW.get(each.field, each.field), each.message) for each in error.errors]
         super().add_domain_errors(InvalidInputError(own))
+
+
+def _find(member: Membership, said: Mapping[str, Any]) -> list[Product]:
+    """Return the product that is said, if it is one of the workshop's."""
+    try:
+        chosen = UUID(str(said.get("product")))
+    except ValueError:
+        return []
+    return list(list_products_for(member).filter(uuid=chosen))
