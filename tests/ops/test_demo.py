@@ -23,6 +23,7 @@ from compliance.dropoffs.models import DropOff, State
 from compliance.ops.demo import DemoUser
 from compliance.ops.demo_reader import read_amount, read_input
 from compliance.ops.verify import find_loose_ends, verify_workshops
+from compliance.premises.empties import list_empties_for
 from tests.ops.conftest import LOADED_AT
 
 G = 10**6
@@ -86,6 +87,14 @@ def test_the_catalogue_shows_what_a_sheet_says(member: Membership) -> None:
     assert [mark_of(row, LOADED_AT.date(), 3) for row in (salt, acid)] == ["old", ""]
     assert revisions["Gold sulfite solution"].ph_floor == 8500
     assert revisions["Copper anodes"].transport_unclassified
+
+
+def test_one_empty_stays_a_waste_and_still_stands_there(member: Membership) -> None:
+    (empty,) = list_empties_for(member)
+    assert (empty.vessel.name, empty.stays_waste) == ("Jar of pickling paste", True)
+    assert empty.very_toxic[-3:] == ["H300", "H310", "H330"]
+    with scope(workshop=member.workshop):
+        assert {row.name for row in list_vessels_for(member) if row.gone_at} == {"Canister 1"}
 
 
 def test_every_kind_of_the_path_happened(member: Membership) -> None:
