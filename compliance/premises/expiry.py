@@ -3,12 +3,12 @@
 from dataclasses import dataclass
 from datetime import date, timedelta
 
-from django.db.models import Exists, OuterRef, Q
 from django_scopes import scope
 
-from chemicals.ledger.models import Holding, Memory, Vessel
+from chemicals.ledger.models import Vessel
 from chemicals.ledger.selectors import list_vessels_for
 from chemicals.workshop.models import Membership
+from compliance.premises.empties import keep_emptied
 
 SOON = 30
 """Days."""
@@ -40,13 +40,10 @@ class Keeping:
 def list_running_out(member: Membership, today: date, most: int) -> list[Keeping]:
     """Return what runs out, what is over first, the longest over at the top; at most ``most``. One query.
 
-    What is gone, or known to be empty, is left out.
+    What is gone, or was emptied, is left out; what nobody measured may well be there.
     """
     with scope(workshop=member.workshop):
-        something = Holding.objects.filter(Q(amount=None) | Q(amount__gt=0), vessel=OuterRef("pk"))
-        anything = Memory.objects.filter(incomplete=True, vessel=OuterRef("pk"))
-        rows = list_vessels_for(member).filter(
-            Exists(something) | Exists(anything), gone_at=None, expires_on__lte=today + timedelta(days=SOON)
-        )
+        rows = list_vessels_for(member).filter(gone_at=None, expires_on__lte=today + timedelta(days=SOON))
+        rows = rows.exclude(pk__in=keep_emptied(rows).order_by().values("pk"))
         found = (Keeping.of(vessel, today) for vessel in rows.order_by("expires_on", "name")[:most])
         return [each for each in found if each is not None]

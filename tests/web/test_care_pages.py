@@ -188,6 +188,11 @@ def test_what_is_empty_or_gone_does_not_run_out(visit: Visitor, keep: Keep, owne
     assert "What runs out" not in text_of(visit.get("today"))
 
 
+def test_what_nobody_measured_may_run_out(visit: Visitor, line: Line) -> None:
+    visit.post("care", line.tub.uuid, name="Salt tub", expires_on="2026-03-01")
+    assert running_out(visit) == [("Salt tub", "passed")]
+
+
 def test_today_lists_ten_and_asks_once_whatever_runs_out(
     visit: Visitor, keep: Keep, django_assert_num_queries: Any
 ) -> None:
