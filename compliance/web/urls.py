@@ -80,6 +80,7 @@ urlpatterns = [
     path(W + "entries/<uuid:uuid>/", entries.entry, name="entry"),
     path(W + "export/", export.index, name="export"),
     path(W + "imports/", imports.index, name="imports"),
+    path(W + "imports/example", imports.example, name="import-example"),
     path(W + "imports/<uuid:uuid>/", imports.upload, name="import"),
     path(W + "balance/", balance.index, name="balance"),
     path(W + "balance/difference/", difference.index, name="difference"),

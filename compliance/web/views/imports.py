@@ -7,7 +7,7 @@ from typing import Any
 from uuid import UUID
 
 from django.contrib import messages
-from django.http import HttpRequest, HttpResponse, HttpResponseBase, HttpResponseRedirect
+from django.http import FileResponse, HttpRequest, HttpResponse, HttpResponseBase, HttpResponseRedirect
 from django.utils import timezone
 from django.utils.translation import gettext as _
 
@@ -15,7 +15,7 @@ from chemicals.process.importing.columns import ColumnMap, as_json
 from chemicals.process.importing.files import add_import, choose_columns, find_map, read_table
 from chemicals.process.importing.reading import RowError
 from chemicals.process.importing.register.plan import RegisterUnderstood
-from chemicals.process.importing.table import Table
+from chemicals.process.importing.table import CSV_TYPE, Table
 from chemicals.process.importing.understanding import Understood
 from chemicals.process.models import Import, Subject
 from chemicals.process.selectors import get_import_for, list_imports_for
@@ -23,12 +23,14 @@ from chemicals.workshop.errors import ConflictError, InvalidInputError
 from chemicals.workshop.models import Membership, Role
 from chemicals.workshop.permissions import require_writer
 from compliance.clearance.importing import AT_ONCE, RefusedImportError, preview_import, record_import
+from compliance.ops.demo import SCENARIO
 from compliance.web.door import page, show
 from compliance.web.export import Column, wanted_file
 from compliance.web.forms.imports import EXAMPLES, FORMS, UploadForm
 from compliance.web.imported import RowTeller, Told, tell_register
 from compliance.web.views.acts import address, fill_in, sent
 
+EXAMPLE = SCENARIO.parent / "imports" / "register-invented.csv"
 SHOWN_ROWS, SHOWN_ERRORS = 10, 200
 IMPORT = "import"
 COLUMNS = (
@@ -69,6 +71,12 @@ def index(request: HttpRequest, member: Membership) -> HttpResponseBase:
 def _here(subject: str) -> str:
     """Return the part of the site to which a file belongs."""
     return "register" if subject == Subject.REGISTER else "entries"
+
+
+@page()
+def example(request: HttpRequest, member: Membership) -> HttpResponseBase:
+    """Send a file of the register with every column, all of it invented."""
+    return FileResponse(EXAMPLE.open("rb"), as_attachment=True, filename=EXAMPLE.name, content_type=CSV_TYPE)
 
 
 @page("GET", "POST")

@@ -15,6 +15,8 @@ from chemicals.science.errors import TextError
 
 EXAMPLE = "CuSO4.5H2O 98 %; NaCl < 2 %"
 _GAP = re.compile(r"\s+|(?=[<>≤≥])|(?<=[:=])")
+_CONTENT = re.compile(r"[<>≤≥=]*\s*\.?\d")
+"""How a content begins."""
 _UNFINISHED = re.compile(r"(?:[<>≤≥=‐‑‒–—−-]|\.\.|\bto)$")
 """What begins a range, or an end of one: no name ends so."""
 
@@ -33,9 +35,10 @@ def split_parts(text: str, decimal: str, is_known: Callable[[str], bool]) -> lis
 
 
 def _split(text: str, decimal: str, is_known: Callable[[str], bool]) -> Part:
-    whole = _read(text, decimal)
-    if isinstance(whole, str):
-        return Part("", whole)
+    if _CONTENT.match(text):
+        whole = _read(text, decimal)
+        if isinstance(whole, str):
+            return Part("", whole)
     pairs = list(dict.fromkeys(_list_pairs(text)))
     read = [(name, _read(content, decimal)) for name, content in pairs]
     found = [Part(name, content) for name, content in read if isinstance(content, str)]
@@ -49,8 +52,7 @@ def _split(text: str, decimal: str, is_known: Callable[[str], bool]) -> Part:
         raise CellError(f'"{text}" can be read in two ways: {ways}. Write a colon between substance and content.')
     if is_known(text):
         raise CellError(f'How much of "{text}" is in it? Write it behind the name: {EXAMPLE}.')
-    reasons = (error for (_, content), (_, error) in zip(pairs, read, strict=True) if re.match(r"[<>≤≥=.\d]", content))
-    reason = next((f" ({error})" for error in reasons), "")
+    reason = next((f" ({error})" for _, error in read), "")
     raise CellError(f'"{text}" is no substance with its content{reason}. Write them like {EXAMPLE}.')
 
 
@@ -62,7 +64,7 @@ def _list_pairs(text: str) -> Iterator[tuple[str, str]]:
         return
     for gap in _GAP.finditer(text):
         name, rest = text[: gap.start()].rstrip(" ="), text[gap.end() :].strip()
-        if name and rest and not _UNFINISHED.search(name):
+        if name and _CONTENT.match(rest) and not _UNFINISHED.search(name):
             yield name, rest
 
 
