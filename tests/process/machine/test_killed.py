@@ -14,8 +14,11 @@ from chemicals.books.occurred import Occurred
 from chemicals.journal.models import Attachment, Entry
 from chemicals.journal.services import add_attachment
 from chemicals.journal.verify import verify_files
-from chemicals.ledger.models import Books
+from chemicals.ledger.models import Books, Vessel
 from chemicals.ledger.periods import close_period, reopen_period
+from chemicals.register.models import Product
+from chemicals.science.quantity import parse
+from compliance.clearance.receiving import JarInput, NewProductInput, receive_containers
 from compliance.clearance.services import record
 from tests.ledger.closing import BEGUN
 from tests.process.machine.acting import Act
@@ -137,6 +140,18 @@ def test_a_period_is_closed_and_opened_again(office: Office) -> None:
     assert kill_everywhere(office, reopen_period, opened) > 3
     office.books.prove()
     assert office.books.closed_until is None
+
+
+def test_jars_come_in_with_a_new_product(office: Office) -> None:
+    new = NewProductInput(name="Brightener", form="liquid")
+    jar = JarInput(new_product=new, count=2, amount=parse("500 mL", "volume"), expires_on=BEGUN.date())
+    came = {"actor": office.worker, "now": office.now, "key": KEY, "jar": jar}
+    assert kill_everywhere(office, receive_containers, came) > 5
+    with scope(workshop=office.workshop):
+        office.books.doubtful |= {entry.uuid for entry in Entry.objects.order_by("-sequence")[:2]}
+        office.books.prove()
+        assert Vessel.objects.filter(product__name="Brightener").count() == 2
+        assert Product.objects.filter(name="Brightener").count() == 1
 
 
 def test_a_file_is_kept(office: Office) -> None:
