@@ -1,10 +1,10 @@
 """Past records by the command line, and the sample files: good ones go in, bad ones are refused with every reason."""
 
+import json
 import tomllib
 from datetime import datetime
 from io import StringIO
 from pathlib import Path
-from typing import Any
 
 import pytest
 from django.core.management import CommandError, call_command
@@ -15,7 +15,9 @@ from chemicals.journal.models import Entry
 from chemicals.ledger import late
 from chemicals.ledger.models import Finding
 from chemicals.ledger.verify import verify_projection
-from chemicals.process.importing.columns import ColumnMap
+from chemicals.process.importing.columns import as_json
+from chemicals.process.importing.files import guess_map
+from chemicals.process.importing.register.columns import guess_register
 from chemicals.process.importing.table import open_table
 from chemicals.process.importing.understanding import understand
 from chemicals.process.models import Import
@@ -39,13 +41,11 @@ def shop(db: None, now: datetime) -> Workshop:
     return Workshop.objects.get()
 
 
-def run(shop: Workshop, name: str, *options: str) -> str:
-    """Run the command and return what it prints."""
+def run(shop: Workshop, name: str, *options: str, command: str = "import_entries") -> str:
+    """Run a command and return what it prints."""
     out, wrong = StringIO(), StringIO()
     try:
-        call_command(
-            "import_entries", str(SAMPLES / name), "--workshop", str(shop.uuid), *options, stdout=out, stderr=wrong
-        )
+        call_command(command, str(SAMPLES / name), "--workshop", str(shop.uuid), *options, stdout=out, stderr=wrong)
     except CommandError as error:
         raise CommandError(f"{error}\n{wrong.getvalue()}") from error
     return out.getvalue()
@@ -70,17 +70,12 @@ def test_both_good_samples_say_the_same(shop: Workshop) -> None:
     for name in ("past-records-invented.csv", "past-records-invented.xlsx"):
         table = open_table((SAMPLES / name).read_bytes())
         member = Membership.objects.get(role=Role.OWNER)
-        found = understand(member, datetime.fromisoformat("2026-03-01T00:00Z"), table, guessed(table), "ab" * 32)
+        found = understand(
+            member, datetime.fromisoformat("2026-03-01T00:00Z"), table, guess_map(shop, table), "ab" * 32
+        )
         said.append([(made.event, made.occurred) for made in found.made])
     assert said[0] == said[1]
     assert len(said[0]) == 13
-
-
-def guessed(table: Any) -> ColumnMap:
-    """Return what the headings suggest."""
-    from chemicals.process.importing.columns import guess
-
-    return guess(table.headings)
 
 
 def test_a_file_is_imported_once(shop: Workshop) -> None:
@@ -166,3 +161,42 @@ def test_the_demo_has_laboratory_results_ready_to_be_imported(db: None, now: dat
     fresh = entries()[before:]
     assert [entry.kind for entry in fresh] == ["analysis"] * 4
     assert verify_projection(workshop) == []
+
+
+def register(shop: Workshop, name: str, *options: str) -> str:
+    """Run the command for the register and return what it prints."""
+    return run(shop, name, *options, command="import_register")
+
+
+@pytest.fixture
+def new_places(tmp_path: Path) -> str:
+    """Return a column map that lets rows name places that are not here."""
+    table = open_table((SAMPLES / "register-invented.csv").read_bytes())
+    path = tmp_path / "map.json"
+    path.write_text(json.dumps({**as_json(guess_register(table.headings)), "add_places": True}))
+    return str(path)
+
+
+@pytest.mark.parametrize("name", ["register-invented.csv", "register-invented.xlsx"])
+def test_the_good_samples_of_the_register_go_in(shop: Workshop, new_places: str, name: str) -> None:
+    told = register(shop, name, "--mapping", new_places, "--dry-run")
+    assert "5 rows, 4 products, 0 revisions, 6 containers, " in told
+    assert 'row 4: "Sodium saccharin" is a new substance.' in told
+    assert entries() == []
+    told = register(shop, name, "--mapping", new_places)
+    assert told.startswith("4 products, 0 revisions, 6 containers, ")
+    assert told.endswith("Entries 1 to 6.\n")
+    assert [entry.kind for entry in entries()] == ["receipt", "receipt", "opening", "opening", "opening", "opening"]
+    assert verify_projection(shop) == []
+    assert register(shop, name, "--mapping", new_places).startswith("This file was imported before. 4 products")
+
+
+def test_the_bad_sample_of_the_register_is_refused_row_by_row(shop: Workshop) -> None:
+    with pytest.raises(CommandError) as refused:
+        register(shop, "register-mistakes-invented.csv")
+    told = str(refused.value).splitlines()
+    assert {line.partition(",")[0] for line in told if line.startswith("row ")} == {f"row {n}" for n in range(3, 14)}
+    assert told[0] == "What is wrong: 23. Nothing was recorded."
+    assert "row 4, CAS number: The check digit of 7758-99-9 does not fit: read it again." in told
+    with scopes_disabled():
+        assert not Import.objects.filter(imported_at__isnull=False).exists()
