@@ -70,7 +70,7 @@ def test_care_changes_what_is_said_and_null_takes_it_away(api: Caller, shop: Sho
         [("place", "Plating bench", ""), ("expires", "", "2027-01-01")],
     )
     assert len(changes) == 5
-    assert changes[0]["changed_by"]["name"] == "Olga"
+    assert (changes[0]["changed_by"]["name"], changes[0]["note"]) == ("Olga", "")
     assert api.post(address, {}).json() == found
 
 

@@ -8,19 +8,13 @@ from chemicals.ledger.naming import LONGEST
 from chemicals.register.models import Form
 from compliance.api.fields import Amount, BaseUnits, Choice, Day, Identifier, Strict, Text, Whole, Words
 from compliance.api.serializers.base import Person, Shape, choices_of
-from compliance.api.serializers.vessels import CAPACITY_HELP, VesselShape
+from compliance.api.serializers.vessels import CAPACITY_HELP
 from compliance.clearance.receiving import LONGEST_LOT, MOST_ALIKE
 
 MOST_CHANGED = 500
 """Containers that are changed at once."""
 OPENED_HELP = _("When it was opened; of stock containers and anode sets only.")
 EXPIRES_HELP = _("The day until which it keeps; of stock containers and anode sets only.")
-
-
-class VesselsShape(Shape):
-    """Vessels."""
-
-    vessels = VesselShape(many=True, help_text=_("The vessels as they are now."))
 
 
 class NewProductInput(Strict):
@@ -95,5 +89,6 @@ class ChangeShape(Shape):
     fact = choices_of(VesselFact.values, _("What was changed."))
     before = serializers.CharField(help_text=_("What stood there before, as people read it; empty for nothing."))
     after = serializers.CharField(help_text=_("What stands there since; empty for nothing."))
+    note = serializers.CharField(help_text=_("Why, or how, as written; empty where nothing was."))
     changed_at = serializers.DateTimeField(help_text=_("When."))
     changed_by = Person(help_text=_("Who changed it."))

@@ -66,9 +66,3 @@ class HereAgainInput(Strict):
         max_length=MOST_AT_ONCE,
         help_text=_("What is here again: all of it, or nothing is noted."),
     )
-
-
-class VesselsShape(Shape):
-    """Vessels as they are now."""
-
-    vessels = VesselShape(many=True, help_text=_("Those that were named, by name."))

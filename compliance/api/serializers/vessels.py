@@ -35,6 +35,12 @@ class VesselShape(Shape):
     created_at = serializers.DateTimeField(help_text=_("When it was set up."))
 
 
+class VesselsShape(Shape):
+    """Vessels as they are now."""
+
+    vessels = VesselShape(many=True, help_text=_("Each of them, by name."))
+
+
 class VesselQuery(PageQuery):
     """Which vessels to list."""
 

@@ -16,7 +16,7 @@ from compliance.api.fields import read_nulls
 from compliance.api.keys import read_key
 from compliance.api.pagination import NewestFirst
 from compliance.api.serializers import containers as shapes
-from compliance.api.serializers.vessels import VesselShape
+from compliance.api.serializers.vessels import VesselShape, VesselsShape
 from compliance.api.views.base import ListView, Lookup, WorkshopView
 from compliance.clearance.receiving import JarInput, NewProductInput, receive_containers
 from compliance.premises.selectors import find_vessels_by_code
@@ -25,7 +25,7 @@ from compliance.premises.selectors import find_vessels_by_code
 class ReceiveView(WorkshopView):
     """Sets up containers alike, with their product if it is new, and records what was received into each of them."""
 
-    shape, input_class, statuses, needs_key = shapes.VesselsShape, shapes.JarInput, (201, 200), True
+    shape, input_class, statuses, needs_key = VesselsShape, shapes.JarInput, (201, 200), True
 
     def post(self, request: Request, **kwargs: Any) -> Response:
         """Set them up, all or none; the same key with the same body returns them again and writes nothing."""
@@ -66,7 +66,7 @@ class ChangesView(ListView):
 class ChangeManyView(WorkshopView):
     """Changes place or days of many containers alike, all of them or none; what is wrong names the container."""
 
-    shape, input_class, statuses = shapes.VesselsShape, shapes.ManyInput, (200,)
+    shape, input_class, statuses = VesselsShape, shapes.ManyInput, (200,)
 
     def post(self, request: Request, **kwargs: Any) -> Response:
         """Change them."""

@@ -7,6 +7,7 @@ from rest_framework.response import Response
 
 from chemicals.ledger.selectors import get_vessel_for
 from compliance.api.serializers import empties as shapes
+from compliance.api.serializers.vessels import VesselsShape
 from compliance.api.views.base import Lookup, WorkshopView
 from compliance.premises.empties import list_empties_for
 from compliance.premises.services import bring_back, put_away
@@ -25,7 +26,7 @@ class EmptiesView(WorkshopView):
 class PutAwayView(WorkshopView):
     """Notes that empty stock containers are gone; what stays a waste goes by the verb hand-over only."""
 
-    shape, input_class, statuses = shapes.VesselsShape, shapes.PutAwayInput, (200,)
+    shape, input_class, statuses = VesselsShape, shapes.PutAwayInput, (200,)
 
     def post(self, request: Request, **kwargs: Any) -> Response:
         """Put them away, all or none."""
@@ -38,7 +39,7 @@ class PutAwayView(WorkshopView):
 class HereAgainView(WorkshopView):
     """Notes that containers that were put away are here again; a hand-over is cancelled instead."""
 
-    shape, input_class, statuses = shapes.VesselsShape, shapes.HereAgainInput, (200,)
+    shape, input_class, statuses = VesselsShape, shapes.HereAgainInput, (200,)
 
     def post(self, request: Request, **kwargs: Any) -> Response:
         """Take them back, all or none."""
