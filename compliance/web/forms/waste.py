@@ -103,8 +103,9 @@ class DropOffForm(WebForm):
             ),
             "mode": WordField(Mode.choices, label=_("Brought or picked up"), initial=Mode.BROUGHT),
             "planned_for": DayField(label=_("Planned for"), initial=today),
-            "containers": WordsField(labels, label=_("Closed containers")),
         }
+        if labels or not told:
+            fields["containers"] = WordsField(labels, label=_("Closed containers"))
         if told:
             fields["stock"] = WordsField(
                 told,
@@ -115,7 +116,7 @@ class DropOffForm(WebForm):
 
     def containers(self) -> list[Any]:
         """Return the chosen containers."""
-        return [self.ready[key] for key in self.cleaned_data["containers"]]
+        return [self.ready[key] for key in self.cleaned_data.get("containers", ())]
 
     def stock(self) -> list[Vessel]:
         """Return the chosen stock containers."""

@@ -152,7 +152,7 @@ def product(request: HttpRequest, member: Membership, uuid: UUID) -> HttpRespons
     found = get_product_for(member, uuid)
     revisions = list(list_revisions_of(found))
     contents = list_contents_for(member)
-    stocks = list(list_vessels_for(member).filter(product=found))
+    stocks = list(list_vessels_for(member).filter(product=found, gone_at=None))
     return show(
         request,
         member,
