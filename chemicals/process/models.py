@@ -363,7 +363,7 @@ class CountLine(models.Model):
                 fields=["day", "vessel"], condition=models.Q(taken_back_at=None), name="count_line_once"
             ),
             models.CheckConstraint(
-                condition=models.Q(said=Seen.AMOUNT, base__gte=0, dimension__in=("mass", "volume"))
+                condition=models.Q(said=Seen.AMOUNT, base__isnull=False, base__gte=0, dimension__in=("mass", "volume"))
                 | models.Q(said__in=(Seen.AGREES, Seen.MISSING), base=None, sd=None, dimension=""),
                 name="count_line_amount_or_word",
             ),

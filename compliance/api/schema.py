@@ -16,6 +16,7 @@ from compliance.api.serializers.base import Errors, Refusal
 PATH_HELP = {
     "workshop": _("The token's own workshop."),
     "uuid": _("The thing's identifier."),
+    "line": _("The line's identifier."),
     "sha256": _("SHA-256 of the file in hex."),
     "metal": _("The metal's symbol."),
 }
@@ -89,7 +90,10 @@ class ApiSchema(AutoSchema):
         """Return what stands in the address and in headers."""
         path = [
             OpenApiParameter(
-                name, OpenApiTypes.UUID if name in ("workshop", "uuid") else OpenApiTypes.STR, "path", description=text
+                name,
+                OpenApiTypes.UUID if name in ("workshop", "uuid", "line") else OpenApiTypes.STR,
+                "path",
+                description=text,
             )
             for name, text in PATH_HELP.items()
             if f"{{{name}}}" in self.path

@@ -15,6 +15,7 @@ from chemicals.journal import triggers
 from chemicals.journal.models import Attachment, Entry
 from chemicals.ledger.models import ClosingHolding, Component, Finding, Period, Vessel
 from chemicals.process.models import Import
+from chemicals.workshop.models import Place
 from compliance.ops.verify import our_models
 from tests.ops.conftest import LOADED_AT
 
@@ -65,6 +66,27 @@ def a_component() -> int:
     component = Component._base_manager.first()
     assert component is not None
     return component.pk
+
+
+def a_place() -> int:
+    """Return the id of some place."""
+    place = Place._base_manager.first()
+    assert place is not None
+    return place.pk
+
+
+OPEN: Values = {"finished_at": None, "finished_by_id": None, "abandoned": False}
+
+
+def another_open(row: Model, **values: Any) -> Values:
+    """Change a count day so that it is the second one that is open."""
+    insert_copy(row, {**OPEN, **values})
+    return {**OPEN, **values}
+
+
+def taken_back(row: Model) -> Values:
+    """Change a line so that it does not stand beside the first."""
+    return {"taken_back_at": LOADED_AT, "taken_back_by_id": row.seen_by_id, "entry_id": None}  # type: ignore[attr-defined]
 
 
 OTHER_END = {"vessel_id": None, "boundary": "the moon"}
@@ -140,17 +162,27 @@ EXAMPLES: dict[str, dict[str, Change]] = {
         "import_with_its_entries": lambda row: {"file_id": another_file(row).pk, "imported_at": LOADED_AT},
     },
     "process.CountDay": {
-        "count_day_open_once_at_place": twice,
-        "count_day_open_once_of_all": {"place_id": None},
+        "count_day_open_once_at_place": lambda row: another_open(row, place_id=a_place()),
+        "count_day_open_once_of_all": lambda row: {**OPEN, "place_id": None},
         "count_day_finished_by_somebody": {"finished_at": LOADED_AT, "finished_by_id": None},
     },
     "process.CountLine": {
-        "count_line_once": twice,
-        "count_line_amount_or_word": {"said": "amount", "base": None},
-        "count_line_taken_back_by_somebody": {"taken_back_at": LOADED_AT},
+        "count_line_once": {"entry_id": None},
+        "count_line_amount_or_word": lambda row: {**taken_back(row), "base": None},
+        "count_line_taken_back_by_somebody": lambda row: {**taken_back(row), "taken_back_by_id": None},
     },
     "documents.Paper": {"paper_number_once": on_another_entry, "paper_kind": {"kind": "poem"}},
     "premises.ChosenRule": {"chosen_rule_named": {"rule": ""}},
+    "premises.QuantityLimit": {
+        "limit_of_what_by_whom": {"citation": ""},
+        "limit_measure": {"measure": "area"},
+        "limit_amount_range": {"amount": -1},
+    },
+    "premises.KeepApart": {
+        "keep_apart_two_sorts_by_whom": lambda row: {"second": row.first},
+        "keep_apart_reach": {"reach": "room"},
+    },
+    "premises.Assessment": {"assessment_place_or_shared": {"shared": "tray"}},
     "waste.WasteStream": {"waste_stream_name_once": twice},
     "dropoffs.Receiver": {"receiver_name_once": twice},
     "dropoffs.DropOff": {
@@ -180,6 +212,14 @@ def first_row(model: type[Model]) -> Model:
             "until": LOADED_AT,
             "sequence": 1,
             "fold_version": 1,
+        },
+        Assessment: {
+            "workshop_id": entry.workshop_id,
+            "reach": "place",
+            "place": Place._base_manager.first(),
+            "until": LOADED_AT.date(),
+            "entered_at": LOADED_AT,
+            "entered_by_id": entry.member_id,
         },
         Import: {
             "workshop_id": entry.workshop_id,

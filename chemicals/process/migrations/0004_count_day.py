@@ -70,7 +70,7 @@ class Migration(migrations.Migration):
         ),
         migrations.AddConstraint(
             model_name='countline',
-            constraint=models.CheckConstraint(condition=models.Q(models.Q(('base__gte', 0), ('dimension__in', ('mass', 'volume')), ('said', 'amount')), models.Q(('base', None), ('dimension', ''), ('said__in', ('agrees', 'missing')), ('sd', None)), _connector='OR'), name='count_line_amount_or_word'),
+            constraint=models.CheckConstraint(condition=models.Q(models.Q(('base__gte', 0), ('base__isnull', False), ('dimension__in', ('mass', 'volume')), ('said', 'amount')), models.Q(('base', None), ('dimension', ''), ('said__in', ('agrees', 'missing')), ('sd', None)), _connector='OR'), name='count_line_amount_or_word'),
         ),
         migrations.AddConstraint(
             model_name='countline',
