@@ -42,6 +42,7 @@ from compliance.dropoffs import services as dropoffs
 from compliance.dropoffs.models import DropOff
 from compliance.ops.demo_reader import read_input, read_seen
 from compliance.ops.demo_sheet import draw_sheet
+from compliance.premises import lines
 from compliance.premises import services as premises
 from compliance.waste import services as waste
 
@@ -91,12 +92,24 @@ class Demo:
             premises.choose_rule(actor=self.owner, now=self.begins, checked_on=checked_on, **self.scenario["list_rule"])
             for table, create in self.creators().items():
                 self.things[table] = {row["name"]: create(row) for row in self.scenario[table]}
+            self.enter_lines()
             self.things["entries"] = {}
             for row in sorted(self.scenario["history"], key=lambda row: self.moment(row.get("recorded", row["when"]))):
                 self.happen(row)
             for row in self.scenario["imports"]:
                 self.upload(row)
         return users
+
+    def enter_lines(self) -> None:
+        """Enter the workshop's own lines: limits of places, and what is kept apart."""
+        checked_on = self.begins.date()
+        for row in self.scenario["limits"]:
+            said = {**row, "amount": parse(row["amount"], "volume")}
+            place, limit = self.find("places", said.pop("place")), lines.LimitInput(checked_on=checked_on, **said)
+            lines.add_limit(actor=self.owner, now=self.begins, place=place, limit=limit)
+        for row in self.scenario["keep_apart"]:
+            line = lines.KeepApartInput(checked_on=checked_on, **row)
+            lines.add_keep_apart(actor=self.owner, now=self.begins, line=line)
 
     @property
     def owner(self) -> Membership:

@@ -8,12 +8,15 @@ from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, field
 from datetime import date, datetime, timedelta
 from functools import cached_property
+from typing import TypeVar
+from uuid import UUID
 
 from django.db.models import QuerySet
 from django_scopes import scope
 
 from chemicals.ledger.models import Vessel, VesselKind
 from chemicals.science.reactivity import DANGERS, Danger
+from chemicals.workshop.errors import NotFoundError
 from chemicals.workshop.models import Membership, Place
 from compliance.premises.apart import Stander, find_apart
 from compliance.premises.models import Assessment, KeepApart, Measure, QuantityLimit, Reach
@@ -21,6 +24,7 @@ from compliance.premises.selectors import Standing, list_standing_for
 from compliance.premises.sorts import Nature, nature_of, reacting
 from compliance.premises.weighing import Weighed, weigh
 
+R = TypeVar("R", QuantityLimit, KeepApart, Assessment)
 STALE = timedelta(days=365)
 """A line that nobody compared for longer is stale."""
 MUST_NEVER_MEET, KEPT_APART, OVER_LIMIT, LIMIT_UNDECIDED, NOT_KNOWN, NOT_ENTERED, NO_PLACE = CODES = (
@@ -117,6 +121,28 @@ def list_assessments_for(member: Membership) -> QuerySet[Assessment]:
     """Return what was assessed, the one that holds longest first. One query."""
     with scope(workshop=member.workshop):
         return Assessment.objects.select_related("place", "entered_by__user").order_by("-until", "-pk")
+
+
+def get_limit_for(member: Membership, uuid: UUID) -> QuantityLimit:
+    """Return one limit of the member's workshop."""
+    return _get(list_limits_for(member), uuid)
+
+
+def get_keep_apart_for(member: Membership, uuid: UUID) -> KeepApart:
+    """Return one line on what is kept apart in the member's workshop."""
+    return _get(list_keep_apart_for(member), uuid)
+
+
+def get_assessment_for(member: Membership, uuid: UUID) -> Assessment:
+    """Return one assessment of the member's workshop."""
+    return _get(list_assessments_for(member), uuid)
+
+
+def _get(rows: QuerySet[R], uuid: UUID) -> R:
+    found = rows.filter(uuid=uuid).first()
+    if found is None:
+        raise NotFoundError("There is no such line in this workshop.")
+    return found
 
 
 def list_violations_for(

@@ -14,6 +14,7 @@ from chemicals.journal.selectors import list_entries_for
 from chemicals.ledger.selectors import list_periods_for, list_vessels_for
 from chemicals.process.counting.selectors import list_count_days_for, list_lines_of
 from chemicals.process.inputs import INPUTS
+from chemicals.process.instruments import list_instruments_for
 from chemicals.process.models import CountDay
 from chemicals.process.selectors import list_imports_for, list_rack_types_for, list_routes_for, list_tanks_for
 from chemicals.register.selectors import list_products_for, list_substances_for
@@ -22,6 +23,7 @@ from chemicals.workshop.models import Membership
 from chemicals.workshop.selectors import list_members_for, list_places_for
 from compliance.documents.selectors import list_papers_for
 from compliance.dropoffs.selectors import list_drop_offs_for, list_receivers_for
+from compliance.premises.violations import list_keep_apart_for, list_limits_for
 from compliance.waste.selectors import list_containers_for, list_streams_for
 
 METHODS = ("get", "head", "options", "post", "put", "patch", "delete")
@@ -78,8 +80,14 @@ def things(member: Membership, sha256: str) -> Mapping[str, list[Any]]:
         "papers": [row.uuid for row in {row.kind: row for row in list_papers_for(member)}.values()],
         "people": [row.uuid for row in list_members_for(member)[:1]],
         "places": [row.uuid for row in list_places_for(member)[:1]],
+        "limits": [row.uuid for row in list_limits_for(member)[:1]],
+        "apart": [row.uuid for row in list_keep_apart_for(member)[:1]],
+        "keep-apart": [row.uuid for row in list_keep_apart_for(member)[:1]],
+        "assessments": [member.uuid],
+        "what": ["limits", "apart", "assessments"],
         "rack-types": [row.uuid for row in list_rack_types_for(member)[:1]],
         "routes": [row.uuid for row in list_routes_for(member)[:1]],
+        "instruments": [row.uuid for row in list_instruments_for(member)[:1]],
         "tokens": [member.uuid],
         "sha256": [sha256],
         "rest": ["nowhere"],

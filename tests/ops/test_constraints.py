@@ -17,6 +17,7 @@ from chemicals.ledger.models import ClosingHolding, Component, Finding, Period, 
 from chemicals.process.models import Import
 from chemicals.workshop.models import Place
 from compliance.ops.verify import our_models
+from compliance.premises.models import Assessment
 from tests.ops.conftest import LOADED_AT
 
 Values = dict[str, Any]

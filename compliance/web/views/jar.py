@@ -13,6 +13,7 @@ from compliance.premises.selectors import find_vessels_by_code
 from compliance.web.door import page, show
 from compliance.web.forms.jar import JarForm
 from compliance.web.views.acts import address, fill_in, sent
+from compliance.web.views.places import find_around
 
 
 @page("GET", "POST", need=require_writer)
@@ -37,4 +38,5 @@ def jars(request: HttpRequest, member: Membership) -> HttpResponse:
     codes = request.GET.getlist("code")
     vessels = find_vessels_by_code(member, list(dict.fromkeys(codes)))
     labels = urlencode([("code", vessel.code) for vessel in vessels])
-    return show(request, member, "web/jars.html", here="register", vessels=vessels, labels=labels)
+    around = find_around(member, vessels)
+    return show(request, member, "web/jars.html", here="register", vessels=vessels, labels=labels, around=around)

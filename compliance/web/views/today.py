@@ -14,9 +14,10 @@ from compliance.waste.selectors import list_filling_for
 from compliance.web import words
 from compliance.web.door import page, show
 from compliance.web.rows import ends_of, entry_rows
+from compliance.web.views.places import list_for_today
 
 LAST = 8
-"""How many entries and findings the first page shows."""
+"""How many entries, findings and violations the first page shows."""
 MOST_RUNNING_OUT = 10
 
 
@@ -40,5 +41,6 @@ def today(request: HttpRequest, member: Membership) -> HttpResponse:
         wasted=sum(each.stays_waste for each in empties),
         asked=sum(each.must_ask for each in empties),
         counts=list_open_counts_for(member),
+        **list_for_today(member, LAST),
         recomputing=get_recomputed_to(member.workshop),
     )

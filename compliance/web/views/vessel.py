@@ -12,7 +12,8 @@ from chemicals.ledger.gone import is_handed_over
 from chemicals.ledger.models import Vessel, VesselKind
 from chemicals.ledger.selectors import get_recomputed_to, get_vessel_for, is_known_empty, list_changes_of, read_contents
 from chemicals.process.counting.selectors import COUNTABLE, find_last_seen, list_open_counts_for
-from chemicals.process.selectors import find_last_run, get_tank_of, list_open_analyses_for
+from chemicals.process.levels import list_level_marks
+from chemicals.process.selectors import find_last_run, get_tank_of, list_open_analyses_for, list_tank_changes_of
 from chemicals.science.reactivity import REACTS_AS
 from chemicals.workshop.models import Membership
 from compliance.clearance.selectors import react_as
@@ -25,6 +26,9 @@ from compliance.web.door import page, show
 from compliance.web.export import Column, wanted_file
 from compliance.web.rows import entry_rows
 from compliance.web.views.acts import address
+from compliance.web.views.places import find_around
+from compliance.web.views.readings import last_readings
+from compliance.web.views.tanks import list_tank_files
 
 LAST = 10
 """How many entries, and how many changes, the page of a vessel shows."""
@@ -45,7 +49,7 @@ def vessel(request: HttpRequest, member: Membership, uuid: UUID) -> HttpResponse
     if found.kind == VesselKind.WASTE:
         return HttpResponseRedirect(address("waste-container", member, found.uuid))
     changes = list_changes_of(found)
-    file = wanted_file(request, changes=(CHANGE_COLUMNS, lambda: changes), about=found.code)
+    file = wanted_file(request, changes=(CHANGE_COLUMNS, lambda: changes), about=found.code, **list_tank_files(found))
     return file or show(
         request,
         member,
@@ -53,7 +57,8 @@ def vessel(request: HttpRequest, member: Membership, uuid: UUID) -> HttpResponse
         here="register" if found.kind == VesselKind.STOCK else "tanks",
         recomputing=get_recomputed_to(member.workshop),
         vessel=found,
-        tank=get_tank_of(found),
+        **_tank(found),
+        **last_readings(member, found),
         contents=read_contents(found),
         reacts_as=[REACTS_AS[kind] for kind in sorted(react_as(found))],
         bench=list_bench(found),
@@ -68,7 +73,16 @@ def vessel(request: HttpRequest, member: Membership, uuid: UUID) -> HttpResponse
         is_empty=found.kind == VesselKind.STOCK and found.gone_at is None and is_known_empty(found),
         empty=find_empty(member, found),
         **_known(member, found),
+        around=find_around(member, [found]),
     )
+
+
+def _tank(found: Vessel) -> dict[str, Any]:
+    """Return how a bath or a rinse is set up, and its level table."""
+    tank = get_tank_of(found)
+    if tank is None:
+        return {"tank": None}
+    return {"tank": tank, "tank_changes": list_tank_changes_of(found)[:LAST], "marks": list_level_marks(found)}
 
 
 def _counts(member: Membership, found: Vessel) -> dict[str, Any]:
