@@ -48,7 +48,7 @@ def test_three_containers_are_counted(
     look("counts")
     page.get_by_label("Where").select_option("Cupboard")
     page.get_by_role("button", name="Start").click()
-    page.get_by_text(re.compile(r"^0 of \d+ seen")).wait_for()
+    page.get_by_text(re.compile(r"\b0 of \d+ seen")).wait_for()
     look("begun")
 
     scan(visitor, "no such")
@@ -58,7 +58,7 @@ def test_three_containers_are_counted(
     page.get_by_role("heading", name="Bottle of sulfuric acid").wait_for()
     look("scanned")
     page.get_by_role("button", name="As the books say").click()
-    page.get_by_text(re.compile(r"^1 of \d+ seen")).wait_for()
+    page.get_by_text(re.compile(r"\b1 of \d+ seen")).wait_for()
     assert page.evaluate("document.activeElement.name") == "code", "the next one can be scanned at once"
 
     scan(visitor, vessel_of("Jar of copper sulfate").code.lower())
@@ -68,7 +68,7 @@ def test_three_containers_are_counted(
     look("wrong")
     page.get_by_label("What is there").fill("900 g")
     page.get_by_role("button", name="Save").click()
-    page.get_by_text(re.compile(r"^2 of \d+ seen")).wait_for()
+    page.get_by_text(re.compile(r"\b2 of \d+ seen")).wait_for()
     look("two")
 
     page.get_by_role("link", name="Compare with the books, and finish").click()
