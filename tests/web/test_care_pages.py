@@ -118,7 +118,9 @@ def test_many_change_alike(visit: Visitor, line: Line) -> None:
         assert (vessel.place, vessel.opened_on, vessel.expires_on) == (shelf, None, date(2027, 1, 1))
     many(visit, line.tub, line.acid, no_place="on")
     assert (fresh(line.tub).place, fresh(line.tub).expires_on) == (None, date(2027, 1, 1))
-    assert "2 containers are changed." in text_of(visit.get("register"))
+    page = text_of(visit.client.get(done.headers["Location"]))
+    assert "2 containers are changed." in page
+    assert page.count("Salt tub") == page.count("Acid bottle") == 1
 
 
 def test_all_of_many_change_or_none_and_who_is_wrong_is_named(visit: Visitor, line: Line) -> None:

@@ -58,7 +58,7 @@ def change_containers(request: HttpRequest, member: Membership) -> HttpResponse:
         changed = change_vessels(actor=member, now=timezone.now(), vessels=vessels, care=form.to_care())
         told = ngettext("%(count)d container is changed.", "%(count)d containers are changed.", len(changed))
         messages.success(request, told % {"count": len(changed)})
-        return address("register", member)
+        return request.get_full_path()
 
     form = ManyForm(member, sent(request))
     return fill_in(
