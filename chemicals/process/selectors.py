@@ -16,7 +16,7 @@ from chemicals.ledger import selectors as ledger
 from chemicals.ledger.models import Vessel
 from chemicals.process.build import build
 from chemicals.process.inputs import Input
-from chemicals.process.models import Import, RackType, Route, RouteStep, Tank
+from chemicals.process.models import Import, RackType, Route, RouteStep, Tank, TankChange
 from chemicals.workshop.errors import NotFoundError
 from chemicals.workshop.models import Membership
 
@@ -52,6 +52,13 @@ def get_tank_of(vessel: Vessel) -> Tank | None:
     """Return the tank settings of a vessel, if it is a bath or a rinse."""
     with scope(workshop=vessel.workshop):
         return Tank.objects.filter(vessel=vessel).select_related("anode", "racks", "vessel").first()
+
+
+def list_tank_changes_of(vessel: Vessel) -> QuerySet[TankChange]:
+    """Return what was changed of how a tank is set up, the latest first. One query."""
+    with scope(workshop=vessel.workshop):
+        changes = TankChange.objects.filter(tank__vessel=vessel).select_related("changed_by__user")
+        return changes.order_by("-changed_at", "-pk")
 
 
 def list_open_analyses_for(member: Membership) -> list[tuple[Entry, Analysis]]:

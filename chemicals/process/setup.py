@@ -1,7 +1,7 @@
 """Writes of the set-up: tanks, rack types, routes. Plain settings: figures go into each entry as used."""
 
 from collections.abc import Iterator
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from datetime import datetime
 
 from django.db import transaction
@@ -9,9 +9,10 @@ from django_scopes import scope
 
 from chemicals.ledger.models import Vessel, VesselKind
 from chemicals.ledger.services import create_vessel
-from chemicals.process.models import AnodeKind, RackType, Route, RouteStep, SideReaction, Tank
+from chemicals.process.models import AnodeKind, RackType, Route, RouteStep, SideReaction, Tank, TankChange
 from chemicals.register.models import Product
 from chemicals.science.formula import METALS
+from chemicals.science.quantity import show
 from chemicals.workshop.errors import FieldError, InvalidInputError
 from chemicals.workshop.models import Membership, Place
 from chemicals.workshop.permissions import require_same_workshop, require_writer
@@ -128,6 +129,54 @@ def _check_racks(tank: TankInput) -> Iterator[FieldError]:
         yield FieldError("racks", "A share of the deposit grows on racks: choose the rack build-up that it goes to.")
     if tank.rack_share is not None and not 0 <= tank.rack_share < 1_000_000:
         yield FieldError("rack_share", "A share lies between 0 and 100 %, and something is left for the parts.")
+
+
+FACTS = (
+    "mark", "bath_type", "metal", "valence", "efficiency", "efficiency_sd", "anode_kind", "anode", "side_reaction",
+    "racks", "rack_share",
+)  # fmt: skip
+"""What of a tank may change after it was set up: entries keep the figures that they relied on."""
+SHOWN_AS = {"mark": "volume", "efficiency": "fraction", "efficiency_sd": "fraction", "rack_share": "fraction"}
+
+
+def change_tank(*, actor: Membership, now: datetime, row: Tank, tank: TankInput, note: str = "") -> list[TankChange]:
+    """Change how a bath or a rinse is set up, and note what changed, who said so and when.
+
+    Of ``tank`` kind, name, place and capacity are not looked at: they belong to the vessel. What was recorded so far
+    keeps the figures that it relied on; what is recorded from now on relies on the new ones.
+    """
+    require_writer(actor)
+    require_same_workshop(actor, row.vessel, *(thing for thing in (tank.anode, tank.racks) if thing is not None))
+    said = replace(tank, kind=row.vessel.kind, capacity=row.vessel.capacity)
+    before = {name: getattr(row, name) for name in FACTS}
+    for name in FACTS:
+        setattr(row, name, getattr(said, name))
+    changes = [
+        TankChange(
+            tank=row, fact=name, before=_told(name, before[name]), after=_told(name, getattr(row, name)),
+            note=note.strip(), changed_at=now, changed_by=actor,
+        )
+        for name in FACTS
+        if getattr(row, name) != before[name]
+    ]  # fmt: skip
+    errors = [
+        *_check_figures(said), *_check_anode(said), *_check_racks(said), *check_row(row, leave_out=["vessel"]),
+        *(error for change in changes[:1] for error in check_row(change, leave_out=["tank"])),
+    ]  # fmt: skip
+    if errors:
+        row.refresh_from_db()
+        raise InvalidInputError(errors)
+    with transaction.atomic(), scope(workshop=actor.workshop):
+        row.save()
+        TankChange.objects.bulk_create(changes)
+    return changes
+
+
+def _told(name: str, value: object) -> str:
+    """Return what a fact was, as people read it; empty where it was nothing."""
+    if isinstance(value, int) and name in SHOWN_AS:
+        return show(value, SHOWN_AS[name])
+    return "" if value is None else str(value)[:80]
 
 
 SOLID_HOLDERS = (

@@ -227,6 +227,15 @@ def show(base: int, dimension: str, *, digits: int = 4) -> str:
     return f"pH {number}" if dimension == "ph" else f"{number} {pretty(name)}"
 
 
+def spell(base: int, dimension: str) -> str:
+    """Return base units as a text that is read as exactly so many, for a form to begin with. No temperatures, no pH."""
+    known = units.DIMENSIONS[dimension]
+    name = next(name for name, least in known.shown if (abs(base) >= least if base else known.example.endswith(name)))
+    unit = next(unit for unit in known.units if unit.name == name)
+    number = f"{(Decimal(base) / units.to_base(Decimal(1), unit, dimension)).normalize():f}"
+    return f"{number} {name}"
+
+
 def _round(value: Decimal, digits: int) -> Decimal:
     """To so many significant digits, but never coarser than to a whole number."""
     if not value:

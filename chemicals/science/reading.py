@@ -7,7 +7,7 @@ from typing import Final
 
 from chemicals.science.errors import TextError
 from chemicals.science.quantity import Quantity, QuantityError, parse
-from chemicals.science.units import DIMENSIONS
+from chemicals.science.units import DIMENSIONS, find
 
 PH, TEMPERATURE, CONDUCTIVITY, VOLTAGE, AIR_SPEED, SURFACE_TENSION, TEST_STRIP = (
     "pH", "temperature", "conductivity", "voltage", "air speed", "surface tension", "test strip",
@@ -47,6 +47,11 @@ MEASURED: Final = {
     CHARGE: Measurable(("charge",), "charge", "1.8 Ah"),
 }
 """All that an instrument may measure."""
+
+
+def dimension_of(quantity: str, unit: str) -> str:
+    """Return in which of its dimensions a quantity was told, by the unit."""
+    return next(name for name in MEASURED[quantity].dimensions if find(unit, name))
 
 
 class ReadingError(TextError):

@@ -31,12 +31,16 @@ class Scale:
 
     @classmethod
     def around(cls, low: int, high: int, component: str) -> "Scale":
+        """Return an axis that shows these amounts of a component in the unit in which pages say them."""
+        return cls.around_in(low, high, *_unit(max(abs(low), abs(high)), component))
+
+    @classmethod
+    def around_in(cls, low: int, high: int, unit: str, size: Decimal) -> "Scale":
         """Return an axis that shows these amounts: with zero on it, unless all of them are far from zero."""
         if low > 0 and (2 * low < high or low == high):
             low = 0
         if high < 0 and (2 * high > low or low == high):
             high = 0
-        unit, size = _unit(max(abs(low), abs(high)), component)
         step = _round_step(Decimal(high - low) / STEPS) if high > low else size
         lowest = (Decimal(low) / step).to_integral_value(ROUND_FLOOR)
         highest = (Decimal(high) / step).to_integral_value(ROUND_CEILING)

@@ -133,8 +133,8 @@ def draw_plot(ledger: VesselLedger, now: datetime, *, width: int, height: int) -
         band="".join(_band(run, up) for run in known),
         gaps=tuple(_gaps(steps)),
         marks=tuple(_marks(ledger, across, up)),
-        dates=tuple(_date(across(at), text, width) for at, text in dates),
-        amounts=tuple(Tick(_px(up(at)), _px(up(at) + BASE_LINE), text) for at, text in scale.marks()),
+        dates=tuple(place_date(across(at), text, width) for at, text in dates),
+        amounts=tuple(place_amount(up(at), text) for at, text in scale.marks()),
         says=tuple(_tell(ledger, held, scale)),
     )
 
@@ -196,10 +196,20 @@ def _marks(ledger: VesselLedger, across: Callable[[datetime], float], up: Height
         x, y = across(point.at), up(point.held.amount or 0)
         amount = words.with_uncertainty(point.held.amount, point.held.sd, ledger.component)
         says = _("measured %(when)s: %(amount)s") % {"when": words.moment(point.at), "amount": amount}
-        yield Mark(f"M{x:.1f} {y - SIZE:.1f}l{SIZE} {SIZE}l-{SIZE} {SIZE}l-{SIZE} -{SIZE}Z", says)
+        yield diamond(x, y, says)
 
 
-def _date(x: float, text: str, width: int) -> Tick:
+def diamond(x: float, y: float, says: str) -> Mark:
+    """Return the mark of something measured."""
+    return Mark(f"M{x:.1f} {y - SIZE:.1f}l{SIZE} {SIZE}l-{SIZE} {SIZE}l-{SIZE} -{SIZE}Z", says)
+
+
+def place_amount(y: float, text: str) -> Tick:
+    """Return a mark on the axis of amounts; its text stands beside it."""
+    return Tick(_px(y), _px(y + BASE_LINE), text)
+
+
+def place_date(x: float, text: str, width: int) -> Tick:
     """Return a mark on the axis of time; its text stands below it, but not beyond the edges of the plot."""
     half = LETTER * len(text) / 2
     return Tick(_px(x), _px(min(max(x, half), width - half)), text)

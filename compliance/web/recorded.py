@@ -14,6 +14,7 @@ from chemicals.science.units import find_elsewhere
 from compliance.documents.words import grouped
 from compliance.web.words import Ends, component_name, in_one_unit, moment
 from compliance.web.words.fields import DIMENSIONS, LABELS, place_of
+from compliance.web.words.readings import gauge_doubt, quantity_name, result_amount
 
 REFERENCES = ("entry", "analysis", "closing")
 """Fields that hold the identifier of another entry."""
@@ -209,6 +210,52 @@ def _tell_dissolved(teller: Teller, value: Any) -> Iterator[Told]:
         yield teller.figure(label, "dissolved", figure)
 
 
+def _tell_result(teller: Teller, value: Any) -> Iterator[Told]:
+    """Yield the result of a reading as typed and as understood; of an analysis its figure."""
+    if "least" not in value:
+        yield teller.figure(label_of("result"), "result", value)
+        return
+    result = events.Result(**value)
+    understood = result_amount(result, teller.both["quantity"])
+    same = result.typed == understood
+    yield Told(label_of("result"), understood if same else f"{result.typed} = {understood}")
+
+
+def _tell_quantity(teller: Teller, value: Any) -> Iterator[Told]:
+    yield Told(label_of("quantity"), quantity_name(value))
+
+
+def _tell_gauge(teller: Teller, value: Any) -> Iterator[Told]:
+    """Yield the instrument by the name that it had then, and how sure it was taken to be."""
+    measures = teller.both.get("quantity") or next(GAUGED[name] for name in GAUGED if name in teller.both)
+    gauge = events.Gauge(**value)
+    yield Told(label_of("gauge"), gauge.name, gauge_doubt(gauge, measures))
+
+
+def _tell_marks(teller: Teller, value: Any) -> Iterator[Told]:
+    rows = [f"{row['mark']}: {in_one_unit(row['volume'], 0, 'volume')}" for row in value]
+    yield Told(label_of("marks"), ", ".join(rows))
+
+
+def _tell_hot(teller: Teller, value: Any) -> Iterator[Told]:
+    if value:
+        yield Told(label_of("hot"), _flag("hot", value=True))
+
+
+def _tell_nothing(teller: Teller, value: Any) -> Iterator[Told]:
+    """Yield nothing: the figures relied on name the instrument as it was called then."""
+    yield from ()
+
+
+GAUGED = {
+    "volume": "level",
+    "mass": "weight",
+    "weight_before": "weight",
+    "density": "density",
+    "result": "analysis",
+}
+"""What an instrument measured, by the field that it gave."""
+
 TELLERS: Mapping[str, Callable[[Teller, Any], Iterator[Told]]] = {
     "drag_out": _tell_drag_out,
     "plating": _tell_plating,
@@ -217,5 +264,11 @@ TELLERS: Mapping[str, Callable[[Teller, Any], Iterator[Told]]] = {
     "conversions": _tell_conversions,
     "recipe": _tell_recipe,
     "dissolved": _tell_dissolved,
+    "result": _tell_result,
+    "quantity": _tell_quantity,
+    "gauge": _tell_gauge,
+    "instrument": _tell_nothing,
+    "marks": _tell_marks,
+    "hot": _tell_hot,
 }
 """Fields that are told in their own way."""

@@ -15,6 +15,7 @@ from chemicals.register.selectors import list_products_for
 from chemicals.workshop.models import Membership
 from compliance.documents.models import PaperKind
 from compliance.web.words import Ends, component_name, moment
+from compliance.web.words.readings import quantity_name
 
 
 @dataclass(frozen=True)
@@ -69,6 +70,9 @@ def _figures(event: Event) -> Iterator[str]:
     """Yield what was plated or analysed, then what was measured, as typed."""
     if isinstance(event, events.Run) and event.parts:
         yield event.parts
+    if isinstance(event, events.Reading):
+        yield quantity_name(event.quantity, event.shows)
+        yield event.result.typed
     if isinstance(event, events.Analysis | events.Acceptance):
         yield component_name(event.component)
     if isinstance(event, events.DaySheet):

@@ -105,9 +105,9 @@ def test_rows_are_described_like_fields(schema: Json) -> None:
 
 
 def test_an_amount_is_a_text_with_an_example(schema: Json) -> None:
-    volume = schema["components"]["schemas"]["LevelInput"]["properties"]["volume"]
-    assert (volume["type"], volume["examples"]) == ("string", ["19.2 L"])
-    assert volume["description"].startswith('Volume now, such as "19.2 L". For example')
+    mass = schema["components"]["schemas"]["WeightInput"]["properties"]["mass"]
+    assert (mass["type"], mass["examples"]) == ("string", ["22.4 kg"])
+    assert mass["description"].startswith('Weight, such as "22.4 kg". As the scale')
 
 
 def test_a_vessel_says_of_which_kinds(schema: Json) -> None:

@@ -43,6 +43,7 @@ class Line:
             "count": {"vessel": self.stock, "amount": "1.9 kg"},
             "weight-reading": {"vessel": self.stock, "mass": "1.9 kg"},
             "density-reading": {"vessel": bath, "density": "1.13 g/mL"},
+            "reading": {"vessel": bath, "quantity": "temperature", "result": "24 °C"},
             "sample": {"source": bath, "amount": "20 mL"},
             "spill": {"source": rinse, "amount": "1 L"},
             "move": {"source": bath, "target": rinse, "mass": "1 kg"},
@@ -65,8 +66,8 @@ def line(api: Caller, shop: Shop) -> Line:
 
 
 VERBS = [
-    "count", "weight-reading", "density-reading", "sample", "spill", "move", "day-sheet", "dummy", "strip", "filter",
-    "carbon", "resin", "sludge", "clean-out", "treatment",
+    "count", "weight-reading", "density-reading", "reading", "sample", "spill", "move", "day-sheet", "dummy", "strip",
+    "filter", "carbon", "resin", "sludge", "clean-out", "treatment",
 ]  # fmt: skip
 
 

@@ -9,11 +9,12 @@ from django.utils.translation import gettext_lazy as _
 
 from chemicals.ledger.models import VesselKind
 from chemicals.ledger.selectors import get_vessel_for, list_vessels_for
-from chemicals.process.models import AnodeKind, SideReaction
+from chemicals.process.models import AnodeKind, SideReaction, Tank
 from chemicals.process.selectors import list_rack_types_for
-from chemicals.process.setup import SOLID_HOLDERS, TankInput
+from chemicals.process.setup import FACTS, SHOWN_AS, SOLID_HOLDERS, TankInput
 from chemicals.register.selectors import list_products_for
 from chemicals.science.formula import METALS, element_name
+from chemicals.science.quantity import spell
 from chemicals.workshop.models import Membership, Place
 from chemicals.workshop.selectors import get_place_for
 from compliance.web.forms.base import Row, Rows, WebForm
@@ -65,7 +66,7 @@ class BathForm(RinseForm):
 
     def __init__(self, member: Membership, data: Any = None) -> None:
         super().__init__(member, data)
-        holders = list(list_vessels_for(member, VesselKind.ANODE, VesselKind.RACKS))
+        holders = list(list_vessels_for(member, VesselKind.ANODE, VesselKind.RACKS).filter(gone_at=None))
         anodes, racks = (
             [(vessel.uuid, vessel.name) for vessel in holders if vessel.kind == kind]
             for kind in (VesselKind.ANODE, VesselKind.RACKS)
@@ -141,6 +142,50 @@ class BathForm(RinseForm):
             **figures,
             **self.common(),
         )
+
+
+def _begin_with(form: RinseForm, tank: Tank) -> None:
+    """Let the fields show how the tank is set up; name, place and size belong to the vessel and are not asked."""
+    for name in ("name", "place", "capacity"):
+        del form.fields[name]
+    known = {name: getattr(tank, name) for name in FACTS}
+    for name, dimension in SHOWN_AS.items():
+        known[name] = None if known[name] is None else spell(known[name], dimension)
+    for name in ("anode", "racks"):
+        known[name] = known[name] and known[name].uuid
+    form.initial = known
+    form.fields["note"] = LineField(
+        label=_("Why"), required=False, max_length=200, help_text=_("Kept with who changed it and when.")
+    )
+
+
+def _of_vessel(tank: Tank) -> dict[str, Any]:
+    """Return what belongs to the vessel, as it is."""
+    return {"name": tank.vessel.name, "place": tank.vessel.place, "capacity": tank.vessel.capacity}
+
+
+class ChangeRinseForm(RinseForm):
+    """How a rinse is set up, to be changed."""
+
+    def __init__(self, member: Membership, tank: Tank, data: Any = None) -> None:
+        super().__init__(member, data)
+        self.tank = tank
+        _begin_with(self, tank)
+
+    def common(self) -> dict[str, Any]:
+        return _of_vessel(self.tank)
+
+
+class ChangeBathForm(BathForm):
+    """How a bath is set up, to be changed."""
+
+    def __init__(self, member: Membership, tank: Tank, data: Any = None) -> None:
+        super().__init__(member, data)
+        self.tank = tank
+        _begin_with(self, tank)
+
+    def common(self) -> dict[str, Any]:
+        return _of_vessel(self.tank)
 
 
 class AnodeForm(VesselForm):

@@ -12,11 +12,15 @@ from chemicals.journal.models import Entry
 from chemicals.ledger.components import dimension_per_litre
 from chemicals.ledger.running import Running
 from chemicals.ledger.selectors import Held, HeldMetal
+from chemicals.process.models import Instrument
+from chemicals.process.readings import Taken
 from chemicals.science.quantity import show
+from chemicals.science.reading import ANALYSIS
 from compliance.documents.twin import symbol
 from compliance.web import words
 from compliance.web.forms.period import last_day_of
 from compliance.web.statement import Line
+from compliance.web.words.readings import FACT_NAMES, amount_of, quantity_name, uncertainty
 
 register = template.Library()
 
@@ -136,3 +140,35 @@ def end(of_flow: FlowEnd) -> str:
 def figure(value: object) -> str:
     """Show a calculated value with the digits that mean something."""
     return f"{value:.6g}" if isinstance(value, float) else str(value)
+
+
+@register.filter
+def quantity(measures: str) -> str:
+    """Show what an instrument measures."""
+    return quantity_name(measures)
+
+
+@register.filter
+def doubt(instrument: Instrument) -> str:
+    """Show how sure an instrument is; nothing where nobody said so."""
+    return uncertainty(instrument.sd, instrument.relative_sd, instrument.measures)
+
+
+@register.filter
+def read(taken: Taken) -> str:
+    """Show what was read, as it was understood."""
+    return amount_of(taken)
+
+
+@register.filter
+def of_what(taken: Taken) -> str:
+    """Show what was read: a quantity, or what a strip or an analysis is for."""
+    if taken.quantity == ANALYSIS:
+        return words.component_name(taken.shows)
+    return quantity_name(taken.quantity, taken.shows)
+
+
+@register.filter
+def fact(name: str) -> str:
+    """Show what of the set-up of a tank was changed."""
+    return str(FACT_NAMES[name])

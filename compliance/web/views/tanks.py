@@ -3,21 +3,46 @@
 from typing import Any
 from uuid import UUID
 
+from django.contrib import messages
 from django.http import Http404, HttpRequest, HttpResponse, HttpResponseBase
 from django.utils import timezone
 from django.utils.translation import gettext as _
 
 from chemicals.ledger.models import Vessel, VesselKind
-from chemicals.ledger.selectors import get_recomputed_to, list_contents_for, list_vessels_for
-from chemicals.process.selectors import get_rack_type_for, list_rack_types_for, list_routes_for
-from chemicals.process.setup import SOLID_HOLDERS, create_holder, create_rack_type, create_route, create_tank
+from chemicals.ledger.selectors import get_recomputed_to, get_vessel_for, list_contents_for, list_vessels_for
+from chemicals.process.levels import list_level_marks
+from chemicals.process.selectors import (
+    get_rack_type_for,
+    get_tank_of,
+    list_rack_types_for,
+    list_routes_for,
+    list_tank_changes_of,
+)
+from chemicals.process.setup import (
+    SOLID_HOLDERS,
+    change_tank,
+    create_holder,
+    create_rack_type,
+    create_route,
+    create_tank,
+)
 from chemicals.register.selectors import get_product_for
+from chemicals.workshop.errors import NotFoundError
 from chemicals.workshop.models import Membership
 from chemicals.workshop.permissions import require_writer
 from compliance.web.contents import CONTENT_COLUMNS, parts_of
 from compliance.web.door import page, show
-from compliance.web.export import Column, litres, wanted_file
-from compliance.web.forms.tanks import AnodeForm, BathForm, HolderForm, RackTypeForm, RinseForm, RouteForm
+from compliance.web.export import Column, Listed, litres, wanted_file
+from compliance.web.forms.tanks import (
+    AnodeForm,
+    BathForm,
+    ChangeBathForm,
+    ChangeRinseForm,
+    HolderForm,
+    RackTypeForm,
+    RinseForm,
+    RouteForm,
+)
 from compliance.web.views.acts import address, fill_in, sent
 
 KINDS = (VesselKind.BATH, VesselKind.RINSE, VesselKind.ANODE, *SOLID_HOLDERS)
@@ -35,11 +60,36 @@ ROUTE_COLUMNS = (
 )
 
 
+MARK_COLUMNS = (
+    Column("height or mark", lambda row: row.mark),
+    Column("read hot", lambda row: "yes" if row.hot else "no"),
+    Column("volume at 20 C (L)", lambda row: litres(row.volume)),
+    Column("entered", lambda row: row.entered_at),
+    Column("by", lambda row: str(row.entered_by.user)),
+)
+TANK_CHANGE_COLUMNS = (
+    Column("changed", lambda row: row.changed_at),
+    Column("by", lambda row: str(row.changed_by.user)),
+    Column("what", lambda row: row.fact),
+    Column("before", lambda row: row.before),
+    Column("after", lambda row: row.after),
+    Column("note", lambda row: row.note),
+)
+
+
+def list_tank_files(vessel: Vessel) -> dict[str, Listed]:
+    """Return the lists of a tank that may be downloaded from its page."""
+    return {
+        "level_table": (MARK_COLUMNS, lambda: list_level_marks(vessel)),
+        "tank_changes": (TANK_CHANGE_COLUMNS, lambda: list_tank_changes_of(vessel)),
+    }
+
+
 @page()
 def index(request: HttpRequest, member: Membership) -> HttpResponseBase:
     """List tanks, anode sets, filters and the like with what they hold, and the set-up of the line."""
     contents = list_contents_for(member)
-    rows = [(vessel, contents.get(vessel.pk)) for vessel in list_vessels_for(member, *KINDS)]
+    rows = [(vessel, contents.get(vessel.pk)) for vessel in list_vessels_for(member, *KINDS).filter(gone_at=None)]
     racks, routes = list_rack_types_for(member), list_routes_for(member)
     file = wanted_file(
         request,
@@ -68,6 +118,30 @@ def add_tank(request: HttpRequest, member: Membership, kind: str) -> HttpRespons
     form = FORMS[kind](member, sent(request))
     back = address("tanks", member)
     return fill_in(request, member, form, act, here="tanks", heading=heading, button=_("Set it up"), back=back)
+
+
+@page("GET", "POST", need=require_writer)
+def change(request: HttpRequest, member: Membership, uuid: UUID) -> HttpResponse:
+    """Change how a bath or a rinse is set up."""
+    vessel = get_vessel_for(member, uuid)
+    tank = get_tank_of(vessel)
+    if tank is None:
+        raise NotFoundError("This vessel is neither a bath nor a rinse.")
+    back = address("vessel", member, vessel.uuid)
+
+    def act(form: ChangeBathForm | ChangeRinseForm) -> str:
+        note = form.cleaned_data["note"]
+        change_tank(actor=member, now=timezone.now(), row=tank, tank=form.to_tank(), note=note)
+        messages.success(request, _("Saved."))
+        return back
+
+    make = ChangeBathForm if vessel.kind == VesselKind.BATH else ChangeRinseForm
+    words = {
+        "heading": _("Change how %(tank)s is set up") % {"tank": vessel},
+        "button": _("Save"),
+        "intro": _("Entries so far keep the figures that they relied on; new entries rely on the new ones."),
+    }
+    return fill_in(request, member, make(member, tank, sent(request)), act, here="tanks", back=back, **words)
 
 
 @page("GET", "POST", need=require_writer)
