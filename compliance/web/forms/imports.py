@@ -55,7 +55,7 @@ class UploadForm(WebForm):
     subject = forms.ChoiceField(
         choices=Subject.choices,
         required=False,
-        label=gettext_lazy("What is in the file"),
+        label=gettext_lazy("What the rows are"),
         error_messages={"invalid_choice": NO_CHOICE},
         help_text=gettext_lazy("Each row is an entry, or a product with one of its containers."),
     )
