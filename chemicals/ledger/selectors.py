@@ -1,6 +1,6 @@
 """Reads of the ledger: vessels, what they hold, balances on a date."""
 
-from collections.abc import Mapping
+from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 from datetime import datetime
 from uuid import UUID
@@ -108,13 +108,17 @@ class Contents:
     incomplete: bool
 
 
-def list_contents_for(member: Membership) -> dict[int, Contents]:
-    """Return what every vessel of the member's workshop holds, by the vessel's primary key. Two queries."""
+def list_contents_for(member: Membership, vessels: Iterable[int] | None = None) -> dict[int, Contents]:
+    """Return what every vessel of the member's workshop holds, or those of these primary keys, by primary key.
+
+    Two queries.
+    """
     with scope(workshop=member.workshop):
-        rows = Holding.objects.values_list("vessel_id", "component__code", "amount", "variance")
-        incomplete = set(Memory.objects.filter(incomplete=True).values_list("vessel_id", flat=True))
+        these = {} if vessels is None else {"vessel__in": list(vessels)}
+        rows = Holding.objects.filter(**these).order_by("component__code")
+        incomplete = set(Memory.objects.filter(incomplete=True, **these).values_list("vessel_id", flat=True))
     held: dict[int, list[Held]] = {}
-    for vessel, code, amount, variance in rows.order_by("component__code"):
+    for vessel, code, amount, variance in rows.values_list("vessel_id", "component__code", "amount", "variance"):
         held.setdefault(vessel, []).append(Held(code, amount, fold.state.root(variance)))
     return {vessel: _contents(held.get(vessel, []), vessel in incomplete) for vessel in {*held, *incomplete}}
 

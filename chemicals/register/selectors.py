@@ -71,6 +71,13 @@ def list_products_for(member: Membership) -> QuerySet[Product]:
         return Product.objects.order_by("name", "supplier")
 
 
+def list_suppliers_for(member: Membership) -> list[str]:
+    """Return who sells the products of the member's workshop, by name. One query."""
+    with scope(workshop=member.workshop):
+        named = Product.objects.exclude(supplier="").order_by("supplier")
+        return list(named.values_list("supplier", flat=True).distinct())
+
+
 def get_product_for(member: Membership, uuid: UUID) -> Product:
     """Return one product of the member's workshop."""
     try:

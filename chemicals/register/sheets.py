@@ -3,7 +3,7 @@
 import re
 from collections.abc import Iterable
 from dataclasses import dataclass
-from datetime import date
+from datetime import date, timedelta
 from typing import Literal
 
 from chemicals.journal.models import Attachment
@@ -36,6 +36,12 @@ def is_old(sheet_date: date, today: date, years: int) -> bool:
         return today > sheet_date.replace(year=sheet_date.year + years)
     except ValueError:
         return today > date(sheet_date.year + years, 3, 1)
+
+
+def first_fine_day(today: date, years: int) -> date:
+    """Return the earliest date of a sheet that is not older than so many years: what is older, `is_old` says so."""
+    earliest = date(today.year - years, today.month, min(today.day, 28))
+    return next(day for day in (earliest + timedelta(days=n) for n in range(-2, 5)) if not is_old(day, today, years))
 
 
 def mark_of(revision: ProductRevision, today: date, years: int) -> Mark:

@@ -3,6 +3,7 @@
 from typing import Any
 
 from django.db.models import QuerySet
+from django.utils import timezone
 from rest_framework.request import Request
 from rest_framework.response import Response
 
@@ -28,7 +29,10 @@ from chemicals.register.services import (
 )
 from compliance.api.pagination import NewestFirst
 from compliance.api.serializers import register as shapes
+from compliance.api.serializers.finding import FindQuery
 from compliance.api.views.base import ListCreateView, Lookup, WorkshopView, freeze
+from compliance.api.views.finding import read_wanted
+from compliance.premises.finding import find_products
 
 
 class SubstancesView(ListCreateView):
@@ -102,13 +106,15 @@ class _RevisionsView(ListCreateView):
 
 
 class ProductsView(_RevisionsView):
-    """Products in their current revisions."""
+    """Products in their current revisions: those that are looked for, else all."""
 
-    input_class = shapes.ProductInput
+    input_class, query_class = shapes.ProductInput, FindQuery
 
     def rows(self) -> QuerySet[ProductRevision]:
-        """Return the current revisions."""
-        return list_current_revisions_for(self.member)
+        """Return the current revisions of what the query asks for."""
+        today = timezone.localdate(self.now, self.member.workshop.zone)
+        found = find_products(self.member, read_wanted(self.member, self.query), today)
+        return list_current_revisions_for(self.member).filter(product__in=found.order_by().values("pk"))
 
     def create(self, said: dict[str, Any]) -> ProductRevision:
         """Create a product with its first revision."""

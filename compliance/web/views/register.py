@@ -10,13 +10,11 @@ from django.utils.translation import gettext as _
 from django.utils.translation import ngettext
 
 from chemicals.journal.models import Attachment
-from chemicals.ledger.models import VesselKind
 from chemicals.ledger.selectors import list_contents_for, list_vessels_for
 from chemicals.register.selectors import (
     get_current_revision,
     get_product_for,
     get_substance_for,
-    list_current_revisions_for,
     list_missing_starters,
     list_revisions_of,
     list_substances_for,
@@ -35,7 +33,6 @@ from chemicals.science.reactivity import REACTS_AS, declared
 from chemicals.workshop.models import Membership
 from chemicals.workshop.permissions import require_writer
 from compliance.web.catalogue import Described, HazardLines, limit_words, sheet_mark
-from compliance.web.contents import CONTENT_COLUMNS, parts_of
 from compliance.web.door import page, show
 from compliance.web.export import Column, wanted_file
 from compliance.web.forms.register import (
@@ -85,18 +82,6 @@ SUBSTANCE_COLUMNS = (
     Column("ec number", lambda row: row.substance.ec_number),
     Column("inert", lambda row: "yes" if row.substance.inert else "no"),
 )
-
-
-@page()
-def index(request: HttpRequest, member: Membership) -> HttpResponseBase:
-    """List the products as they are known now."""
-    revisions = list_current_revisions_for(member)
-    contents = list_contents_for(member)
-    held = [(vessel, contents.get(vessel.pk)) for vessel in list_vessels_for(member, VesselKind.STOCK)]
-    file = wanted_file(request, products=(COLUMNS, lambda: revisions), stock=(CONTENT_COLUMNS, lambda: parts_of(held)))
-    today = timezone.localdate()
-    marked = [(revision, sheet_mark(revision, today, member.workshop)) for revision in revisions] if not file else []
-    return file or show(request, member, "web/register.html", here="register", revisions=marked, stocks=held)
 
 
 @page()
