@@ -180,7 +180,7 @@ EXAMPLES: dict[str, dict[str, Change]] = {
         "limit_amount_range": {"amount": -1},
     },
     "premises.KeepApart": {
-        "keep_apart_two_sorts_by_whom": lambda row: {"second": row.first},
+        "keep_apart_two_sorts_by_whom": {"first": ""},
         "keep_apart_reach": {"reach": "room"},
     },
     "premises.Assessment": {"assessment_place_or_shared": {"shared": "tray"}},
