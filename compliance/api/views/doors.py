@@ -33,8 +33,12 @@ class PreviewView(WorkshopView):
         data = build_input(self.verb, said)
         occurred = build_occurred(said.get("occurred_at"), self.member.workshop)
         found = preview(self.member, self.now, data, occurred)
-        whole = With(found.answer, echo=list(echo_amounts(data)), **_would_follow(found))
-        return self.respond(whole, vessels=name_vessels(self.member))
+        return self.respond(tell_preview(found, data), vessels=name_vessels(self.member))
+
+
+def tell_preview(found: Preview, data: Input) -> With:
+    """Return the answer with the amounts as understood, and what would follow."""
+    return With(found.answer, echo=list(echo_amounts(data)), **_would_follow(found))
 
 
 def _would_follow(found: Preview) -> dict[str, Any]:
