@@ -209,3 +209,12 @@ def test_today_lists_ten_and_asks_once_whatever_runs_out(
     assert len(running_out(visit)) == 10
     with django_assert_num_queries(1):
         assert len(list_running_out(visit.member, TODAY, 20)) == 12
+
+
+def test_from_today_to_all_that_is_over_and_on_to_changing_them(visit: Visitor, keep: Keep) -> None:
+    over, fresh_one = keep("Over", -1), keep("Fresh", 90)
+    found = text_of(visit.get("containers", query="?keeps=passed"))
+    assert f'href="{visit.address("containers")}?keeps=passed"' in text_of(visit.get("today"))
+    assert f'value="{over.code}"' in found
+    assert f'value="{fresh_one.code}"' not in found
+    assert f'action="{visit.address("change-containers")}"' in found

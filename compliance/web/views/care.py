@@ -69,5 +69,5 @@ def change_containers(request: HttpRequest, member: Membership) -> HttpResponse:
         template="web/change-containers.html",
         here="register",
         vessels=vessels,
-        back=address("register", member),
+        back=address("containers", member),
     )
