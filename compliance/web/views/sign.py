@@ -1,6 +1,7 @@
 """Signing in and out, the first start, setting a password, choosing a workshop, scanning a code."""
 
 from typing import Any
+from urllib.parse import urlencode
 
 from django.contrib import messages
 from django.contrib.auth import login
@@ -104,5 +105,15 @@ def scan(request: HttpRequest, code: str) -> HttpResponseBase:
 
 @signed_in()
 def find_code(request: HttpRequest) -> HttpResponse:
-    """Open the page of a typed code."""
-    return HttpResponseRedirect(reverse("scan", args=[tidy_code(request.GET.get("code", "")) or "-"]))
+    """Open the page of a typed or scanned code; look in the register for whatever is none here."""
+    assert isinstance(request.user, User)  # noqa: S101  (the door lets nobody else in)
+    typed = request.GET.get("code", "").strip()
+    code = tidy_code(typed.rpartition("/")[2])
+    owner = find_workshop_of_code(code)
+    mine = [member.workshop for member in list_memberships_of(request.user)]
+    if owner in mine or not typed:
+        return HttpResponseRedirect(reverse("scan", args=[code or "-"]))
+    here = [row for row in mine if str(row.uuid) == request.GET.get("workshop")] or mine
+    if not here:
+        return HttpResponseRedirect(reverse("scan", args=[code or "-"]))
+    return HttpResponseRedirect(f"{reverse('register', args=[here[0].uuid])}?{urlencode({'q': typed})}")
