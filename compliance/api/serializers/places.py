@@ -166,7 +166,3 @@ class ViolationsShape(Shape):
     """Everything that is wrong or not known of where things stand, the worst first."""
 
     violations = ViolationShape(many=True, help_text=_("One for each place, bund or duct and each line."))
-
-
-class NothingInput(Strict):
-    """An empty object: there is nothing to say."""

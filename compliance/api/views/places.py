@@ -9,6 +9,7 @@ from rest_framework.response import Response
 from chemicals.workshop.selectors import get_place_for
 from chemicals.workshop.services import change_place
 from compliance.api.serializers import places as shapes
+from compliance.api.serializers.waste import NothingInput
 from compliance.api.serializers.workshop import PlaceInput, PlaceShape
 from compliance.api.views.base import ListCreateView, Lookup, WorkshopView
 from compliance.premises import lines
@@ -121,7 +122,7 @@ class AssessmentsView(ListCreateView):
 class RemoveLimitView(WorkshopView):
     """Removes a limit: it no longer counts."""
 
-    shape, input_class, statuses = shapes.QuantityLimitShape, shapes.NothingInput, (200,)
+    shape, input_class, statuses = shapes.QuantityLimitShape, NothingInput, (200,)
 
     def post(self, request: Request, **kwargs: Any) -> Response:
         """Remove it, and return what it was."""
@@ -135,7 +136,7 @@ class RemoveLimitView(WorkshopView):
 class RemoveKeepApartView(WorkshopView):
     """Removes a line on what is kept apart: it no longer counts."""
 
-    shape, input_class, statuses = shapes.KeepApartShape, shapes.NothingInput, (200,)
+    shape, input_class, statuses = shapes.KeepApartShape, NothingInput, (200,)
 
     def post(self, request: Request, **kwargs: Any) -> Response:
         """Remove it, and return what it was."""
@@ -149,7 +150,7 @@ class RemoveKeepApartView(WorkshopView):
 class RemoveAssessmentView(WorkshopView):
     """Removes an assessment: what stands there is as wrong as before."""
 
-    shape, input_class, statuses = shapes.AssessmentShape, shapes.NothingInput, (200,)
+    shape, input_class, statuses = shapes.AssessmentShape, NothingInput, (200,)
 
     def post(self, request: Request, **kwargs: Any) -> Response:
         """Remove it, and return what it was."""
