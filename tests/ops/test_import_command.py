@@ -180,15 +180,15 @@ def new_places(tmp_path: Path) -> str:
 @pytest.mark.parametrize("name", ["register-invented.csv", "register-invented.xlsx"])
 def test_the_good_samples_of_the_register_go_in(shop: Workshop, new_places: str, name: str) -> None:
     told = register(shop, name, "--mapping", new_places, "--dry-run")
-    assert "5 rows, 4 products, 0 revisions, 6 containers, " in told
+    assert "5 rows, products: 4, revisions: 0, containers: 6, " in told
     assert 'row 4: "Sodium saccharin" is a new substance.' in told
     assert entries() == []
     told = register(shop, name, "--mapping", new_places)
-    assert told.startswith("4 products, 0 revisions, 6 containers, ")
+    assert told.startswith("products: 4, revisions: 0, containers: 6, ")
     assert told.endswith("Entries 1 to 6.\n")
     assert [entry.kind for entry in entries()] == ["receipt", "receipt", "opening", "opening", "opening", "opening"]
     assert verify_projection(shop) == []
-    assert register(shop, name, "--mapping", new_places).startswith("This file was imported before. 4 products")
+    assert register(shop, name, "--mapping", new_places).startswith("This file was imported before. products: 4")
 
 
 def test_the_bad_sample_of_the_register_is_refused_row_by_row(shop: Workshop) -> None:

@@ -15,6 +15,10 @@ from chemicals.science.quantity import Quantity
 State = Literal["new", "revised", "here"]
 
 
+KINDS = ("products", "revisions", "containers", "substances", "places")
+"""What a file makes, in the order in which it is told: a database may keep counts in another."""
+
+
 @dataclass(frozen=True)
 class Planned:
     """A product of the file: the revision that its rows speak of, first told in a row.
@@ -60,13 +64,8 @@ class Plan:
     def counts(self) -> dict[str, int]:
         """Return how many things of each kind it makes."""
         states = Counter(planned.state for planned in self.products)
-        return {
-            "products": states["new"],
-            "revisions": states["revised"],
-            "containers": len(self.containers),
-            "substances": len(self.substances),
-            "places": len(self.places),
-        }
+        others = (len(self.containers), len(self.substances), len(self.places))
+        return dict(zip(KINDS, (states["new"], states["revised"], *others), strict=True))
 
     def list_rows(self, most: int) -> list[tuple[int, Planned, list[Container]]]:
         """Return the first rows that say something new, each with its product and the containers that it names."""

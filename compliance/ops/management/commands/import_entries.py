@@ -15,7 +15,7 @@ from chemicals.ledger.selectors import get_recomputed_to
 from chemicals.process.importing.columns import ColumnMap, as_json, from_json
 from chemicals.process.importing.files import add_import, guess_map
 from chemicals.process.importing.reading import RowError
-from chemicals.process.importing.register.plan import RegisterUnderstood
+from chemicals.process.importing.register.plan import KINDS, RegisterUnderstood
 from chemicals.process.importing.table import open_table
 from chemicals.process.models import Subject
 from chemicals.workshop.errors import DomainError
@@ -92,8 +92,8 @@ class Command(BaseCommand):
 
 
 def tell_counts(counts: Mapping[str, int]) -> str:
-    """Return how many things of each kind a file of the register makes: "2 products, 0 revisions, 3 containers"."""
-    return ", ".join(f"{count} {kind}" for kind, count in counts.items())
+    """Return how many things of each kind a file of the register makes: "products: 2, revisions: 0, ..."."""
+    return ", ".join(f"{kind}: {counts[kind]}" for kind in KINDS)
 
 
 def find_member(workshop: UUID, email: str) -> Membership:
