@@ -156,8 +156,11 @@ class Instrument(models.Model):
             models.UniqueConstraint(fields=["workshop", "name"], name="instrument_name_once"),
             models.CheckConstraint(condition=models.Q(measures__in=list(MEASURED)), name="instrument_measures"),
             models.CheckConstraint(
-                condition=(models.Q(sd=None, sd_typed="") | models.Q(sd__gte=0))
-                & (models.Q(relative_sd=None, relative_typed="") | models.Q(relative_sd__gte=0)),
+                condition=(models.Q(sd=None, sd_typed="") | models.Q(sd__isnull=False, sd__gte=0))
+                & (
+                    models.Q(relative_sd=None, relative_typed="")
+                    | models.Q(relative_sd__isnull=False, relative_sd__gte=0)
+                ),
                 name="instrument_uncertainty_as_typed",
             ),
             models.CheckConstraint(

@@ -45,7 +45,7 @@ class Taken:
 
 def list_readings_of(member: Membership, vessel: Vessel, most: int = MOST) -> list[Taken]:
     """Return the readings of a vessel that were not cancelled, the latest first. Two queries."""
-    named = list_entries_naming(member, vessel.uuid).filter(kind__in=KINDS)
+    named = list_entries_naming(member, vessel.uuid).filter(kind__in=KINDS).select_related("workshop")
     rows = list(named.order_by("-occurred_at", "-sequence")[:most])
     cancelled = find_cancelled(rows)
     return [taken for row in rows if row.pk not in cancelled and (taken := _take(row, read_event(row))) is not None]

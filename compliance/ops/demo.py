@@ -24,6 +24,8 @@ from chemicals.process import setup
 from chemicals.process.counting.services import note_line, start_count
 from chemicals.process.importing.files import add_import, choose_columns, find_map, read_table
 from chemicals.process.inputs import INPUTS
+from chemicals.process.instruments import InstrumentInput, create_instrument
+from chemicals.process.levels import MarkInput, set_level_table
 from chemicals.register.services import LimitInput, LineInput, RevisionInput, create_product, create_substance
 from chemicals.science.quantity import parse
 from chemicals.workshop.errors import ConflictError
@@ -146,6 +148,7 @@ class Demo:
             "products": self.create_product,
             "vessels": self.create_vessel,
             "tanks": self.create_tank,
+            "instruments": self.create_instrument,
             "rack_types": self.create_rack_type,
             "routes": self.create_route,
             "streams": lambda row: waste.create_stream(actor=owner, stream=waste.StreamInput(**_tuples(row))),
@@ -217,7 +220,17 @@ class Demo:
         }
         shares = ("efficiency", "efficiency_sd", "rack_share")
         known |= {name: _base(row, name, "fraction") for name in shares if name in row}
-        return setup.create_tank(actor=self.owner, now=self.begins, tank=setup.TankInput(**known))
+        marks = [MarkInput(mark=mark, volume=parse(text, "volume").base) for mark, text in known.pop("levels", ())]
+        tank = setup.create_tank(actor=self.owner, now=self.begins, tank=setup.TankInput(**known))
+        set_level_table(actor=self.owner, now=self.begins, vessel=tank.vessel, marks=marks)
+        return tank
+
+    def create_instrument(self, row: Row) -> Any:
+        """Enter an instrument with its calibration."""
+        known = dict(row)
+        days = {"calibrated": "calibrated_on", "valid": "valid_until"}
+        dates = {days[name]: self.moment(f"{known.pop(name)} 00:00").date() for name in days if name in row}
+        return create_instrument(actor=self.owner, now=self.begins, instrument=InstrumentInput(**known, **dates))
 
     def create_rack_type(self, row: Row) -> Any:
         """Create a rack type."""

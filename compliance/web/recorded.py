@@ -127,6 +127,17 @@ class Teller:
         return self.ends.name(text)
 
 
+def tell_taken(event: events.Event, ends: Ends) -> list[Told]:
+    """Return what nobody typed of a reading: what it was taken for, and how sure its instrument is."""
+    is_baume = isinstance(event, events.DensityReading) and event.density.unit.endswith("degBe")
+    has_marks = isinstance(event, events.LevelReading) and event.marks
+    if not (isinstance(event, events.Reading) or is_baume or has_marks or getattr(event, "gauge", None)):
+        return []
+    teller = Teller(events.encode(event), ends)
+    names = [name for name in ("volume", "marks", "mass", "density", "result", "gauge") if name in teller.both]
+    return [line for name in names for line in teller.tell(name, teller.both[name])]
+
+
 def label_of(name: str, number: int | None = None) -> str:
     """Return what a field is called, with a number where there are several."""
     label = str(LABELS.get(name, name.replace("_", " ")))

@@ -156,6 +156,17 @@ EXAMPLES: dict[str, dict[str, Change]] = {
     },
     "process.RackType": {"rack_type_name_once": twice, "rack_type_drag_out_not_negative": {"drag_out": -1}},
     "process.Route": {"route_name_once": twice},
+    "process.Instrument": {
+        "instrument_name_once": twice,
+        "instrument_measures": {"name": "another", "measures": "luck"},
+        "instrument_uncertainty_as_typed": {"name": "another", "sd": None, "sd_typed": "0.1 L"},
+        "instrument_days_in_order": {"name": "another", "calibrated_on": "2026-02-01", "valid_until": "2026-01-01"},
+    },
+    "process.LevelMark": {
+        "level_mark_once": {"height": None},
+        "level_mark_height_once": {"mark": "another"},
+        "level_mark_not_negative": {"mark": "another", "height": None, "volume": -1},
+    },
     "process.RouteStep": {"route_position_once": twice},
     "process.Import": {
         "import_file_once": twice,

@@ -20,7 +20,7 @@ from compliance.documents.twin import symbol
 from compliance.web import words
 from compliance.web.forms.period import last_day_of
 from compliance.web.statement import Line
-from compliance.web.words.readings import FACT_NAMES, amount_of, quantity_name, uncertainty
+from compliance.web.words.readings import FACT_NAMES, amount_of, quantity_name
 
 register = template.Library()
 
@@ -151,7 +151,7 @@ def quantity(measures: str) -> str:
 @register.filter
 def doubt(instrument: Instrument) -> str:
     """Show how sure an instrument is; nothing where nobody said so."""
-    return uncertainty(instrument.sd, instrument.relative_sd, instrument.measures)
+    return " + ".join(filter(None, (instrument.sd_typed, instrument.relative_typed)))
 
 
 @register.filter

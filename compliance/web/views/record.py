@@ -19,6 +19,7 @@ from compliance.web.door import page, show
 from compliance.web.forms.base import hidden_pairs
 from compliance.web.forms.prefill import prefill
 from compliance.web.forms.record import RecordForm
+from compliance.web.recorded import tell_taken
 from compliance.web.views.acts import address
 
 SAVE, INCIDENT, BACK = "save", "incident", "back"
@@ -79,6 +80,7 @@ def _preview(request: HttpRequest, form: RecordForm, status: int = 200) -> HttpR
         "form": form,
         "answer": verdict.answer,
         "follows": words.Follows.of(folded.transfers, ends),
+        "taken": tell_taken(verdict.trial.event, ends),
         "findings": words.findings(folded.findings, ends),
         "pairs": hidden_pairs(request.POST, without=("csrfmiddlewaretoken", "step", "more")),
     }

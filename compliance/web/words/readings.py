@@ -78,11 +78,6 @@ def gauge_doubt(gauge: Gauge, measures: str) -> str:
     return ", ".join(filter(None, (" + ".join(_parts(gauge.sd, gauge.relative_sd, measures)), _calibrated(gauge))))
 
 
-def uncertainty(sd: int | None, relative_sd: int | None, measures: str) -> str:
-    """Return an uncertainty of its own and one as a share: "0.1 L + 1 %"; empty where none is known."""
-    return " + ".join(_parts(sd or 0, relative_sd or 0, measures))
-
-
 def _parts(sd: int, relative_sd: int, measures: str) -> Iterator[str]:
     doubt = MEASURED[measures].doubt
     if sd and doubt is not None:
