@@ -104,8 +104,8 @@ def list_standing_for(
     """Return every vessel of the member's workshop, or those named, by name. Eight queries.
 
     What is gone stands nowhere, unless it is named, or holds something by the books: that must not be hidden. With
-    ``brief`` no more of a vessel is read than by which name and code it stands where, and what it is for: three times
-    as fast, for one query more.
+    ``brief`` no more of a vessel is read than by which name and code it stands where, and what it is for: faster with
+    many vessels, for one query more.
     """
     with scope(workshop=member.workshop):
         rows = list_vessels_for(member)
