@@ -207,7 +207,7 @@ LISTS = {
     "rack-types/": (add_rack_type, 1), "routes/": (add_route, 2), "entries/": (add_entry, 3),
     "waste-streams/": (add_stream, 1), "waste-containers/": (add_container, 2), "receivers/": (add_receiver, 1),
     "drop-offs/": (add_drop_off, 2), "periods/": (add_period, 1), "papers/": (add_paper, 1),
-    "imports/": (add_import, 1), "vessels/{stock}/changes/": (add_change, 3),
+    "containers/": (add_vessel, 10), "imports/": (add_import, 1), "vessels/{stock}/changes/": (add_change, 3),
 }  # fmt: skip
 """How to add one row to each list, and how many queries its page takes besides the one that reads the token."""
 
