@@ -33,7 +33,10 @@ class InstrumentShape(Shape):
         allow_null=True, help_text=_("Until when that is valid: later readings come with a caution.")
     )
     picture = serializers.CharField(
-        source="picture.sha256", default=None, help_text=_("SHA-256 of its picture; null where there is none.")
+        source="picture.sha256",
+        default=None,
+        allow_null=True,
+        help_text=_("SHA-256 of its picture; null where there is none."),
     )
     retired = serializers.BooleanField(help_text=_("True if it is not offered any more."))
     changed_at = serializers.DateTimeField(help_text=_("When this was entered."))
