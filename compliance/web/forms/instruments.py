@@ -117,8 +117,8 @@ class LevelTableForm(WebForm):
         super().__init__(data, initial_rows=initial)
         text = _("A height such as 32 cm, or the name of a mark. Clear a row to take it away.")
         hot = _("If the tank is read at its working temperature: which volume it is once it has cooled to 20 °C.")
-        self.add_rows(Rows("cold", _("Row"), text, partial(MarkRow), blank=4))
-        self.add_rows(Rows("warm", _("Row, read hot"), hot, partial(MarkRow), blank=2))
+        self.add_rows(Rows("cold", _("Cold row"), text, partial(MarkRow), blank=4))
+        self.add_rows(Rows("warm", _("Hot row"), hot, partial(MarkRow), blank=2))
 
     def to_marks(self) -> list[MarkInput]:
         """Return the rows of both tables, the cold ones first."""

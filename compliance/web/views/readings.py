@@ -15,6 +15,7 @@ from chemicals.workshop.models import Membership
 from compliance.web.door import page, show
 from compliance.web.export import Column, wanted_file
 from compliance.web.reading_plot import draw_readings
+from compliance.web.words import verb_of
 from compliance.web.words.readings import amount_of
 
 WIDE, NARROW = (1060, 340), (350, 280)
@@ -49,6 +50,8 @@ def index(request: HttpRequest, member: Membership, uuid: UUID) -> HttpResponseB
         vessel=vessel,
         quantities=find_last_of_each(everything),
         chosen=rows[0] if chosen[0] and rows else None,
+        verb=verb_of(rows[0].entry.kind) if rows else "",
+        again=urlencode({"quantity": chosen[0], "shows": rows[0].shows}) if rows else "",
         kept=kept,
         rows=rows,
         now=timezone.now(),
