@@ -7,7 +7,7 @@ from uuid import UUID
 
 from django.db.models import QuerySet
 
-from chemicals.books.events import DaySheet, Event, Run
+from chemicals.books.events import DaySheet, Run
 from chemicals.books.occurred import Occurred
 from chemicals.journal.models import Entry
 from chemicals.journal.selectors import list_unanswered_for, read_event
@@ -95,7 +95,6 @@ def list_sheets_of_days(member: Membership, first: date, last: date) -> dict[dat
     return {day: entries for day, entries in found.items() if first <= day <= last}
 
 
-def find_latest_run(member: Membership) -> tuple[Entry, Event] | None:
+def find_latest_run(member: Membership) -> Entry | None:
     """Return the run that was recorded last and not cancelled. One query."""
-    entry = list_unanswered_for(member, Run.KIND).first()
-    return None if entry is None else (entry, read_event(entry))
+    return list_unanswered_for(member, Run.KIND).first()

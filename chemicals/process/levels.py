@@ -37,6 +37,15 @@ def list_level_marks(vessel: Vessel) -> list[LevelMark]:
         return sorted(rows, key=lambda mark: (mark.hot, mark.volume, mark.height or 0))
 
 
+def list_marks_by_vessel(member: Membership) -> dict[int, list[str]]:
+    """Return the heights and marks of every level table of the member's workshop, by the vessel's key. One query."""
+    found: dict[int, list[str]] = {}
+    with scope(workshop=member.workshop):
+        for vessel, mark in LevelMark.objects.order_by("volume").values_list("vessel_id", "mark"):
+            found.setdefault(vessel, []).append(mark)
+    return found
+
+
 def has_level_tables(member: Membership) -> bool:
     """Say whether any tank of the member's workshop has a level table. One query."""
     with scope(workshop=member.workshop):

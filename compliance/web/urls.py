@@ -4,6 +4,7 @@ from django.urls import path
 
 from compliance.web.views import (
     balance,
+    bench,
     calculations,
     care,
     counting,
@@ -96,6 +97,11 @@ urlpatterns = [
     path(W + "count/<uuid:uuid>/lines/<uuid:line>/back/", counting.take_back, name="take-line-back"),
     path(W + "labels/", premises.labels, name="labels"),
     path(W + "emergency/", premises.emergency, name="emergency"),
+    path(W + "bench/", bench.bench, name="bench"),
+    path(W + "bench/morning/", bench.morning, name="morning"),
+    path(W + "bench/day/", bench.day, name="day-sheet"),
+    path(W + "bench/week/", bench.week, name="week-sheet"),
+    path(W + "bench/week/paper/", bench.week_paper, name="week-paper"),
     path(W + "record/<slug:verb>/", record.record_page, name="record"),
     path(W + "entries/", entries.index, name="entries"),
     path(W + "entries/<uuid:uuid>/", entries.entry, name="entry"),
