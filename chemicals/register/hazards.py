@@ -22,15 +22,15 @@ def check_hazards(
 ) -> Iterator[FieldError]:
     """Yield what is wrong with classes, signal word, pictograms, statements, and what a thing reacts as."""
     unknown_classes = [kind for kind in hazard_classes if find_class(kind) is None]
-    for field, values, allowed in (
-        ("signal_word", (signal_word,), SIGNAL_WORDS),
-        ("pictograms", pictograms, PICTOGRAMS),
-        ("hazard_classes", unknown_classes, ()),
-        ("reactivity", reactivity, tuple(REACTS_AS)),
+    for field, values, allowed, remedy in (
+        ("signal_word", (signal_word,), SIGNAL_WORDS, f"Write one of: {', '.join(filter(None, SIGNAL_WORDS))}."),
+        ("pictograms", pictograms, PICTOGRAMS, f"Write some of: {', '.join(PICTOGRAMS)}."),
+        ("hazard_classes", unknown_classes, (), "Write class and category as the sheet does, like Skin Corr. 1A."),
+        ("reactivity", reactivity, tuple(REACTS_AS), f"Write some of: {', '.join(REACTS_AS)}."),
     ):
         unknown = sorted(set(values) - set(allowed))
         if unknown:
-            yield FieldError(field, f"Unknown: {', '.join(unknown)}. Choose from the list.")
+            yield FieldError(field, f"Unknown: {', '.join(unknown)}. {remedy}")
     if NOTHING in reactivity and len(set(reactivity)) > 1:
         yield FieldError("reactivity", "It reacts as nothing on the list, or as what you chose: not both.")
     yield from _check_statements(statements)

@@ -12,6 +12,7 @@ from chemicals.science.ghs import Contradiction, find_contradictions
 from chemicals.science.identity import PACKING_GROUPS
 from chemicals.workshop.models import Membership, Workshop
 from chemicals.workshop.searched import Searched
+from chemicals.workshop.texts import searchable
 
 MOST_PH = 14_000
 """The highest pH that a sheet's floor may have, in thousandths."""
@@ -45,12 +46,16 @@ class Substance(Searched):
 
 
 class Product(Searched):
-    """What is bought. Everything that may change stands in its revisions."""
+    """What is bought. Everything that may change stands in its revisions.
+
+    ``made_of`` is the searched text of the substances of the current one.
+    """
 
     uuid = models.UUIDField(default=uuid.uuid4, unique=True, editable=False)
     workshop = models.ForeignKey(Workshop, on_delete=models.PROTECT, related_name="products")
     name = models.CharField(_("name"), max_length=120)
     supplier = models.CharField(_("supplier"), max_length=120, blank=True)
+    made_of = models.TextField(editable=False, blank=True, default="")
 
     objects: "models.Manager[Product]" = ScopedManager(workshop="workshop")
 
@@ -62,6 +67,10 @@ class Product(Searched):
 
     def search_texts(self) -> Iterable[str]:
         return (self.name, self.supplier)
+
+    def note_made_of(self, substances: Iterable[Substance]) -> None:
+        """Bring the searched text of its composition up to date; whoever calls this saves the row."""
+        self.made_of = searchable(*(text for each in substances for text in each.search_texts()))
 
 
 class Form(models.TextChoices):

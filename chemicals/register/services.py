@@ -4,6 +4,7 @@ from collections.abc import Sequence
 from datetime import datetime
 
 from django.db import transaction
+from django.db.models import Exists, OuterRef
 from django_scopes import scope
 
 from chemicals.journal import services as journal
@@ -74,7 +75,19 @@ def change_substance(
             errors.append(FieldError(field, "A composition relies on this. Add another substance, revise the product."))
         _finish(row, errors)
         row.save()
+        _note_where_used(row)
     return row
+
+
+def _note_where_used(substance: Substance) -> None:
+    """Let the products that are made of a substance now be found by what it is called now."""
+    newer = ProductRevision.objects.filter(product=OuterRef("product"), number__gt=OuterRef("number"))
+    current = ProductRevision.objects.filter(~Exists(newer), lines__substance=substance).select_related("product")
+    products = []
+    for revision in current.prefetch_related("lines__substance"):
+        revision.product.note_made_of(line.substance for line in revision.lines.all())
+        products.append(revision.product)
+    Product.objects.bulk_update(products, ["made_of"], batch_size=500)
 
 
 def _finish(substance: Substance, errors: list[FieldError]) -> None:
@@ -164,5 +177,7 @@ def _write_revision(
     for limit in checked.limits:
         limit.revision = revision
     CompositionLine.objects.bulk_create(checked.lines)
+    product.note_made_of(line.substance for line in checked.lines)
+    product.save(update_fields=["made_of"])
     ExposureLimit.objects.bulk_create(checked.limits)
     return revision

@@ -28,10 +28,14 @@ def write_catalogue(
     for row in (*substances, *products):
         row.note_searched()
     for checked in revisions:
+        checked.revision.product.note_made_of(line.substance for line in checked.lines)
+    for checked in revisions:
         checked.revision.created_at, checked.revision.created_by = now, actor
     with transaction.atomic(), scope(workshop=actor.workshop):
         Substance.objects.bulk_create(substances, batch_size=BATCH)
+        known = [each.revision.product for each in revisions if each.revision.product.pk is not None]
         Product.objects.bulk_create(products, batch_size=BATCH)
+        Product.objects.bulk_update(known, ["made_of"], batch_size=BATCH)
         ProductRevision.objects.bulk_create([each.revision for each in revisions], batch_size=BATCH)
         for checked in revisions:
             for line in checked.lines:

@@ -2,7 +2,7 @@
 
 Every word typed must stand somewhere in the product, in a substance of its current composition, or in one of its
 containers or that one's place; without case and accents (`workshop.texts.searchable`). Words are looked for in the
-database by LIKE, one subquery for each room; no list of identifiers goes back and forth.
+database by LIKE, in a few columns of text that are kept for it; no list of identifiers goes back and forth.
 """
 
 from collections.abc import Iterable, Sequence
@@ -12,7 +12,7 @@ from functools import reduce
 from operator import or_
 from typing import Any
 
-from django.db.models import Case, Count, Exists, F, IntegerField, OuterRef, Q, QuerySet, TextField, Value, When, Window
+from django.db.models import Case, Count, F, IntegerField, Q, QuerySet, TextField, Value, When, Window
 from django.db.models.functions import Cast, RowNumber
 from django.db.models.lookups import Contains
 from django_scopes import scope
@@ -20,7 +20,7 @@ from django_scopes import scope
 from chemicals.ledger.codes import tidy_code
 from chemicals.ledger.models import Vessel, VesselKind
 from chemicals.ledger.selectors import Contents, list_contents_for, list_vessels_for
-from chemicals.register.models import CompositionLine, Product, ProductRevision, Substance
+from chemicals.register.models import Product, ProductRevision
 from chemicals.register.selectors import list_current_revisions_for, list_products_for
 from chemicals.register.sheets import first_fine_day
 from chemicals.workshop.models import Membership
@@ -75,7 +75,7 @@ def find_products(member: Membership, wanted: Wanted, today: date) -> QuerySet[P
         begins = _any(Q(searched__startswith=word) for word in words)
         there = {word: Q(pk__in=_products_of(containers.filter(_stands_there(word)))) for word in words}
         rows = rows.filter(
-            code | Q(*(Q(searched__contains=word) | there[word] | Q(pk__in=_made_of(word)) for word in words))
+            code | Q(*(Q(searched__contains=word) | Q(made_of__contains=word) | there[word] for word in words))
         )
         return rows.order_by(_rank(code, begins), "name", "supplier")
 
@@ -191,17 +191,6 @@ def _current(member: Membership) -> QuerySet[ProductRevision]:
     return list_current_revisions_for(member).order_by()
 
 
-def _made_of(word: str) -> QuerySet[CompositionLine, Any]:
-    """Return the products in whose current composition a substance is known by a word."""
-    newer = ProductRevision.objects.filter(
-        product=OuterRef("revision__product"), number__gt=OuterRef("revision__number")
-    )
-    lines = CompositionLine.objects.filter(
-        ~Exists(newer), substance__in=Substance.objects.filter(searched__contains=word)
-    )
-    return lines.values("revision__product")
-
-
 def _products_of(containers: QuerySet[Vessel]) -> QuerySet[Vessel, Any]:
     """Return the products of which containers are, to stand inside another query."""
     return containers.exclude(product=None).values("product")
@@ -214,7 +203,7 @@ def _stands_there(word: str) -> Q:
 
 def _is_of(word: str) -> Q:
     """Return that a word stands in a container's product, or in a substance of it."""
-    return Q(product__searched__contains=word) | Q(product__in=_made_of(word))
+    return Q(product__searched__contains=word) | Q(product__made_of__contains=word)
 
 
 def _words(wanted: Wanted) -> list[str]:

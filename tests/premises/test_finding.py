@@ -9,7 +9,14 @@ from django.test import Client
 from django.urls import reverse
 
 from chemicals.ledger.care import CareInput, change_vessels
-from chemicals.register.services import LineInput, RevisionInput, create_substance, revise_product
+from chemicals.register.selectors import get_current_revision
+from chemicals.register.services import (
+    LineInput,
+    RevisionInput,
+    change_substance,
+    create_substance,
+    revise_product,
+)
 from chemicals.register.sheets import first_fine_day, is_old
 from compliance.premises.filters import Wanted
 from compliance.premises.finding import find_containers, find_products, list_keys, tell_products
@@ -56,6 +63,13 @@ def test_a_substance_of_an_earlier_revision_is_not_found(found: Found, filled: S
     revise_product(actor=filled.member, now=filled.now, product=product, revision=known)
     assert found("h2so4") == ([], [])
     assert found("saure") == found("7647-01-0") == (["Sulfuric acid"], ["Acid bottle"])
+
+
+def test_a_product_is_found_by_what_its_substance_is_called_now(found: Found, filled: Shop) -> None:
+    line = get_current_revision(product_of(filled, "Sulfuric acid")).lines.get()
+    said = {"name": "Oil of vitriol", "formula": line.substance.formula, "synonyms": ["Schwefelsäure"]}
+    change_substance(actor=filled.member, substance=line.substance, **said)
+    assert found("schwefel") == found("vitriol") == (["Sulfuric acid"], ["Acid bottle"])
 
 
 def test_filters_take_all_that_fits(found: Found, filled: Shop) -> None:
