@@ -201,6 +201,41 @@ def add_change(api: Caller, shop: Shop, number: int) -> None:
     api.post(f"vessels/{shop.stock.uuid}/care", {"expires_on": f"2027-01-0{number + 1}"})
 
 
+def add_count_day(api: Caller, shop: Shop, number: int) -> None:
+    day = api.post("count-days/", {"place": str(shop.place.uuid)}).json()["uuid"]
+    api.post(f"count-days/{day}/lines/", {"code": shop.stock.code, "said": "missing"})
+    api.post(f"count-days/{day}/abandon")
+
+
+def add_line(api: Caller, shop: Shop, number: int) -> None:
+    days = api.get("count-days/").json()["results"] or [api.post("count-days/", {}).json()]
+    api.post(f"count-days/{days[0]['uuid']}/lines/", {"code": shop.stock.code, "said": "missing"})
+
+
+def add_limit(api: Caller, shop: Shop, number: int) -> None:
+    said = {"place": str(shop.place.uuid), "sort": "everything", "amount": f"{number + 1} L"}
+    api.post("limits/", {**said, "citation": "house rule", "checked_on": "2026-03-01"})
+
+
+PAIRS = [("acid", "cyanide"), ("acid", "hypochlorite"), ("acid", "sulfide")]
+
+
+def add_apart(api: Caller, shop: Shop, number: int) -> None:
+    first, second = (f"reacts as: {kind}" for kind in PAIRS[number])
+    said = {"first": first, "second": second, "reach": "place"}
+    api.post("keep-apart/", {**said, "citation": "house rule", "checked_on": "2026-03-01"})
+
+
+def add_assessment(api: Caller, shop: Shop, number: int) -> None:
+    first, second = (f"reacts as: {kind}" for kind in PAIRS[number])
+    said = {"first": first, "second": second, "reach": "place", "place": str(shop.place.uuid)}
+    api.post("assessments/", {**said, "assessed_by": "Olga", "until": "2026-12-31", "reason": "Two cupboards."})
+
+
+def add_instrument(api: Caller, shop: Shop, number: int) -> None:
+    api.post("instruments/", {"name": f"Rod {number}", "measures": "level", "sd": "0.1 L"})
+
+
 LISTS = {
     "places/": (add_place, 1), "substances/": (add_substance, 1), "products/": (add_product, 3),
     "products/{product}/revisions/": (add_revision, 5), "vessels/": (add_vessel, 1), "tanks/": (add_tank, 1),
@@ -208,6 +243,8 @@ LISTS = {
     "waste-streams/": (add_stream, 1), "waste-containers/": (add_container, 2), "receivers/": (add_receiver, 1),
     "drop-offs/": (add_drop_off, 2), "periods/": (add_period, 1), "papers/": (add_paper, 1),
     "containers/": (add_vessel, 10), "imports/": (add_import, 1), "vessels/{stock}/changes/": (add_change, 3),
+    "count-days/": (add_count_day, 1), "count-days/{day}/lines/": (add_line, 2), "limits/": (add_limit, 1),
+    "keep-apart/": (add_apart, 1), "assessments/": (add_assessment, 1), "instruments/": (add_instrument, 1),
 }  # fmt: skip
 """How to add one row to each list, and how many queries its page takes besides the one that reads the token."""
 
@@ -217,8 +254,9 @@ def test_a_page_takes_as_many_queries_for_one_row_as_for_three(
     address: str, api: Caller, shop: Shop, django_assert_num_queries: Asserts
 ) -> None:
     add, count = LISTS[address]
-    path = address.format(product=shop.product.uuid, stock=shop.stock.uuid)
     add(api, shop, 0)
+    (day,) = [row["uuid"] for row in api.get("count-days/").json()["results"]] or [None]
+    path = address.format(product=shop.product.uuid, stock=shop.stock.uuid, day=day)
     before = len(api.get(path).json()["results"])
     with django_assert_num_queries(count + 1):
         api.get(path)
