@@ -177,7 +177,6 @@ class Proof:
             if now.vessels.get(vessel) != state.vessels.get(vessel):
                 yield Problem(None, f"What was poured into vessel {vessel} is not what the entries say.")
 
-
     def _compare_gone(self) -> Iterator[Problem]:
         """Yield what was handed over and is said to be here, or gone since another moment, or the reverse."""
         told = gone.tell()

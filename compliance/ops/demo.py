@@ -229,7 +229,9 @@ class Demo:
         """Enter an instrument with its calibration."""
         known = dict(row)
         days = {"calibrated": "calibrated_on", "valid": "valid_until"}
-        dates = {days[name]: self.moment(f"{known.pop(name)} 00:00").date() for name in days if name in row}
+        dates: dict[str, Any] = {
+            days[name]: self.moment(f"{known.pop(name)} 00:00").date() for name in days if name in row
+        }
         return create_instrument(actor=self.owner, now=self.begins, instrument=InstrumentInput(**known, **dates))
 
     def create_rack_type(self, row: Row) -> Any:

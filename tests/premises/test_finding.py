@@ -67,8 +67,8 @@ def test_a_substance_of_an_earlier_revision_is_not_found(found: Found, filled: S
 
 def test_a_product_is_found_by_what_its_substance_is_called_now(found: Found, filled: Shop) -> None:
     line = get_current_revision(product_of(filled, "Sulfuric acid")).lines.get()
-    said = {"name": "Oil of vitriol", "formula": line.substance.formula, "synonyms": ["Schwefelsäure"]}
-    change_substance(actor=filled.member, substance=line.substance, **said)
+    said: dict[str, Any] = {"formula": line.substance.formula, "synonyms": ["Schwefelsäure"]}
+    change_substance(actor=filled.member, substance=line.substance, name="Oil of vitriol", **said)
     assert found("schwefel") == found("vitriol") == (["Sulfuric acid"], ["Acid bottle"])
 
 
