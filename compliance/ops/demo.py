@@ -232,7 +232,7 @@ class Demo:
         dates: dict[str, Any] = {
             days[name]: self.moment(f"{known.pop(name)} 00:00").date() for name in days if name in row
         }
-        return create_instrument(actor=self.owner, now=self.begins, instrument=InstrumentInput(**known, **dates))
+        return create_instrument(actor=self.owner, now=self.begins, instrument=InstrumentInput(**{**known, **dates}))
 
     def create_rack_type(self, row: Row) -> Any:
         """Create a rack type."""

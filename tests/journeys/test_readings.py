@@ -74,6 +74,7 @@ def test_a_level_is_read_as_a_height(demo: People, visit: Callable[..., Visitor]
     page.get_by_role("button", name="See what follows").click()
     page.get_by_text("39 cm = 18.72 ± 0.25 L").wait_for()
     look(visitor, pictures, "level-preview")
+    assert "30 cm: 14.4 L, 40 cm: 19.2 L" in page.inner_text("main")
 
 
 def test_tables_and_set_up_on_both_screens(demo: People, visit: Callable[..., Visitor], pictures: Path | None) -> None:
