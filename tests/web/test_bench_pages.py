@@ -161,7 +161,7 @@ def grow(owner: Membership, now: datetime, filled: Line, say: Say) -> Callable[[
 
 
 @pytest.mark.parametrize(
-    ("name", "queries"), [("day-sheet", 8), ("morning", 7), ("week-sheet", 9), ("week-paper", 8), ("bench", 10)]
+    ("name", "queries"), [("day-sheet", 8), ("morning", 7), ("week-sheet", 9), ("week-paper", 8), ("bench", 6)]
 )
 def test_the_queries_do_not_grow_with_routes_baths_and_sheets(
     visit: Visitor, grow: Callable[[int], None], django_assert_num_queries: Num, name: str, queries: int

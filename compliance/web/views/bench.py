@@ -15,7 +15,7 @@ from chemicals.journal.models import Attachment
 from chemicals.journal.selectors import get_attachment_for
 from chemicals.ledger.selectors import list_vessels_for
 from chemicals.process.counting.selectors import list_open_counts_for
-from chemicals.process.day_sheets import find_latest_run, read_day_grid
+from chemicals.process.day_sheets import find_latest_run, list_standing_sheets, read_day_grid
 from chemicals.process.inputs import INPUTS
 from chemicals.workshop.errors import ConflictError, InvalidInputError, NotFoundError
 from chemicals.workshop.models import Membership
@@ -48,7 +48,7 @@ def bench(request: HttpRequest, member: Membership) -> HttpResponse:
         "web/bench.html",
         here="today",
         verbs=[(verb, INPUTS[verb].title) for verb in AT_THE_BENCH],
-        last=read_day_grid(member).last,
+        last=list_standing_sheets(member).first(),
         last_run=find_latest_run(member),
         counts=list_open_counts_for(member),
     )
