@@ -20,7 +20,7 @@ from chemicals.workshop.permissions import require_writer
 from compliance.clearance.selectors import Preview, preview
 from compliance.clearance.services import RefusedError, record
 
-MOST_TOGETHER = 60
+MOST_TOGETHER = 120
 """Records of one act: each late one folds the books again from its day on."""
 T = TypeVar("T")
 

@@ -1,7 +1,7 @@
 """The day sheet as a grid: of one day, and of seven."""
 
 from collections.abc import Iterator, Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from datetime import date, timedelta
 from typing import Any
 from uuid import UUID
@@ -147,7 +147,7 @@ class DayForm(SheetForm):
             return []
         sheets = list_sheets_of_days(self.member, day, day).get(day, [])
         fields = {**part.fields, "occurred_at": "other_day"}
-        return [Part(part.title, part.said, [(_("Day"), part.title), *part.understood], fields, self.note(sheets))]
+        return [replace(part, fields=fields, notes=self.note(sheets))]
 
 
 @dataclass(frozen=True)
@@ -200,5 +200,5 @@ class WeekForm(SheetForm):
             part = sheet.to_part(day.isoformat(), said, when=Occurred.on_day(day, zone), files=files)
             if part is not None:
                 notes = self.note(self.recorded.get(day, []))
-                found.append(Part(part.title, part.said, part.understood, part.fields, notes))
+                found.append(replace(part, notes=notes))
         return found

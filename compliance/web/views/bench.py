@@ -11,6 +11,7 @@ from django.utils import timezone
 from django.utils.translation import gettext as _
 from django.utils.translation import ngettext
 
+from chemicals.books.events import LevelReading
 from chemicals.journal.models import Attachment
 from chemicals.journal.selectors import get_attachment_for
 from chemicals.ledger.selectors import list_vessels_for
@@ -195,7 +196,7 @@ def _preview(request: HttpRequest, form: GridForm, heading: str, status: int = 2
             part,
             words.Follows.of(each.trial.folded.transfers, ends),
             words.findings(each.trial.folded.findings, ends),
-            tell_taken(each.trial.event, ends),
+            tell_taken(each.trial.event, ends) if isinstance(each.trial.event, LevelReading) else [],
         )
         for part, each in zip(parts, found, strict=True)
     ]
