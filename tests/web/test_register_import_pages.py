@@ -116,7 +116,7 @@ def test_a_large_file_is_left_to_a_job(visit: Visitor, line: Line, monkeypatch: 
 
 
 def test_the_example_holds_every_column_and_can_be_imported(visit: Visitor, line: Line) -> None:
-    data = b"".join(visit.get("import-example").streaming_content)
+    data: bytes = visit.get("import-example").content
     found = uploaded(visit, data, "example.csv")
     page = visit.get("import", found.uuid)
     fields = columns_of(page.content.decode())
