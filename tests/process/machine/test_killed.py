@@ -18,6 +18,7 @@ from chemicals.ledger.models import Books, Vessel
 from chemicals.ledger.periods import close_period, reopen_period
 from chemicals.register.models import Product
 from chemicals.science.quantity import parse
+from compliance.clearance import together
 from compliance.clearance.receiving import JarInput, NewProductInput, receive_containers
 from compliance.clearance.services import record
 from tests.ledger.closing import BEGUN
@@ -152,6 +153,18 @@ def test_jars_come_in_with_a_new_product(office: Office) -> None:
         office.books.prove()
         assert Vessel.objects.filter(product__name="Brightener").count() == 2
         assert Product.objects.filter(name="Brightener").count() == 1
+
+
+def test_several_records_are_one_act(office: Office) -> None:
+    plate(office)
+    moves = (a_move(office, days_ago=7.5), a_move(office))
+    both = [together.Said(data=move.data, occurred=move.occurred, already_happened=True) for move in moves]
+    acts = {"actor": office.worker, "now": office.now, "key": KEY, "said": both}
+    assert kill_everywhere(office, together.record_all, acts) > 10
+    with scope(workshop=office.workshop):
+        office.books.doubtful |= {entry.uuid for entry in Entry.objects.order_by("-sequence")[:2]}
+        office.books.prove()
+        assert Entry.objects.filter(kind="move").count() == 2
 
 
 def test_a_file_is_kept(office: Office) -> None:
