@@ -125,7 +125,7 @@ def load(containers: Sequence[ManifestContainerData]) -> str:
     """The headline over the containers: how many, how heavy."""
     total = total_gross(containers)
     count = len(containers)
-    if any("note" in each for each in containers):
+    if _has_stock(containers):
         text = ngettext(
             "The load: %(count)d container, gross %(total)s", "The load: %(count)d containers, gross %(total)s", count
         )
@@ -139,18 +139,19 @@ def load(containers: Sequence[ManifestContainerData]) -> str:
 
 
 def never_together(containers: Sequence[ManifestContainerData]) -> list[tuple[str, str]]:
-    """Each thing that must not be met, with the waste containers that must not meet it."""
+    """Each thing that must not be met, with the containers that must not meet it."""
     found: dict[str, list[str]] = {}
     for container in containers:
         for other in container["must_not_meet"]:
             found.setdefault(other, []).append(container["code"])
-    return [(other, _which(codes, len(containers))) for other, codes in found.items()]
+    every = _("all %d containers") if _has_stock(containers) else _("all %d waste containers")
+    total = len(containers)
+    return [(other, every % total if len(codes) == total > 3 else ", ".join(codes)) for other, codes in found.items()]
 
 
-def _which(codes: list[str], total: int) -> str:
-    if len(codes) == total > 3:
-        return _("all %d waste containers") % total
-    return ", ".join(codes)
+def _has_stock(containers: Sequence[ManifestContainerData]) -> bool:
+    """Say whether a load has stock containers in it, which are told by a note, and not waste alone."""
+    return any("note" in each for each in containers)
 
 
 def mode(mode: Literal["brought", "picked up"]) -> str:

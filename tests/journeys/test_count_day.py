@@ -44,6 +44,7 @@ def test_three_containers_are_counted(
 
     visitor.sign_in(*demo["worker"])
     page.get_by_role("link", name="Register").click()
+    page.get_by_text("More of the register").click()
     page.get_by_role("link", name="Count days").click()
     look("counts")
     page.get_by_label("Where").select_option("Cupboard")

@@ -70,6 +70,7 @@ def test_an_owner_hangs_up_the_emergency_sheet_and_lists_the_chemicals(
     look(visitor)
     visitor.page.go_back()
     visitor.page.get_by_role("link", name="Register", exact=True).click()
+    visitor.page.get_by_text("More of the register").click()
     visitor.page.get_by_role("link", name="List of chemicals").click()
     look(visitor)
     visitor.page.get_by_role("link", name="Choose another rule").click()

@@ -25,6 +25,7 @@ def test_a_spreadsheet_becomes_the_register(
 
     visitor.sign_in(*demo["worker"])
     page.get_by_role("navigation").get_by_role("link", name="Register").first.click()
+    page.get_by_text("More of the register").click()
     page.get_by_role("link", name="Import", exact=True).click()
     page.get_by_label("File").set_input_files(SAMPLES / "register-mistakes-invented.csv")
     page.get_by_role("button", name="Look at the file").click()
