@@ -99,10 +99,12 @@ def list_standing_for(
     member: Membership,
     vessels: Iterable[UUID] | None = None,
     *,
+    near: Iterable[Place] | None = None,
     brief: bool = False,
 ) -> list[Standing]:
-    """Return every vessel of the member's workshop, or those named, by name. Eight queries.
+    """Return every vessel of the member's workshop, or those named, or near some places, by name. Eight queries.
 
+    Near is what shares the place, its bund or its exhaust duct.
     What is gone stands nowhere, unless it is named, or holds something by the books: that must not be hidden. With
     ``brief`` no more of a vessel is read than by which name and code it stands where, and what it is for: faster with
     many vessels, for one query more.
@@ -113,14 +115,15 @@ def list_standing_for(
             rows = rows.filter(uuid__in=list(vessels))
         else:
             something = Holding.objects.filter(Q(amount=None) | Q(amount__gt=0), vessel=OuterRef("pk"))
-            rows = rows.filter(Q(gone_at=None) | Exists(something))
+            rows = rows.filter(Q(gone_at=None) | Exists(something), Q() if near is None else _is_near(near))
         found = list(rows.select_related(None).only(*BRIEF) if brief else rows)
         poured = dict(Memory.objects.filter(vessel__in=rows.order_by()).values_list("vessel_id", "poured"))
         revisions = _read_revisions(rows, poured)
         tanks = {tank.vessel_id: tank for tank in list_tanks_for(member).filter(vessel__in=rows.order_by())}
         if brief:
             _join(found, {place.pk: place for place in list_places_for(member)}, revisions)
-    contents = list_contents_for(member, None if vessels is None else [vessel.pk for vessel in found])
+    everything = vessels is None and near is None
+    contents = list_contents_for(member, None if everything else [vessel.pk for vessel in found])
     streams = _read_streams(member)
     return [
         Standing(
@@ -133,6 +136,15 @@ def list_standing_for(
         )
         for vessel in found
     ]
+
+
+def _is_near(places: Iterable[Place]) -> Q:
+    """Return the condition of sharing one of the places, its bund or its exhaust duct."""
+    listed = list(places)
+    bunds = {place.bund for place in listed} - {""}
+    ducts = {place.exhaust_duct for place in listed} - {""}
+    shares = Q(place__bund__in=bunds) | Q(place__exhaust_duct__in=ducts)
+    return Q(place__in=[place.pk for place in listed]) | shares
 
 
 def _join(vessels: Iterable[Vessel], places: Mapping[int, Place], revisions: "_Revisions") -> None:

@@ -1,12 +1,16 @@
 """The sentences about what stands together and must not, and about limits of places."""
 
 from collections.abc import Callable, Iterator, Sequence
+from typing import cast
 
 from django.utils.translation import gettext as _
 from django.utils.translation import ngettext
 
 from chemicals.ledger.models import Vessel
+from chemicals.science.ghs import PICTOGRAMS
 from chemicals.science.quantity import show
+from compliance.documents.shapes import Pictogram
+from compliance.documents.words import symbol_name
 from compliance.premises import violations as found
 from compliance.premises.models import Measure, QuantityLimit, Reach
 from compliance.premises.sorts import EVERYTHING, HAZARD_CLASS, PICTOGRAM
@@ -21,8 +25,8 @@ def sort_name(sort: str) -> str:
     if sort == EVERYTHING:
         return _("everything")
     group, _colon, name = sort.partition(": ")
-    if group == PICTOGRAM:
-        return _("pictogram %(code)s") % {"code": name}
+    if group == PICTOGRAM and name in PICTOGRAMS:
+        return _("pictogram %(code)s, %(name)s") % {"code": name, "name": symbol_name(cast("Pictogram", name))}
     if group == HAZARD_CLASS:
         return _("hazard class %(name)s") % {"name": name}
     return _("what reacts as %(kind)s") % {"kind": name}

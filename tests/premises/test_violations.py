@@ -27,7 +27,7 @@ from compliance.premises.lines import (
     remove_line,
 )
 from compliance.premises.models import Measure, QuantityLimit
-from compliance.premises.selectors import Standing
+from compliance.premises.selectors import Standing, list_standing_for
 from compliance.premises.violation_words import remedies, sentence, speaks
 from compliance.premises.violations import Violation, list_violations_for
 from compliance.premises.weighing import Amount, amount_in
@@ -328,6 +328,28 @@ def test_the_same_queries_for_one_place_and_for_three(shop: Shop) -> None:
     with CaptureQueriesContext(connection) as many:
         assert len(violations(shop)) > 3
     assert len(few) == len(many) <= 11
+
+
+def test_near_a_place_is_what_shares_it_or_its_bund_or_duct(filled: Shop) -> None:
+    def near(*names: str) -> list[str]:
+        places = [found_place(filled, name) for name in names]
+        return [each.vessel.name for each in list_standing_for(filled.member, near=places)]
+
+    everything = [each.vessel.name for each in list_standing_for(filled.member)]
+    room = place(filled, "Attic", exhaust_duct="chimney")
+    filled.holder("Lone box", filled.product("Lone salt", {"NaCl": "99 %"}))
+    put(filled, "Lone box", room.name)
+    assert near("Attic") == ["Lone box"]
+    assert "Lone box" not in near("Shelf")
+    assert {"Jar 3", "Salt jar"} < set(near("Shelf")) <= set(everything), "and what is over the same tray"
+    assert near() == []
+    change_place(actor=filled.member, place=room, name="Attic", bund="tray", exhaust_duct="")
+    assert near("Attic") == near("Shelf")
+    whole = violations(filled, "must-never-meet")
+    beside = list_violations_for(
+        filled.member, filled.now, list_standing_for(filled.member, near=[found_place(filled, "Shelf")])
+    )
+    assert [sentence(each) for each in beside if each.code == "must-never-meet"] == [sentence(each) for each in whole]
 
 
 def test_another_workshop_is_not_looked_at(filled: Shop, stranger: Membership) -> None:

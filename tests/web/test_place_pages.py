@@ -95,6 +95,8 @@ def test_what_stands_together_is_told_where_it_was_put(visit: Visitor, filled: L
 def test_an_assessment_of_nothing_is_refused(visit: Visitor, shelf: Place) -> None:
     said = {"assessed_by": "Olga", "until": "2026-06-01", "reason": "x"}
     assert visit.post("assess", **said).status_code == 400
+    assert visit.get("assess").headers["Location"] == visit.address("violations")
+    assert "Nothing is named that was assessed." in text_of(visit.get("violations"))
     assert visit.client.get(visit.address("assess") + "?place=shelf").status_code == 404
 
 

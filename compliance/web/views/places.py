@@ -18,6 +18,7 @@ from compliance.premises import lines
 from compliance.premises.emergency import amount_of
 from compliance.premises.models import Assessment, KeepApart, QuantityLimit
 from compliance.premises.selectors import group_by_place, list_standing_for
+from compliance.premises.sorts import list_sorts
 from compliance.premises.violation_words import remedies, sentence, sort_name, speaks, total, where
 from compliance.premises.violations import (
     Violation,
@@ -198,7 +199,8 @@ def place(request: HttpRequest, member: Membership, uuid: UUID) -> HttpResponseB
 def find_around(member: Membership, vessels: list[Any]) -> list[dict[str, Any]]:
     """Return what is wrong where vessels stand, as far as they are part of it: said right after they came there."""
     keys = {vessel.pk for vessel in vessels}
-    found = list_violations_for(member, timezone.now())
+    near = list_standing_for(member, near={vessel.place for vessel in vessels if vessel.place}, brief=True)
+    found = list_violations_for(member, timezone.now(), near)
     return tell(member, [each for each in found if not each.is_remark and keys & {v.pk for v in each.vessels}])
 
 
@@ -309,6 +311,10 @@ def assess(request: HttpRequest, member: Membership) -> HttpResponse:
     said = {name: request.GET.get(name, "") for name in ("first", "second", "reach", "shared")}
     key = request.GET.get("place", "")
     where_ = _find_place(member, key) if key else None
+    is_named = {said["first"], said["second"]} <= {*list_sorts()} and (where_ or said["shared"])
+    if request.method == "GET" and not is_named:
+        messages.error(request, _("Nothing is named that was assessed. Choose it below."))
+        return HttpResponseRedirect(address("violations", member))
 
     def act(form: AssessmentForm) -> str:
         about = {"place": where_, **said, **form.cleaned_data}
