@@ -107,6 +107,12 @@ class Contents:
     metals: tuple[HeldMetal, ...]
     incomplete: bool
 
+    @property
+    def is_empty(self) -> bool:
+        """Whether something was recorded of it, all of that is known, and nothing is left."""
+        held = [part for part in (self.volume, self.mass, *self.metals) if part is not None]
+        return bool(held) and not self.incomplete and all(part.amount is not None and part.amount <= 0 for part in held)
+
 
 def list_contents_for(member: Membership, vessels: Iterable[int] | None = None) -> dict[int, Contents]:
     """Return what every vessel of the member's workshop holds, or those of these primary keys, by primary key.

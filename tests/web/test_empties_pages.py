@@ -84,8 +84,23 @@ def test_what_is_harmless_is_put_away_and_comes_back(visit: Visitor, line: Line,
     assert "Gone since <time" in page
     assert "Rinsed, rubbish." in page
     assert "At the bench" not in page
+    assert "Issue a label" not in page
     assert visit.post("here-again", jar.uuid).status_code == 302
     assert "At the bench" in text_of(visit.get("vessel", jar.uuid))
+
+
+def test_whoever_puts_away_what_is_not_empty_is_told(visit: Visitor, line: Line, say: Say) -> None:
+    say(ReceiptInput(vessel=line.tub.uuid, amount=parse("1 kg", "mass")))
+    assert "The books do not know it as empty" in text_of(visit.get("put-away", line.tub.uuid))
+    refused = visit.post("put-away", line.tub.uuid, note="Rubbish.")
+    assert refused.status_code == 400
+    assert "Rubbish." in text_of(refused) or b"Rubbish." in refused.content
+
+
+def test_a_list_says_what_is_empty(visit: Visitor, line: Line, emptied: Emptied) -> None:
+    emptied("Jar 1", line.salt)
+    for name in ("register", "containers"):
+        assert text_of(visit.get(name)).count('<span class="mark note">empty</span>') == 1
 
 
 def test_where_nothing_is_entered_somebody_must_say_that_they_looked(

@@ -7,7 +7,8 @@ from django.http import HttpRequest, HttpResponse, HttpResponseRedirect
 from django.utils import timezone
 from django.utils.translation import gettext as _
 
-from chemicals.ledger.selectors import get_vessel_for
+from chemicals.ledger.models import Vessel
+from chemicals.ledger.selectors import get_vessel_for, is_known_empty
 from chemicals.workshop.models import Membership
 from chemicals.workshop.permissions import require_writer
 from compliance.premises.empties import find_empty
@@ -32,9 +33,16 @@ def put_away_page(request: HttpRequest, member: Membership, uuid: UUID) -> HttpR
     words = {
         "heading": _("Put %(vessel)s away") % {"vessel": found},
         "button": _("It is gone"),
-        "intro": empty.why if empty else "",
+        "intro": empty.why if empty else _why_not(found),
     }
     return fill_in(request, member, PutAwayForm(empty, sent(request)), act, here="waste", back=back, **words)
+
+
+def _why_not(vessel: Vessel) -> str:
+    """Return why a vessel that is not known to have been emptied may not go; nothing if nothing ever was in it."""
+    if is_known_empty(vessel):
+        return ""
+    return _("The books do not know it as empty: something is in it, or may be. Count it, or move what is left.")
 
 
 @page("POST", need=require_writer)
