@@ -31,6 +31,17 @@ def test_the_most_telling_reason_wins() -> None:
     assert refusal("-3 L", "mass", "volume") == '"-3 L" is negative: write zero or more.'
 
 
+def test_a_unit_that_is_none_is_refused_with_those_of_every_dimension_that_fits() -> None:
+    told = refusal("20 bottles", "volume", "mass")
+    assert " L," in told
+    assert "kg" in told
+
+
+def test_what_is_too_long_is_told_how_long_it_may_be() -> None:
+    with pytest.raises(ValidationError, match=r"This is too long\. Write it in at most 5 characters\."):
+        LineField(max_length=5).clean("bottles")
+
+
 def test_a_field_that_may_stay_empty_cleans_to_nothing() -> None:
     assert AmountField(["volume"], required=False).clean(" ") is None
     with pytest.raises(ValidationError, match=r"This is needed\."):

@@ -92,6 +92,12 @@ def test_all_that_is_wrong_comes_at_once_with_what_was_typed(visit: Visitor, lin
     assert not Product._base_manager.filter(supplier="Somebody").exists()
 
 
+def test_a_jar_of_nothing_is_told_with_all_else(visit: Visitor, line: Line) -> None:
+    page = text_of(visit.post("new-jar", **said(amount="1,500 kg")))
+    assert "Choose the product, or write a new one." in page
+    assert "ambiguous" in page
+
+
 def test_without_any_product_the_new_one_is_asked_at_once(visit: Visitor) -> None:
     page = text_of(visit.get("new-jar"))
     assert '<details class="group" id="group-new" open>' in page

@@ -8,7 +8,7 @@ from zoneinfo import ZoneInfo
 
 from django import forms
 from django.core.exceptions import ValidationError
-from django.core.validators import MaxValueValidator, MinValueValidator
+from django.core.validators import MaxLengthValidator, MaxValueValidator, MinValueValidator
 from django.utils import timezone
 from django.utils.functional import Promise
 from django.utils.translation import gettext as _
@@ -24,6 +24,7 @@ REQUIRED = gettext_lazy("This is needed.")
 LARGEST_FILE = 20 * 1024 * 1024
 """Bytes of the largest file that is taken."""
 NO_CHOICE = gettext_lazy("Choose one from the list.")
+TOO_LONG = gettext_lazy("This is too long. Write it in at most %(limit_value)s characters.")
 OTHER_DAY = gettext_lazy("Write a day between 1900-01-01 and 2999-12-31.")
 
 
@@ -43,6 +44,9 @@ class LineField(forms.CharField):
         if lines > 1:
             kwargs["widget"] = forms.Textarea(attrs={"rows": lines})
         super().__init__(**kwargs)
+        for validator in self.validators:
+            if isinstance(validator, MaxLengthValidator):
+                validator.message = TOO_LONG
         self.validators.append(check_characters)
 
     def to_python(self, value: Any) -> str | None:
@@ -83,7 +87,10 @@ def parse_amount(typed: str, dimensions: Sequence[str]) -> Quantity:
         except QuantityError as error:
             refused.append(error)
     worst = min(refused, key=lambda error: error.code in ("wrong_dimension", "unknown_unit"))
-    raise ValidationError(_(MESSAGES[worst.code]) % worst.params, code=worst.code)
+    told = dict(worst.params)
+    if all(error.code == "unknown_unit" for error in refused):
+        told["known"] = ", ".join(str(error.params["known"]) for error in refused)
+    raise ValidationError(_(MESSAGES[worst.code]) % told, code=worst.code)
 
 
 class MomentWidget(forms.MultiWidget):

@@ -107,6 +107,13 @@ class JarForm(WebForm):
         """Return what everybody is asked of the containers."""
         return [part for part in super().main_parts if part.name != "product"]
 
+    def clean(self) -> dict[str, Any]:
+        """Refuse a jar of nothing together with all else that is wrong."""
+        said: dict[str, Any] = super().clean() or self.cleaned_data
+        if not any(self.data.get(name) for name in ("product", *NEW.values())):
+            self.add_error("product", _("Choose the product, or write a new one."))
+        return said
+
     def to_jar(self) -> JarInput:
         """Return what came in."""
         said = self.cleaned_data
