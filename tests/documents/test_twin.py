@@ -103,6 +103,21 @@ def test_the_manifest_says_what_it_is_not_and_who_decides(manifest: Data) -> Non
     assert "gross 50.8 kg" in said
 
 
+@pytest.mark.parametrize(
+    ("notes", "which"),
+    [((), "all 4 waste containers"), (("empty, not cleaned",), "all 4 containers")],
+    ids=["waste alone", "stock on it"],
+)
+def test_what_must_not_be_met_is_told_of_the_load_as_it_is(manifest: Data, notes: tuple[str, ...], which: str) -> None:
+    one = {**manifest["containers"][0], "must_not_meet": ["acid"]}
+    load = [{**one, "code": f"CODE{number}"} for number in range(4)]
+    for container, note in zip(load, notes, strict=False):
+        container["note"] = note
+    page = render_html("manifest", {**manifest, "containers": load})
+    assert f"<td>{which}</td>" in page
+    assert '<th scope="col">Containers</th>' in page
+
+
 def test_a_link_leads_to_the_issued_bytes_if_given(manifest: Data) -> None:
     assert "The paper as issued" not in render_html("manifest", manifest)
     links = Page(render_html("manifest", manifest, pdf_url="/papers/1.pdf")).all("a")

@@ -8,6 +8,8 @@ import pytest
 from django_scopes import scopes_disabled
 
 from chemicals.journal.models import Attachment
+from chemicals.ledger.models import Vessel
+from chemicals.process.models import CountDay
 from chemicals.workshop.models import Membership, Role
 from tests.house.walk import addresses
 from tests.journeys.conftest import DESK, PHONE, Visitor
@@ -27,7 +29,32 @@ def pages_of_the_demo() -> list[tuple[str, str]]:
             for address in addresses(owner, sha256)
             if not address.route.startswith(NO_PAGE) and not address.route.endswith(".pdf") and address.route != "c"
         }
-    return [("-".join(re.findall("[a-z]+", route + " " + name)), path) for (route, name), path in found.items()]
+    pages = [("-".join(re.findall("[a-z]+", route + " " + name)), path) for (route, name), path in found.items()]
+    return [*pages, *states_of_the_demo(f"/w/{owner.workshop.uuid}")]
+
+
+def states_of_the_demo(workshop: str) -> list[tuple[str, str]]:
+    """Return (name for a picture, path) of pages that look different by what is asked, or of what they are."""
+    with scopes_disabled():
+        stock = list(Vessel.objects.filter(kind="stock").select_related("product").order_by("name"))
+        each_kind = {vessel.kind: vessel for vessel in Vessel.objects.order_by("name")}
+        over = CountDay.objects.exclude(finished_at=None)[0]
+    codes = "&".join(f"code={vessel.code}" for vessel in stock)
+    empty = next(vessel for vessel in stock if vessel.name == "Jar of pickling paste")
+    assert empty.product is not None
+    return [
+        ("jars-set-up", f"{workshop}/register/jar/done/?{codes}"),
+        ("jar-of-a-product", f"{workshop}/register/jar/?product={empty.product.uuid}"),
+        ("change-several", f"{workshop}/containers/change/?{codes}"),
+        ("found", f"{workshop}/register/?q=acid&signal_word=Danger"),
+        ("found-nothing", f"{workshop}/register/containers/?q=no+such+thing"),
+        ("filter-wrong", f"{workshop}/register/containers/?place=nowhere"),
+        ("count-over", f"{workshop}/count/{over.uuid}/"),
+        ("import-of-the-register", f"{workshop}/imports/?subject=register"),
+        ("empty-jar", f"{workshop}/vessels/{empty.uuid}/"),
+        ("empty-jar-put-away", f"{workshop}/vessels/{empty.uuid}/put-away/"),
+        *((f"vessel-{kind}", f"{workshop}/vessels/{vessel.uuid}/") for kind, vessel in each_kind.items()),
+    ]
 
 
 @pytest.mark.parametrize("size", [PHONE, DESK], ids=["phone", "desk"])

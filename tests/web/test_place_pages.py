@@ -45,6 +45,7 @@ def test_a_limit_is_set_passed_told_today_and_removed(visit: Visitor, shelf: Pla
     with scope(workshop=visit.member.workshop):
         row = QuantityLimit.objects.get()
     assert (row.amount, row.measure, row.typed) == (10**9, "volume", "1 L")
+    assert '<section class="alarm">' in text_of(visit.get("place", shelf.uuid))
     today = text_of(visit.get("today"))
     assert "What stands together and must not" in today
     assert "More than the limit: everything, at least" in today
@@ -53,7 +54,10 @@ def test_a_limit_is_set_passed_told_today_and_removed(visit: Visitor, shelf: Pla
     page = text_of(visit.get("place", shelf.uuid))
     assert "everything: at most 5000 L" in page
     assert visit.post("remove-line", "limits", row.uuid).status_code == 302
-    assert "No limit yet." in text_of(visit.get("place", shelf.uuid))
+    page = text_of(visit.get("place", shelf.uuid))
+    assert "No limit yet." in page
+    assert "What is wrong or not known here" in page
+    assert 'class="alarm"' not in page, "what is only not known is no alarm"
 
 
 def test_what_is_wrong_with_a_limit_stands_under_its_fields(visit: Visitor, shelf: Place) -> None:

@@ -193,6 +193,7 @@ def place(request: HttpRequest, member: Membership, uuid: UUID) -> HttpResponseB
         things=things,
         limits=limits,
         found=tell(member, wrong),
+        alarm=any(each.is_alarm for each in wrong),
     )
 
 
