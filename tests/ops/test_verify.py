@@ -102,7 +102,7 @@ def test_a_changed_body_with_a_fitting_hash(books: Books) -> None:
     ("column", "value"),
     [
         ("kind", "run"),
-        ("kind_version", 2),
+        ("kind_version", 9),
         ("occurred_at", "2026-01-01 00:00:00+00:00"),
         ("precision", "day"),
         ("recorded_at", "2026-01-01 00:00:00+00:00"),

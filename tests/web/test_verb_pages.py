@@ -38,7 +38,7 @@ class TestButtons:
             verbs += [verb for _, group in list_groups(vessel) for verb, _ in group]
             assert len(verbs) == len(set(verbs)), vessel.kind
             offered |= set(verbs)
-        assert set(INPUTS) - offered == {"hand-over", "acceptance", "cancellation"}  # of drop-offs, analyses, entries
+        assert set(INPUTS) - offered == {"acceptance", "cancellation"}  # of analyses, of entries
 
     def test_every_kind_of_vessel_has_a_bench(self) -> None:
         assert set(BENCH) == set(VesselKind)
