@@ -84,6 +84,17 @@ def test_all_that_is_wrong_with_a_product_comes_at_once(visit: Visitor) -> None:
     assert not Product._base_manager.exists()
 
 
+def test_what_is_chosen_besides_words_is_named_and_folded_unless_it_is_wrong(visit: Visitor, line: Line) -> None:
+    plain, chosen, wrong = (
+        text_of(visit.get("register", query=query))
+        for query in ("", "?signal_word=Danger&keeps=soon", "?place=nowhere")
+    )
+    assert "<summary> Choose more closely </summary>" in plain
+    assert '<span class="mark note">Keeps until, Signal word</span>' in chosen
+    for page, is_open in ((plain, False), (chosen, False), (wrong, True)):
+        assert ("<details open> <summary> Choose more closely" in page) == is_open
+
+
 def test_a_wrong_content_stands_at_its_row(visit: Visitor) -> None:
     page = visit.post("add-product", **said(sulfate(), sheet="", **{"lines-1-content": "1,500 g/L"}))
     assert "#id_lines-1-content" in text_of(page)

@@ -56,9 +56,14 @@ class FindForm(Shown):
         return [self[name] for name in self.fields if name != "q"]
 
     @property
-    def uses_filters(self) -> bool:
-        """Say whether anything is chosen, or wrong, besides the words."""
-        return any(field.value() or field.errors for field in self.filters)
+    def chosen(self) -> list[BoundField]:
+        """Return what is chosen, besides the words."""
+        return [field for field in self.filters if field.value()]
+
+    @property
+    def has_wrong_filters(self) -> bool:
+        """Say whether anything that is chosen is wrong: then it must be seen."""
+        return any(field.errors for field in self.filters)
 
     @property
     def kept(self) -> str:
