@@ -12,6 +12,7 @@ from subprocess import Popen
 
 from chemicals.journal.models import Entry
 from chemicals.ledger.models import VesselKind
+from chemicals.process.instruments import InstrumentInput, create_instrument
 from chemicals.workshop.models import Membership, Role, Workshop
 from tests.conftest import make_member
 from tests.jobs.processes import ROOT, environment, kill
@@ -39,6 +40,7 @@ THINGS = {
     "route": ("Copper line", "Zinc line"),
     "rack type": ("Small part", "Barrel"),
     "receiver": (),
+    "instrument": ("level", "weight", "analysis", "pH"),
 }
 
 
@@ -70,6 +72,9 @@ def furnish(shop: Shop) -> None:
     zinc = shop.tank("Zinc", "15 L", kind="bath", metal="Zn", valence=2, anode_kind="inert", side_reaction="alkali")
     shop.route("Copper line", shop.rack("Small part", "4 mL", "44 cm2"), copper, *rinses)
     shop.route("Zinc line", shop.rack("Barrel", "60 mL"), zinc, rinses[1])
+    for measured in THINGS["instrument"]:
+        said = InstrumentInput(name=measured, measures=measured, relative_sd="1 %" if measured != "pH" else "")
+        create_instrument(actor=shop.member, now=shop.now, instrument=said)
     shop.drum("Acid drum")
     shop.drum("Alkaline drum", reactivity=("cyanide",), capacity=30 * 10**9)
 

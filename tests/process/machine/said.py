@@ -15,6 +15,7 @@ from chemicals.process.fields import (
     ComponentField,
     FieldKind,
     FlagField,
+    InstrumentField,
     MomentField,
     ReferenceField,
     RowsField,
@@ -43,6 +44,8 @@ EXAMPLES = {
 
 COMPONENTS = ("Cu", "Zn", "NaCl", "free cyanide")
 FORMULAS = {"Cu": "CuSO4.5H2O", "Zn": "ZnO", "free cyanide": "NaCN"}
+TEXTS = {"result": ("4.2", "24 °C", "3.5 V", "10 to 25 mg/L", "much"), "sd": ("0.1", "2 %")}
+"""For texts in which something must be read."""
 BARELY = 3
 """One in so many fields that may be left empty is filled in, of those that few people fill in."""
 
@@ -80,6 +83,8 @@ def _draw_word(chance: Random, name: str, field: FieldKind, names: Names, now: d
             word: Any = _draw_amount(chance, field)
         case VesselField():
             word = _pick(chance, [name for kind in field.kinds for name in names.vessels.get(kind, ())])
+        case InstrumentField():  # instruments are called after what they measure
+            word = _pick(chance, [name for name in names.others[field.to] if name in field.measures])
         case ReferenceField():
             word = _pick(chance, names.others[field.to])
         case ComponentField():
@@ -97,7 +102,7 @@ def _draw_word(chance: Random, name: str, field: FieldKind, names: Names, now: d
 
 OTHERS: Mapping[type[FieldKind], Callable[[Random, str, Any, datetime], Any]] = {
     WholeField: lambda chance, _name, field, _now: chance.randint(field.least, min(field.most, field.least + 5)),
-    TextField: lambda _chance, name, _field, _now: f"a {name}",
+    TextField: lambda chance, name, _field, _now: chance.choice(TEXTS.get(name, (f"a {name}",))),
     FlagField: lambda chance, _name, _field, _now: chance.random() < 0.5,
     MomentField: lambda chance, _name, _field, now: now - timedelta(hours=chance.randint(-1, 30)),
 }
