@@ -1,5 +1,6 @@
 """Every page: axe finds nothing, nothing scrolls sideways, the browser complains of nothing."""
 
+import os
 import re
 from collections.abc import Callable
 from pathlib import Path
@@ -17,6 +18,12 @@ from tests.journeys.test_bench import People
 
 NO_PAGE = ("api/", "c/", "sign-out", "w/<uuid:workshop>/files")
 """Addresses that answer with data, a file or another address."""
+
+
+LOOKS = [pytest.param(PHONE, "light", id="phone-light"), pytest.param(DESK, "dark", id="desk-dark")]
+"""Both widths and both schemes; the other two pairs are looked at when pictures are wanted."""
+if os.environ.get("SCREENSHOTS"):
+    LOOKS += [pytest.param(PHONE, "dark", id="phone-dark"), pytest.param(DESK, "light", id="desk-light")]
 
 
 def pages_of_the_demo() -> list[tuple[str, str]]:
@@ -57,8 +64,7 @@ def states_of_the_demo(workshop: str) -> list[tuple[str, str]]:
     ]
 
 
-@pytest.mark.parametrize("size", [PHONE, DESK], ids=["phone", "desk"])
-@pytest.mark.parametrize("scheme", ["light", "dark"])
+@pytest.mark.parametrize(("size", "scheme"), LOOKS)
 def test_every_page_is_accessible(
     demo: People, visit: Callable[..., Visitor], pictures: Path | None, size: dict[str, int], scheme: str
 ) -> None:
