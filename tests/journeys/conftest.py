@@ -9,7 +9,15 @@ from typing import Any
 
 import pytest
 from axe_playwright_python.sync_playwright import Axe
-from playwright.sync_api import Browser, BrowserContext, ConsoleMessage, Page, Response, sync_playwright
+from playwright.sync_api import (
+    Browser,
+    BrowserContext,
+    ConsoleMessage,
+    Page,
+    Request,
+    Response,
+    sync_playwright,
+)
 from pytest_django.live_server_helper import LiveServer
 
 from compliance.ops.demo import load_demo
@@ -90,12 +98,21 @@ def visit(browser: Browser, live_server: LiveServer) -> Iterator[Callable[..., V
         page.on("pageerror", lambda error: complaints.append(str(error)))
         page.on("console", lambda message: complaints.append(message.text) if _is_complaint(message) else None)
         page.on("response", lambda response: complaints.append(response.url) if _is_lost(response) else None)
-        page.on("requestfailed", lambda request: complaints.append(f"failed: {request.url}"))
+        page.on("requestfailed", lambda request: complaints.append(_tell(request)) if _is_refused(request) else None)
         return Visitor(page, live_server.url, complaints)
 
     yield open_window
     for context in contexts:
         context.close()
+
+
+def _is_refused(request: Request) -> bool:
+    """Say whether a request failed by itself: who opens the next page ends what the last one still asks for."""
+    return request.failure != "net::ERR_ABORTED"
+
+
+def _tell(request: Request) -> str:
+    return f"failed: {request.url} {request.failure}"
 
 
 def _is_complaint(message: ConsoleMessage) -> bool:
