@@ -11,7 +11,8 @@ from django_scopes import scope
 
 from chemicals.books import events
 from chemicals.books.events import GROSS_MASS, VOLUME
-from chemicals.ledger.models import Posting, VesselKind
+from chemicals.ledger.care import CONTAINERS
+from chemicals.ledger.models import Posting
 from chemicals.register.models import ProductRevision
 from chemicals.register.selectors import list_current_revisions_for
 from chemicals.science.ghs import split_statement
@@ -104,7 +105,7 @@ def _read_used(member: Membership, since: datetime) -> dict[int, dict[str, int]]
     with scope(workshop=member.workshop):
         rows = (
             Posting.objects.filter(
-                vessel__kind__in=(VesselKind.STOCK, VesselKind.ANODE),
+                vessel__kind__in=CONTAINERS,
                 component__code__in=_UNITS,
                 occurred_at__gte=since,
             )

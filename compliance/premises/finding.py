@@ -17,8 +17,9 @@ from django.db.models.functions import Cast, RowNumber
 from django.db.models.lookups import Contains
 from django_scopes import scope
 
+from chemicals.ledger.care import CONTAINERS
 from chemicals.ledger.codes import tidy_code
-from chemicals.ledger.models import Vessel, VesselKind
+from chemicals.ledger.models import Vessel
 from chemicals.ledger.selectors import Contents, list_contents_for, list_vessels_for
 from chemicals.register.models import Product, ProductRevision
 from chemicals.register.selectors import list_current_revisions_for, list_products_for
@@ -30,8 +31,6 @@ from compliance.premises.expiry import SOON
 from compliance.premises.filters import NONE, Wanted
 from compliance.premises.selectors import Standing, list_standing_for
 
-CONTAINERS = (VesselKind.STOCK, VesselKind.ANODE)
-"""What stands on a shelf as it was bought."""
 MOST_WORDS = 10
 """So many words are looked for; what is typed after them does not count."""
 MOST_SHOWN = 3

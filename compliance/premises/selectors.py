@@ -9,8 +9,9 @@ from django.db.models import Exists, OuterRef, Q, QuerySet, Subquery
 from django_scopes import scope
 
 from chemicals.books.events import UNKNOWN_LIQUID
+from chemicals.ledger.care import CONTAINERS
 from chemicals.ledger.codes import tidy_code
-from chemicals.ledger.models import Holding, Memory, Vessel, VesselKind
+from chemicals.ledger.models import Holding, Memory, Vessel
 from chemicals.ledger.selectors import Contents, Held, list_contents_for, list_vessels_for
 from chemicals.process.models import Tank
 from chemicals.process.selectors import list_tanks_for
@@ -196,7 +197,7 @@ def group_by_place(standing: Iterable[Standing]) -> dict[int | None, list[Standi
 
 def is_stock(vessel: Vessel) -> bool:
     """Say whether a vessel holds one product as bought."""
-    return vessel.kind in (VesselKind.STOCK, VesselKind.ANODE)
+    return vessel.kind in CONTAINERS
 
 
 def find_chosen_rule(member: Membership) -> tuple[ListRule, ChosenRule] | None:
